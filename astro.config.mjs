@@ -1,0 +1,13 @@
+import node from '@astrojs/node';
+import react from '@astrojs/react';
+import tailwindcss from '@tailwindcss/vite';
+import { defineConfig } from 'astro/config';
+
+export default defineConfig({
+  output: 'server',
+  adapter: node({ mode: 'middleware' }),
+  integrations: [react()],
+  vite: { plugins: [tailwindcss()] },
+  devToolbar: { enabled: false },
+  telemetry: false,
+});

@@ -1,0 +1,35 @@
+import { fileURLToPath } from 'node:url';
+import { defineConfig } from 'vitest/config';
+
+const alias = {
+  '@': fileURLToPath(new URL('./src', import.meta.url)),
+  '@db': fileURLToPath(new URL('./db', import.meta.url)),
+};
+
+/** One project an environment: browser-shaped tests name themselves `*.test.tsx` or lie in `offline`. */
+export default defineConfig({
+  resolve: { alias },
+  test: {
+    setupFiles: ['tests/support/setup.ts'],
+    projects: [
+      {
+        extends: true,
+        test: {
+          name: 'node',
+          environment: 'node',
+          include: ['src/**/*.test.ts', 'db/**/*.test.ts', 'tests/{standards,integration,support}/**/*.test.ts'],
+          exclude: ['src/{features,components,offline}/**'],
+        },
+      },
+      {
+        extends: true,
+        test: {
+          name: 'browser-shaped',
+          environment: 'jsdom',
+          include: ['src/{features,components,offline}/**/*.test.{ts,tsx}'],
+          setupFiles: ['tests/support/setup.ts', 'tests/support/setup-dom.ts'],
+        },
+      },
+    ],
+  },
+});
