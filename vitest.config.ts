@@ -17,7 +17,11 @@ export default defineConfig({
         test: {
           name: 'node',
           environment: 'node',
-          include: ['src/**/*.test.ts', 'db/**/*.test.ts', 'tests/{standards,integration,support}/**/*.test.ts'],
+          include: [
+            'src/**/*.test.ts',
+            'db/**/*.test.ts',
+            'tests/{standards,integration,support}/**/*.test.ts',
+          ],
           exclude: ['src/{features,components,offline}/**'],
         },
       },
