@@ -31,15 +31,15 @@ export function isLoopback(hostname: string): boolean {
 
 /** Reads and checks the settings; throws a SettingsError with a sentence for the person who set them. */
 export function readSettings(env: Readonly<Record<string, string | undefined>>, root: string): Settings {
-  const port = readPort(env['PORT']);
-  const publicUrl = readPublicUrl(env['PUBLIC_URL'], port);
+  const port = readPort(env.PORT);
+  const publicUrl = readPublicUrl(env.PUBLIC_URL, port);
   return {
     port,
-    host: env['HOST']?.trim() || '127.0.0.1',
+    host: env.HOST?.trim() || '127.0.0.1',
     publicUrl: publicUrl.origin,
-    dataDir: path.resolve(root, env['DATA_DIR']?.trim() || 'data'),
-    demo: readDemo(env['DEMO'], publicUrl),
-    trustedProxies: readTrustedProxies(env['TRUST_PROXY']),
+    dataDir: path.resolve(root, env.DATA_DIR?.trim() || 'data'),
+    demo: readDemo(env.DEMO, publicUrl),
+    trustedProxies: readTrustedProxies(env.TRUST_PROXY),
   };
 }
 
