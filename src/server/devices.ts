@@ -1,0 +1,140 @@
+import type { DeviceRow } from '@db/tables';
+import { type Actor, requireRole } from './actor';
+import { type Clock, type Ids, stamp } from './clock';
+import { isSameDigest, newSecret, sha256Hex } from './crypto';
+import type { Db, Trx } from './database';
+import { AppError, notFound } from './errors';
+import { appendWorkshopEntry } from './workshop-trail';
+
+/** A browser that was enrolled as a tablet. */
+export interface Device {
+  id: string;
+  name: string;
+  state: 'active' | 'lost';
+  enrolledBy: string;
+  enrolledAt: string;
+  lastHeardAt: string | undefined;
+}
+
+/** Enrols a browser as a tablet; the credential is given out this once and only its hash is kept. */
+export async function enrolDevice(
+  trx: Trx,
+  actor: Actor,
+  { id, name }: { id: string; name: string },
+  app: { clock: Clock; ids: Ids },
+): Promise<{ device: Device; credential: string }> {
+  const known = await trx.selectFrom('device').select('id').where('id', '=', id).executeTakeFirst();
+  if (known !== undefined) {
+    throw new AppError(
+      'conflict',
+      'A tablet with this id is enrolled already. Make a new id and enrol again.',
+      { field: 'id' },
+    );
+  }
+  const credential = newSecret();
+  const row: DeviceRow = {
+    id,
+    name,
+    credential_hash: sha256Hex(credential),
+    enrolled_by: actor.personId,
+    enrolled_at: stamp(app.clock),
+    state: 'active',
+    last_heard_at: null,
+  };
+  await trx.insertInto('device').values(row).execute();
+  await appendWorkshopEntry(trx, actor, { kind: 'tablet-enrolled', data: { tablet: id, name } }, app);
+  return { device: toDevice(row), credential };
+}
+
+/** The tablet that sends this request, proved by its credential; undefined if it sends none. */
+export async function findRequestDevice(db: Db, request: Request): Promise<Device | undefined> {
+  const header = request.headers.get('authorization');
+  if (header === null) return undefined;
+  const match = /^Tablet ([0-9a-f-]{36})\.([\w-]{43})$/.exec(header);
+  const row =
+    match === null
+      ? undefined
+      : await db
+          .selectFrom('device')
+          .selectAll()
+          .where('id', '=', match[1] ?? '')
+          .executeTakeFirst();
+  if (row === undefined || !isSameDigest(row.credential_hash, sha256Hex(match?.[2] ?? ''))) {
+    throw new AppError(
+      'unknown-tablet',
+      'This tablet is not known to the workshop. What it recorded is still on it: sign in and enrol it again, or save its records as a file.',
+    );
+  }
+  if (row.state === 'lost') {
+    throw new AppError(
+      'unknown-tablet',
+      'This tablet was declared lost. What it recorded is still on it: ask the owner to take it back into use, or save its records as a file.',
+    );
+  }
+  return toDevice(row);
+}
+
+/** The tablet that sends this request; refuses if it does not prove which one it is. */
+export async function requireDevice(db: Db, request: Request): Promise<Device> {
+  const device = await findRequestDevice(db, request);
+  if (device !== undefined) return device;
+  throw new AppError(
+    'unknown-tablet',
+    'This has to come from an enrolled tablet. Sign in on it and enrol it first.',
+  );
+}
+
+/** Every tablet of the workshop, the newest first. */
+export async function listDevices(db: Db, actor: Actor): Promise<Device[]> {
+  requireRole(actor, 'owner', 'supervisor', 'quality lead', 'auditor');
+  const rows = await db.selectFrom('device').selectAll().orderBy('enrolled_at', 'desc').execute();
+  return rows.map(toDevice);
+}
+
+/** Renames a tablet, declares it lost, or takes it back into use. */
+export async function changeDevice(
+  trx: Trx,
+  actor: Actor,
+  id: string,
+  change: { name?: string | undefined; state?: 'active' | 'lost' | undefined },
+  app: { clock: Clock; ids: Ids },
+): Promise<Device> {
+  requireRole(actor, 'owner', 'supervisor');
+  const row = await trx.selectFrom('device').selectAll().where('id', '=', id).executeTakeFirst();
+  if (row === undefined) throw notFound('This tablet');
+  const next = { ...row, name: change.name ?? row.name, state: change.state ?? row.state };
+  if (next.name !== row.name) {
+    await appendWorkshopEntry(
+      trx,
+      actor,
+      { kind: 'tablet-renamed', data: { tablet: id, from: row.name, to: next.name } },
+      app,
+    );
+  }
+  if (next.state !== row.state) {
+    const kind = next.state === 'lost' ? 'tablet-lost' : 'tablet-found';
+    await appendWorkshopEntry(trx, actor, { kind, data: { tablet: id, name: next.name } }, app);
+  }
+  await trx.updateTable('device').set({ name: next.name, state: next.state }).where('id', '=', id).execute();
+  return toDevice(next);
+}
+
+/** Notes that a tablet was heard from; call it inside the transaction that the tablet caused. */
+export async function noteHeardFrom(trx: Trx, deviceId: string, clock: Clock): Promise<void> {
+  await trx
+    .updateTable('device')
+    .set({ last_heard_at: stamp(clock) })
+    .where('id', '=', deviceId)
+    .execute();
+}
+
+function toDevice(row: DeviceRow): Device {
+  return {
+    id: row.id,
+    name: row.name,
+    state: row.state,
+    enrolledBy: row.enrolled_by,
+    enrolledAt: row.enrolled_at,
+    lastHeardAt: row.last_heard_at ?? undefined,
+  };
+}

@@ -1,0 +1,147 @@
+import type { WorkshopEntryRow } from '@db/tables';
+import type { Actor } from './actor';
+import { type Clock, type Ids, stamp } from './clock';
+import { canonicalJson, hashJson, sha256Hex } from './crypto';
+import type { Db, Trx } from './database';
+
+/*
+ * The workshop's own trail: people, roles, keys, tablets, tools, calibrations, releases, jobs opened, signed
+ * heads, erasures. Every change to one of these appends here in the same transaction, so that none can be
+ * made afterwards unseen. The chain starts with the first person and has no gaps.
+ */
+
+/** What a workshop entry may hold: JSON whose numbers are safe integers; measured values are text. */
+export type EntryData =
+  string | number | boolean | null | readonly EntryData[] | { readonly [key: string]: EntryData };
+
+export const WORKSHOP_KINDS = [
+  'workshop-set',
+  'person-added',
+  'person-renamed',
+  'roles-changed',
+  'person-deactivated',
+  'person-reactivated',
+  'pin-set',
+  'tablet-enrolled',
+  'tablet-renamed',
+  'tablet-lost',
+  'tablet-found',
+  'key-enrolled',
+  'key-revoked',
+  'tool-added',
+  'tool-changed',
+  'tool-withdrawn',
+  'tool-returned',
+  'calibration-recorded',
+  'document-released',
+  'document-withdrawn',
+  'job-opened',
+  'head-signed',
+  'erased',
+  'restored',
+] as const;
+
+export type WorkshopKind = (typeof WORKSHOP_KINDS)[number];
+
+/** An entry of the workshop trail as it is recorded and hashed. */
+export interface WorkshopEntry {
+  v: 1;
+  id: string;
+  kind: WorkshopKind;
+  by: string;
+  author: { name: string; roles: readonly string[] };
+  at: string;
+  data: Readonly<Record<string, EntryData>>;
+  seq: number;
+  recordedAt: string;
+  prev: string;
+}
+
+/** The previous hash of the first entry of any trail. */
+export const NO_PREVIOUS = '0'.repeat(64);
+
+/** Appends to the workshop trail; must run in the transaction that makes the change it tells of. */
+export async function appendWorkshopEntry(
+  trx: Trx,
+  actor: Actor,
+  entry: { kind: WorkshopKind; data: Readonly<Record<string, EntryData>> },
+  { clock, ids }: { clock: Clock; ids: Ids },
+): Promise<{ seq: number; hash: string }> {
+  const last = await trx
+    .selectFrom('workshop_entry')
+    .select(['seq', 'hash'])
+    .orderBy('seq', 'desc')
+    .limit(1)
+    .executeTakeFirst();
+  const at = stamp(clock);
+  const authored = {
+    v: 1 as const,
+    id: ids.next(),
+    kind: entry.kind,
+    by: actor.personId,
+    author: { name: actor.name, roles: [...actor.roles] },
+    at,
+    data: entry.data,
+  };
+  requireHashable(authored, '');
+  const recorded: WorkshopEntry = {
+    ...authored,
+    seq: (last?.seq ?? 0) + 1,
+    recordedAt: at,
+    prev: last?.hash ?? NO_PREVIOUS,
+  };
+  const body = canonicalJson(recorded);
+  const hash = sha256Hex(body);
+  await trx
+    .insertInto('workshop_entry')
+    .values({
+      seq: recorded.seq,
+      id: recorded.id,
+      kind: recorded.kind,
+      by_person: recorded.by,
+      at,
+      body,
+      content_hash: hashJson(authored),
+      hash,
+    })
+    .execute();
+  return { seq: recorded.seq, hash };
+}
+
+/** The number of the newest workshop entry; a job entry names the one it was judged by. */
+export async function workshopSeq(db: Db): Promise<number> {
+  const row = await db
+    .selectFrom('workshop_entry')
+    .select('seq')
+    .orderBy('seq', 'desc')
+    .limit(1)
+    .executeTakeFirst();
+  return row?.seq ?? 0;
+}
+
+/** Entries of the workshop trail after a number, in order. */
+export async function listWorkshopEntries(
+  db: Db,
+  { after, limit }: { after: number; limit: number },
+): Promise<Pick<WorkshopEntryRow, 'seq' | 'body' | 'hash'>[]> {
+  return db
+    .selectFrom('workshop_entry')
+    .select(['seq', 'body', 'hash'])
+    .where('seq', '>', after)
+    .orderBy('seq')
+    .limit(limit)
+    .execute();
+}
+
+function requireHashable(value: unknown, path: string): void {
+  if (typeof value === 'number' && !Number.isSafeInteger(value)) {
+    throw new RangeError(`${path} is ${value}: a hashed entry holds no numbers but safe integers.`);
+  }
+  if (typeof value === 'string' && (value !== value.normalize('NFC') || /\p{Surrogate}/u.test(value))) {
+    throw new RangeError(`${path} is not well-formed NFC text, so it cannot be hashed.`);
+  }
+  if (value === undefined) throw new RangeError(`${path} is undefined, so it cannot be hashed.`);
+  if (typeof value === 'object' && value !== null) {
+    for (const [key, item] of Object.entries(value)) requireHashable(item, `${path}/${key}`);
+  }
+}
