@@ -1,0 +1,165 @@
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import {
+  clearanceFromCard,
+  clearanceFromParts,
+  clearanceFromWidth,
+  judge,
+  taper,
+  type CardBand,
+} from '@/domain/clearance';
+
+const card: CardBand[] = [
+  { width: 0.9, clearance: 0.08 },
+  { width: 1.2, clearance: 0.06 },
+  { width: 1.6, clearance: 0.05 },
+  { width: 2.4, clearance: 0.03 },
+];
+
+describe('clearanceFromWidth', () => {
+  it('gives a smaller clearance for a wider thread', () => {
+    fc.assert(
+      fc.property(
+        fc.double({ min: 0.3, max: 3, noNaN: true }),
+        fc.double({ min: 0.01, max: 3, noNaN: true }),
+        (width, more) => {
+          expect(clearanceFromWidth(0.3, width + more)).toBeLessThan(clearanceFromWidth(0.3, width));
+        },
+      ),
+    );
+  });
+
+  it('refuses sizes that can not be', () => {
+    for (const size of [0, -1, Number.NaN, Number.POSITIVE_INFINITY]) {
+      expect(() => clearanceFromWidth(size, 1)).toThrow(RangeError);
+      expect(() => clearanceFromWidth(1, size)).toThrow(RangeError);
+    }
+  });
+});
+
+describe('clearanceFromCard', () => {
+  it('reads a band as printed, with half the wider of the two steps beside it', () => {
+    expect(clearanceFromCard(card, 1.2)).toEqual({ clearance: 0.06, uncertainty: 0.01 });
+    expect(clearanceFromCard(card, 1.6)).toEqual({ clearance: 0.05, uncertainty: 0.01 });
+    expect(clearanceFromCard(card, 0.9)).toEqual({ clearance: 0.08, uncertainty: 0.01 });
+    expect(clearanceFromCard(card, 2.4)).toEqual({ clearance: 0.03, uncertainty: 0.01 });
+  });
+
+  it('interpolates between two bands, with half the step between them', () => {
+    const reading = clearanceFromCard(card, 1.4);
+    expect(reading.clearance).toBeCloseTo(0.055, 12);
+    expect(reading.uncertainty).toBe(0.005);
+  });
+
+  it('takes the bands in any order', () => {
+    expect(clearanceFromCard(card.toReversed(), 1.4)).toEqual(clearanceFromCard(card, 1.4));
+  });
+
+  it('reads up to half a step off the card and no further', () => {
+    expect(clearanceFromCard(card, 0.75).clearance).toBeCloseTo(0.09, 12);
+    expect(clearanceFromCard(card, 2.8).clearance).toBeCloseTo(0.02, 12);
+    expect(() => clearanceFromCard(card, 0.749)).toThrow('narrower than this card can tell');
+    expect(() => clearanceFromCard(card, 2.801)).toThrow('wider than this card can tell');
+  });
+
+  it('never gives a wider thread the larger clearance', () => {
+    const width = fc.double({ min: 0.76, max: 2.79, noNaN: true });
+    fc.assert(
+      fc.property(width, width, (a, b) => {
+        const [narrow, wide] = [
+          clearanceFromCard(card, Math.min(a, b)),
+          clearanceFromCard(card, Math.max(a, b)),
+        ];
+        expect(wide.clearance).toBeLessThanOrEqual(narrow.clearance + 1e-12);
+      }),
+    );
+  });
+
+  it('refuses cards that can not be', () => {
+    expect(() => clearanceFromCard([], 1)).toThrow(RangeError);
+    expect(() => clearanceFromCard([{ width: 1, clearance: 0.05 }], 1)).toThrow(RangeError);
+    expect(() => clearanceFromCard([...card, { width: 1.2, clearance: 0.055 }], 1.2)).toThrow(RangeError);
+    expect(() => clearanceFromCard([...card, { width: 3, clearance: 0.09 }], 1.2)).toThrow(RangeError);
+    expect(() => clearanceFromCard([...card, { width: -3, clearance: 0.1 }], 1.2)).toThrow(RangeError);
+  });
+
+  it('refuses a reading past the end that would be no clearance at all', () => {
+    const steep: CardBand[] = [
+      { width: 1, clearance: 0.06 },
+      { width: 2, clearance: 0.01 },
+    ];
+    expect(() => clearanceFromCard(steep, 2.4)).toThrow('too far off the card');
+  });
+});
+
+describe('clearanceFromParts', () => {
+  it('says when the parts bind', () => {
+    expect(clearanceFromParts({ housingBore: 50, upperWall: 1, lowerWall: 1, journal: 48.01 })).toBe(-0.01);
+  });
+
+  it('refuses sizes that can not be', () => {
+    const parts = { housingBore: 50, upperWall: 1, lowerWall: 1, journal: 47.95 };
+    for (const name of Object.keys(parts)) {
+      expect(() => clearanceFromParts({ ...parts, [name]: -1 })).toThrow(RangeError);
+    }
+  });
+});
+
+describe('judge', () => {
+  const limits = { low: 0.03, high: 0.07, uncertainty: 0.005 };
+
+  it.each([
+    [0.0249, 'outside'],
+    [0.025, 'unsure'],
+    [0.0349, 'unsure'],
+    [0.035, 'inside'],
+    [0.05, 'inside'],
+    [0.065, 'inside'],
+    [0.0651, 'unsure'],
+    [0.075, 'unsure'],
+    [0.0751, 'outside'],
+  ] as const)('judges %d mm as %s', (value, verdict) => {
+    expect(judge({ value, ...limits }).verdict).toBe(verdict);
+  });
+
+  it('is not misled by binary fractions: 0.1 + 0.2 is 0.3', () => {
+    expect(judge({ value: 0.3, low: 0.1, high: 1, uncertainty: 0.2 }).verdict).toBe('inside');
+  });
+
+  it('has no unsure zone where the measurement is exact', () => {
+    fc.assert(
+      fc.property(fc.double({ min: -1, max: 1, noNaN: true }), (value) => {
+        const { verdict, place } = judge({ value, low: 0.03, high: 0.07, uncertainty: 0 });
+        expect(verdict).toBe(value >= 0.03 && value <= 0.07 ? 'inside' : 'outside');
+        if (verdict === 'inside') expect(place >= 0 && place <= 1).toBe(true);
+      }),
+    );
+  });
+
+  it('places a value between its limits', () => {
+    expect(judge({ value: 0.03, ...limits }).place).toBe(0);
+    expect(judge({ value: 0.07, ...limits }).place).toBe(1);
+    expect(judge({ value: 0.05, ...limits }).place).toBeCloseTo(0.5, 12);
+    expect(judge({ value: 0.02, ...limits }).place).toBeCloseTo(-0.25, 12);
+  });
+
+  it('refuses limits and uncertainties that can not be', () => {
+    expect(() => judge({ value: 1, low: 2, high: 1, uncertainty: 0 })).toThrow(RangeError);
+    expect(() => judge({ value: 1, low: 1, high: 1, uncertainty: 0 })).toThrow(RangeError);
+    expect(() => judge({ value: 1, low: 0, high: 2, uncertainty: -0.1 })).toThrow(RangeError);
+    expect(() => judge({ value: Number.NaN, low: 0, high: 2, uncertainty: 0 })).toThrow(RangeError);
+  });
+});
+
+describe('taper', () => {
+  it('is the same whichever end is wider', () => {
+    expect(taper(0.05, 0.047)).toBe(0.003);
+    expect(taper(0.047, 0.05)).toBe(0.003);
+    expect(taper(0.05, 0.05)).toBe(0);
+  });
+
+  it('refuses a clearance that can not be', () => {
+    expect(() => taper(-0.05, 0.05)).toThrow(RangeError);
+    expect(() => taper(0.05, Number.NaN)).toThrow(RangeError);
+  });
+});
