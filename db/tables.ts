@@ -249,8 +249,8 @@ export interface JobEntryTable {
   id: Fixed<string>;
   kind: Fixed<string>;
   step: Fixed<string | null>;
-  by_person: Fixed<string>;
-  device_id: Fixed<string>;
+  by_person: Fixed<string | null>;
+  device_id: Fixed<string | null>;
   device_seq: Fixed<number>;
   at: Fixed<string>;
   recorded_at: Fixed<string>;

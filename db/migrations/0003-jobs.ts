@@ -76,8 +76,9 @@ const statements = [
      id text not null unique,
      kind text not null,
      step text,
-     by_person text not null references person (id),
-     device_id text not null references device (id),
+     -- Both are null for an entry that the server makes for the record itself.
+     by_person text references person (id),
+     device_id text references device (id),
      device_seq integer not null,
      at text not null,
      recorded_at text not null,
@@ -86,7 +87,9 @@ const statements = [
      hash text not null unique,
      signature text,
      key_id text,
-     primary key (job_id, seq)
+     primary key (job_id, seq),
+     check ((by_person is null) = (device_id is null)),
+     check ((by_person is null) = (signature is null))
    ) strict`,
   `create index job_entry_device on job_entry (job_id, device_id, device_seq)`,
   `create index job_entry_person on job_entry (by_person, job_id)`,
