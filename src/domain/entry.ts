@@ -98,7 +98,8 @@ export const entryData = {
     outcome: z.enum(['done', 'short and continued', 'over']),
     tool: z.optional(toolUsed),
   }),
-  released: z.strictObject({ ...place.shape }),
+  /** By the programme at a cycle's end, or out of turn (a partner of a condemned bolt) with the reason. */
+  released: z.strictObject({ ...place.shape, because: z.optional(note) }),
   marked: z.strictObject({ ...place.shape, colour: text(30) }),
   /** "Not sure whether it was turned": all bolts of the cap let off, the cap starts again. */
   'started-again': z.strictObject({ bolts: z.array(text(40)).check(z.minLength(1)), reason: note }),

@@ -3,7 +3,7 @@
  * tablet in IndexedDB. Only job.ts makes one. Everything in it follows from the plan and the entries.
  */
 import type { Entry, EntryKind } from './entry';
-import type { BoltSet, CriticalClass, Plan } from './plan';
+import type { BoltSet, CriticalClass, Plan, RodEffects } from './plan';
 
 /** An entry as the state remembers it. */
 export interface Kept {
@@ -26,6 +26,8 @@ export interface Kept {
   /** Why it no longer counts: reading voided, rod started again, plan moved. */
   voided?: string | undefined;
   revokedBy?: string | undefined;
+  /** When the server opened the sealed PIN and found it right. */
+  pinCheckedAt?: string | undefined;
   conflict?: string | undefined;
 }
 
@@ -163,6 +165,8 @@ export interface JobState {
   seq: number;
   steps: Record<string, StepState>;
   crankAngle: number;
+  /** What done steps changed on the rods, in order, so that a taken-back one can be undone. */
+  effects: { entry: string; rod: number; sets: RodEffects }[];
   rods: Record<string, RodState>;
   bolts: Record<string, BoltState>;
   open: OpenItem[];
