@@ -15,6 +15,7 @@ export interface Database {
   rateLimit: RateLimitTable;
   setting: SettingTable;
   person: PersonTable;
+  attempt_count: AttemptCountTable;
   one_time_link: OneTimeLinkTable;
   device: DeviceTable;
   author_key: AuthorKeyTable;
@@ -101,6 +102,12 @@ export interface PersonTable {
   active: number;
   created_at: Fixed<string>;
   deactivated_at: string | null;
+}
+
+export interface AttemptCountTable {
+  key: Fixed<string>;
+  failed: number;
+  since: string;
 }
 
 export interface OneTimeLinkTable {

@@ -17,6 +17,15 @@ const statements = [
      deactivated_at text
    ) strict`,
 
+  `create trigger person_no_delete before delete on person
+     begin select raise(abort, 'people are deactivated, never deleted'); end`,
+
+  `create table attempt_count (
+     key text not null primary key,
+     failed integer not null,
+     since text not null
+   ) strict`,
+
   `create table one_time_link (
      token_hash text not null primary key,
      purpose text not null check (purpose in ('first owner', 'set password')),

@@ -70,6 +70,7 @@ const statements = [
    ) strict`,
   `create index job_person_person on job_person (person_id)`,
 
+  // No reference to person and device: what the server itself records names neither.
   `create table job_entry (
      job_id text not null references job (id),
      seq integer not null,

@@ -72,7 +72,7 @@ export function provideApp(app: App | undefined): void {
 function makeLog(): Logger {
   const secrets = ['password', 'pin', 'credential', 'token', 'authorization', 'cookie'];
   return pino({
-    level: process.env['LOG_LEVEL'] ?? 'info',
+    level: process.env.LOG_LEVEL ?? 'info',
     redact: secrets.flatMap((name) => [name, `*.${name}`]),
   });
 }

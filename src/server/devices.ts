@@ -13,7 +13,7 @@ export interface Device {
   state: 'active' | 'lost';
   enrolledBy: string;
   enrolledAt: string;
-  lastHeardAt: string | undefined;
+  lastHeardAt: string | null;
 }
 
 /** Enrols a browser as a tablet; the credential is given out this once and only its hash is kept. */
@@ -135,6 +135,6 @@ function toDevice(row: DeviceRow): Device {
     state: row.state,
     enrolledBy: row.enrolled_by,
     enrolledAt: row.enrolled_at,
-    lastHeardAt: row.last_heard_at ?? undefined,
+    lastHeardAt: row.last_heard_at,
   };
 }

@@ -1,5 +1,5 @@
 import type { APIContext } from 'astro';
-import * as z from 'zod';
+import type * as z from 'zod';
 import type { Role } from '@/domain/role';
 import { type Actor, requireRole } from './actor';
 import { type App, getApp } from './compose';

@@ -1,5 +1,4 @@
-import type { WorkshopEntryRow } from '@db/tables';
-import type { Actor } from './actor';
+import { type Actor, requireRole } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
 import { canonicalJson, hashJson, sha256Hex } from './crypto';
 import type { Db, Trx } from './database';
@@ -119,18 +118,25 @@ export async function workshopSeq(db: Db): Promise<number> {
   return row?.seq ?? 0;
 }
 
-/** Entries of the workshop trail after a number, in order. */
+/** Entries of the workshop trail after a number, in order, as they were recorded and hashed. */
 export async function listWorkshopEntries(
   db: Db,
+  actor: Actor,
   { after, limit }: { after: number; limit: number },
-): Promise<Pick<WorkshopEntryRow, 'seq' | 'body' | 'hash'>[]> {
-  return db
+): Promise<{ seq: number; hash: string; entry: Record<string, unknown> }[]> {
+  requireRole(actor, 'supervisor', 'quality lead', 'auditor', 'owner');
+  const rows = await db
     .selectFrom('workshop_entry')
     .select(['seq', 'body', 'hash'])
     .where('seq', '>', after)
     .orderBy('seq')
     .limit(limit)
     .execute();
+  return rows.map(({ seq, hash, body }) => ({
+    seq,
+    hash,
+    entry: JSON.parse(body) as Record<string, unknown>,
+  }));
 }
 
 function requireHashable(value: unknown, path: string): void {

@@ -1,0 +1,29 @@
+import * as z from 'zod';
+import { deviceAnswer } from '@/server/answers';
+import { enrolDevice, listDevices } from '@/server/devices';
+import { line, uuid } from '@/server/fields';
+import { endpoint } from '@/server/http';
+
+export const GET = endpoint(
+  {
+    method: 'GET',
+    path: '/api/devices',
+    summary: 'Every tablet of the workshop',
+    who: ['supervisor', 'quality lead', 'auditor', 'owner'],
+    answer: z.strictObject({ devices: z.array(deviceAnswer) }),
+  },
+  async ({ app, actor }) => ({ devices: await listDevices(app.db, actor) }),
+);
+
+export const POST = endpoint(
+  {
+    method: 'POST',
+    path: '/api/devices',
+    summary: 'Enrol this browser as a tablet; its credential is answered this once',
+    who: 'session',
+    body: z.strictObject({ id: uuid, name: line(60) }),
+    answer: z.strictObject({ device: deviceAnswer, credential: z.string() }),
+    status: 201,
+  },
+  async ({ app, actor, body }) => app.db.transaction().execute((trx) => enrolDevice(trx, actor, body, app)),
+);

@@ -1,0 +1,30 @@
+import * as z from 'zod';
+import { keyAnswer } from '@/server/answers';
+import { enrolKey, listKeys } from '@/server/author-keys';
+import { endpoint } from '@/server/http';
+
+export const GET = endpoint(
+  {
+    method: 'GET',
+    path: '/api/keys',
+    summary: 'Your author keys, or everybody’s if you may see all records',
+    who: 'session',
+    answer: z.strictObject({ keys: z.array(keyAnswer) }),
+  },
+  async ({ app, actor }) => ({ keys: await listKeys(app.db, actor) }),
+);
+
+export const POST = endpoint(
+  {
+    method: 'POST',
+    path: '/api/keys',
+    summary:
+      'Enrol the key with which you sign your entries on this tablet; again with the same key does no harm',
+    who: 'session and tablet',
+    body: z.strictObject({ publicKey: z.string().max(100) }),
+    answer: keyAnswer,
+    status: 201,
+  },
+  async ({ app, actor, device, body }) =>
+    app.db.transaction().execute((trx) => enrolKey(trx, actor, device, body.publicKey, app)),
+);

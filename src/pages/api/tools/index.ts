@@ -1,0 +1,38 @@
+import * as z from 'zod';
+import { toolAnswer } from '@/server/answers';
+import { day, decimal, line } from '@/server/fields';
+import { endpoint } from '@/server/http';
+import { addTool, listTools } from '@/server/tools';
+
+export const GET = endpoint(
+  {
+    method: 'GET',
+    path: '/api/tools',
+    summary: 'Every tool, also the withdrawn',
+    who: 'session',
+    answer: z.strictObject({ tools: z.array(toolAnswer) }),
+  },
+  async ({ app }) => ({ tools: await listTools(app.db) }),
+);
+
+export const POST = endpoint(
+  {
+    method: 'POST',
+    path: '/api/tools',
+    summary: 'Add a tool',
+    who: ['supervisor', 'quality lead', 'owner'],
+    body: z.strictObject({
+      name: line(80),
+      kind: line(40),
+      serial: line(60),
+      rangeLow: decimal.nullable().default(null),
+      rangeHigh: decimal.nullable().default(null),
+      unit: line(20).nullable().default(null),
+      dueOn: day.nullable().default(null),
+      cycleLimit: z.int().min(1).nullable().default(null),
+    }),
+    answer: toolAnswer,
+    status: 201,
+  },
+  async ({ app, actor, body }) => app.db.transaction().execute((trx) => addTool(trx, actor, body, app)),
+);

@@ -1,0 +1,76 @@
+import type { Actor } from './actor';
+import { type Clock, type Ids, stamp } from './clock';
+import { canonicalJson } from './crypto';
+import type { Db, Trx } from './database';
+import { notFound } from './errors';
+import { type Keys, signWithHeadKey } from './keys';
+import { appendWorkshopEntry } from './workshop-trail';
+
+/** The trail's name of the workshop's own trail; every other trail is named by its job. */
+export const WORKSHOP_TRAIL = 'workshop';
+
+/** A trail's newest hash at a moment, signed, so that the trail cannot be cut short or rewritten unseen. */
+export interface SignedHead {
+  trail: string;
+  seq: number;
+  hash: string;
+  at: string;
+  /** The fingerprint of the key that signed. */
+  key: string;
+  /** Ed25519 over the JCS form of the other fields, base64url. */
+  signature: string;
+}
+
+/** Signs the newest entry of a trail; a head that is signed already is given out again. */
+export async function signHead(
+  trx: Trx,
+  actor: Actor,
+  trail: string,
+  app: { clock: Clock; ids: Ids; keys: Keys },
+): Promise<SignedHead> {
+  const last = await findLast(trx, trail);
+  if (last === undefined) throw notFound('This trail');
+  const known = await trx
+    .selectFrom('signed_head')
+    .selectAll()
+    .where('trail', '=', trail)
+    .where('seq', '=', last.seq)
+    .executeTakeFirst();
+  if (known !== undefined) return known;
+  const unsigned = {
+    trail,
+    seq: last.seq,
+    hash: last.hash,
+    at: stamp(app.clock),
+    key: app.keys.head.fingerprint,
+  };
+  const head = { ...unsigned, signature: signWithHeadKey(app.keys.head, canonicalJson(unsigned)) };
+  await trx.insertInto('signed_head').values(head).execute();
+  // The workshop's trail remembers the heads of jobs, so a job cannot vanish; its own head would never end.
+  if (trail !== WORKSHOP_TRAIL)
+    await appendWorkshopEntry(trx, actor, { kind: 'head-signed', data: head }, app);
+  return head;
+}
+
+/** The signed heads of a trail, the oldest first. */
+export function listSignedHeads(db: Db, trail: string): Promise<SignedHead[]> {
+  return db.selectFrom('signed_head').selectAll().where('trail', '=', trail).orderBy('seq').execute();
+}
+
+function findLast(trx: Trx, trail: string): Promise<{ seq: number; hash: string } | undefined> {
+  if (trail === WORKSHOP_TRAIL) {
+    return trx
+      .selectFrom('workshop_entry')
+      .select(['seq', 'hash'])
+      .orderBy('seq', 'desc')
+      .limit(1)
+      .executeTakeFirst();
+  }
+  return trx
+    .selectFrom('job_entry')
+    .select(['seq', 'hash'])
+    .where('job_id', '=', trail)
+    .orderBy('seq', 'desc')
+    .limit(1)
+    .executeTakeFirst();
+}

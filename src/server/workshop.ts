@@ -1,0 +1,98 @@
+import type { Role } from '@/domain/role';
+import { type Actor, parseRoles, requireRole } from './actor';
+import type { Clock, Ids } from './clock';
+import type { Db, Trx } from './database';
+import { AppError } from './errors';
+import type { Keys } from './keys';
+import { listTools, type Tool } from './tools';
+import { appendWorkshopEntry, workshopSeq } from './workshop-trail';
+
+export interface WorkshopDetails {
+  name: string;
+  /** The zone that times are shown in and due dates are judged in, such as `Europe/London`. */
+  zone: string;
+}
+
+/** What tablets and pages need of the workshop to judge by: no contact data, no secrets. */
+export interface WorkshopView extends WorkshopDetails {
+  /** The number of the workshop's newest entry, by which all of this holds. */
+  seq: number;
+  people: { id: string; name: string; roles: Role[]; active: boolean; hasPin: boolean }[];
+  tools: Tool[];
+  /** The key that PINs are sealed to. */
+  sealingKey: { id: string; publicKey: string };
+  /** The fingerprint of the key that signs trail heads. */
+  headKey: string;
+}
+
+/** Names the workshop and its zone. */
+export async function setWorkshop(
+  trx: Trx,
+  actor: Actor,
+  { name, zone }: WorkshopDetails,
+  app: { clock: Clock; ids: Ids },
+): Promise<void> {
+  requireRole(actor, 'owner');
+  if (!isZone(zone))
+    throw new AppError('invalid-field', `${zone} is not a time zone. Choose one such as Europe/London.`, {
+      field: 'zone',
+    });
+  for (const [key, value] of Object.entries({ 'workshop.name': name, 'workshop.zone': zone })) {
+    await trx
+      .insertInto('setting')
+      .values({ key, value })
+      .onConflict((conflict) => conflict.column('key').doUpdateSet({ value }))
+      .execute();
+  }
+  await appendWorkshopEntry(trx, actor, { kind: 'workshop-set', data: { name, zone } }, app);
+}
+
+/** The workshop's name and zone. */
+export async function getWorkshopDetails(db: Db): Promise<WorkshopDetails> {
+  const rows = await db
+    .selectFrom('setting')
+    .selectAll()
+    .where('key', 'in', ['workshop.name', 'workshop.zone'])
+    .execute();
+  const values = new Map(rows.map((row) => [row.key, row.value]));
+  return { name: values.get('workshop.name') ?? 'Workshop', zone: values.get('workshop.zone') ?? 'UTC' };
+}
+
+/** The workshop as tablets and pages judge by it; read in one transaction, so that `seq` fits the rest. */
+export async function getWorkshopView(db: Db, keys: Keys): Promise<WorkshopView> {
+  return db.isTransaction ? readView(db, keys) : db.transaction().execute((trx) => readView(trx, keys));
+}
+
+async function readView(db: Db, keys: Keys): Promise<WorkshopView> {
+  const people = await db
+    .selectFrom('person')
+    .leftJoin('signing_pin', 'signing_pin.person_id', 'person.id')
+    .select(['id', 'printed_name', 'roles', 'active', 'signing_pin.set_at'])
+    .orderBy('printed_name')
+    .execute();
+  return {
+    ...(await getWorkshopDetails(db)),
+    seq: await workshopSeq(db),
+    people: people.map((row) => ({
+      id: row.id,
+      name: row.printed_name,
+      roles: parseRoles(row.roles),
+      active: row.active === 1,
+      hasPin: row.set_at !== null,
+    })),
+    tools: await listTools(db),
+    sealingKey: { id: keys.sealing.current.id, publicKey: keys.sealing.current.publicKey },
+    headKey: keys.head.fingerprint,
+  };
+}
+
+/** Whether this is the name of a time zone that the server knows. */
+export function isZone(zone: string): boolean {
+  try {
+    new Intl.DateTimeFormat('en-GB', { timeZone: zone });
+    return true;
+  } catch (error) {
+    if (error instanceof RangeError) return false;
+    throw error;
+  }
+}
