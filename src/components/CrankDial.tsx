@@ -28,12 +28,12 @@ export function CrankDial({ angle, targetAngle, size = 44 }: CrankDialProps) {
         aria-labelledby={titleId}
       >
         <title id={titleId}>{words}</title>
-        <circle className="line-thin" cx="24" cy="24" r="20" />
+        <circle className="dial-line" cx="24" cy="24" r="20" />
         {[0, 90, 180, 270].map((tick) => {
           const outer = pointAt(centre, 20, tick);
           const inner = pointAt(centre, 16.5, tick);
           return (
-            <path key={tick} className="line-thin" d={`M ${outer.x} ${outer.y} L ${inner.x} ${inner.y}`} />
+            <path key={tick} className="dial-line" d={`M ${outer.x} ${outer.y} L ${inner.x} ${inner.y}`} />
           );
         })}
         {target !== undefined && <circle className="dial-target" cx={target.x} cy={target.y} r="4.5" />}
