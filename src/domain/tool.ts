@@ -114,9 +114,7 @@ function rangeDoubts(tool: Tool, use: ToolUse): string[] {
     return [`it is marked in ${tool.unit}, and this needs ${use.unit}`];
   const value = exactOf(convert(use.value, use.unit, tool.unit));
   const high = exactOf(tool.rangeHigh);
-  const low = exactOf(
-    tool.rangeLow ?? (tool.kind === 'torque wrench' ? Number(tool.rangeHigh) / FIFTHS : 0),
-  );
+  const low = exactOf(tool.rangeLow ?? (tool.kind === 'torque wrench' ? Number(tool.rangeHigh) / FIFTHS : 0));
   if (compareExact(value, low) >= 0 && compareExact(value, high) <= 0) return [];
   const range =
     tool.rangeLow === null ? `up to ${tool.rangeHigh}` : `from ${tool.rangeLow} to ${tool.rangeHigh}`;
