@@ -21,8 +21,22 @@ export function isSatisfied(state: JobState, stepId: string): boolean {
   return (status === 'done' || status === 'not applicable') && !isBlocked(state, stepId);
 }
 
-/** The steps that can be done now, in the order of the plan; the first is the one to show. */
+/**
+ * The steps that can be done now, in the order of the plan; the first is the one to show. An invitation to
+ * look that work has gone past stands last.
+ */
 export function nextSteps(state: JobState): PlanStep[] {
+  const open = openSteps(state);
+  const isPassed = (step: PlanStep): boolean => step.kind === 'witness' && hasWorkAfter(state, step);
+  return [...open.filter((step) => !isPassed(step)), ...open.filter(isPassed)];
+}
+
+function hasWorkAfter(state: JobState, step: PlanStep): boolean {
+  const at = state.plan.steps.indexOf(step);
+  return state.plan.steps.some((later, i) => i > at && later.onDemand !== true && state.steps[later.id]?.status !== 'open');
+}
+
+function openSteps(state: JobState): PlanStep[] {
   return state.plan.steps.filter((step) => {
     if (step.onDemand === true) return false;
     const status = state.steps[step.id]?.status;
