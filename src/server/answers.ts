@@ -47,7 +47,7 @@ export const toolAnswer = z.strictObject({
   dueOn: z.string().nullable(),
   state: z.enum(['in use', 'withdrawn']),
   cycleLimit: z.int().nullable(),
-  cyclesUsed: z.int(),
+  cyclesUsed: z.int().nullable(),
 });
 
 export const calibrationAnswer = z.strictObject({

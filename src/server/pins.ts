@@ -41,39 +41,41 @@ export interface PinStatus {
   attempts: { at: string; outcome: 'right' | 'wrong' | 'locked'; purpose: string; tablet: string | null }[];
 }
 
-/** Sets the acting person's own PIN; check their password first. */
-export async function setPin(
-  app: { db: Db; clock: Clock; ids: Ids },
-  actor: Actor,
-  pin: string,
-): Promise<void> {
+/** A PIN as it is stored. */
+export type HashedPin = Pick<SigningPinRow, 'hash' | 'salt' | 'params'>;
+
+/** Hashes a new PIN; slow by design, so never inside a transaction. */
+export async function hashNewPin(pin: string): Promise<HashedPin> {
   if (isEasyPin(pin)) {
     throw new AppError(
       'invalid-field',
       'This PIN is too easy to guess. Choose six digits that are no row and no repeat.',
-      {
-        field: 'pin',
-      },
+      { field: 'pin' },
     );
   }
   const salt = randomBytes(16);
   const hash = await hashPin(pin, salt, PARAMS);
-  await app.db.transaction().execute(async (trx) => {
-    const row = {
-      hash: hash.toString('base64url'),
-      salt: salt.toString('base64url'),
-      params: JSON.stringify(PARAMS),
-      failed: 0,
-      locked_until: null,
-      set_at: stamp(app.clock),
-    };
-    await trx
-      .insertInto('signing_pin')
-      .values({ person_id: actor.personId, ...row })
-      .onConflict((conflict) => conflict.column('person_id').doUpdateSet(row))
-      .execute();
-    await appendWorkshopEntry(trx, actor, { kind: 'pin-set', data: { person: actor.personId } }, app);
-  });
+  return {
+    hash: hash.toString('base64url'),
+    salt: salt.toString('base64url'),
+    params: JSON.stringify(PARAMS),
+  };
+}
+
+/** Stores the acting person's own PIN; check their password first. A lock on the old one falls with it. */
+export async function storePin(
+  trx: Trx,
+  actor: Actor,
+  hashed: HashedPin,
+  app: { clock: Clock; ids: Ids },
+): Promise<void> {
+  const row = { ...hashed, failed: 0, locked_until: null, set_at: stamp(app.clock) };
+  await trx
+    .insertInto('signing_pin')
+    .values({ person_id: actor.personId, ...row })
+    .onConflict((conflict) => conflict.column('person_id').doUpdateSet(row))
+    .execute();
+  await appendWorkshopEntry(trx, actor, { kind: 'pin-set', data: { person: actor.personId } }, app);
 }
 
 /**

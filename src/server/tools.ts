@@ -1,24 +1,10 @@
 import type { CalibrationRow, ToolRow } from '@db/tables';
+import type { Tool } from '@/domain/tool';
 import { type Actor, requireRole } from './actor';
 import type { Clock, Ids } from './clock';
 import type { Db, Trx } from './database';
 import { AppError, notFound } from './errors';
 import { appendWorkshopEntry } from './workshop-trail';
-
-/** A tool of the workshop with what decides whether it may be used. */
-export interface Tool {
-  id: string;
-  name: string;
-  kind: string;
-  serial: string;
-  rangeLow: string | null;
-  rangeHigh: string | null;
-  unit: string | null;
-  dueOn: string | null;
-  state: 'in use' | 'withdrawn';
-  cycleLimit: number | null;
-  cyclesUsed: number;
-}
 
 /** What the maker of a calibration found: the reference against what the tool showed, as read. */
 export interface CalibrationReading {

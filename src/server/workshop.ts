@@ -1,10 +1,11 @@
 import type { Role } from '@/domain/role';
+import type { Tool } from '@/domain/tool';
 import { type Actor, parseRoles, requireRole } from './actor';
 import type { Clock, Ids } from './clock';
 import type { Db, Trx } from './database';
 import { AppError } from './errors';
 import type { Keys } from './keys';
-import { listTools, type Tool } from './tools';
+import { listTools } from './tools';
 import { appendWorkshopEntry, workshopSeq } from './workshop-trail';
 
 export interface WorkshopDetails {

@@ -2,7 +2,7 @@ import * as z from 'zod';
 import { givenPassword, nothing, pin } from '@/server/fields';
 import { endpoint } from '@/server/http';
 import { requirePassword } from '@/server/passwords';
-import { getPinStatus, setPin } from '@/server/pins';
+import { getPinStatus, hashNewPin, storePin } from '@/server/pins';
 
 export const GET = endpoint(
   {
@@ -38,7 +38,8 @@ export const POST = endpoint(
   },
   async ({ app, actor, body }) => {
     await requirePassword(app.db, actor, body.password, app.clock, 'password');
-    await setPin(app, actor, body.pin);
+    const hashed = await hashNewPin(body.pin);
+    await app.db.transaction().execute((trx) => storePin(trx, actor, hashed, app));
     return { ok: true as const };
   },
 );

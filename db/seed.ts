@@ -1,0 +1,186 @@
+import type { Role } from '@/domain/role';
+import type { Actor } from '@/server/actor';
+import { DAY } from '@/server/clock';
+import type { App } from '@/server/compose';
+import type { Trx } from '@/server/database';
+import { hashNewPassword, storePassword } from '@/server/passwords';
+import { addFirstOwner, addPerson, hasPeople } from '@/server/people';
+import { hashNewPin, storePin } from '@/server/pins';
+import { addTool, type NewTool, recordCalibration } from '@/server/tools';
+import { setWorkshop } from '@/server/workshop';
+
+/*
+ * The demo workshop. Every name, address and serial number in it is invented. Its passwords are known to
+ * everybody, so `readSettings` lets it load only on this machine, or where DEMO=on asks for it.
+ */
+
+/** A person of the demo, with what they sign in and sign with. */
+export interface DemoSignIn {
+  name: string;
+  email: string;
+  password: string;
+  pin: string;
+  roles: readonly Role[];
+}
+
+const PASSWORD = 'bearing-day-demo';
+
+export const demoSignIns: readonly [DemoSignIn, ...DemoSignIn[]] = [
+  demoPerson('Ottilie Marchbank', 'owner', '352806', ['owner']),
+  demoPerson('Ines Varga', 'ines', '418306', ['technician']),
+  demoPerson('T. Halloran', 'halloran', '590271', ['technician']),
+  demoPerson('Bram Ostrova', 'bram', '736914', ['technician']),
+  demoPerson('M. Okafor-Lindh', 'supervisor', '285017', ['supervisor']),
+  demoPerson('Rowan Achterberg', 'quality', '604392', ['quality lead']),
+  demoPerson('Selma Quist', 'auditor', '917350', ['auditor']),
+];
+
+const WORKSHOP = { name: 'Lantern Yard Engines', zone: 'Europe/London' };
+
+interface DemoTool {
+  tool: Omit<NewTool, 'dueOn' | 'cycleLimit'> & { cycleLimit?: number };
+  /** Days from today to the day until which its calibration counts; one is past it. */
+  dueInDays: number;
+  readings: readonly (readonly [set: string, reference: string])[];
+}
+
+const TOOLS: readonly DemoTool[] = [
+  torqueWrench('4', '25', 'TW25-0417', 96, [
+    ['5.0', '5.1'],
+    ['15.0', '15.1'],
+    ['25.0', '24.8'],
+  ]),
+  torqueWrench('20', '100', 'TW100-0233', 41, [
+    ['20.0', '20.3'],
+    ['60.0', '60.4'],
+    ['100.0', '99.1'],
+  ]),
+  torqueWrench('40', '210', 'TW210-0187', 158, [
+    ['40.0', '40.5'],
+    ['120.0', '121.0'],
+    ['210.0', '208.6'],
+  ]),
+  torqueWrench('60', '330', 'TW330-0108', -12, [
+    ['60.0', '61.1'],
+    ['200.0', '203.0'],
+    ['330.0', '326.2'],
+  ]),
+  measuringTool('Angle gauge', 'angle gauge', ['0', '360'], 'deg', 'AG-0061', 203, [
+    ['90', '90'],
+    ['180', '181'],
+  ]),
+  measuringTool('Micrometer', 'micrometer', ['25', '50'], 'mm', 'MC50-0912', 77, [
+    ['25.000', '25.000'],
+    ['50.000', '50.001'],
+  ]),
+  measuringTool('Micrometer', 'micrometer', ['50', '75'], 'mm', 'MC75-0913', 77, [
+    ['50.000', '50.001'],
+    ['75.000', '75.001'],
+  ]),
+  measuringTool('Bore gauge', 'bore gauge', ['35', '60'], 'mm', 'BG60-0044', 120, [
+    ['45.000', '45.001'],
+    ['60.000', '59.999'],
+  ]),
+  measuringTool('Oil pressure gauge', 'pressure gauge', ['0', '10'], 'bar', 'PG10-0350', 230, [
+    ['2.0', '2.0'],
+    ['8.0', '7.9'],
+  ]),
+];
+
+/** Fills an empty data folder with the demo's people and tools, whole or not at all; says whether it did. */
+export async function seedDemo(app: App): Promise<boolean> {
+  if (await hasPeople(app.db)) return false;
+  const people = await Promise.all(
+    demoSignIns.map(async (person) => ({
+      ...person,
+      passwordHash: await hashNewPassword(person.password),
+      pinHash: await hashNewPin(person.pin),
+    })),
+  );
+  return app.db.transaction().execute(async (trx) => {
+    const [first, ...others] = people;
+    if (first === undefined || (await hasPeople(trx))) return false;
+    const owner = await addFirstOwner(trx, first, app);
+    await setWorkshop(trx, owner, WORKSHOP, app);
+    for (const person of others) {
+      const id = await addPerson(trx, owner, person, app);
+      const actor: Actor = { personId: id, name: person.name, roles: person.roles, sessionId: undefined };
+      await storePassword(trx, id, person.passwordHash, app);
+      await storePin(trx, actor, person.pinHash, app);
+    }
+    await storePassword(trx, owner.personId, first.passwordHash, app);
+    await storePin(trx, owner, first.pinHash, app);
+    for (const demoTool of TOOLS) await addDemoTool(trx, owner, demoTool, app);
+    return true;
+  });
+}
+
+async function addDemoTool(
+  trx: Trx,
+  owner: Actor,
+  { tool, dueInDays, readings }: DemoTool,
+  app: App,
+): Promise<void> {
+  const added = await addTool(trx, owner, { cycleLimit: null, ...tool, dueOn: null }, app);
+  const unit = tool.unit ?? '';
+  await recordCalibration(
+    trx,
+    owner,
+    added.id,
+    {
+      on: dayFrom(app, dueInDays - 365),
+      dueOn: dayFrom(app, dueInDays),
+      certificate: `LY-${tool.serial}`,
+      readings: readings.map(([set, reference]) => ({ set, reference, unit })),
+    },
+    app,
+  );
+}
+
+/** Counted from today, so that the demo's one tool past its date is past it whenever it is loaded. */
+function dayFrom({ clock }: App, days: number): string {
+  return new Date(clock.now().getTime() + days * DAY).toISOString().slice(0, 10);
+}
+
+function demoPerson(name: string, mailbox: string, pin: string, roles: readonly Role[]): DemoSignIn {
+  return { name, email: `${mailbox}@witnessmark.example`, password: PASSWORD, pin, roles };
+}
+
+function torqueWrench(
+  low: string,
+  high: string,
+  serial: string,
+  dueInDays: number,
+  readings: DemoTool['readings'],
+): DemoTool {
+  const name = `Torque wrench ${low} to ${high} N·m`;
+  return {
+    tool: {
+      name,
+      kind: 'torque wrench',
+      serial,
+      rangeLow: low,
+      rangeHigh: high,
+      unit: 'N·m',
+      cycleLimit: 5000,
+    },
+    dueInDays,
+    readings,
+  };
+}
+
+function measuringTool(
+  name: string,
+  kind: string,
+  [low, high]: readonly [string, string],
+  unit: string,
+  serial: string,
+  dueInDays: number,
+  readings: DemoTool['readings'],
+): DemoTool {
+  return {
+    tool: { name: `${name} ${low} to ${high} ${unit}`, kind, serial, rangeLow: low, rangeHigh: high, unit },
+    dueInDays,
+    readings,
+  };
+}
