@@ -31,7 +31,8 @@ export default defineConfig({
           name: 'browser-shaped',
           environment: 'jsdom',
           include: ['src/{features,components,offline}/**/*.test.{ts,tsx}'],
-          setupFiles: ['tests/support/setup.ts', 'tests/support/setup-dom.ts'],
+          // The common set-up comes by `extends`; named again it would run twice.
+          setupFiles: ['tests/support/setup-dom.ts'],
         },
       },
     ],

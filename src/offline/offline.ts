@@ -1,0 +1,26 @@
+import { createJobStore, type JobStore } from './job-store';
+import { browserSurroundings, type Surroundings } from './surroundings';
+import { createSyncLoop, type SyncLoop } from './sync';
+
+/** What the offline part is to a page. */
+export interface Offline extends Surroundings {
+  jobs: JobStore;
+  sync: SyncLoop;
+}
+
+/** Opens the tablet's records; once a page, in the browser. `sync.start()` begins to send. */
+export function openOffline(over: Partial<Surroundings> = {}): Offline {
+  const surroundings = browserSurroundings(over);
+  return {
+    ...surroundings,
+    jobs: createJobStore(surroundings.db),
+    sync: createSyncLoop(surroundings),
+  };
+}
+
+/** Stops sending and closes the records, so that nothing of this page touches them again. */
+export function closeOffline(offline: Offline): void {
+  offline.sync.stop();
+  offline.jobs.close();
+  offline.db.close();
+}

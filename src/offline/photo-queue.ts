@@ -1,0 +1,40 @@
+import * as z from 'zod/mini';
+import type { PhotoRow } from './database';
+import { callServer, type Outcome, type Trouble } from './server-call';
+import type { Surroundings } from './surroundings';
+
+const MINUTE = 60 * 1000;
+const TIMEOUT_MS = 3 * MINUTE;
+
+const stored = z.object({ hash: z.string() });
+
+/**
+ * Sends the photographs that the server lacks, oldest first. One that the server does not take is kept with
+ * its reason and tried again in the next run; it does not hold up the others.
+ */
+export async function sendPhotos(s: Surroundings): Promise<Outcome> {
+  const hashes = await s.db.photos.where('sent').equals(0).primaryKeys();
+  let trouble: Trouble | undefined;
+  for (const hash of hashes) {
+    const photo = await s.db.photos.get(hash);
+    if (!photo) continue;
+    const sent = await sendPhoto(s, photo);
+    if (sent.ok) continue;
+    if (sent.offline) return sent;
+    trouble ??= { ...sent, why: `A photograph was not taken: ${sent.why}` };
+  }
+  return trouble ?? { ok: true };
+}
+
+async function sendPhoto(s: Surroundings, { hash, bytes, type }: PhotoRow): Promise<Outcome> {
+  const answer = await callServer(s, {
+    method: 'PUT',
+    path: `/api/photos/${hash}`,
+    bytes: { data: bytes, type },
+    answer: stored,
+    timeoutMs: TIMEOUT_MS,
+  });
+  if (answer.ok) await s.db.photos.update(hash, { sent: 1, trouble: undefined });
+  else if (!answer.offline) await s.db.photos.update(hash, { trouble: answer.why });
+  return answer.ok ? { ok: true } : answer;
+}

@@ -1,0 +1,179 @@
+/*
+ * Taking over what a job's trail brought. A record leaves the outbox in the same transaction in which it
+ * takes its place among the confirmed entries, and only if it is the same record to the letter.
+ */
+import { officeKinds, type EntryKind } from '@/domain/entry';
+import { NO_PREVIOUS } from '@/domain/trail';
+import { changeJob, ofJob, type EntryRow, type FloorDatabase, type JobRow, type OutboxRow } from './database';
+import { findDevice } from './device';
+import { entryOf } from './hashing';
+import { readPage, type JobAnswer } from './sync-answer';
+
+/** Takes over one job's part of an answer that was asked for after `asked`; tells whether it brought anything. */
+export async function applyJobAnswer(
+  db: FloorDatabase,
+  asked: Pick<JobRow, 'id' | 'have'>,
+  answer: JobAnswer,
+  at: string,
+): Promise<boolean> {
+  if (answer.gone) {
+    await db.transaction('rw', db.jobs, () => noteStopped(db, asked.id, GONE));
+    return false;
+  }
+  return answer.restored ? takeRestored(db, asked, answer, at) : takePage(db, asked, answer);
+}
+
+const GONE = {
+  code: 'gone',
+  words:
+    'The office does not keep this job for this tablet any more. What was recorded here is kept. Ask the supervisor.',
+};
+const OTHER_CONTENT = {
+  code: 'other-content',
+  words:
+    'The server holds one of the records of this tablet with other content. Nothing of it was taken over and what was recorded here is safe. Tell the supervisor.',
+};
+
+async function takePage(
+  db: FloorDatabase,
+  asked: Pick<JobRow, 'id' | 'have'>,
+  answer: JobAnswer,
+): Promise<boolean> {
+  const page = readPage(asked.id, asked.have, answer.entries);
+  return db.transaction('rw', [db.jobs, db.entries, db.outbox, db.counters, db.meta], async () => {
+    const row = await db.jobs.get(asked.id);
+    // Another tab was quicker: its page is already here, and this one starts from an older place.
+    if (!row || row.have?.seq !== asked.have?.seq || row.have?.hash !== asked.have?.hash) return false;
+    const taken = await takeRows(db, page.rows);
+    const stopped = taken === page.rows.length ? page.stopped : OTHER_CONTENT;
+    const last = page.rows[taken - 1];
+    if (!answer.more && !stopped) await sendAgain(db, asked.id);
+    await noteTaken(db, row, { ...answer, last, plan: planMovedTo(page.rows.slice(0, taken)), stopped });
+    return taken > 0;
+  });
+}
+
+/** Writes rows in order and stops at the first that differs from this tablet's own record of it. */
+async function takeRows(db: FloorDatabase, rows: readonly EntryRow[]): Promise<number> {
+  const device = await findDevice(db);
+  let taken = 0;
+  for (const row of rows) {
+    const own = await db.outbox.where('id').equals(row.id).first();
+    if (own && own.contentHash !== row.contentHash) return taken;
+    await db.entries.put(own?.sealed ? { ...row, sealed: own.sealed } : row);
+    if (own) await db.outbox.delete([own.job, own.place]);
+    if (row.device === device?.id) await neverBelow(db, row.job, row.recorded.deviceSeq);
+    taken += 1;
+  }
+  return taken;
+}
+
+/** A number that the trail shows as given out is never given out again. */
+async function neverBelow(db: FloorDatabase, job: string, deviceSeq: number): Promise<void> {
+  const counter = (await db.counters.get(job)) ?? { job, deviceSeq: 0, place: 0 };
+  if (counter.deviceSeq < deviceSeq) await db.counters.put({ ...counter, deviceSeq });
+}
+
+/** What was told as recorded but is not in the trail to its end was lost again: it is sent once more. */
+async function sendAgain(db: FloorDatabase, job: string): Promise<void> {
+  await ofJob(db.outbox, job)
+    .filter((row) => row.where === 'sent')
+    .modify({ where: 'on this tablet' });
+}
+
+function planMovedTo(rows: readonly EntryRow[]): string | undefined {
+  return rows.reduce<string | undefined>(
+    (plan, { recorded }) => (recorded.kind === 'plan-moved' ? recorded.data.to : plan),
+    undefined,
+  );
+}
+
+interface Taken {
+  last: EntryRow | undefined;
+  plan: string | undefined;
+  head?: JobAnswer['head'];
+  stopped: JobRow['stopped'];
+}
+
+async function noteTaken(db: FloorDatabase, row: JobRow, { last, plan, head, stopped }: Taken): Promise<void> {
+  const isSame = !last && row.stopped?.code === stopped?.code && row.head.hash === (head ?? row.head).hash;
+  if (isSame) return;
+  await changeJob(db, row.id, {
+    ...(last ? { have: { seq: last.seq, hash: last.hash } } : {}),
+    ...(plan === undefined ? {} : { plan }),
+    ...(head ? { head } : {}),
+    stopped,
+  });
+}
+
+async function noteStopped(db: FloorDatabase, job: string, stopped: JobRow['stopped']): Promise<void> {
+  const row = await db.jobs.get(job);
+  if (row && row.stopped?.code !== stopped?.code) await changeJob(db, job, { stopped });
+}
+
+/** Far enough below every place that a record made here can have. */
+const BEFORE_ALL = 1_000_000_000;
+
+/**
+ * The server was restored from a backup and lacks the end of what this tablet has as confirmed. Everything
+ * after the last entry that both have goes back into the outbox, unchanged, before what is there already.
+ */
+async function takeRestored(
+  db: FloorDatabase,
+  asked: Pick<JobRow, 'id' | 'have'>,
+  answer: JobAnswer,
+  at: string,
+): Promise<boolean> {
+  const page = readPage(asked.id, null, answer.entries);
+  const tables = [db.jobs, db.entries, db.outbox, db.setAside, db.photos];
+  return db.transaction('rw', tables, async () => {
+    const row = await db.jobs.get(asked.id);
+    if (!row || row.have?.hash !== asked.have?.hash) return false;
+    if (page.stopped && page.rows.length === 0) {
+      await noteStopped(db, row.id, page.stopped);
+      return false;
+    }
+    const common = await lastCommon(db, page.rows);
+    await putBack(db, row.id, common?.seq ?? 0, at);
+    await sendAgain(db, row.id);
+    await db.photos.where('job').equals(row.id).modify({ sent: 0 });
+    await changeJob(db, row.id, {
+      have: common ? { seq: common.seq, hash: common.hash } : null,
+      head: answer.head ?? { seq: 0, hash: NO_PREVIOUS },
+      stopped: undefined,
+    });
+    return true;
+  });
+}
+
+async function lastCommon(db: FloorDatabase, rows: readonly EntryRow[]): Promise<EntryRow | undefined> {
+  let common: EntryRow | undefined;
+  for (const row of rows) {
+    const own = await db.entries.get([row.job, row.seq]);
+    if (own?.hash !== row.hash) return common;
+    common = own;
+  }
+  return common;
+}
+
+async function putBack(db: FloorDatabase, job: string, after: number, at: string): Promise<void> {
+  const lost = await ofJob(db.entries, job, after).toArray();
+  await db.setAside.bulkPut(lost.map((row) => ({ hash: row.hash, job, row, setAsideAt: at })));
+  await db.outbox.bulkPut(lost.filter(isByPerson).map(toOutbox));
+  await db.entries.bulkDelete(lost.map(({ seq }): [string, number] => [job, seq]));
+}
+
+/** The server makes its own entries anew. */
+function isByPerson({ recorded }: EntryRow): boolean {
+  return !(officeKinds as readonly EntryKind[]).includes(recorded.kind);
+}
+
+function toOutbox(row: EntryRow): OutboxRow {
+  const { job, seq, id, recorded, contentHash, signature, key, sealed } = row;
+  return {
+    ...{ job, id, contentHash, signature, key, sealed },
+    place: seq - BEFORE_ALL,
+    entry: entryOf(recorded),
+    where: 'on this tablet',
+  };
+}

@@ -1,0 +1,83 @@
+import { changeJob, ofJob, type FloorDatabase, type OutboxRow } from './database';
+import type { Verdicts } from './sync-answer';
+
+const MAX_ENTRIES = 200;
+/** The server reads 512 kB; the list of jobs and the brackets need some of it. */
+const MAX_BYTES = 480 * 1024;
+
+export interface Batch {
+  rows: OutboxRow[];
+  /** There is more to send after this batch. */
+  more: boolean;
+}
+
+/** The next records to send: each job's in order, none that was tried in this run or has arrived already. */
+export async function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): Promise<Batch> {
+  const jobs = await db.jobs.toCollection().primaryKeys();
+  const rows: OutboxRow[] = [];
+  let bytes = 0;
+  for (const job of jobs) {
+    for (const row of await ofJob(db.outbox, job).toArray()) {
+      if (row.where === 'sent' || tried.has(row.id)) continue;
+      bytes += bytesOf(row);
+      if (rows.length > 0 && (rows.length === MAX_ENTRIES || bytes > MAX_BYTES)) return { rows, more: true };
+      rows.push(row);
+    }
+  }
+  return { rows, more: false };
+}
+
+/** A record as the server asks for it. */
+export function toWire({ entry, signature, key, sealed }: OutboxRow) {
+  return { entry, signature, key, ...(sealed ? { sealed } : {}) };
+}
+
+function bytesOf(row: OutboxRow): number {
+  return new TextEncoder().encode(JSON.stringify(toWire(row))).length + 1;
+}
+
+/**
+ * Writes down what the server said of each record. What it recorded stays in the outbox until the trail
+ * brings it back in its place; what it refused is kept whole with the reason.
+ */
+export async function applyVerdicts(
+  db: FloorDatabase,
+  sent: readonly OutboxRow[],
+  verdicts: Verdicts,
+  at: string,
+): Promise<void> {
+  const byId = new Map(verdicts.map((verdict) => [verdict.id, verdict]));
+  await db.transaction('rw', db.outbox, db.refused, db.jobs, async () => {
+    const changed = new Set<string>();
+    for (const { job, place, id } of sent) {
+      const verdict = byId.get(id);
+      const row = await db.outbox.get([job, place]);
+      if (!verdict || row?.id !== id) continue;
+      if (await applyVerdict(db, row, verdict, at)) changed.add(job);
+    }
+    for (const job of changed) await changeJob(db, job, {});
+  });
+}
+
+/** Whether it changed how the job looks. */
+async function applyVerdict(
+  db: FloorDatabase,
+  row: OutboxRow,
+  { verdict, code, reason }: Verdicts[number],
+  at: string,
+): Promise<boolean> {
+  if (verdict === 'refused') {
+    const { id, job, entry, contentHash, signature, key } = row;
+    await db.refused.put({
+      ...{ id, job, entry, contentHash, signature, key, refusedAt: at },
+      code: code ?? 'refused',
+      reason: reason ?? 'The server gave no reason.',
+    });
+    await db.outbox.delete([row.job, row.place]);
+    return true;
+  }
+  const where = verdict === 'waiting' ? 'waiting' : 'sent';
+  if (row.where === where && row.code === code && row.reason === reason) return false;
+  await db.outbox.put({ ...row, where, code, reason });
+  return true;
+}

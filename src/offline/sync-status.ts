@@ -1,0 +1,72 @@
+import { findDevice } from './device';
+import type { Whereabouts } from './database';
+import type { Surroundings } from './surroundings';
+
+/** What this tablet has still to send, and how sending goes. */
+export interface SyncStatus {
+  /** Records that are only here. */
+  onTablet: number;
+  /** Records that the server has seen and can't judge yet. */
+  waiting: number;
+  /** Records made here that the server has on its disk. */
+  sent: number;
+  refused: number;
+  /** Photographs that are only here. */
+  photos: number;
+  running: boolean;
+  /** RFC 3339; when everything last went through. */
+  lastSyncAt?: string | undefined;
+  lastTriedAt?: string | undefined;
+  nextTryAt?: string | undefined;
+  trouble?: { code: string; words: string } | undefined;
+  /** All of this in one short line. */
+  words: string;
+}
+
+/** How the last run of any tab went, as it is kept. */
+export interface LastSync {
+  syncedAt?: string | undefined;
+  triedAt: string;
+  trouble?: { code: string; words: string } | undefined;
+}
+
+/** Counts what is on the disk; meant for a live query. */
+export async function readSyncStatus({ db }: Surroundings): Promise<Omit<SyncStatus, 'running' | 'words'>> {
+  const count = (where: Whereabouts) => db.outbox.where('where').equals(where).count();
+  const tables = [db.meta, db.outbox, db.entries, db.refused, db.photos];
+  return db.transaction('r', tables, async () => {
+    const device = await findDevice(db);
+    const last = (await db.meta.get('sync'))?.value as LastSync | undefined;
+    const confirmed = device ? await db.entries.where('device').equals(device.id).count() : 0;
+    return {
+      onTablet: await count('on this tablet'),
+      waiting: await count('waiting'),
+      sent: (await count('sent')) + confirmed,
+      refused: await db.refused.count(),
+      photos: await db.photos.where('sent').equals(0).count(),
+      lastSyncAt: last?.syncedAt,
+      lastTriedAt: last?.triedAt,
+      trouble: last?.trouble,
+    };
+  });
+}
+
+/** Where the records are, such as "12 on this tablet, 1 refused". */
+export function statusWords(status: Omit<SyncStatus, 'words'>): string {
+  const parts = [
+    [status.onTablet, 'on this tablet'],
+    [status.waiting, 'waiting'],
+    [status.refused, 'refused'],
+    [status.photos, status.photos === 1 ? 'photograph on this tablet' : 'photographs on this tablet'],
+  ] as const;
+  const told = parts.filter(([count]) => count > 0).map(([count, words]) => `${count} ${words}`);
+  return told.length > 0 ? told.join(', ') : 'All sent';
+}
+
+/** Where one record is; a record that is nowhere here was never made on this tablet. */
+export async function whereIsRecord({ db }: Surroundings, id: string): Promise<Whereabouts | undefined> {
+  const waiting = await db.outbox.where('id').equals(id).first();
+  if (waiting) return waiting.where;
+  if (await db.refused.get(id)) return 'refused';
+  return (await db.entries.where('id').equals(id).count()) > 0 ? 'sent' : undefined;
+}
