@@ -82,7 +82,9 @@ export const engineSchema = z.strictObject({
   measuringBolts: z.enum(['old', 'measuring', 'new']),
   shells: z.strictObject({
     standard: words,
-    grades: z.array(z.strictObject({ grade: words, /** Change of wall against nominal, mm. */ wall: decimal })).min(1),
+    grades: z
+      .array(z.strictObject({ grade: words, /** Change of wall against nominal, mm. */ wall: decimal }))
+      .min(1),
     source: sourceSchema,
   }),
   card: z.strictObject({
@@ -96,9 +98,18 @@ export const engineSchema = z.strictObject({
   programmes: z.record(name, programmeSchema),
   fluids: z.record(
     name,
-    z.strictObject({ title: words, specification: words, quantity: decimal, unit: words, source: sourceSchema }),
+    z.strictObject({
+      title: words,
+      specification: words,
+      quantity: decimal,
+      unit: words,
+      source: sourceSchema,
+    }),
   ),
-  figures: z.record(name, z.strictObject({ title: words, value: decimal, unit: words, source: sourceSchema })),
+  figures: z.record(
+    name,
+    z.strictObject({ title: words, value: decimal, unit: words, source: sourceSchema }),
+  ),
 });
 
 export const whenSchema = z.strictObject({ option: id, is: z.union([words, z.array(words).min(1)]) });
@@ -128,7 +139,8 @@ const common = {
   how: z.array(words).optional(),
   class: z.enum(['A', 'B', 'C']).default('C'),
   when: whenSchema.optional(),
-  each: z.enum(['rod', 'shell']).optional(),
+  /** Repeats the step; `grade`, for each shell grade of the engine sheet, is for the kit check. */
+  each: z.enum(['rod', 'shell', 'grade']).optional(),
   /** Ids of steps of this procedure, or `procedure.step`; given, they replace the section's own order. */
   needs: z.array(words).optional(),
   cautions: z.array(cautionSchema).optional(),
@@ -186,9 +198,20 @@ export const stepSchema = z.discriminatedUnion('kind', [
     /** Names of the bolts of a joint that isn't a rod cap; one name may stand for a ring of bolts in order. */
     bolts: z.array(words).min(1).optional(),
   }),
-  z.strictObject({ ...common, kind: z.literal('fit'), part: words, count: count.default(1), lot: z.boolean().default(true) }),
+  z.strictObject({
+    ...common,
+    kind: z.literal('fit'),
+    part: words,
+    count: count.default(1),
+    lot: z.boolean().default(true),
+  }),
   z.strictObject({ ...common, kind: z.literal('fill'), fluid: name }),
-  z.strictObject({ ...common, kind: z.literal('photograph'), subject: words, identity: z.boolean().optional() }),
+  z.strictObject({
+    ...common,
+    kind: z.literal('photograph'),
+    subject: words,
+    identity: z.boolean().optional(),
+  }),
   z.strictObject({
     ...common,
     kind: z.literal('watch'),

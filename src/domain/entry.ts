@@ -7,7 +7,9 @@
 import * as z from 'zod/mini';
 
 const text = (max: number) => z.string().check(z.minLength(1), z.maxLength(max));
-const uuid = z.string().check(z.regex(/^[0-9a-f]{8}-[0-9a-f]{4}-[1-8][0-9a-f]{3}-[89ab][0-9a-f]{3}-[0-9a-f]{12}$/));
+const uuid = z
+  .string()
+  .check(z.regex(/^[0-9a-f]{8}-[0-9a-f]{4}-[1-8][0-9a-f]{3}-[89ab][0-9a-f]{3}-[0-9a-f]{12}$/));
 const sha256Hex = z.string().check(z.regex(/^[0-9a-f]{64}$/));
 const decimal = z.string().check(z.regex(/^-?\d{1,9}(\.\d{1,6})?$/));
 const instant = z.string().check(z.regex(/^\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d(\.\d{1,3})?Z$/));
@@ -60,7 +62,11 @@ export const entryData = {
     promisedOn: z.optional(text(30)),
     note: z.optional(note),
   }),
-  'took-over': z.strictObject({ from: z.optional(text(60)), note: z.optional(note), firstOfShift: z.boolean() }),
+  'took-over': z.strictObject({
+    from: z.optional(text(60)),
+    note: z.optional(note),
+    firstOfShift: z.boolean(),
+  }),
   'tool-taken': z.strictObject({ use: z.enum(['torque', 'angle', 'measuring']), tool: toolUsed }),
   // Steps
   done: z.strictObject({ note: z.optional(note) }),
@@ -175,9 +181,18 @@ export const entryData = {
     /** The data of the earlier entry's kind, whole, as it should have read. */
     data: z.record(z.string(), z.unknown()),
   }),
-  'taken-back': z.strictObject({ of: uuid, which: z.enum(['touched by mistake, not done', 'done, but wrong']), reason: z.optional(note) }),
+  'taken-back': z.strictObject({
+    of: uuid,
+    which: z.enum(['touched by mistake, not done', 'done, but wrong']),
+    reason: z.optional(note),
+  }),
   revoked: z.strictObject({ of: uuid, reason: note }),
-  'plan-moved': z.strictObject({ to: sha256Hex, reason: note, kept: z.array(text(120)), voided: z.array(text(120)) }),
+  'plan-moved': z.strictObject({
+    to: sha256Hex,
+    reason: note,
+    kept: z.array(text(120)),
+    voided: z.array(text(120)),
+  }),
   // Made by the server for the record itself; carries no author's signature.
   refused: z.strictObject({ content: sha256Hex, code: text(60), reason: note, author: z.optional(text(60)) }),
   'tablet-lost': z.strictObject({ tablet: uuid, from: whole }),
@@ -267,13 +282,17 @@ export function parseEntry(input: unknown): ParsedEntry {
   const envelope = z.safeParse(envelopeSchema, input);
   if (!envelope.success) return malformed(envelope.error.issues, []);
   const { kind } = envelope.data;
-  if (!isEntryKind(kind)) return { ok: false, newer: false, field: 'kind', why: `there is no kind of entry "${kind}"` };
+  if (!isEntryKind(kind))
+    return { ok: false, newer: false, field: 'kind', why: `there is no kind of entry "${kind}"` };
   const data = z.safeParse(entryData[kind], envelope.data.data);
   if (!data.success) return malformed(data.error.issues, ['data']);
   return { ok: true, entry: { ...envelope.data, kind, data: data.data } as Entry };
 }
 
-function malformed(issues: readonly { path: PropertyKey[]; message: string }[], prefix: string[]): ParsedEntry {
+function malformed(
+  issues: readonly { path: PropertyKey[]; message: string }[],
+  prefix: string[],
+): ParsedEntry {
   const [first] = issues;
   return {
     ok: false,

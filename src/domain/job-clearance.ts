@@ -32,7 +32,11 @@ function gaugedData(kept: Kept): EntryData<'gauged'> {
   return kept.data as EntryData<'gauged'>;
 }
 
-function presentReadings(kept: Kept[], state: JobState, step: StepOf<'gauge'>): Pick<RodState, 'front' | 'rear'> {
+function presentReadings(
+  kept: Kept[],
+  state: JobState,
+  step: StepOf<'gauge'>,
+): Pick<RodState, 'front' | 'rear'> {
   const reading = (end: 'front' | 'rear'): ClearanceReading | undefined => {
     const entry = kept.findLast((one) => gaugedData(one).end === end);
     const limit = state.plan.limits[step.limit];
@@ -51,21 +55,42 @@ function judgeEnd(state: JobState, rod: number, end: 'front' | 'rear', readings:
   const { clearance, unit } = gaugedData(last);
   const words = `Rod ${rod}, ${end}: ${clearance} ${unit}`;
   if (reading.verdict === 'outside') {
-    return raiseDeviation(state, last, { rule: 'clearance-outside', class: 'A', words: `${words} is outside the limits`, blocks: true, rod });
+    return raiseDeviation(state, last, {
+      rule: 'clearance-outside',
+      class: 'A',
+      words: `${words} is outside the limits`,
+      blocks: true,
+      rod,
+    });
   }
   if (reading.verdict === 'no limit known') {
-    return raiseDeviation(state, last, { rule: 'no-limit-known', class: 'A', words: `${words}: no limit is known, the supervisor judges`, blocks: true, rod });
+    return raiseDeviation(state, last, {
+      rule: 'no-limit-known',
+      class: 'A',
+      words: `${words}: no limit is known, the supervisor judges`,
+      blocks: true,
+      rod,
+    });
   }
   const before = readings.at(-2);
   if (!before || !agree(before, last)) return state;
-  return raiseDeviation(state, last, { rule: 'clearance-unsure', class: 'A', words: `${words} was read twice, too near a limit to tell`, blocks: true, rod });
+  return raiseDeviation(state, last, {
+    rule: 'clearance-unsure',
+    class: 'A',
+    words: `${words} was read twice, too near a limit to tell`,
+    blocks: true,
+    rod,
+  });
 }
 
 /** Two readings agree when they lie within their uncertainties of each other. */
 function agree(one: Kept, other: Kept): boolean {
   const a = gaugedData(one);
   const b = gaugedData(other);
-  return Math.abs(Number(a.clearance) - Number(b.clearance)) <= Number(a.uncertainty) + Number(b.uncertainty) + 1e-9;
+  return (
+    Math.abs(Number(a.clearance) - Number(b.clearance)) <=
+    Number(a.uncertainty) + Number(b.uncertainty) + 1e-9
+  );
 }
 
 /** A deviation on a reading that was corrected into its limits no longer stands for anything. */
@@ -76,14 +101,20 @@ function withdrawSuperseded(state: JobState, readings: Kept[]): JobState {
     ...state,
     deviations: state.deviations.map((deviation) => {
       const [entry, rule] = deviation.id.split(':');
-      if (rule === undefined || entry === undefined || !corrected.has(entry) || deviation.disposed) return deviation;
+      if (rule === undefined || entry === undefined || !corrected.has(entry) || deviation.disposed)
+        return deviation;
       return { ...deviation, blocks: false };
     }),
   };
 }
 
 /** Taper along one journal and spread across the rods, where the sheet sets a limit. */
-function judgeTogether(state: JobState, step: StepOf<'gauge'>, rod: number, last: Kept | undefined): JobState {
+function judgeTogether(
+  state: JobState,
+  step: StepOf<'gauge'>,
+  rod: number,
+  last: Kept | undefined,
+): JobState {
   const limit = state.plan.limits[step.limit];
   const present = state.rods[rod];
   if (!last || !limit || !present?.front || !present.rear) return state;
@@ -93,14 +124,28 @@ function judgeTogether(state: JobState, step: StepOf<'gauge'>, rod: number, last
   const taper = Math.abs(front - rear);
   const told = Number(present.front.uncertainty) + Number(present.rear.uncertainty);
   if (limit.taper !== undefined && taper > Number(limit.taper) + 1e-9 && taper > told) {
-    next = raiseDeviation(next, last, { rule: 'taper', class: 'A', words: `Rod ${rod}: front and rear differ by ${taper.toFixed(3)} ${limit.unit}, more than ${limit.taper}`, blocks: true, rod });
+    next = raiseDeviation(next, last, {
+      rule: 'taper',
+      class: 'A',
+      words: `Rod ${rod}: front and rear differ by ${taper.toFixed(3)} ${limit.unit}, more than ${limit.taper}`,
+      blocks: true,
+      rod,
+    });
   }
   if (limit.spread === undefined) return next;
-  const all = Object.values(state.rods).flatMap((one) => [one.front, one.rear].flatMap((r) => (r ? [Number(r.clearance)] : [])));
+  const all = Object.values(state.rods).flatMap((one) =>
+    [one.front, one.rear].flatMap((r) => (r ? [Number(r.clearance)] : [])),
+  );
   const spread = Math.max(...all) - Math.min(...all);
   if (spread > Number(limit.spread) + 1e-9) {
     // The odd one out is a question even when it is inside; it doesn't bar the next rod.
-    next = raiseDeviation(next, last, { rule: 'spread', class: 'B', words: `Rod ${rod} stands out: the rods now differ by ${spread.toFixed(3)} ${limit.unit}, more than ${limit.spread}`, blocks: false, rod });
+    next = raiseDeviation(next, last, {
+      rule: 'spread',
+      class: 'B',
+      words: `Rod ${rod} stands out: the rods now differ by ${spread.toFixed(3)} ${limit.unit}, more than ${limit.spread}`,
+      blocks: false,
+      rod,
+    });
   }
   return next;
 }

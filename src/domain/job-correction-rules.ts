@@ -42,9 +42,11 @@ export function whyNotCorrected(
 ): Verdict {
   const kept = findKept(state, entry.data.of);
   if (!kept) return no('unknown-entry', 'The entry to correct is not there.');
-  if (!correctable.has(kept.kind)) return no('not-correctable', 'This is taken back or revoked, not corrected.');
+  if (!correctable.has(kept.kind))
+    return no('not-correctable', 'This is taken back or revoked, not corrected.');
   if (kept.takenBack !== undefined) return no('taken-back', 'This was taken back already.');
-  if (!isDataOf(kept.kind, entry.data.data)) return no('malformed', 'The correction does not have the form of what it corrects.');
+  if (!isDataOf(kept.kind, entry.data.data))
+    return no('malformed', 'The correction does not have the form of what it corrects.');
   return whyNotWhose(kept, entry.by, workshop);
 }
 
@@ -52,7 +54,8 @@ export function whyNotCorrected(
 export function whyNotTakenBack(state: JobState, entry: EntryOf<'taken-back'>, workshop: Workshop): Verdict {
   const kept = findKept(state, entry.data.of);
   if (!kept) return no('unknown-entry', 'The entry to take back is not there.');
-  if (kept.kind === 'signed' || kept.kind === 'deviation-disposed') return no('revoke', 'A signature or a disposition is revoked.');
+  if (kept.kind === 'signed' || kept.kind === 'deviation-disposed')
+    return no('revoke', 'A signature or a disposition is revoked.');
   if (kept.takenBack !== undefined) return no('taken-back', 'This was taken back already.');
   const stepId = stepOfEntry(state, kept.id);
   if (stepId !== undefined && dependsOn(state, stepId, kept)) {
@@ -66,7 +69,9 @@ function dependsOn(state: JobState, stepId: string, kept: Kept): boolean {
   const isLast = active.at(-1)?.id === kept.id;
   if (!isLast) return true;
   if (state.steps[stepId]?.status !== 'done') return false;
-  return state.plan.steps.some((step) => step.needs.includes(stepId) && activeEntries(state.steps[step.id]).length > 0);
+  return state.plan.steps.some(
+    (step) => step.needs.includes(stepId) && activeEntries(state.steps[step.id]).length > 0,
+  );
 }
 
 /** Signatures and dispositions are revoked, never corrected. */
@@ -74,5 +79,7 @@ export function whyNotRevoked(state: JobState, entry: EntryOf<'revoked'>): Verdi
   const { of } = entry.data;
   const isSignature = state.signatures.some((s) => s.entry === of && s.reopened === undefined);
   const isDisposition = state.deviations.some((d) => d.disposed?.entry === of);
-  return isSignature || isDisposition ? { ok: true } : no('unknown-entry', 'There is no signature or disposition to revoke.');
+  return isSignature || isDisposition
+    ? { ok: true }
+    : no('unknown-entry', 'There is no signature or disposition to revoke.');
 }

@@ -32,7 +32,7 @@ function targetOf(kept: Kept, state: JobState): string | undefined {
   if (kept.kind === 'deviation-disposed' && 'deviation' in kept.data) {
     const id = kept.data.deviation;
     const known = state.deviations.some((deviation) => deviation.id === id);
-    return known ? String(id).split(':')[0] : undefined;
+    return known ? id.split(':')[0] : undefined;
   }
   return undefined;
 }
@@ -75,14 +75,12 @@ export function reopenSignatures(state: JobState, kept: Kept): JobState {
   if (kept.kind === 'corrected' && 'class' in kept.data && kept.data.class === 'clerical') return state;
   const touched = kept.step ?? stepTouched(state, kept);
   if (touched === undefined) return state;
-  let isChanged = false;
   const signatures = state.signatures.map((signature) => {
     const hold = findStep(state.plan, signature.step);
     if (!stands(signature) || hold?.kind !== 'hold' || !hold.covers.includes(touched)) return signature;
-    isChanged = true;
     return { ...signature, reopened: `${kept.name} recorded something on what was signed` };
   });
-  if (!isChanged) return state;
+  if (signatures.every((signature, i) => signature === state.signatures[i])) return state;
   const steps = { ...state.steps };
   for (const signature of signatures) {
     const step = steps[signature.step];

@@ -42,7 +42,10 @@ export function activeEntries(step: StepState | undefined): Kept[] {
 }
 
 /** The last entry of a kind that still counts. */
-export function lastOf<K extends Kept['kind']>(step: StepState | undefined, kind: K): (Kept & { data: EntryData<K> }) | undefined {
+export function lastOf<K extends Kept['kind']>(
+  step: StepState | undefined,
+  kind: K,
+): (Kept & { data: EntryData<K> }) | undefined {
   const found = activeEntries(step).findLast((kept) => kept.kind === kind);
   // An entry's data was read by the schema of its kind before it came here.
   return found as (Kept & { data: EntryData<K> }) | undefined;
@@ -52,7 +55,10 @@ export function lastOf<K extends Kept['kind']>(step: StepState | undefined, kind
 export function patchEntry(state: JobState, id: string, patch: Partial<Kept>): JobState {
   const stepId = stepOfEntry(state, id);
   if (stepId === undefined) {
-    return { ...state, unstepped: state.unstepped.map((kept) => (kept.id === id ? { ...kept, ...patch } : kept)) };
+    return {
+      ...state,
+      unstepped: state.unstepped.map((kept) => (kept.id === id ? { ...kept, ...patch } : kept)),
+    };
   }
   const step = state.steps[stepId];
   if (!step) return state;
@@ -74,4 +80,3 @@ export function findKept(state: JobState, id: string): Kept | undefined {
   const among = stepId === undefined ? state.unstepped : (state.steps[stepId]?.entries ?? []);
   return among.find((kept) => kept.id === id);
 }
-

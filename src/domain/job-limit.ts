@@ -18,7 +18,8 @@ export function judgeLimit(limit: PlanLimit, value: string, uncertainty: string)
   const isOpen = limit.low === undefined || limit.high === undefined;
   // A far side that no reading can reach stands in for a missing one.
   const low = limit.low === undefined ? Math.min(reading, Number(limit.high)) - 2 * u - 1 : Number(limit.low);
-  const high = limit.high === undefined ? Math.max(reading, Number(limit.low)) + 2 * u + 1 : Number(limit.high);
+  const high =
+    limit.high === undefined ? Math.max(reading, Number(limit.low)) + 2 * u + 1 : Number(limit.high);
   const { verdict, place } = judge({ value: reading, low, high, uncertainty: u });
   return { verdict, place: isOpen ? null : place };
 }

@@ -33,7 +33,9 @@ export function nextSteps(state: JobState): PlanStep[] {
 
 function hasWorkAfter(state: JobState, step: PlanStep): boolean {
   const at = state.plan.steps.indexOf(step);
-  return state.plan.steps.some((later, i) => i > at && later.onDemand !== true && state.steps[later.id]?.status !== 'open');
+  return state.plan.steps.some(
+    (later, i) => i > at && later.onDemand !== true && state.steps[later.id]?.status !== 'open',
+  );
 }
 
 function openSteps(state: JobState): PlanStep[] {
@@ -69,7 +71,9 @@ function whyNotRunning(state: JobState, step: PlanStep): Verdict {
     case 'ended unfinished':
       return no('ended', 'The job was ended unfinished.');
     case 'parked':
-      return step.kind === 'resume' ? OK : no('parked', 'The vehicle is parked, made safe.', 'Resume the job first.');
+      return step.kind === 'resume'
+        ? OK
+        : no('parked', 'The vehicle is parked, made safe.', 'Resume the job first.');
     case 'running':
       return step.kind === 'resume' ? no('not-parked', 'The job is running.') : OK;
   }
@@ -83,18 +87,26 @@ function whyNeedIsMissing(state: JobState, needId: string): Verdict {
   }
   const deviation = state.deviations.find((d) => d.blocks && !d.disposed && d.step === needId);
   if (deviation) {
-    return no('deviation-open', `A deviation is open on "${title}": ${deviation.words}.`, 'The supervisor disposes of it.');
+    return no(
+      'deviation-open',
+      `A deviation is open on "${title}": ${deviation.words}.`,
+      'The supervisor disposes of it.',
+    );
   }
-  if (need?.kind === 'hold') return no('unsigned', `The hold point "${title}" is not signed.`, 'It must be signed first.');
+  if (need?.kind === 'hold')
+    return no('unsigned', `The hold point "${title}" is not signed.`, 'It must be signed first.');
   return no('order', `"${title}" comes first.`, `Do "${title}".`);
 }
 
 /** The crank knows its state: a rod without its cap, a dry shell or laid thread forbids the turn. */
 export function whyNotTurn(state: JobState): Verdict {
   for (const rod of Object.values(state.rods)) {
-    if (rod.cap === 'off') return no('cap-off', `The cap of rod ${rod.rod} is off.`, `Fit the cap of rod ${rod.rod}.`);
-    if (rod.thread === 'laid') return no('thread-laid', `Thread is laid at rod ${rod.rod}.`, `Read it and clean it off.`);
-    if (rod.shells === 'dry') return no('dry-shell', `The shells of rod ${rod.rod} are dry.`, `Oil them first.`);
+    if (rod.cap === 'off')
+      return no('cap-off', `The cap of rod ${rod.rod} is off.`, `Fit the cap of rod ${rod.rod}.`);
+    if (rod.thread === 'laid')
+      return no('thread-laid', `Thread is laid at rod ${rod.rod}.`, `Read it and clean it off.`);
+    if (rod.shells === 'dry')
+      return no('dry-shell', `The shells of rod ${rod.rod} are dry.`, `Oil them first.`);
   }
   return OK;
 }
@@ -114,7 +126,11 @@ function whyItemsBar(state: JobState, gate: Gate, what: string): Verdict {
   const rest = others.length === 0 ? '' : ` and ${others.length} more`;
   const closes = planItem(state.plan, first.item)?.closes;
   const step = closes === undefined ? undefined : findStep(state.plan, closes);
-  return no('open-item', `${what}: still open is ${first.name}${rest}.`, step ? `Do "${step.title}".` : undefined);
+  return no(
+    'open-item',
+    `${what}: still open is ${first.name}${rest}.`,
+    step ? `Do "${step.title}".` : undefined,
+  );
 }
 
 function whyNotHold(state: JobState, step: PlanStep & { kind: 'hold' }): Verdict {
@@ -124,7 +140,9 @@ function whyNotHold(state: JobState, step: PlanStep & { kind: 'hold' }): Verdict
   const barred = whyItemsBar(state, step.gate, `"${step.title}" can't be signed`);
   if (!barred.ok || step.gate !== 'start') return barred;
   const open = openBlockers(state).find((d) => d.class !== 'C');
-  return open ? no('deviation-open', `A deviation is open: ${open.words}.`, 'The supervisor disposes of it.') : OK;
+  return open
+    ? no('deviation-open', `A deviation is open: ${open.words}.`, 'The supervisor disposes of it.')
+    : OK;
 }
 
 function whyNotHandOver(state: JobState): Verdict {
@@ -132,10 +150,22 @@ function whyNotHandOver(state: JobState): Verdict {
   if (!items.ok) return items;
   const [unchecked] = uncheckedSignatures(state);
   if (unchecked) {
-    return no('unchecked', `The signature on "${unchecked.holdPoint}" has not been checked yet.`, 'Bring the tablet to the network.');
+    return no(
+      'unchecked',
+      `The signature on "${unchecked.holdPoint}" has not been checked yet.`,
+      'Bring the tablet to the network.',
+    );
+  }
+  if (state.countersigns.some((asked) => asked.countersignedBy === undefined)) {
+    return no(
+      'countersign',
+      'A correction under a signature has not been countersigned.',
+      'Someone else countersigns it.',
+    );
   }
   const [open] = openBlockers(state);
-  if (open) return no('deviation-open', `A deviation is open: ${open.words}.`, 'The supervisor disposes of it.');
+  if (open)
+    return no('deviation-open', `A deviation is open: ${open.words}.`, 'The supervisor disposes of it.');
   const missing = state.plan.steps.find((s) => s.kind !== 'hand-over' && !isSatisfied(state, s.id));
   return missing ? whyNeedIsMissing(state, missing.id) : OK;
 }

@@ -50,7 +50,14 @@ const stepKinds: Partial<Record<EntryKind, StepKind[]>> = {
 };
 
 /** Kinds that stay possible while a vehicle is parked or after the job has ended. */
-const always = new Set<EntryKind>(['corrected', 'revoked', 'photographed', 'took-over', 'work-signed', 'countersigned']);
+const always = new Set<EntryKind>([
+  'corrected',
+  'revoked',
+  'photographed',
+  'took-over',
+  'work-signed',
+  'countersigned',
+]);
 
 /** May this entry be recorded in this state? */
 export function mayRecord(state: JobState, entry: Entry, workshop: Workshop): Verdict {
@@ -61,7 +68,8 @@ export function mayRecord(state: JobState, entry: Entry, workshop: Workshop): Ve
   if (helper !== undefined) return no('unknown-person', 'The workshop does not know one of the helpers.');
   const role = whyNotRole(entry.kind, person.roles);
   if (!role.ok) return role;
-  if (entry.kind === 'opened') return state.phase === 'not opened' ? OK : no('already-opened', 'The job is open already.');
+  if (entry.kind === 'opened')
+    return state.phase === 'not opened' ? OK : no('already-opened', 'The job is open already.');
   const phase = whyNotPhase(state, entry.kind);
   if (!phase.ok) return phase;
   return whyNotOnStep(state, entry, workshop);
@@ -99,15 +107,23 @@ function whyNotPhase(state: JobState, kind: EntryKind): Verdict {
   if (state.phase === 'not opened') return no('not-opened', 'The job has not been opened.');
   if (state.phase === 'running' || always.has(kind)) return OK;
   if (state.phase === 'parked') {
-    const isFree = kind === 'resumed' || kind === 'deviation-raised' || kind === 'deviation-disposed' || kind === 'ended-unfinished';
+    const isFree =
+      kind === 'resumed' ||
+      kind === 'deviation-raised' ||
+      kind === 'deviation-disposed' ||
+      kind === 'ended-unfinished';
     return isFree ? OK : no('parked', 'The vehicle is parked, made safe.', 'Resume the job first.');
   }
-  return no('ended', state.phase === 'handed over' ? 'The job is handed over.' : 'The job was ended unfinished.');
+  return no(
+    'ended',
+    state.phase === 'handed over' ? 'The job is handed over.' : 'The job was ended unfinished.',
+  );
 }
 
 function whyNotOnStep(state: JobState, entry: Entry, workshop: Workshop): Verdict {
   const step = entry.step === undefined ? undefined : findStep(state.plan, entry.step);
-  if (entry.step !== undefined && !step) return no('unknown-step', 'This step is not in the plan of the job.');
+  if (entry.step !== undefined && !step)
+    return no('unknown-step', 'This step is not in the plan of the job.');
   const kinds = stepKinds[entry.kind];
   if (kinds && (!step || !kinds.includes(step.kind))) {
     return no('wrong-step', `An entry "${entry.kind}" does not belong on this step.`);
@@ -120,7 +136,7 @@ function whyNotOnStep(state: JobState, entry: Entry, workshop: Workshop): Verdic
     case 'revoked':
       return whyNotRevoked(state, entry);
     case 'countersigned':
-      return OK;
+      return whyNotCountersigned(state, entry);
     case 'deviation-disposed':
       return whyNotDisposed(state, entry);
     case 'not-applicable':
@@ -143,9 +159,12 @@ function whyNotStepEntry(state: JobState, step: PlanStep, entry: Entry, workshop
   if (!order.ok) return order;
   if (step.kind === 'tighten') return whyNotTighten(state, step, entry, workshop);
   const status = state.steps[step.id]?.status;
-  if (status === 'not applicable') return no('not-applicable', `"${step.title}" was set aside as not applicable.`);
-  const mayRepeat = entry.kind === 'chose-shells' || entry.kind === 'measuring-again' || step.onDemand === true;
-  if (status === 'done' && !mayRepeat) return no('already-done', `"${step.title}" is done.`, 'Take it back first if it was wrong.');
+  if (status === 'not applicable')
+    return no('not-applicable', `"${step.title}" was set aside as not applicable.`);
+  const mayRepeat =
+    entry.kind === 'chose-shells' || entry.kind === 'measuring-again' || step.onDemand === true;
+  if (status === 'done' && !mayRepeat)
+    return no('already-done', `"${step.title}" is done.`, 'Take it back first if it was wrong.');
   switch (entry.kind) {
     case 'signed':
       return whyNotSigned(state, step, entry);
@@ -169,7 +188,11 @@ function whyNotStepEntry(state: JobState, step: PlanStep, entry: Entry, workshop
         : OK;
     case 'refitted':
       return step.kind === 'refit' && step.part !== undefined && entry.data.lot === undefined
-        ? no('lot-missing', `The lot of the new ${step.part} is needed.`, 'Key it in or pick it from the list.')
+        ? no(
+            'lot-missing',
+            `The lot of the new ${step.part} is needed.`,
+            'Key it in or pick it from the list.',
+          )
         : OK;
     default:
       return OK;
@@ -186,7 +209,11 @@ function whyNotGauged(state: JobState, step: PlanStep, entry: EntryOf<'gauged'>)
   const rod = step.rod === undefined ? undefined : state.rods[step.rod];
   const present = rod?.[entry.data.end];
   if (present && entry.data.again === 'first') {
-    return no('already-read', `The ${entry.data.end} of rod ${step.rod} is read already.`, 'Read again, or measure again.');
+    return no(
+      'already-read',
+      `The ${entry.data.end} of rod ${step.rod} is read already.`,
+      'Read again, or measure again.',
+    );
   }
   if (!(Number(entry.data.clearance) > 0)) return no('impossible', 'A clearance is more than nothing.');
   return OK;
@@ -198,7 +225,10 @@ function whyNotChosen(state: JobState, step: PlanStep, entry: EntryOf<'chose-she
   if (unknown) return no('unknown-grade', `The engine sheet has no shell grade "${unknown.grade}".`);
   const rod = step.rod === undefined ? undefined : state.rods[step.rod];
   const isAfterReading = rod !== undefined && (rod.front !== undefined || rod.rear !== undefined);
-  const isPast = state.plan.steps.some((s) => s.kind === 'tighten' && s.fit === 'final' && s.rod === step.rod && state.steps[s.id]?.status !== 'open');
+  const isPast = state.plan.steps.some(
+    (s) =>
+      s.kind === 'tighten' && s.fit === 'final' && s.rod === step.rod && state.steps[s.id]?.status !== 'open',
+  );
   if (isPast) return no('already-fitted', 'This rod has its final fit.', 'Raise a deviation.');
   if (isAfterReading && entry.data.reason === undefined) {
     return no('reason-missing', 'Other shells void the reading of this rod.', 'Give the reason.');
@@ -206,20 +236,33 @@ function whyNotChosen(state: JobState, step: PlanStep, entry: EntryOf<'chose-she
   return OK;
 }
 
-function whyNotWatch(state: JobState, step: PlanStep, entry: EntryOf<'watch-checked'> | EntryOf<'watch-ended'>): Verdict {
+function whyNotWatch(
+  state: JobState,
+  step: PlanStep,
+  entry: EntryOf<'watch-checked'> | EntryOf<'watch-ended'>,
+): Verdict {
   if (step.kind !== 'watch') return OK;
   if (state.watch?.step !== step.id) return no('not-started', 'The watch has not been started.', 'Start it.');
   if (entry.kind === 'watch-checked') {
-    return step.checks.some(({ id }) => id === entry.data.check) ? OK : no('unknown-check', 'This check is not in the plan.');
+    return step.checks.some(({ id }) => id === entry.data.check)
+      ? OK
+      : no('unknown-check', 'This check is not in the plan.');
   }
-  if (entry.data.early) return entry.data.reason === undefined ? no('reason-missing', 'Ending early needs a reason.') : OK;
+  if (entry.data.early)
+    return entry.data.reason === undefined ? no('reason-missing', 'Ending early needs a reason.') : OK;
   const minutes = (Date.parse(entry.at) - Date.parse(state.watch.startedAt)) / 60_000;
   if (minutes < Number(step.minutes)) {
-    return no('too-early', `The watch lasts ${step.minutes} minutes.`, 'Wait for its end, or end it early with a reason.');
+    return no(
+      'too-early',
+      `The watch lasts ${step.minutes} minutes.`,
+      'Wait for its end, or end it early with a reason.',
+    );
   }
   const answered = new Set(
     (state.steps[step.id]?.entries ?? []).flatMap((kept) =>
-      kept.kind === 'watch-checked' && 'check' in kept.data && kept.voided === undefined ? [kept.data.check] : [],
+      kept.kind === 'watch-checked' && 'check' in kept.data && kept.voided === undefined
+        ? [kept.data.check]
+        : [],
     ),
   );
   const missing = step.checks.find(({ id }) => !answered.has(id));
@@ -227,20 +270,36 @@ function whyNotWatch(state: JobState, step: PlanStep, entry: EntryOf<'watch-chec
 }
 
 function whyNotDriveEnded(state: JobState, step: PlanStep, entry: EntryOf<'drive-ended'>): Verdict {
-  const started = state.steps[step.id]?.entries.findLast((kept) => kept.kind === 'drive-started' && kept.voided === undefined);
-  if (!started || !('odometer' in started.data)) return no('not-started', 'The road test has not been started.');
+  const started = state.steps[step.id]?.entries.findLast(
+    (kept) => kept.kind === 'drive-started' && kept.voided === undefined,
+  );
+  if (!started || !('odometer' in started.data))
+    return no('not-started', 'The road test has not been started.');
   return Number(entry.data.odometer) < Number(started.data.odometer)
     ? no('impossible', 'An odometer does not run backwards.', 'Read it again.')
+    : OK;
+}
+
+function whyNotCountersigned(state: JobState, entry: EntryOf<'countersigned'>): Verdict {
+  const asked = state.countersigns.find(({ correction }) => correction === entry.data.of);
+  if (!asked) return no('unknown-entry', 'There is no correction that asks for this countersign.');
+  return asked.by === entry.by
+    ? no('own-work', 'Nobody countersigns their own correction.', 'Someone else does.')
     : OK;
 }
 
 function whyNotDisposed(state: JobState, entry: EntryOf<'deviation-disposed'>): Verdict {
   const deviation = state.deviations.find(({ id }) => id === entry.data.deviation);
   if (!deviation) return no('unknown-deviation', 'There is no such deviation.');
-  if (deviation.disposed) return no('already-disposed', 'This deviation is disposed of already.', 'Revoke that first.');
+  if (deviation.disposed)
+    return no('already-disposed', 'This deviation is disposed of already.', 'Revoke that first.');
   const isOutside = deviation.rule === 'clearance-outside' || deviation.rule === 'limit-outside';
   if (isOutside && entry.data.disposition === 'accept as is' && !entry.data.customerAgreed) {
-    return no('customer-missing', "Accepting outside the limits needs the customer's agreement.", 'Record when and how they agreed.');
+    return no(
+      'customer-missing',
+      "Accepting outside the limits needs the customer's agreement.",
+      'Record when and how they agreed.',
+    );
   }
   return OK;
 }

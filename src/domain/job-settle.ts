@@ -74,9 +74,13 @@ function settleOwn(state: JobState, step: PlanStep): JobState {
     case 'hold':
       return settleSignatures(state, step);
     case 'make-safe':
-      return lastOf(own, 'parked') && state.phase === 'running' && isNewest(state, own) ? { ...state, phase: 'parked' } : state;
+      return lastOf(own, 'parked') && state.phase === 'running' && isNewest(state, own)
+        ? { ...state, phase: 'parked' }
+        : state;
     case 'resume':
-      return lastOf(own, 'resumed') && state.phase === 'parked' && isNewest(state, own) ? { ...state, phase: 'running' } : state;
+      return lastOf(own, 'resumed') && state.phase === 'parked' && isNewest(state, own)
+        ? { ...state, phase: 'running' }
+        : state;
     case 'hand-over':
       return lastOf(own, 'handed-over') ? { ...state, phase: 'handed over' } : state;
     default:
@@ -92,12 +96,16 @@ function isNewest(state: JobState, own: StepState | undefined): boolean {
 function statusOf(state: JobState, step: PlanStep): StepStatus {
   const own = state.steps[step.id];
   const active = activeEntries(own);
-  const wayOut = active.findLast((k) => k.kind === 'not-applicable' || k.kind === 'waiting-for-part' || k.kind === 'part-arrived');
+  const wayOut = active.findLast(
+    (k) => k.kind === 'not-applicable' || k.kind === 'waiting-for-part' || k.kind === 'part-arrived',
+  );
   if (wayOut?.kind === 'not-applicable') return 'not applicable';
   if (isClosedByNotApplicable(state, step)) return 'not applicable';
   if (isStepDone(state, step)) return 'done';
   if (wayOut?.kind === 'waiting-for-part') return 'waiting for a part';
-  return active.some((kept) => kept.kind !== 'part-arrived' && kept.kind !== 'photographed') ? 'begun' : 'open';
+  return active.some((kept) => kept.kind !== 'part-arrived' && kept.kind !== 'photographed')
+    ? 'begun'
+    : 'open';
 }
 
 function isStepDone(state: JobState, step: PlanStep): boolean {
@@ -164,7 +172,8 @@ function settleCount(state: JobState, step: StepOf<'count'>): JobState {
   const counted = lastOf(state.steps[step.id], 'counted');
   if (!counted) return state;
   const present = state.tallies[step.tally] ?? { out: 0 };
-  const tally = step.side === 'out' ? { ...present, out: counted.data.count } : { ...present, in: counted.data.count };
+  const tally =
+    step.side === 'out' ? { ...present, out: counted.data.count } : { ...present, in: counted.data.count };
   const next = { ...state, tallies: { ...state.tallies, [step.tally]: tally } };
   if (step.side === 'out' || tally.in === tally.out) return next;
   return raiseDeviation(next, counted, {
@@ -187,7 +196,12 @@ function settleChecks(
     const ask = asked.find(({ id }) => id === check.id)?.ask ?? check.id;
     return `Not in order: ${ask}${check.note === undefined ? '' : ` (${check.note})`}`;
   });
-  return raiseDeviation(state, kept, { rule: 'not-in-order', class: step.class, words: words.join('; '), blocks: true });
+  return raiseDeviation(state, kept, {
+    rule: 'not-in-order',
+    class: step.class,
+    words: words.join('; '),
+    blocks: true,
+  });
 }
 
 function settleRead(state: JobState, step: StepOf<'read'>): JobState {
@@ -217,7 +231,10 @@ function settleWatch(state: JobState, step: StepOf<'watch'>): JobState {
     const data = kept.data as EntryData<'watch-checked'>;
     const check = step.checks.find(({ id }) => id === data.check);
     if (data.ok || !check) continue;
-    const what = check.ask ?? (check.limit === undefined ? data.check : next.plan.limits[check.limit]?.title) ?? data.check;
+    const what =
+      check.ask ??
+      (check.limit === undefined ? data.check : next.plan.limits[check.limit]?.title) ??
+      data.check;
     const words = `${check.stop === true ? 'Stop: ' : ''}${what}${data.value === undefined ? '' : `, ${data.value} ${data.unit ?? ''}`}`;
     next = raiseDeviation(next, kept, { rule: 'watch-bad', class: step.class, words, blocks: true });
   }
@@ -278,7 +295,11 @@ function settleEffects(state: JobState, step: PlanStep, before: StepStatus, afte
   if (rod === undefined || (next.effects === state.effects && !sets)) return next;
   const present = next.rods[rod];
   if (!present) return next;
-  let { cap, shells, thread }: Pick<typeof present, 'cap' | 'shells' | 'thread'> = { cap: 'on', shells: 'old', thread: 'none' };
+  let { cap, shells, thread }: Pick<typeof present, 'cap' | 'shells' | 'thread'> = {
+    cap: 'on',
+    shells: 'old',
+    thread: 'none',
+  };
   for (const effect of next.effects) {
     if (effect.rod !== rod) continue;
     cap = effect.sets.cap ?? cap;
@@ -316,7 +337,15 @@ function settleItems(state: JobState, step: PlanStep): JobState {
         ...next,
         open: [
           ...next.open,
-          { item: item.id, name: item.name, how: item.how, since: kept?.at ?? '', step: item.opens, count: data?.count, into: data?.into },
+          {
+            item: item.id,
+            name: item.name,
+            how: item.how,
+            since: kept?.at ?? '',
+            step: item.opens,
+            count: data?.count,
+            into: data?.into,
+          },
         ],
       };
     } else if (!isOpen && isListed) {
@@ -338,7 +367,9 @@ function settleClosing(state: JobState, item: PlanItem): JobState {
   const present = state.steps[item.closes];
   if (!closing || !present) return state;
   const status = statusOf(state, closing);
-  return status === present.status ? state : { ...state, steps: { ...state.steps, [closing.id]: { ...present, status } } };
+  return status === present.status
+    ? state
+    : { ...state, steps: { ...state.steps, [closing.id]: { ...present, status } } };
 }
 
 function isClosedByNotApplicable(state: JobState, step: PlanStep): boolean {

@@ -11,9 +11,14 @@ function no(code: string, why: string, unlock?: string): Verdict {
 /** May this person sign this hold point? The digest and the PIN are the server's to check. */
 export function whyNotSigned(state: JobState, step: PlanStep, entry: EntryOf<'signed'>): Verdict {
   if (step.kind !== 'hold') return no('wrong-step', 'Only a hold point is signed.');
-  if (entry.data.holdPoint !== step.holdPoint) return no('wrong-step', 'The signature names another hold point.');
+  if (entry.data.holdPoint !== step.holdPoint)
+    return no('wrong-step', 'The signature names another hold point.');
   if (!step.roles.some((role) => entry.author.roles.includes(role))) {
-    return no('role', `This hold point is signed by: ${step.roles.join(', ')}.`, 'Ask someone who has the role.');
+    return no(
+      'role',
+      `This hold point is signed by: ${step.roles.join(', ')}.`,
+      'Ask someone who has the role.',
+    );
   }
   if (step.presence === 'vehicle' && entry.data.presence !== 'at the vehicle') {
     return no('presence', 'This hold point is signed at the vehicle only.', 'Go to the vehicle and look.');
@@ -41,7 +46,11 @@ export function authorsUnder(state: JobState, step: PlanStep & { kind: 'hold' })
 }
 
 /** The author can't be the witness: no class A hold point over one's own work. */
-function whyNotIndependent(state: JobState, step: PlanStep & { kind: 'hold' }, entry: EntryOf<'signed'>): Verdict {
+function whyNotIndependent(
+  state: JobState,
+  step: PlanStep & { kind: 'hold' },
+  entry: EntryOf<'signed'>,
+): Verdict {
   if (step.class !== 'A' || !authorsUnder(state, step).includes(entry.by)) return { ok: true };
   if (!step.secondLook || entry.data.notIndependent === undefined) {
     return no('own-work', 'The signer had a hand in this work.', 'Someone who did none of it must sign.');
@@ -52,5 +61,9 @@ function whyNotIndependent(state: JobState, step: PlanStep & { kind: 'hold' }, e
     .reduce((latest, kept) => Math.max(latest, Date.parse(kept.at)), 0);
   return Date.parse(entry.at) - last >= SECOND_LOOK_MINUTES * 60_000
     ? { ok: true }
-    : no('too-soon', `A second look comes at least ${SECOND_LOOK_MINUTES} minutes after one's own work.`, 'Come back later.');
+    : no(
+        'too-soon',
+        `A second look comes at least ${SECOND_LOOK_MINUTES} minutes after one's own work.`,
+        'Come back later.',
+      );
 }

@@ -109,8 +109,7 @@ export interface Deviation {
   raisedByName: string;
   raisedAt: string;
   disposed?:
-    | { entry: string; by: string; name: string; at: string; disposition: string; reason: string }
-    | undefined;
+    { entry: string; by: string; name: string; at: string; disposition: string; reason: string } | undefined;
 }
 
 export interface Signature {
@@ -176,6 +175,14 @@ export interface JobState {
   lots: Record<string, string[]>;
   deviations: Deviation[];
   signatures: Signature[];
+  /** Clerical corrections under a signature, which someone else countersigns before handover. */
+  countersigns: {
+    correction: string;
+    step: string;
+    reason: string;
+    by: string;
+    countersignedBy?: string | undefined;
+  }[];
   photos: Photo[];
   /** Who had a hand in each step, helpers and correctors included. */
   authors: Record<string, string[]>;

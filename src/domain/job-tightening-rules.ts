@@ -12,7 +12,12 @@ function no(code: string, why: string, unlock?: string): Verdict {
 }
 
 /** The programme in order, never past a bolt's tightenings, never with a tool that isn't fit for class A. */
-export function whyNotTighten(state: JobState, step: StepOf<'tighten'>, entry: Entry, workshop: Workshop): Verdict {
+export function whyNotTighten(
+  state: JobState,
+  step: StepOf<'tighten'>,
+  entry: Entry,
+  workshop: Workshop,
+): Verdict {
   if (state.steps[step.id]?.status === 'done' && entry.kind !== 'photographed') {
     return no('already-done', `"${step.title}" is done.`, 'Take back the last act first if it was wrong.');
   }
@@ -29,12 +34,19 @@ export function whyNotTighten(state: JobState, step: StepOf<'tighten'>, entry: E
   }
   if (entry.kind !== 'tightened' && entry.kind !== 'released' && entry.kind !== 'marked') return OK;
   if (next.kind !== 'stage') {
-    const what = next.kind === 'replace' ? `Bolt ${next.bolt} is replaced first.` : `Bolt ${next.bolt} is released first.`;
+    const what =
+      next.kind === 'replace'
+        ? `Bolt ${next.bolt} is replaced first.`
+        : `Bolt ${next.bolt} is released first.`;
     return no('order', what, 'The cap starts again at the first cycle after that.');
   }
   const { bolt, cycle, stage } = entry.data;
   if (next.bolt !== bolt || next.cycle !== cycle || next.stage !== stage) {
-    return no('order', `Next is bolt ${next.bolt}, cycle ${next.cycle + 1}, pass ${next.stage + 1}.`, 'Go on from there.');
+    return no(
+      'order',
+      `Next is bolt ${next.bolt}, cycle ${next.cycle + 1}, pass ${next.stage + 1}.`,
+      'Go on from there.',
+    );
   }
   const planned = state.plan.programmes[step.programme]?.cycles[cycle]?.[stage];
   const kind = whyNotStage(planned, entry);
@@ -46,25 +58,35 @@ export function whyNotTighten(state: JobState, step: StepOf<'tighten'>, entry: E
 
 function whyNotStartedAgain(step: StepOf<'tighten'>, entry: EntryOf<'started-again'>): Verdict {
   const missing = step.bolts.find((bolt) => !entry.data.bolts.includes(bolt));
-  return missing === undefined ? OK : no('order', `Bolt ${missing} must be let off too.`, 'Release every bolt of the cap.');
+  return missing === undefined
+    ? OK
+    : no('order', `Bolt ${missing} must be let off too.`, 'Release every bolt of the cap.');
 }
 
 function whyNotStage(
   planned: PlanStage | undefined,
   entry: EntryOf<'tightened'> | EntryOf<'released'> | EntryOf<'marked'>,
 ): Verdict {
-  if (entry.kind === 'released') return planned?.kind === 'release' ? OK : no('order', 'Nothing is released here.');
+  if (entry.kind === 'released')
+    return planned?.kind === 'release' ? OK : no('order', 'Nothing is released here.');
   if (entry.kind === 'marked') return planned?.kind === 'mark' ? OK : no('order', 'No mark is due here.');
   const { target, value, outcome } = entry.data;
-  if (planned?.kind !== 'torque' && planned?.kind !== 'angle') return no('order', 'No torque or angle is due here.');
-  if (target.kind !== planned.kind || target.target !== planned.target || target.tolerance !== planned.tolerance) {
+  if (planned?.kind !== 'torque' && planned?.kind !== 'angle')
+    return no('order', 'No torque or angle is due here.');
+  if (
+    target.kind !== planned.kind ||
+    target.target !== planned.target ||
+    target.tolerance !== planned.tolerance
+  ) {
     return no('target-differs', 'The target is not the one of the plan.');
   }
   if (value === undefined) return OK;
   const spec = { kind: planned.kind, target: Number(planned.target), tolerance: Number(planned.tolerance) };
   const judged = judgeReading(spec, Number(value));
   const said = outcome === 'done' ? 'ok' : outcome === 'over' ? 'over' : 'under';
-  return judged === said ? OK : no('outcome-differs', `${value} against ${planned.target} ± ${planned.tolerance} is ${judged}.`);
+  return judged === said
+    ? OK
+    : no('outcome-differs', `${value} against ${planned.target} ± ${planned.tolerance} is ${judged}.`);
 }
 
 /** Checked for the whole programme before it starts, and again wherever the cap starts again. */
@@ -90,7 +112,11 @@ function whyNotTool(step: StepOf<'tighten'>, entry: EntryOf<'tightened'>, worksh
   const isAngle = target.kind === 'angle';
   const { fit, reasons } = fitness(
     tool,
-    { kind: isAngle ? 'angle gauge' : 'torque wrench', criticalClass: 'A', ...(isAngle ? {} : { value: Number(target.target), unit: 'N·m' }) },
+    {
+      kind: isAngle ? 'angle gauge' : 'torque wrench',
+      criticalClass: 'A',
+      ...(isAngle ? {} : { value: Number(target.target), unit: 'N·m' }),
+    },
     dayIn(workshop.zone, entry.at),
   );
   return fit ? OK : no('tool-unfit', `${tool.name}: ${reasons.join('; ')}.`, 'Choose another tool.');
@@ -98,5 +124,10 @@ function whyNotTool(step: StepOf<'tighten'>, entry: EntryOf<'tightened'>, worksh
 
 /** The calendar day of an instant in the workshop's zone, `YYYY-MM-DD`. */
 export function dayIn(zone: string, at: string): string {
-  return new Intl.DateTimeFormat('en-CA', { timeZone: zone, year: 'numeric', month: '2-digit', day: '2-digit' }).format(new Date(at));
+  return new Intl.DateTimeFormat('en-CA', {
+    timeZone: zone,
+    year: 'numeric',
+    month: '2-digit',
+    day: '2-digit',
+  }).format(new Date(at));
 }

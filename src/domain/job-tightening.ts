@@ -2,7 +2,7 @@
  * Tightening steps between the record and the programme: entries become tightening.ts's records, and what
  * they amount to for each bolt. A void measurement still happened: its tightenings stay on the bolt.
  */
-import type { Entry, EntryData } from './entry';
+import type { EntryData } from './entry';
 import { remark } from './job-deviation';
 import type { BoltState, JobState, Kept } from './job-state';
 import type { BoltSet, PlanStage, StepOf } from './plan';
@@ -40,7 +40,11 @@ function stageInNumbers(stage: PlanStage): Stage {
 
 /** The records of a step that still count towards its programme. */
 export function tighteningRecords(state: JobState, step: TightenStep): TighteningRecord[] {
-  return recordsOf(state, step, (kept) => kept.voided === undefined && kept.takenBack !== 'touched by mistake, not done');
+  return recordsOf(
+    state,
+    step,
+    (kept) => kept.voided === undefined && kept.takenBack !== 'touched by mistake, not done',
+  );
 }
 
 /** Everything that was really done to the bolts, also where the measurement it served is void. */
@@ -51,7 +55,9 @@ function physicalRecords(state: JobState, step: TightenStep): TighteningRecord[]
 function recordsOf(state: JobState, step: TightenStep, counts: (kept: Kept) => boolean): TighteningRecord[] {
   const programme = programmeOf(state, step);
   if (!programme) return [];
-  return (state.steps[step.id]?.entries ?? []).flatMap((kept) => (counts(kept) ? toRecords(programme, kept) : []));
+  return (state.steps[step.id]?.entries ?? []).flatMap((kept) =>
+    counts(kept) ? toRecords(programme, kept) : [],
+  );
 }
 
 function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
@@ -68,11 +74,15 @@ function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
     case 'released': {
       const data = kept.data as EntryData<'released'>;
       if (data.because !== undefined) return [{ kind: 'released', bolt: data.bolt, unsure: false }];
-      return programme.cycles[data.cycle]?.[data.stage] ? [recordStage(programme, data, { outcome: 'done' })] : [];
+      return programme.cycles[data.cycle]?.[data.stage]
+        ? [recordStage(programme, data, { outcome: 'done' })]
+        : [];
     }
     case 'marked': {
       const data = kept.data as EntryData<'marked'>;
-      return programme.cycles[data.cycle]?.[data.stage] ? [recordStage(programme, data, { outcome: 'done' })] : [];
+      return programme.cycles[data.cycle]?.[data.stage]
+        ? [recordStage(programme, data, { outcome: 'done' })]
+        : [];
     }
     case 'started-again': {
       const data = kept.data as EntryData<'started-again'>;
@@ -125,7 +135,8 @@ export function settleBolts(state: JobState, step: TightenStep): JobState {
 function settleBolt(state: JobState, step: TightenStep, set: BoltSet, present: BoltState): BoltState {
   const { bolt } = present;
   const fits = state.plan.steps.filter(
-    (other): other is TightenStep => other.kind === 'tighten' && other.set === set && other.bolts.includes(bolt),
+    (other): other is TightenStep =>
+      other.kind === 'tighten' && other.set === set && other.bolts.includes(bolt),
   );
   const all = fits.flatMap((fit) => physicalRecords(state, fit));
   const own = tighteningRecords(state, step);
@@ -161,7 +172,8 @@ function cyclesDone(state: JobState, step: TightenStep, bolt: string, next: Tigh
   const lastPass = stages.findLastIndex((stage) => stage.kind === 'torque' || stage.kind === 'angle');
   const order = step.bolts.indexOf(bolt) < step.bolts.indexOf(next.bolt);
   const isPastLastPass = next.stage > lastPass || (next.stage === lastPass && order);
-  const isMarking = next.stage > lastPass && next.bolt !== bolt && !order && next.cycle === programme.cycles.length - 1;
+  const isMarking =
+    next.stage > lastPass && next.bolt !== bolt && !order && next.cycle === programme.cycles.length - 1;
   return next.cycle + (isPastLastPass && !isMarking ? 1 : 0);
 }
 
@@ -184,7 +196,9 @@ function markOf(state: JobState, step: TightenStep, bolt: string): BoltState['ma
   const mark = entries.slice(restart + 1).findLast((kept) => {
     if (kept.kind !== 'marked') return false;
     const data = kept.data as EntryData<'marked'>;
-    const lastPass = (programme.cycles[lastCycle] ?? []).findLastIndex((s) => s.kind === 'torque' || s.kind === 'angle');
+    const lastPass = (programme.cycles[lastCycle] ?? []).findLastIndex(
+      (s) => s.kind === 'torque' || s.kind === 'angle',
+    );
     return data.bolt === bolt && data.cycle === lastCycle && data.stage > lastPass;
   });
   return mark && { colour: (mark.data as EntryData<'marked'>).colour, at: mark.at };
@@ -200,12 +214,18 @@ export function checkPace(state: JobState, kept: Kept): JobState {
   const instants = new Set<string>();
   for (const step of recentTightenSteps(state, kept)) {
     for (const entry of state.steps[step]?.entries ?? []) {
-      if (entry.kind === 'tightened' && entry.device === kept.device && Date.parse(entry.at) > since) instants.add(entry.at);
+      if (entry.kind === 'tightened' && entry.device === kept.device && Date.parse(entry.at) > since)
+        instants.add(entry.at);
     }
   }
   const asked = state.remarks.findLast((one) => one.code === 'pace');
   if (instants.size < PACE_ACTS || (asked && Date.parse(asked.at) > since)) return state;
-  return remark(state, kept, 'pace', `${instants.size} tightening touches within ${PACE_SECONDS} seconds: were all of them turned?`);
+  return remark(
+    state,
+    kept,
+    'pace',
+    `${instants.size} tightening touches within ${PACE_SECONDS} seconds: were all of them turned?`,
+  );
 }
 
 /** This step and the tightening steps just before it in the plan; a minute never reaches further back. */
@@ -215,15 +235,24 @@ function recentTightenSteps(state: JobState, kept: Kept): string[] {
   return all.slice(Math.max(0, here - 3), here + 1);
 }
 
-/** The entries that one tightening action is recorded by. */
+type TighteningKind = 'tightened' | 'released' | 'marked' | 'bolt-replaced';
+
+/** Kind and data of the entry that an action is recorded by, confirmed and done. */
+export type TighteningDraft = { [K in TighteningKind]: { kind: K; data: EntryData<K> } }[TighteningKind];
+
+/** The entry that one tightening action is recorded by; a screen adds reading, outcome, tool and lot. */
 export function entryForAction(
   state: JobState,
   step: TightenStep,
   action: TighteningAction,
-): Pick<Extract<Entry, { kind: 'tightened' | 'released' | 'marked' | 'bolt-replaced' }>, 'kind' | 'data'> | undefined {
-  if (action.kind === 'replace') return { kind: 'bolt-replaced', data: { bolt: action.bolt, reason: 'turned too far' } };
+): TighteningDraft | undefined {
+  if (action.kind === 'replace')
+    return { kind: 'bolt-replaced', data: { bolt: action.bolt, reason: 'turned too far' } };
   if (action.kind === 'release') {
-    return { kind: 'released', data: { bolt: action.bolt, cycle: 0, stage: 0, because: releaseWords[action.because] } };
+    return {
+      kind: 'released',
+      data: { bolt: action.bolt, cycle: 0, stage: 0, because: releaseWords[action.because] },
+    };
   }
   const { bolt, cycle, stage } = action;
   const planned = state.plan.programmes[step.programme]?.cycles[cycle]?.[stage];

@@ -25,7 +25,13 @@ describe('a whole job', () => {
 
   it('can be replayed up to any recorded entry', () => {
     const journal = begin().performUntil('build.caps-marked');
-    const recorded = journal.entries.map((entry, i) => ({ ...entry, seq: i + 1, recordedAt: entry.at, prev: '', clockOffsetMs: 0 }));
+    const recorded = journal.entries.map((entry, i) => ({
+      ...entry,
+      seq: i + 1,
+      recordedAt: entry.at,
+      prev: '',
+      clockOffsetMs: 0,
+    }));
     const state = replay(new Map([['a'.repeat(64), journal.plan]]), recorded, { upTo: 5 });
     expect(state).toMatchObject({ count: 5, seq: 5 });
   });
@@ -57,7 +63,9 @@ describe('order', () => {
 
   it('does not do a step twice', () => {
     const journal = begin().perform('strip.rags-out');
-    expect(journal.ask('counted', { count: 3 }, { step: 'strip.rags-out' })).toMatchObject({ code: 'already-done' });
+    expect(journal.ask('counted', { count: 3 }, { step: 'strip.rags-out' })).toMatchObject({
+      code: 'already-done',
+    });
   });
 
   it('refuses an entry on a step of another kind, and on a step that is not in the plan', () => {
@@ -92,7 +100,10 @@ describe('open items', () => {
   it('bars the gate that an open item endangers', () => {
     const journal = begin().performUntil('build.rags-in');
     journal.record('counted', { count: 11 }, { step: 'build.rags-in' });
-    expect(journal.state.deviations.at(-1)).toMatchObject({ rule: 'count-differs', words: 'rags: 12 went out, 11 came back' });
+    expect(journal.state.deviations.at(-1)).toMatchObject({
+      rule: 'count-differs',
+      words: 'rags: 12 went out, 11 came back',
+    });
     expect(journal.why('build.clear-to-close')).toContain('deviation-open');
   });
 
@@ -118,7 +129,10 @@ describe('the measured number', () => {
   it('stops on a reading outside until it is disposed of', () => {
     const journal = begin().performUntil(at).gauge(at, '0.080', '0.078');
     expect(journal.status(at)).toBe('begun');
-    expect(journal.state.deviations.map(({ rule }) => rule)).toEqual(['clearance-outside', 'clearance-outside']);
+    expect(journal.state.deviations.map(({ rule }) => rule)).toEqual([
+      'clearance-outside',
+      'clearance-outside',
+    ]);
     expect(journal.ask('done', {}, { step: 'strip.clean@rod2' })).toMatchObject({ ok: false });
   });
 
@@ -126,16 +140,26 @@ describe('the measured number', () => {
     const journal = begin().performUntil(at).gauge(at, '0.080', '0.050');
     const deviation = journal.state.deviations[0]!.id;
     const accept = { deviation, disposition: 'accept as is' as const, reason: 'old engine, short life' };
-    expect(journal.ask('deviation-disposed', accept, { by: 'sup' })).toMatchObject({ code: 'customer-missing' });
+    expect(journal.ask('deviation-disposed', accept, { by: 'sup' })).toMatchObject({
+      code: 'customer-missing',
+    });
     expect(journal.ask('deviation-disposed', accept, { by: 'tech' })).toMatchObject({ code: 'role' });
-    journal.record('deviation-disposed', { ...accept, customerAgreed: { when: '2026-06-02 10:00', how: 'by telephone' } }, { by: 'sup' });
+    journal.record(
+      'deviation-disposed',
+      { ...accept, customerAgreed: { when: '2026-06-02 10:00', how: 'by telephone' } },
+      { by: 'sup' },
+    );
     expect(journal.status(at)).toBe('done');
   });
 
   it('sends a rework back to the choice of shells, and voids the readings', () => {
     const journal = begin().performUntil(at).gauge(at, '0.080', '0.050');
     const deviation = journal.state.deviations[0]!.id;
-    journal.record('deviation-disposed', { deviation, disposition: 'rework', reason: 'another grade' }, { by: 'sup' });
+    journal.record(
+      'deviation-disposed',
+      { deviation, disposition: 'rework', reason: 'another grade' },
+      { by: 'sup' },
+    );
     expect(first(journal)).toBe('strip.choose@rod2');
     expect(journal.state.rods[2]).toMatchObject({ front: undefined, rear: undefined });
     expect(journal.state.rods[2]?.voidReadings).toHaveLength(2);
@@ -146,8 +170,14 @@ describe('the measured number', () => {
   it('voids the readings when other shells are chosen, and needs a reason for it', () => {
     const journal = begin().performUntil('strip.clean@rod2');
     const shells = { upper: { grade: 'red', lot: 'S-2' }, lower: { grade: 'blue', lot: 'S-1' } };
-    expect(journal.ask('chose-shells', shells, { step: 'strip.choose@rod2' })).toMatchObject({ code: 'reason-missing' });
-    journal.record('chose-shells', { ...shells, reason: 'the other was scratched' }, { step: 'strip.choose@rod2' });
+    expect(journal.ask('chose-shells', shells, { step: 'strip.choose@rod2' })).toMatchObject({
+      code: 'reason-missing',
+    });
+    journal.record(
+      'chose-shells',
+      { ...shells, reason: 'the other was scratched' },
+      { step: 'strip.choose@rod2' },
+    );
     expect(first(journal)).toBe('strip.lay@rod2');
     expect(journal.status(at)).toBe('open');
   });
@@ -156,7 +186,22 @@ describe('the measured number', () => {
     const journal = begin().performUntil(at).gauge(at, '0.067', '0.060');
     expect(journal.state.deviations).toEqual([]);
     expect(journal.status(at)).toBe('begun');
-    expect(journal.ask('gauged', { end: 'front', by: 'band', clearance: '0.068', uncertainty: '0.005', unit: 'mm', again: 'first', threadLot: 'G', cardLot: 'G' }, { step: at })).toMatchObject({ code: 'already-read' });
+    expect(
+      journal.ask(
+        'gauged',
+        {
+          end: 'front',
+          by: 'band',
+          clearance: '0.068',
+          uncertainty: '0.005',
+          unit: 'mm',
+          again: 'first',
+          threadLot: 'G',
+          cardLot: 'G',
+        },
+        { step: at },
+      ),
+    ).toMatchObject({ code: 'already-read' });
     journal.gaugeEnd(at, 'front', '0.068', { again: 'read again' });
     expect(journal.state.deviations.map(({ rule }) => rule)).toEqual(['clearance-unsure']);
   });
@@ -190,18 +235,41 @@ describe('tightening', () => {
   it('takes the programme in its order only', () => {
     const journal = ready();
     const target = { kind: 'torque' as const, target: '10', tolerance: '1', unit: 'N·m' as const };
-    const pull = { bolt: '2B', cycle: 0, stage: 0, target, how: 'confirmed' as const, outcome: 'done' as const, tool: torqueTool };
-    expect(journal.ask('tightened', pull, { step: at })).toMatchObject({ code: 'order', why: expect.stringContaining('bolt 2A') });
-    expect(journal.ask('tightened', { ...pull, bolt: '2A', target: { ...target, target: '12' } }, { step: at })).toMatchObject({ code: 'target-differs' });
-    expect(journal.ask('marked', { bolt: '2A', cycle: 0, stage: 0, colour: 'yellow' }, { step: at })).toMatchObject({ ok: false });
+    const pull = {
+      bolt: '2B',
+      cycle: 0,
+      stage: 0,
+      target,
+      how: 'confirmed' as const,
+      outcome: 'done' as const,
+      tool: torqueTool,
+    };
+    expect(journal.ask('tightened', pull, { step: at })).toMatchObject({
+      code: 'order',
+      why: expect.stringContaining('bolt 2A'),
+    });
+    expect(
+      journal.ask('tightened', { ...pull, bolt: '2A', target: { ...target, target: '12' } }, { step: at }),
+    ).toMatchObject({ code: 'target-differs' });
+    expect(
+      journal.ask('marked', { bolt: '2A', cycle: 0, stage: 0, colour: 'yellow' }, { step: at }),
+    ).toMatchObject({ ok: false });
   });
 
   it('counts cycles per bolt, and a mark only after the last angle', () => {
     const journal = ready();
     for (let i = 0; i < 4; i += 1) journal.tightenOnce(at);
-    expect(journal.state.bolts['2A']).toMatchObject({ cyclesDone: 1, marked: undefined, used: { new: 1, old: 2 } });
+    expect(journal.state.bolts['2A']).toMatchObject({
+      cyclesDone: 1,
+      marked: undefined,
+      used: { new: 1, old: 2 },
+    });
     journal.tighten(at);
-    expect(journal.state.bolts['2A']).toMatchObject({ cyclesDone: 2, used: { new: 2 }, marked: { colour: 'yellow' } });
+    expect(journal.state.bolts['2A']).toMatchObject({
+      cyclesDone: 2,
+      used: { new: 2 },
+      marked: { colour: 'yellow' },
+    });
     expect(journal.status(at)).toBe('done');
   });
 
@@ -209,12 +277,22 @@ describe('tightening', () => {
     const journal = ready();
     for (let i = 0; i < 3; i += 1) journal.tightenOnce(at);
     journal.tightenOnce(at, {}, { how: 'typed', value: '99', outcome: 'over' });
-    expect(journal.ask('bolt-replaced', { bolt: '2B', reason: 'too far' }, { step: at })).toMatchObject({ code: 'order' });
+    expect(journal.ask('bolt-replaced', { bolt: '2B', reason: 'too far' }, { step: at })).toMatchObject({
+      code: 'order',
+    });
     journal.tightenOnce(at);
-    expect(journal.entries.at(-1)).toMatchObject({ kind: 'released', data: { bolt: '2A', because: expect.any(String) } });
+    expect(journal.entries.at(-1)).toMatchObject({
+      kind: 'released',
+      data: { bolt: '2A', because: expect.any(String) },
+    });
     expect(journal.state.bolts['2B']?.condemned).toBeDefined();
     journal.tightenOnce(at);
-    expect(journal.state.bolts['2B']).toMatchObject({ condemned: undefined, replaced: 1, used: { new: 0 }, lot: 'B-2' });
+    expect(journal.state.bolts['2B']).toMatchObject({
+      condemned: undefined,
+      replaced: 1,
+      used: { new: 0 },
+      lot: 'B-2',
+    });
     // Two cycles are needed and the partner has seen one of its two tightenings.
     expect(() => journal.tightenOnce(at)).toThrow(/Bolt 2A has 1 tightenings left and the programme needs 2/);
   });
@@ -222,8 +300,14 @@ describe('tightening', () => {
   it('starts the cap again when nobody is sure, and counts it on every bolt', () => {
     const journal = begin().performUntil('strip.squeeze@rod2');
     journal.tightenOnce('strip.squeeze@rod2');
-    expect(journal.ask('started-again', { bolts: ['2A'], reason: 'called away' }, { step: 'strip.squeeze@rod2' })).toMatchObject({ code: 'order' });
-    journal.record('started-again', { bolts: ['2A', '2B'], reason: 'called away' }, { step: 'strip.squeeze@rod2' });
+    expect(
+      journal.ask('started-again', { bolts: ['2A'], reason: 'called away' }, { step: 'strip.squeeze@rod2' }),
+    ).toMatchObject({ code: 'order' });
+    journal.record(
+      'started-again',
+      { bolts: ['2A', '2B'], reason: 'called away' },
+      { step: 'strip.squeeze@rod2' },
+    );
     expect(journal.state.bolts['2A']?.used.old).toBe(1);
     journal.tighten('strip.squeeze@rod2');
     expect(journal.state.bolts['2A']?.used.old).toBe(2);
@@ -233,18 +317,45 @@ describe('tightening', () => {
   it('takes no tool that is missing, unknown, or past its date for class A', () => {
     const journal = ready();
     const target = { kind: 'torque' as const, target: '10', tolerance: '1', unit: 'N·m' as const };
-    const pull = { bolt: '2A', cycle: 0, stage: 0, target, how: 'confirmed' as const, outcome: 'done' as const };
+    const pull = {
+      bolt: '2A',
+      cycle: 0,
+      stage: 0,
+      target,
+      how: 'confirmed' as const,
+      outcome: 'done' as const,
+    };
     expect(journal.ask('tightened', pull, { step: at })).toMatchObject({ code: 'tool-missing' });
-    expect(journal.ask('tightened', { ...pull, tool: { ...torqueTool, id: 'x' } }, { step: at })).toMatchObject({ code: 'unknown-tool' });
-    expect(journal.ask('tightened', { ...pull, tool: { id: 'late', name: 'Old', serial: 'TW-0', dueOn: '2026-01-31' } }, { step: at })).toMatchObject({ code: 'tool-unfit' });
-    expect(journal.ask('tightened', { ...pull, tool: angleTool }, { step: at })).toMatchObject({ code: 'tool-unfit' });
+    expect(
+      journal.ask('tightened', { ...pull, tool: { ...torqueTool, id: 'x' } }, { step: at }),
+    ).toMatchObject({ code: 'unknown-tool' });
+    expect(
+      journal.ask(
+        'tightened',
+        { ...pull, tool: { id: 'late', name: 'Old', serial: 'TW-0', dueOn: '2026-01-31' } },
+        { step: at },
+      ),
+    ).toMatchObject({ code: 'tool-unfit' });
+    expect(journal.ask('tightened', { ...pull, tool: angleTool }, { step: at })).toMatchObject({
+      code: 'tool-unfit',
+    });
   });
 
   it('judges a reading against its tolerance', () => {
     const journal = ready();
     const target = { kind: 'torque' as const, target: '10', tolerance: '1', unit: 'N·m' as const };
-    const pull = { bolt: '2A', cycle: 0, stage: 0, target, how: 'typed' as const, value: '12', tool: torqueTool };
-    expect(journal.ask('tightened', { ...pull, outcome: 'done' }, { step: at })).toMatchObject({ code: 'outcome-differs' });
+    const pull = {
+      bolt: '2A',
+      cycle: 0,
+      stage: 0,
+      target,
+      how: 'typed' as const,
+      value: '12',
+      tool: torqueTool,
+    };
+    expect(journal.ask('tightened', { ...pull, outcome: 'done' }, { step: at })).toMatchObject({
+      code: 'outcome-differs',
+    });
     expect(journal.ask('tightened', { ...pull, outcome: 'over' }, { step: at }).ok).toBe(true);
   });
 
@@ -262,7 +373,11 @@ describe('taking back and correcting', () => {
     const of = journal.entries.at(-1)!.id;
     journal.record('taken-back', { of, which: 'touched by mistake, not done' });
     expect(() => journal.tighten('build.tighten@rod2')).not.toThrow();
-    expect(journal.entries.filter((e) => e.kind === 'tightened' && e.data.bolt === '2A' && e.step === 'build.tighten@rod2')).toHaveLength(5);
+    expect(
+      journal.entries.filter(
+        (e) => e.kind === 'tightened' && e.data.bolt === '2A' && e.step === 'build.tighten@rod2',
+      ),
+    ).toHaveLength(5);
   });
 
   it('takes back done, but wrong: the bolt is condemned', () => {
@@ -284,31 +399,77 @@ describe('taking back and correcting', () => {
   it('opens a deviation for another act that was done, but wrong', () => {
     const journal = begin().perform('strip.arrival').perform('strip.old-shell-kit');
     journal.record('taken-back', { of: journal.entries.at(-1)!.id, which: 'done, but wrong' });
-    expect(journal.state.deviations.at(-1)).toMatchObject({ rule: 'done-wrong', step: 'strip.old-shell-kit' });
+    expect(journal.state.deviations.at(-1)).toMatchObject({
+      rule: 'done-wrong',
+      step: 'strip.old-shell-kit',
+    });
   });
 
   it('refuses to take back what later work stands on, and what another recorded', () => {
     const journal = begin().performUntil('strip.strap');
     const raise = journal.entries.at(-1)!.id;
-    expect(journal.ask('taken-back', { of: raise, which: 'touched by mistake, not done' }, { by: 'mate' })).toMatchObject({ code: 'not-author' });
+    expect(
+      journal.ask('taken-back', { of: raise, which: 'touched by mistake, not done' }, { by: 'mate' }),
+    ).toMatchObject({ code: 'not-author' });
     journal.perform('strip.strap');
-    expect(journal.ask('taken-back', { of: raise, which: 'touched by mistake, not done' })).toMatchObject({ code: 'depended-on' });
+    expect(journal.ask('taken-back', { of: raise, which: 'touched by mistake, not done' })).toMatchObject({
+      code: 'depended-on',
+    });
   });
 
   it('supersedes a value, keeps who corrected as an author, and judges it anew', () => {
     const journal = begin().performUntil('strip.clean@rod2');
     const reading = journal.entries.find((e) => e.kind === 'gauged')!;
     const data = { ...reading.data, clearance: '0.080' };
-    journal.record('corrected', { of: reading.id, class: 'substantive', reason: 'misread', data }, { by: 'sup' });
+    journal.record(
+      'corrected',
+      { of: reading.id, class: 'substantive', reason: 'misread', data },
+      { by: 'sup' },
+    );
     expect(journal.state.rods[2]?.front).toMatchObject({ clearance: '0.080', verdict: 'outside' });
     expect(journal.state.authors['strip.gauge@rod2']).toContain('sup');
     expect(journal.ask('done', {}, { step: 'strip.clean@rod2' })).toMatchObject({ ok: false });
   });
 
+  it('voids the measurement of shells that were not those', () => {
+    const journal = begin().performUntil('strip.clean@rod2');
+    const chosen = journal.entries.find((e) => e.kind === 'chose-shells')!;
+    const data = { ...chosen.data, upper: { grade: 'red', lot: 'S-3' } };
+    journal.record('corrected', { of: chosen.id, class: 'substantive', reason: 'it was red', data });
+    expect(journal.state.rods[2]).toMatchObject({ upper: { grade: 'red' }, front: undefined });
+    expect(first(journal)).toBe('strip.lay@rod2');
+  });
+
+  it('asks for a countersign of a clerical correction under a signature, before handover', () => {
+    const journal = begin().performUntil('build.rags-in');
+    const chosen = journal.entries.find((e) => e.kind === 'chose-shells')!;
+    expect(journal.plan.steps.find(({ id }) => id === 'build.clear-to-close')).toMatchObject({
+      kind: 'hold',
+    });
+    journal.performUntil('build.sump-on');
+    const data = { ...chosen.data, upper: { grade: 'blue', lot: 'S-7' } };
+    const correction = journal.record('corrected', {
+      of: chosen.id,
+      class: 'clerical',
+      reason: 'misread label',
+      data,
+    });
+    expect(journal.state.signatures.every(({ reopened }) => reopened === undefined)).toBe(true);
+    journal.performUntil('build.hand-over');
+    expect(journal.why('build.hand-over')).toContain('countersign');
+    expect(
+      journal.ask('countersigned', { of: correction.id, name: 'Q. Lead' }, { by: 'tech' }),
+    ).toMatchObject({ ok: false });
+    journal.record('countersigned', { of: correction.id, name: 'Q. Lead' }, { by: 'lead' });
+    expect(journal.why('build.hand-over')).toBe('ok');
+  });
+
   it('refuses a correction that does not have the form of what it corrects', () => {
     const journal = begin().performUntil('strip.clean@rod2');
     const reading = journal.entries.find((e) => e.kind === 'gauged')!;
-    expect(journal.ask('corrected', { of: reading.id, class: 'substantive', reason: 'x', data: { clearance: 5 } })).toMatchObject({ code: 'malformed' });
+    expect(
+      journal.ask('corrected', { of: reading.id, class: 'substantive', reason: 'x', data: { clearance: 5 } }),
+    ).toMatchObject({ code: 'malformed' });
   });
 });
 
@@ -317,17 +478,33 @@ describe('signing', () => {
 
   it('needs everything that it covers, and the signer’s own count', () => {
     const early = begin().performUntil('build.turns');
-    expect(early.ask('signed', early.signedData(hold), { by: 'sup', step: hold })).toMatchObject({ ok: false });
+    expect(early.ask('signed', early.signedData(hold), { by: 'sup', step: hold })).toMatchObject({
+      ok: false,
+    });
     const journal = begin().performUntil(hold);
-    expect(journal.ask('signed', journal.signedData(hold, { count: 7 }), { by: 'sup', step: hold })).toMatchObject({ code: 'count-differs' });
-    expect(journal.ask('signed', journal.signedData(hold, { presence: 'from photographs' }), { by: 'sup', step: hold })).toMatchObject({ code: 'presence' });
-    expect(journal.ask('signed', journal.signedData(hold), { by: 'tech', step: hold })).toMatchObject({ code: 'role' });
+    expect(
+      journal.ask('signed', journal.signedData(hold, { count: 7 }), { by: 'sup', step: hold }),
+    ).toMatchObject({ code: 'count-differs' });
+    expect(
+      journal.ask('signed', journal.signedData(hold, { presence: 'from photographs' }), {
+        by: 'sup',
+        step: hold,
+      }),
+    ).toMatchObject({ code: 'presence' });
+    expect(journal.ask('signed', journal.signedData(hold), { by: 'tech', step: hold })).toMatchObject({
+      code: 'role',
+    });
     expect(journal.ask('signed', journal.signedData(hold), { by: 'sup', step: hold }).ok).toBe(true);
   });
 
   it('is never over own work, helpers included, unless a marked second look comes late enough', () => {
-    const journal = begin().performUntil('build.tighten@rod3').tighten('build.tighten@rod3', { with: ['sup'] }).performUntil(hold);
-    expect(journal.ask('signed', journal.signedData(hold), { by: 'sup', step: hold })).toMatchObject({ code: 'own-work' });
+    const journal = begin()
+      .performUntil('build.tighten@rod3')
+      .tighten('build.tighten@rod3', { with: ['sup'] })
+      .performUntil(hold);
+    expect(journal.ask('signed', journal.signedData(hold), { by: 'sup', step: hold })).toMatchObject({
+      code: 'own-work',
+    });
     const second = journal.signedData(hold, { notIndependent: 'nobody else is here' });
     expect(journal.ask('signed', second, { by: 'sup', step: hold })).toMatchObject({ code: 'too-soon' });
     expect(journal.ask('signed', second, { by: 'sup', step: hold, afterMs: 31 * 60_000 }).ok).toBe(true);
@@ -362,7 +539,9 @@ describe('signing', () => {
   it('is revoked, not corrected', () => {
     const journal = begin().performUntil(hold);
     const { id } = journal.sign(hold);
-    expect(journal.ask('taken-back', { of: id, which: 'touched by mistake, not done' }, { by: 'sup' })).toMatchObject({ code: 'revoke' });
+    expect(
+      journal.ask('taken-back', { of: id, which: 'touched by mistake, not done' }, { by: 'sup' }),
+    ).toMatchObject({ code: 'revoke' });
     journal.record('revoked', { of: id, reason: 'looked at the wrong vehicle' }, { by: 'sup' });
     expect(journal.why('build.rags-in')).toContain('not signed');
   });
@@ -372,9 +551,13 @@ describe('honest ways out', () => {
   it('sets a class A step aside only by a supervisor, and a hold point never', () => {
     const journal = begin().performUntil('strip.cap-off@rod2');
     const aside = { reason: 'done before' };
-    expect(journal.ask('not-applicable', aside, { step: 'strip.cap-off@rod2' })).toMatchObject({ code: 'role' });
+    expect(journal.ask('not-applicable', aside, { step: 'strip.cap-off@rod2' })).toMatchObject({
+      code: 'role',
+    });
     expect(journal.ask('not-applicable', aside, { step: 'strip.cap-off@rod2', by: 'sup' }).ok).toBe(true);
-    expect(journal.ask('not-applicable', aside, { step: 'build.caps-marked', by: 'sup' })).toMatchObject({ code: 'hold-point' });
+    expect(journal.ask('not-applicable', aside, { step: 'build.caps-marked', by: 'sup' })).toMatchObject({
+      code: 'hold-point',
+    });
   });
 
   it('waits for a part at one step and leaves others free', () => {
@@ -384,7 +567,7 @@ describe('honest ways out', () => {
     expect(nextSteps(journal.state).map(({ id }) => id)).toEqual(['strip.arrival', 'strip.rags-out']);
     journal.perform('strip.arrival').perform('strip.rags-out');
     expect(journal.why('strip.raise')).toContain('waits for a part');
-    journal.record('part-arrived', { lot: 'S-9' }, { step: 'strip.old-shell-kit' }).id;
+    journal.record('part-arrived', { lot: 'S-9' }, { step: 'strip.old-shell-kit' });
     journal.perform('strip.old-shell-kit');
     expect(journal.why('strip.raise')).toBe('ok');
   });
@@ -401,7 +584,11 @@ describe('honest ways out', () => {
 
   it('ends unfinished by a supervisor, and then nothing more is done', () => {
     const journal = begin().performUntil('strip.cap-off@rod2');
-    journal.record('ended-unfinished', { reason: 'crankpin damaged', open: ['sump'], notToBeRun: true }, { by: 'sup' });
+    journal.record(
+      'ended-unfinished',
+      { reason: 'crankpin damaged', open: ['sump'], notToBeRun: true },
+      { by: 'sup' },
+    );
     expect(journal.ask('done', {}, { step: 'strip.cap-off@rod2' })).toMatchObject({ code: 'ended' });
     expect(nextSteps(journal.state)).toEqual([]);
   });
@@ -411,8 +598,12 @@ describe('watch and road test', () => {
   it('lasts its minutes; an early end needs a reason and opens a deviation', () => {
     const journal = begin().performUntil('build.warm');
     journal.record('watch-started', {}, { step: 'build.warm' });
-    expect(journal.ask('watch-ended', { early: false }, { step: 'build.warm' })).toMatchObject({ code: 'too-early' });
-    expect(journal.ask('watch-ended', { early: true }, { step: 'build.warm' })).toMatchObject({ code: 'reason-missing' });
+    expect(journal.ask('watch-ended', { early: false }, { step: 'build.warm' })).toMatchObject({
+      code: 'too-early',
+    });
+    expect(journal.ask('watch-ended', { early: true }, { step: 'build.warm' })).toMatchObject({
+      code: 'reason-missing',
+    });
     journal.record('watch-ended', { early: true, reason: 'leak at the filter' }, { step: 'build.warm' });
     expect(journal.state.deviations.at(-1)).toMatchObject({ rule: 'watch-early' });
   });
@@ -420,23 +611,38 @@ describe('watch and road test', () => {
   it('opens a deviation for a bad answer while watching', () => {
     const journal = begin().performUntil('build.warm');
     journal.record('watch-started', {}, { step: 'build.warm' });
-    journal.record('watch-checked', { check: 'pressure', ok: false, value: '0.2', unit: 'bar' }, { step: 'build.warm' });
-    expect(journal.state.deviations.at(-1)).toMatchObject({ rule: 'watch-bad', words: 'Stop: oil pressure, 0.2 bar' });
+    journal.record(
+      'watch-checked',
+      { check: 'pressure', ok: false, value: '0.2', unit: 'bar' },
+      { step: 'build.warm' },
+    );
+    expect(journal.state.deviations.at(-1)).toMatchObject({
+      rule: 'watch-bad',
+      words: 'Stop: oil pressure, 0.2 bar',
+    });
   });
 
   it('refuses an odometer that runs backwards', () => {
     const journal = begin().performUntil('build.drive');
     journal.record('drive-started', { odometer: '1000', unit: 'km', checks: [] }, { step: 'build.drive' });
-    expect(journal.ask('drive-ended', { odometer: '999', unit: 'km', checks: [] }, { step: 'build.drive' })).toMatchObject({ code: 'impossible' });
+    expect(
+      journal.ask('drive-ended', { odometer: '999', unit: 'km', checks: [] }, { step: 'build.drive' }),
+    ).toMatchObject({ code: 'impossible' });
   });
 });
 
 describe('people', () => {
   it('refuses people whom the workshop does not know, or who left', () => {
     const journal = begin();
-    expect(journal.ask('counted', { count: 1 }, { step: 'strip.rags-out', by: 'nobody' })).toMatchObject({ code: 'unknown-person' });
-    expect(journal.ask('counted', { count: 1 }, { step: 'strip.rags-out', by: 'gone' })).toMatchObject({ code: 'inactive-person' });
-    expect(journal.ask('counted', { count: 1 }, { step: 'strip.rags-out', by: 'lead' })).toMatchObject({ code: 'role' });
+    expect(journal.ask('counted', { count: 1 }, { step: 'strip.rags-out', by: 'nobody' })).toMatchObject({
+      code: 'unknown-person',
+    });
+    expect(journal.ask('counted', { count: 1 }, { step: 'strip.rags-out', by: 'gone' })).toMatchObject({
+      code: 'inactive-person',
+    });
+    expect(journal.ask('counted', { count: 1 }, { step: 'strip.rags-out', by: 'lead' })).toMatchObject({
+      code: 'role',
+    });
   });
 
   it('remembers who is at work and who had a hand in each step', () => {
@@ -458,7 +664,16 @@ describe('totality', () => {
   it('turns a recorded conflict into a deviation that blocks the step and counts both acts', () => {
     const journal = begin().performUntil('strip.squeeze@rod2').tighten('strip.squeeze@rod2');
     const again = journal.entries.findLast((e) => e.kind === 'tightened')!;
-    const second = { ...again, id: '0190a0a0-0000-7000-8000-0000000fffff', device: 'tablet-2', seq: 99, recordedAt: again.at, prev: '', clockOffsetMs: 0, conflict: { code: 'already-done', why: 'tightened on two tablets' } };
+    const second = {
+      ...again,
+      id: '0190a0a0-0000-7000-8000-0000000fffff',
+      device: 'tablet-2',
+      seq: 99,
+      recordedAt: again.at,
+      prev: '',
+      clockOffsetMs: 0,
+      conflict: { code: 'already-done', why: 'tightened on two tablets' },
+    };
     journal.fold(second);
     expect(journal.state.bolts['2B']?.used.old).toBe(2);
     expect(journal.why('strip.cap-off-again@rod2')).toContain('deviation-open');
@@ -467,7 +682,9 @@ describe('totality', () => {
   it('never throws, whatever comes in whatever order', () => {
     const whole = begin().performUntil(null).entries;
     for (let seed = 1; seed <= 60; seed += 1) {
-      const shuffled = whole.map((entry, i) => ({ entry, at: Math.sin(seed * 1000 + i * 7) })).sort((a, b) => a.at - b.at);
+      const shuffled = whole
+        .map((entry, i) => ({ entry, at: Math.sin(seed * 1000 + i * 7) }))
+        .sort((a, b) => a.at - b.at);
       const journal = new Journal(smallPlan(), buildWorkshop());
       expect(() => {
         for (const { entry } of shuffled) journal.fold(entry);

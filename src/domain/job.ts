@@ -24,7 +24,8 @@ export function emptyJob(plan: Plan): JobState {
   const steps: Record<string, StepState> = {};
   for (const step of plan.steps) steps[step.id] = { status: 'open', entries: [] };
   const rods: Record<string, RodState> = {};
-  for (const rod of rodsOf(plan)) rods[rod] = { rod, cap: 'on', shells: 'old', thread: 'none', voidReadings: [] };
+  for (const rod of rodsOf(plan))
+    rods[rod] = { rod, cap: 'on', shells: 'old', thread: 'none', voidReadings: [] };
   const bolts: JobState['bolts'] = {};
   for (const rod of rodsOf(plan)) {
     for (const { bolt } of plan.engine.capBolts) {
@@ -50,6 +51,7 @@ export function emptyJob(plan: Plan): JobState {
     lots: {},
     deviations: [],
     signatures: [],
+    countersigns: [],
     photos: [],
     authors: {},
     people: {},
@@ -85,7 +87,12 @@ export function applyEntry(state: JobState, entry: Entry | Recorded): JobState {
   next = reopenSignatures(next, kept);
   next = applyKind(next, entry, kept, step);
   if ('conflict' in entry && entry.conflict) {
-    next = raiseDeviation(next, kept, { rule: 'conflict', class: 'A', words: entry.conflict.why, blocks: true });
+    next = raiseDeviation(next, kept, {
+      rule: 'conflict',
+      class: 'A',
+      words: entry.conflict.why,
+      blocks: true,
+    });
   }
   return checkPace(next, kept);
 }
@@ -93,7 +100,8 @@ export function applyEntry(state: JobState, entry: Entry | Recorded): JobState {
 /** Who did it, who helped, and who is at work now. */
 function noteAuthor(state: JobState, kept: Kept): JobState {
   if (kept.by === 'workshop') return state;
-  const people = state.people[kept.by] === kept.name ? state.people : { ...state.people, [kept.by]: kept.name };
+  const people =
+    state.people[kept.by] === kept.name ? state.people : { ...state.people, [kept.by]: kept.name };
   const isWork = kept.kind !== 'signed' && kept.kind !== 'witnessed' && kept.kind !== 'countersigned';
   const working =
     isWork && (state.working?.by !== kept.by || state.working.device !== kept.device)
@@ -133,7 +141,9 @@ function applyKind(state: JobState, entry: Entry, kept: Kept, step: PlanStep | u
     case 'deviation-disposed':
       return applyDisposition(state, entry, kept);
     case 'measuring-again':
-      return step?.kind === 'gauge' ? reopenRange(state, step, step.measureAgainFrom, 'measured again') : state;
+      return step?.kind === 'gauge'
+        ? reopenRange(state, step, step.measureAgainFrom, 'measured again')
+        : state;
     case 'chose-shells':
       return step ? voidMeasurement(settleSteps(state, [step.id]), step) : state;
     default:
@@ -160,6 +170,12 @@ function applyToJob(state: JobState, entry: Entry, kept: Kept): JobState | undef
       const { class: criticalClass, words, blocks, rod } = entry.data;
       return raiseDeviation(state, kept, { class: criticalClass, words, blocks, rod });
     }
+    case 'countersigned': {
+      const countersigns = state.countersigns.map((asked) =>
+        asked.correction === entry.data.of ? { ...asked, countersignedBy: entry.by } : asked,
+      );
+      return { ...state, countersigns };
+    }
     case 'ended-unfinished':
       return { ...state, phase: 'ended unfinished' };
     case 'tablet-lost':
@@ -182,12 +198,23 @@ function applyCorrection(state: JobState, entry: EntryOf<'corrected'>, kept: Kep
   const { of, data } = entry.data;
   const stepId = stepOfEntry(state, of);
   // The data was checked against its kind before it was recorded; the fold takes what stands there.
-  let next = patchEntry(state, of, { data: data as Kept['data'], correctedBy: kept.id });
-  if (entry.data.class === 'clerical') {
-    next = remark(next, kept, 'countersign', `Corrected under a signature: ${entry.data.reason}`);
-  }
+  let next = patchEntry(state, of, { data, correctedBy: kept.id });
   if (stepId === undefined) return next;
-  return settleSteps(addAuthors(next, stepId, [kept.by, ...kept.with]), [stepId]);
+  if (entry.data.class === 'clerical' && isUnderSignature(state, stepId)) {
+    const asked = { correction: kept.id, step: stepId, reason: entry.data.reason, by: kept.by };
+    next = { ...next, countersigns: [...next.countersigns, asked] };
+  }
+  next = settleSteps(addAuthors(next, stepId, [kept.by, ...kept.with]), [stepId]);
+  const step = findStep(next.plan, stepId);
+  const isOtherShells = step?.kind === 'choose-shells' && entry.data.class === 'substantive';
+  return isOtherShells ? voidMeasurement(next, step) : next;
+}
+
+function isUnderSignature(state: JobState, stepId: string): boolean {
+  return state.signatures.some((signature) => {
+    const hold = findStep(state.plan, signature.step);
+    return signature.reopened === undefined && hold?.kind === 'hold' && hold.covers.includes(stepId);
+  });
 }
 
 function applyTakeBack(state: JobState, entry: EntryOf<'taken-back'>, kept: Kept): JobState {
@@ -195,14 +222,22 @@ function applyTakeBack(state: JobState, entry: EntryOf<'taken-back'>, kept: Kept
   const stepId = stepOfEntry(state, of);
   let next = patchEntry(state, of, { takenBack: which });
   if (stepId === undefined) return next;
-  next = { ...next, effects: which === 'done, but wrong' ? next.effects : next.effects.filter((e) => e.entry !== of) };
+  next = {
+    ...next,
+    effects: which === 'done, but wrong' ? next.effects : next.effects.filter((e) => e.entry !== of),
+  };
   next = settleSteps(addAuthors(next, stepId, [kept.by]), [stepId]);
   const step = findStep(next.plan, stepId);
   if (which === 'done, but wrong' && step?.kind !== 'tighten') {
     next = raiseDeviation(
       next,
       { ...kept, step: stepId },
-      { rule: 'done-wrong', class: step?.class ?? 'C', words: `Done, but wrong: ${step?.title ?? stepId}`, blocks: true },
+      {
+        rule: 'done-wrong',
+        class: step?.class ?? 'C',
+        words: `Done, but wrong: ${step?.title ?? stepId}`,
+        blocks: true,
+      },
     );
   }
   return next;
@@ -223,7 +258,8 @@ function applyRevocation(state: JobState, entry: EntryOf<'revoked'>, kept: Kept)
 function applyDisposition(state: JobState, entry: EntryOf<'deviation-disposed'>, kept: Kept): JobState {
   const { deviation: id, disposition, reason } = entry.data;
   const deviation = state.deviations.find((d) => d.id === id);
-  if (!deviation) return remark(state, kept, 'unknown-deviation', 'A disposition names a deviation that is not there.');
+  if (!deviation)
+    return remark(state, kept, 'unknown-deviation', 'A disposition names a deviation that is not there.');
   const disposed = { entry: kept.id, by: kept.by, name: kept.name, at: kept.at, disposition, reason };
   const next: JobState = {
     ...state,
@@ -259,7 +295,11 @@ function voidMeasurement(state: JobState, choose: PlanStep): JobState {
   const from = order.findIndex((step) => step.id === choose.id);
   const to = order.findIndex((step) => step.kind === 'gauge');
   const why = 'other shells were chosen';
-  return voidSteps(voidReadings(state, choose.rod, why), order.slice(from + 1, to + 1).map((s) => s.id), why);
+  return voidSteps(
+    voidReadings(state, choose.rod, why),
+    order.slice(from + 1, to + 1).map((s) => s.id),
+    why,
+  );
 }
 
 function voidReadings(state: JobState, rod: number | undefined, why: string): JobState {
@@ -270,7 +310,12 @@ function voidReadings(state: JobState, rod: number | undefined, why: string): Jo
     ...state,
     rods: {
       ...state.rods,
-      [present.rod]: { ...present, front: undefined, rear: undefined, voidReadings: [...present.voidReadings, ...voided] },
+      [present.rod]: {
+        ...present,
+        front: undefined,
+        rear: undefined,
+        voidReadings: [...present.voidReadings, ...voided],
+      },
     },
   };
 }
@@ -280,7 +325,10 @@ function voidSteps(state: JobState, stepIds: string[], why: string): JobState {
   for (const id of stepIds) {
     const step = steps[id];
     if (!step) continue;
-    steps[id] = { ...step, entries: step.entries.map((kept) => (kept.voided ? kept : { ...kept, voided: why })) };
+    steps[id] = {
+      ...step,
+      entries: step.entries.map((kept) => (kept.voided ? kept : { ...kept, voided: why })),
+    };
   }
   return settleSteps({ ...state, steps }, stepIds);
 }

@@ -2,15 +2,23 @@
  * A journal of one job for tests of the rules: it makes entries with growing numbers and times, asks
  * mayRecord, and folds. No signatures, no storage; `perform` does the sensible thing on any kind of step.
  */
-import type { Entry, EntryData, EntryKind } from '@/domain/entry';
-import { applyEntry, emptyJob, evidenceFor, mayRecord, nextSteps, nextTightening, whyNot } from '@/domain/job';
+import type { Entry, EntryData, EntryKind, Recorded } from '@/domain/entry';
+import {
+  applyEntry,
+  emptyJob,
+  evidenceFor,
+  mayRecord,
+  nextSteps,
+  nextTightening,
+  whyNot,
+} from '@/domain/job';
 import { markCount } from '@/domain/job-signing-rules';
 import type { JobState, Verdict, Workshop } from '@/domain/job-state';
 import { entryForAction } from '@/domain/job-tightening';
 import { findStep, type Plan, type PlanStep } from '@/domain/plan';
 
 /** The workshop of the tests: a technician, another, a supervisor, a quality lead, and two tools in date. */
-export function buildWorkshop(over: Partial<Workshop> = {}): Workshop {
+export function buildWorkshop(): Workshop {
   const tool = { cycleLimit: null, cyclesUsed: null, state: 'in use' as const, dueOn: '2026-12-31' };
   return {
     seq: 9,
@@ -23,9 +31,37 @@ export function buildWorkshop(over: Partial<Workshop> = {}): Workshop {
       { id: 'gone', name: 'G. One', roles: ['technician'], active: false },
     ],
     tools: [
-      { ...tool, id: 'w1', name: 'Torque wrench', kind: 'torque wrench', serial: 'TW-1', rangeLow: '2', rangeHigh: '60', unit: 'N·m' },
-      { ...tool, id: 'a1', name: 'Angle gauge', kind: 'angle gauge', serial: 'AG-1', rangeLow: null, rangeHigh: null, unit: null },
-      { ...tool, id: 'late', name: 'Old wrench', kind: 'torque wrench', serial: 'TW-0', rangeLow: '2', rangeHigh: '60', unit: 'N·m', dueOn: '2026-01-31' },
+      {
+        ...tool,
+        id: 'w1',
+        name: 'Torque wrench',
+        kind: 'torque wrench',
+        serial: 'TW-1',
+        rangeLow: '2',
+        rangeHigh: '60',
+        unit: 'N·m',
+      },
+      {
+        ...tool,
+        id: 'a1',
+        name: 'Angle gauge',
+        kind: 'angle gauge',
+        serial: 'AG-1',
+        rangeLow: null,
+        rangeHigh: null,
+        unit: null,
+      },
+      {
+        ...tool,
+        id: 'late',
+        name: 'Old wrench',
+        kind: 'torque wrench',
+        serial: 'TW-0',
+        rangeLow: '2',
+        rangeHigh: '60',
+        unit: 'N·m',
+        dueOn: '2026-01-31',
+      },
     ],
   };
 }
@@ -91,7 +127,8 @@ export class Journal {
   record<K extends EntryKind>(kind: K, data: EntryData<K>, options: Options = {}): Entry {
     const entry = this.draft(kind, data, options);
     const verdict = mayRecord(this.state, entry, this.workshop);
-    if (!verdict.ok) throw new Error(`${kind} on ${entry.step ?? 'no step'}: ${verdict.why} (${verdict.code})`);
+    if (!verdict.ok)
+      throw new Error(`${kind} on ${entry.step ?? 'no step'}: ${verdict.why} (${verdict.code})`);
     return this.fold(entry);
   }
 
@@ -141,7 +178,11 @@ export class Journal {
         this.record('placed', {}, on);
         break;
       case 'count':
-        this.record('counted', { count: step.side === 'out' ? 12 : (this.state.tallies[step.tally]?.out ?? 0) }, on);
+        this.record(
+          'counted',
+          { count: step.side === 'out' ? 12 : (this.state.tallies[step.tally]?.out ?? 0) },
+          on,
+        );
         break;
       case 'inspect':
         this.record('inspected', { checks }, on);
@@ -154,7 +195,11 @@ export class Journal {
         break;
       }
       case 'turn':
-        this.record('turned', step.toAngle === undefined ? { fullTurns: step.fullTurns ?? 1 } : { toAngle: step.toAngle }, on);
+        this.record(
+          'turned',
+          step.toAngle === undefined ? { fullTurns: step.fullTurns ?? 1 } : { toAngle: step.toAngle },
+          on,
+        );
         break;
       case 'choose-shells': {
         const grade = this.plan.engine.shells.standard;
@@ -176,7 +221,17 @@ export class Journal {
         break;
       }
       case 'photograph':
-        this.record('photographed', { photo: 'b'.repeat(64), bytes: 10, type: 'image/jpeg', from: 'camera here', subject: step.subject }, on);
+        this.record(
+          'photographed',
+          {
+            photo: 'b'.repeat(64),
+            bytes: 10,
+            type: 'image/jpeg',
+            from: 'camera here',
+            subject: step.subject,
+          },
+          on,
+        );
         break;
       case 'watch':
         this.record('watch-started', {}, on);
@@ -184,8 +239,16 @@ export class Journal {
         this.record('watch-ended', { early: false }, { ...on, afterMs: Number(step.minutes) * 60_000 });
         break;
       case 'drive':
-        this.record('drive-started', { odometer: '1000', unit: 'km', checks: step.before.map(({ id }) => ({ id, ok: true })) }, on);
-        this.record('drive-ended', { odometer: '1025', unit: 'km', checks: step.after.map(({ id }) => ({ id, ok: true })) }, on);
+        this.record(
+          'drive-started',
+          { odometer: '1000', unit: 'km', checks: step.before.map(({ id }) => ({ id, ok: true })) },
+          on,
+        );
+        this.record(
+          'drive-ended',
+          { odometer: '1025', unit: 'km', checks: step.after.map(({ id }) => ({ id, ok: true })) },
+          on,
+        );
         break;
       case 'hold':
         this.sign(stepId);
@@ -209,12 +272,20 @@ export class Journal {
   /** The supervisor accepts the newest deviation as it is. */
   acceptLast(reason: string): Entry {
     const deviation = this.state.deviations.at(-1)?.id ?? 'none';
-    return this.record('deviation-disposed', { deviation, disposition: 'accept as is', reason }, { by: 'sup' });
+    return this.record(
+      'deviation-disposed',
+      { deviation, disposition: 'accept as is', reason },
+      { by: 'sup' },
+    );
   }
 
   /** Both ends of a rod read from the card. */
   gauge(stepId: string, front: string, rear: string, options: Options = {}): this {
-    for (const [end, clearance] of [['front', front], ['rear', rear]] as const) this.gaugeEnd(stepId, end, clearance, options);
+    for (const [end, clearance] of [
+      ['front', front],
+      ['rear', rear],
+    ] as const)
+      this.gaugeEnd(stepId, end, clearance, options);
     return this;
   }
 
@@ -222,7 +293,11 @@ export class Journal {
     stepId: string,
     end: 'front' | 'rear',
     clearance: string,
-    { again = 'first', uncertainty = '0.005', ...options }: Options & { again?: 'first' | 'read again'; uncertainty?: string } = {},
+    {
+      again = 'first',
+      uncertainty = '0.005',
+      ...options
+    }: Options & { again?: 'first' | 'read again'; uncertainty?: string } = {},
   ): Entry {
     return this.record(
       'gauged',
@@ -276,9 +351,16 @@ export class Journal {
     const entry = this.draft('signed', this.signedData(stepId), { by: 'sup', ...rest, step: stepId });
     const verdict = mayRecord(this.state, entry, this.workshop);
     if (!verdict.ok) throw new Error(`signed on ${stepId}: ${verdict.why}`);
-    const pin = checked ? { pin: { keyId: 'k1', checkedAt: entry.at } } : {};
-    const seq = this.entries.length + 1;
-    return this.fold(checked ? ({ ...entry, ...pin, seq, recordedAt: entry.at, prev: '0'.repeat(64), clockOffsetMs: 0 } as Entry) : entry);
+    if (!checked) return this.fold(entry);
+    const recorded: Recorded = {
+      ...entry,
+      seq: this.entries.length + 1,
+      recordedAt: entry.at,
+      prev: '0'.repeat(64),
+      clockOffsetMs: 0,
+      pin: { keyId: 'k1', checkedAt: entry.at },
+    };
+    return this.fold(recorded);
   }
 
   why(stepId: string): string {
