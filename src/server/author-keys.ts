@@ -1,10 +1,11 @@
 import { createPublicKey } from 'node:crypto';
+import { authorKeyId } from '@/domain/trail';
 import { type Actor, hasRole } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
+import { sha256Hex } from './crypto';
 import type { Db, Trx } from './database';
 import type { Device } from './devices';
 import { AppError, notFound } from './errors';
-import { keyId } from './keys';
 import { appendWorkshopEntry } from './workshop-trail';
 
 /** The public half of the key with which one person signs their entries on one tablet. */
@@ -29,7 +30,7 @@ export async function enrolKey(
   app: { clock: Clock; ids: Ids },
 ): Promise<AuthorKey> {
   const point = requirePoint(publicKey);
-  const id = keyId(point);
+  const id = authorKeyId(point, sha256Hex);
   const known = await findKey(trx, id);
   if (known !== undefined) {
     if (known.person === actor.personId && known.device === device.id && known.revokedAt === null)

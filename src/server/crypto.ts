@@ -6,16 +6,11 @@ export function sha256Hex(bytes: string | Uint8Array): string {
   return createHash('sha256').update(bytes).digest('hex');
 }
 
-/** The RFC 8785 (JCS) form of a JSON value. */
+/** The RFC 8785 (JCS) form of any JSON value, also of one that may not enter a trail. */
 export function canonicalJson(value: unknown): string {
   const text = serialize(value);
   if (text === undefined) throw new TypeError('Only a JSON value has a canonical form.');
   return text;
-}
-
-/** The SHA-256 of a value's canonical form, in lower-case hex. */
-export function hashJson(value: unknown): string {
-  return sha256Hex(canonicalJson(value));
 }
 
 /** A secret that nobody can guess: 32 random bytes, base64url. */

@@ -19,6 +19,7 @@ import {
 } from 'node:fs';
 import path from 'node:path';
 import * as z from 'zod';
+import { authorKeyId } from '@/domain/trail';
 import { newSecret, sha256Hex } from './crypto';
 
 /*
@@ -101,18 +102,13 @@ export function signWithHeadKey(key: HeadKey, bytes: string | Uint8Array): strin
   );
 }
 
-/** The id of a public key: the first 16 hex digits of the SHA-256 of its raw point. */
-export function keyId(rawPoint: Uint8Array): string {
-  return sha256Hex(rawPoint).slice(0, 16);
-}
-
 function makeSealingFile(madeAt: string): z.infer<typeof sealingFile> {
   const pair = createECDH('prime256v1');
   pair.generateKeys();
   // createECDH drops leading zeros of the private scalar; the stored form is always 32 bytes.
   const privateKey = Buffer.concat([Buffer.alloc(32), pair.getPrivateKey()]).subarray(-32);
   const point = pair.getPublicKey();
-  const id = keyId(point);
+  const id = authorKeyId(point, sha256Hex);
   return {
     current: id,
     keys: [

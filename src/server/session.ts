@@ -15,6 +15,8 @@ export interface SignedIn {
   name: string;
   roles: Actor['roles'];
   isActive: boolean;
+  /** When the session ends unless it is used before: RFC 3339, UTC. */
+  sessionUntil: string;
   /** The session's token; it stays inside the server. */
   token: string;
 }
@@ -68,15 +70,16 @@ export async function listSignedIn(app: App, request: Request): Promise<SignedIn
     .orderBy('printed_name')
     .execute();
   return people.flatMap((person) => {
-    const token = sessions.find(({ user }) => user.id === person.id)?.session.token;
-    if (token === undefined) return [];
+    const session = sessions.find(({ user }) => user.id === person.id)?.session;
+    if (session === undefined) return [];
     return [
       {
         personId: person.id,
         name: person.printed_name,
         roles: parseRoles(person.roles),
         isActive: active?.user.id === person.id,
-        token,
+        sessionUntil: session.expiresAt.toISOString(),
+        token: session.token,
       },
     ];
   });

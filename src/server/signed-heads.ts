@@ -1,6 +1,7 @@
+import { headMessage } from '@/domain/trail';
+import type { SignedHead } from '@/domain/trail-export';
 import type { Actor } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
-import { canonicalJson } from './crypto';
 import type { Db, Trx } from './database';
 import { notFound } from './errors';
 import { type Keys, signWithHeadKey } from './keys';
@@ -8,18 +9,6 @@ import { appendWorkshopEntry } from './workshop-trail';
 
 /** The trail's name of the workshop's own trail; every other trail is named by its job. */
 export const WORKSHOP_TRAIL = 'workshop';
-
-/** A trail's newest hash at a moment, signed, so that the trail cannot be cut short or rewritten unseen. */
-export interface SignedHead {
-  trail: string;
-  seq: number;
-  hash: string;
-  at: string;
-  /** The fingerprint of the key that signed. */
-  key: string;
-  /** Ed25519 over the JCS form of the other fields, base64url. */
-  signature: string;
-}
 
 /** Signs the newest entry of a trail; a head that is signed already is given out again. */
 export async function signHead(
@@ -44,7 +33,7 @@ export async function signHead(
     at: stamp(app.clock),
     key: app.keys.head.fingerprint,
   };
-  const head = { ...unsigned, signature: signWithHeadKey(app.keys.head, canonicalJson(unsigned)) };
+  const head = { ...unsigned, signature: signWithHeadKey(app.keys.head, headMessage(unsigned)) };
   await trx.insertInto('signed_head').values(head).execute();
   // The workshop's trail remembers the heads of jobs, so a job cannot vanish; its own head would never end.
   if (trail !== WORKSHOP_TRAIL)

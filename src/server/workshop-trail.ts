@@ -1,6 +1,9 @@
+import { canonicalJson } from '@/domain/canonical';
+import { chainHash, contentHash } from '@/domain/trail';
+import { NO_PREVIOUS } from '@/domain/trail-chain';
 import { type Actor, requireRole } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
-import { canonicalJson, hashJson, sha256Hex } from './crypto';
+import { sha256Hex } from './crypto';
 import type { Db, Trx } from './database';
 
 /*
@@ -56,9 +59,6 @@ export interface WorkshopEntry {
   prev: string;
 }
 
-/** The previous hash of the first entry of any trail. */
-export const NO_PREVIOUS = '0'.repeat(64);
-
 /** Appends to the workshop trail; must run in the transaction that makes the change it tells of. */
 export async function appendWorkshopEntry(
   trx: Trx,
@@ -82,7 +82,6 @@ export async function appendWorkshopEntry(
     at,
     data: entry.data,
   };
-  requireHashable(authored, '');
   const recorded: WorkshopEntry = {
     ...authored,
     seq: (last?.seq ?? 0) + 1,
@@ -90,7 +89,7 @@ export async function appendWorkshopEntry(
     prev: last?.hash ?? NO_PREVIOUS,
   };
   const body = canonicalJson(recorded);
-  const hash = sha256Hex(body);
+  const hash = chainHash(recorded, sha256Hex);
   await trx
     .insertInto('workshop_entry')
     .values({
@@ -100,7 +99,7 @@ export async function appendWorkshopEntry(
       by_person: recorded.by,
       at,
       body,
-      content_hash: hashJson(authored),
+      content_hash: contentHash(authored, sha256Hex),
       hash,
     })
     .execute();
@@ -137,17 +136,4 @@ export async function listWorkshopEntries(
     hash,
     entry: JSON.parse(body) as Record<string, unknown>,
   }));
-}
-
-function requireHashable(value: unknown, path: string): void {
-  if (typeof value === 'number' && !Number.isSafeInteger(value)) {
-    throw new RangeError(`${path} is ${value}: a hashed entry holds no numbers but safe integers.`);
-  }
-  if (typeof value === 'string' && (value !== value.normalize('NFC') || /\p{Surrogate}/u.test(value))) {
-    throw new RangeError(`${path} is not well-formed NFC text, so it cannot be hashed.`);
-  }
-  if (value === undefined) throw new RangeError(`${path} is undefined, so it cannot be hashed.`);
-  if (typeof value === 'object' && value !== null) {
-    for (const [key, item] of Object.entries(value)) requireHashable(item, `${path}/${key}`);
-  }
 }

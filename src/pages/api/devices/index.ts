@@ -22,8 +22,13 @@ export const POST = endpoint(
     summary: 'Enrol this browser as a tablet; its credential is answered this once',
     who: 'session',
     body: z.strictObject({ id: uuid, name: line(60) }),
-    answer: z.strictObject({ device: deviceAnswer, credential: z.string() }),
+    answer: z.strictObject({ id: z.string(), credential: z.string() }),
     status: 201,
   },
-  async ({ app, actor, body }) => app.db.transaction().execute((trx) => enrolDevice(trx, actor, body, app)),
+  async ({ app, actor, body }) => {
+    const { device, credential } = await app.db
+      .transaction()
+      .execute((trx) => enrolDevice(trx, actor, body, app));
+    return { id: device.id, credential };
+  },
 );

@@ -22,9 +22,14 @@ export const POST = endpoint(
       'Enrol the key with which you sign your entries on this tablet; again with the same key does no harm',
     who: 'session and tablet',
     body: z.strictObject({ publicKey: z.string().max(100) }),
-    answer: keyAnswer,
+    /** `workshop`: the number of the workshop entry that enrolled it. */
+    answer: z.strictObject({ id: z.string(), workshop: z.int() }),
     status: 201,
   },
-  async ({ app, actor, device, body }) =>
-    app.db.transaction().execute((trx) => enrolKey(trx, actor, device, body.publicKey, app)),
+  async ({ app, actor, device, body }) => {
+    const key = await app.db
+      .transaction()
+      .execute((trx) => enrolKey(trx, actor, device, body.publicKey, app));
+    return { id: key.id, workshop: key.workshopSeq };
+  },
 );
