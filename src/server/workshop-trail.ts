@@ -39,6 +39,7 @@ export const WORKSHOP_KINDS = [
   'document-withdrawn',
   'job-opened',
   'head-signed',
+  'exported',
   'erased',
   'restored',
 ] as const;
