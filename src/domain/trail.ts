@@ -1,0 +1,253 @@
+import { bytesOf, canonicalJson, hashJson, type Sha256 } from '@/domain/canonical';
+import { isMadeByServer, verifyChain, verifyCounts, verifyWorkshopEntries } from '@/domain/trail-chain';
+import {
+  BrokenTrailError,
+  bodyTextOf,
+  openExport,
+  requireBytes,
+  requireExport,
+  requireWhole,
+  type SignedHead,
+  type TrailBody,
+} from '@/domain/trail-export';
+
+/*
+ * What always holds of a trail: each entry's hash covers the hash before it, every entry that a person made is
+ * signed by that person's key for that tablet, and one export has one text. Hashing and checking of signatures
+ * are passed in, so that the same check runs in a browser, on the server and on the command line.
+ */
+
+/** What the server adds to an entry when it records it. */
+const SERVER_FIELDS = ['seq', 'recordedAt', 'prev', 'clockOffsetMs', 'pin', 'conflict'] as const;
+
+export type ServerField = (typeof SERVER_FIELDS)[number];
+
+/** Checks one signature; false for a key or a signature that can not be one, and never an error for them. */
+export type VerifySignature = (
+  publicKey: Uint8Array<ArrayBuffer>,
+  message: Uint8Array<ArrayBuffer>,
+  signature: Uint8Array<ArrayBuffer>,
+) => boolean | Promise<boolean>;
+
+/** What a verification is done with, and what to compare with if it is at hand from elsewhere. */
+export interface TrailChecks {
+  /** The hash of a signed head that left the workshop earlier. */
+  head?: string | undefined;
+  /** The fingerprint of the workshop's key, known from elsewhere. */
+  key?: string | undefined;
+  sha256: Sha256;
+  /** HMAC-SHA-256 as lower-case hex. */
+  hmacSha256: (key: Uint8Array, message: Uint8Array) => string;
+  verifyEd25519: VerifySignature;
+  /** ECDSA P-256 with SHA-256; the key a raw uncompressed point, the signature r and s of 32 bytes each. */
+  verifyP256: VerifySignature;
+}
+
+/** The outcome of a verification. */
+export type TrailVerdict =
+  | {
+      ok: true;
+      entries: number;
+      signatures: number;
+      heads: number;
+      /** The fingerprint of the workshop's key that signed the export. */
+      key: string;
+      keyCompared: boolean;
+      headCompared: boolean;
+      notes: string[];
+    }
+  | { ok: false; brokenAt: string; why: string }
+  | { ok: false; notATrail: true; why: string };
+
+/** The content hash of an entry as its author made it: hex SHA-256 of its canonical form. */
+export function contentHash(entry: object, sha256: Sha256): string {
+  return hashJson(entry, sha256);
+}
+
+/** The chain hash of an entry as the server recorded it; it is the `prev` of the next one. */
+export function chainHash(recorded: object, sha256: Sha256): string {
+  return hashJson(recorded, sha256);
+}
+
+/** What the author made: a recorded entry without the fields that the server added. */
+export function contentOf<T extends object>(recorded: T): Omit<T, ServerField> {
+  const isServers = (name: string): boolean => (SERVER_FIELDS as readonly string[]).includes(name);
+  const kept = Object.entries(recorded).filter(([name]) => !isServers(name));
+  return Object.fromEntries(kept) as Omit<T, ServerField>;
+}
+
+/** The short name of an author's key: the first 16 hex characters of SHA-256 of its 65-byte point. */
+export function authorKeyId(publicKey: Uint8Array, sha256: Sha256): string {
+  return sha256(publicKey).slice(0, 16);
+}
+
+/** What an author's key signs: the ASCII bytes of the entry's content hash. */
+export function authorMessage(content: string): Uint8Array<ArrayBuffer> {
+  return bytesOf(content);
+}
+
+/** What the workshop's key signs for a head: the canonical form of the head without its signature. */
+export function headMessage({
+  trail,
+  seq,
+  hash,
+  at,
+  key,
+}: Omit<SignedHead, 'signature'>): Uint8Array<ArrayBuffer> {
+  return bytesOf(canonicalJson({ trail, seq, hash, at, key }));
+}
+
+/** What the workshop's key signs for an export: the ASCII bytes of the hex SHA-256 of the body's form. */
+export function exportMessage(body: object, sha256: Sha256): Uint8Array<ArrayBuffer> {
+  return bytesOf(hashJson(body, sha256));
+}
+
+/** What the trail keeps of a value that identifies somebody: HMAC-SHA-256 of its composed text under its salt. */
+export function identityCommitment(
+  { value, salt }: { value: string; salt: string },
+  hmacSha256: TrailChecks['hmacSha256'],
+): string {
+  const key = Uint8Array.from(salt.match(/../g) ?? [], (pair) => Number.parseInt(pair, 16));
+  return hmacSha256(key, bytesOf(value.normalize('NFC')));
+}
+
+/**
+ * Verifies an exported trail, its text or better its bytes: that not a byte differs from the form it was signed
+ * in, that nothing is missing between its entries, and that who and which plan it names is proved by it.
+ */
+export async function verifyTrail(file: string | Uint8Array, checks: TrailChecks): Promise<TrailVerdict> {
+  requireHex(checks.key, 'key fingerprint');
+  requireHex(checks.head, 'head');
+  const opened = openExport(file);
+  if ('why' in opened) {
+    return opened.isTrail ? broken('the file', opened.why) : { ok: false, notATrail: true, why: opened.why };
+  }
+  try {
+    return await verifyOpened(opened, checks);
+  } catch (error) {
+    if (error instanceof BrokenTrailError) return broken(error.brokenAt, error.why);
+    throw error;
+  }
+}
+
+function broken(brokenAt: string, why: string): TrailVerdict {
+  return { ok: false, brokenAt, why };
+}
+
+async function verifyOpened(
+  opened: { text: string; parsed: unknown },
+  checks: TrailChecks,
+): Promise<TrailVerdict> {
+  const whole = requireExport(opened);
+  const { body } = whole;
+  const workshopKey = requireBytes(whole.publicKey, 32, "the workshop's key");
+  const key = checks.sha256(workshopKey);
+  // An edit breaks the signature over the whole too; looking inside first says where the edit was made.
+  const isSigned = await checks.verifyEd25519(
+    workshopKey,
+    bytesOf(checks.sha256(bytesOf(bodyTextOf(opened.text, whole)))),
+    requireBytes(whole.signature, 64, "the export's signature"),
+  );
+  verifyChain(body, checks.sha256);
+  const notes = verifyCounts(body);
+  verifyWorkshopEntries(body, checks.sha256);
+  const signatures = await verifyAuthors(body, checks);
+  await verifyHeads(body, { id: key, bytes: workshopKey }, checks);
+  notes.push(...verifyIdentity(body, checks));
+  requireWhole(isSigned, "the export's signature", 'It does not belong to this text and key.');
+  notes.push(...compare(body, key, checks));
+  const { length: entries } = body.entries;
+  const compared = { keyCompared: checks.key !== undefined, headCompared: checks.head !== undefined };
+  return { ok: true, entries, signatures, heads: body.heads.length, key, ...compared, notes };
+}
+
+/** Every entry but the server's own is signed by its author's key for its tablet; gives how many were. */
+async function verifyAuthors({ entries, keys }: TrailBody, checks: TrailChecks): Promise<number> {
+  const known = new Map(keys.map((key) => [key.id, key]));
+  for (const key of keys) {
+    const at = `key ${key.id}`;
+    const point = requireBytes(key.publicKey, 65, at);
+    requireWhole(known.get(key.id) === key, at, 'It is there twice.');
+    requireWhole(authorKeyId(point, checks.sha256) === key.id, at, 'Its name is not that of its content.');
+  }
+  let count = 0;
+  for (const { recorded, signature, key: id } of entries) {
+    const at = `entry ${recorded.seq}`;
+    if (isMadeByServer(recorded)) {
+      requireWhole(signature === null && id === null, at, 'The server made it, and yet it is signed.');
+      continue;
+    }
+    requireWhole(signature !== null && id !== null, at, "It carries no author's signature.");
+    const key = known.get(id);
+    requireWhole(key !== undefined, at, 'The key that it is signed with is not in the file.');
+    const isAuthors = key.person === recorded.by && key.device === recorded.device;
+    requireWhole(isAuthors, at, 'The key that it is signed with belongs to another person or tablet.');
+    const message = authorMessage(contentHash(contentOf(recorded), checks.sha256));
+    const point = requireBytes(key.publicKey, 65, at);
+    const holds = await checks.verifyP256(point, message, requireBytes(signature, 64, at));
+    requireWhole(holds, at, "Its author's signature does not hold.");
+    count += 1;
+  }
+  return count;
+}
+
+/** Each signed head names an entry that is there with that hash, and is signed by the workshop's key. */
+async function verifyHeads(
+  { heads, entries, workshop, job }: TrailBody,
+  key: { id: string; bytes: Uint8Array<ArrayBuffer> },
+  { verifyEd25519 }: TrailChecks,
+): Promise<void> {
+  for (const head of heads) {
+    const isWorkshops = head.trail === 'workshop';
+    const at = `the ${isWorkshops ? "workshop's " : ''}head at entry ${head.seq}`;
+    requireWhole(isWorkshops || head.trail === job.id, at, 'It belongs to another job.');
+    // Of the workshop's trail the file holds only what the job names, so the entry may be absent.
+    const hash = isWorkshops
+      ? (workshop.find(({ recorded }) => recorded.seq === head.seq)?.hash ?? head.hash)
+      : entries[head.seq - 1]?.hash;
+    requireWhole(hash === head.hash, at, 'The trail has another entry in this place, or none.');
+    requireWhole(head.key === key.id, at, 'It is signed with a key that is not in the file.');
+    const holds = await verifyEd25519(key.bytes, headMessage(head), requireBytes(head.signature, 64, at));
+    requireWhole(holds, at, 'Its signature does not hold.');
+  }
+}
+
+/** Who and which vehicle: each value is the one that the job was opened with, was erased, or is withheld. */
+function verifyIdentity({ entries, identity }: TrailBody, { hmacSha256 }: TrailChecks): string[] {
+  const opened = entries.find(({ recorded }) => recorded.kind === 'opened')?.recorded.data.commitments;
+  const commitments = typeof opened === 'object' && opened !== null ? Object.entries(opened) : [];
+  const values = new Map(Object.entries(identity));
+  const notes: string[] = [];
+  for (const [field, commitment] of commitments) {
+    const [at, value] = [`identity: ${field}`, values.get(field)];
+    requireWhole(value !== undefined, at, 'It is neither in the file nor erased or withheld.');
+    values.delete(field);
+    if (value === 'erased' || value === 'withheld') notes.push(`${field}: ${value}.`);
+    else {
+      const isCommitted = identityCommitment(value, hmacSha256) === commitment;
+      requireWhole(isCommitted, at, 'It is not the value that the job was opened with.');
+    }
+  }
+  for (const field of values.keys())
+    requireWhole(false, `identity: ${field}`, 'The trail knows nothing of it.');
+  return notes;
+}
+
+/** Compares with the key and the head that the reader has from elsewhere; says where there was none. */
+function compare({ entries }: TrailBody, key: string, checks: TrailChecks): string[] {
+  const isKey = checks.key === undefined || checks.key === key;
+  requireWhole(isKey, "the workshop's key", 'It is not the key whose fingerprint you hold.');
+  const notes = checks.key === undefined ? ['Key not compared.'] : [];
+  if (checks.head === undefined) return [...notes, 'Head not compared.'];
+  const at = entries.findIndex(({ hash }) => hash === checks.head);
+  const cut = 'The trail has no such entry: it was cut short or rewritten.';
+  requireWhole(at !== -1, 'the head that you hold', cut);
+  const later = entries.length - 1 - at;
+  return later === 0 ? notes : [...notes, `${later} more came after the head that you hold.`];
+}
+
+function requireHex(text: string | undefined, name: string): void {
+  if (text !== undefined && !/^[0-9a-f]{64}$/.test(text)) {
+    throw new RangeError(`The ${name} to compare with must be 64 characters 0 to 9 and a to f.`);
+  }
+}
