@@ -1,0 +1,75 @@
+import { once } from 'node:events';
+import type { Server } from 'node:http';
+import path from 'node:path';
+import { pathToFileURL } from 'node:url';
+import { type App, closeApp, openApp, provideApp } from '@/server/compose';
+import { readSettings, SettingsError, type Settings } from '@/server/settings';
+import { createHttpServer, type PageHandler } from './http/http-server';
+import { readStaticFiles } from './http/static-files';
+
+/*
+ * The server process. Astro's build also builds this file (see entry-points.mjs), into the same module graph
+ * as the pages: one copy of every module, so the pages and this file hold the same open database, and Node
+ * runs it without a loader.
+ */
+
+const DRAIN_MS = 10_000;
+
+/** Opens the data folder, serves, and returns when the server has been told to stop and has drained. */
+export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void> {
+  const settings = readSettings(env, root);
+  const built = path.join(root, 'dist');
+  const app = await openApp(settings);
+  provideApp(app);
+  try {
+    const entry = pathToFileURL(path.join(built, 'server', 'entry.mjs')).href;
+    const { handler } = (await import(/* @vite-ignore */ entry)) as { handler: PageHandler };
+    const files = await readStaticFiles(path.join(built, 'client'));
+    const server = createHttpServer({ settings, files, handler });
+    await listen(server, settings);
+    greet(settings, app);
+    await stopSignal();
+    await drain(server);
+  } finally {
+    await closeApp(app);
+  }
+}
+
+async function listen(server: Server, settings: Settings): Promise<void> {
+  server.listen(settings.port, settings.host);
+  try {
+    await once(server, 'listening');
+  } catch (error) {
+    throw new SettingsError(whyNotListening(error, settings), { cause: error });
+  }
+}
+
+function whyNotListening(error: unknown, { port, host }: Settings): string {
+  const code = error instanceof Error && 'code' in error ? error.code : undefined;
+  if (code === 'EADDRINUSE')
+    return `Port ${port} is taken by another program. Stop that one, or set PORT to a free port.`;
+  if (code === 'EACCES')
+    return `Port ${port} may not be used by this account. Set PORT to a number above 1023.`;
+  return `The server cannot listen at ${host}. Set HOST to an address of this machine, or leave it out.`;
+}
+
+function greet(settings: Settings, _app: App): void {
+  console.log(`Witnessmark is served at ${settings.publicUrl}`);
+}
+
+async function stopSignal(): Promise<void> {
+  await new Promise<void>((resolve) => {
+    process.once('SIGTERM', () => resolve());
+    process.once('SIGINT', () => resolve());
+  });
+}
+
+/** Lets the requests that are under way end; a second signal ends the process at once, by Node's own rule. */
+async function drain(server: Server): Promise<void> {
+  const closed = once(server, 'close');
+  server.close();
+  server.closeIdleConnections();
+  const impatience = setTimeout(() => server.closeAllConnections(), DRAIN_MS);
+  await closed;
+  clearTimeout(impatience);
+}

@@ -1,0 +1,29 @@
+import { defineConfig } from '@playwright/test';
+import { findBrowser } from '../support/chromium';
+
+const browser = await findBrowser();
+
+/** Few tests, on the built program, in a real browser the size of the trolley's tablet. */
+export default defineConfig({
+  testDir: '.',
+  outputDir: '../../test-results',
+  workers: 1,
+  // A test that passes at its second try has found a fault.
+  retries: 0,
+  forbidOnly: process.env.CI !== undefined,
+  timeout: 60_000,
+  reporter: [['list']],
+  use: {
+    browserName: 'chromium',
+    viewport: { width: 1180, height: 820 },
+    hasTouch: true,
+    locale: 'en-GB',
+    timezoneId: 'Europe/London',
+    trace: 'retain-on-failure',
+    launchOptions: {
+      executablePath: browser.executablePath,
+      args: browser.args,
+      env: { ...(process.env as Record<string, string>), ...browser.env },
+    },
+  },
+});
