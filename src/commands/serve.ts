@@ -2,8 +2,10 @@ import { once } from 'node:events';
 import type { Server } from 'node:http';
 import path from 'node:path';
 import { pathToFileURL } from 'node:url';
-import { type App, closeApp, openApp, provideApp } from '@/server/compose';
+import { seedDemo } from '@db/seed';
+import { closeApp, openApp, provideApp } from '@/server/compose';
 import { readSettings, SettingsError, type Settings } from '@/server/settings';
+import { greeting } from './greeting';
 import { createHttpServer, type PageHandler } from './http/http-server';
 import { readStaticFiles } from './http/static-files';
 
@@ -22,12 +24,14 @@ export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void>
   const app = await openApp(settings);
   provideApp(app);
   try {
+    if (settings.demo && (await seedDemo(app)))
+      console.log('Loaded the demo workshop into an empty data folder.');
     const entry = pathToFileURL(path.join(built, 'server', 'entry.mjs')).href;
     const { handler } = (await import(/* @vite-ignore */ entry)) as { handler: PageHandler };
     const files = await readStaticFiles(path.join(built, 'client'));
     const server = createHttpServer({ settings, files, handler });
     await listen(server, settings);
-    greet(settings, app);
+    console.log(await greeting(app));
     await stopSignal();
     await drain(server);
   } finally {
@@ -51,10 +55,6 @@ function whyNotListening(error: unknown, { port, host }: Settings): string {
   if (code === 'EACCES')
     return `Port ${port} may not be used by this account. Set PORT to a number above 1023.`;
   return `The server cannot listen at ${host}. Set HOST to an address of this machine, or leave it out.`;
-}
-
-function greet(settings: Settings, _app: App): void {
-  console.log(`Witnessmark is served at ${settings.publicUrl}`);
 }
 
 async function stopSignal(): Promise<void> {

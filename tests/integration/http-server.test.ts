@@ -55,6 +55,12 @@ async function start(env: Record<string, string>): Promise<void> {
   settings.port = port;
 }
 
+/** A handler that knows no page. */
+const passOn: PageHandler = (_incoming, _response, next) => {
+  next();
+  return Promise.resolve();
+};
+
 interface Answer {
   status: number;
   headers: Record<string, string | string[] | undefined>;
@@ -131,7 +137,7 @@ describe('the built files', () => {
   it.each(['/../package.json', '/..%2fpackage.json', '/%2e%2e/package.json', '/floor/../../x'])(
     'never leaves the folder for %s',
     async (url) => {
-      handler = (_incoming, _response, next) => Promise.resolve(next());
+      handler = passOn;
       expect((await ask(url)).status).toBe(404);
     },
   );
@@ -139,7 +145,7 @@ describe('the built files', () => {
 
 describe('what the pages do not know', () => {
   beforeEach(() => {
-    handler = (_incoming, _response, next) => Promise.resolve(next());
+    handler = passOn;
   });
 
   it('is answered with the prerendered page for it', async () => {
