@@ -108,7 +108,9 @@ describe('verifyTrail on a damaged file', () => {
     const from = small.lastIndexOf('},"publicKey"');
     for (let at = from; at < small.length; at += 1) {
       const other = small[at] === 'A' ? 'B' : 'A';
-      expect((await verifyTrail(small.slice(0, at) + other + small.slice(at + 1), nodeChecks)).ok).toBe(false);
+      expect((await verifyTrail(small.slice(0, at) + other + small.slice(at + 1), nodeChecks)).ok).toBe(
+        false,
+      );
     }
     expect(small.length - from).toBeGreaterThan(150);
   });
