@@ -1,3 +1,4 @@
+import { useId } from 'react';
 import { Sign } from './Sign';
 
 export interface CheckRowProps {
@@ -11,6 +12,8 @@ export interface CheckRowProps {
 
 /** One large row to tick. */
 export function CheckRow({ label, note, isChecked, onChange, why }: CheckRowProps) {
+  const id = useId();
+  const words = why ?? note;
   return (
     <label className="choice is-check" data-barred={why === undefined ? undefined : true}>
       <input
@@ -18,13 +21,21 @@ export function CheckRow({ label, note, isChecked, onChange, why }: CheckRowProp
         checked={isChecked}
         disabled={why !== undefined}
         onChange={(event) => onChange(event.target.checked)}
+        aria-labelledby={`${id}-label`}
+        aria-describedby={words === undefined ? undefined : `${id}-words`}
       />
       <span className="check-box" aria-hidden="true">
         {isChecked && <Sign name="tick" />}
       </span>
       <span className="choice-words">
-        <span className="choice-label">{label}</span>
-        {(why ?? note) !== undefined && <span className="choice-note">{why ?? note}</span>}
+        <span className="choice-label" id={`${id}-label`}>
+          {label}
+        </span>
+        {words !== undefined && (
+          <span className="choice-note" id={`${id}-words`}>
+            {words}
+          </span>
+        )}
       </span>
     </label>
   );

@@ -34,29 +34,47 @@ export function ChoiceRows({
       <legend className={isLabelUnseen ? 'unseen' : 'choices-label'}>{label}</legend>
       <div className="choices-grid" data-columns={columns}>
         {choices.map((choice) => (
-          <label
+          <ChoiceRow
             key={choice.value}
-            className="choice"
-            data-barred={choice.why === undefined ? undefined : true}
-          >
-            <input
-              type="radio"
-              name={name}
-              value={choice.value}
-              checked={choice.value === value}
-              disabled={choice.why !== undefined}
-              onChange={() => onChoose(choice.value)}
-            />
-            <span className="choice-ring" aria-hidden="true" />
-            <span className="choice-words">
-              <span className="choice-label">{choice.label}</span>
-              {(choice.why ?? choice.note) !== undefined && (
-                <span className="choice-note">{choice.why ?? choice.note}</span>
-              )}
-            </span>
-          </label>
+            name={name}
+            {...choice}
+            isChosen={choice.value === value}
+            onChoose={onChoose}
+          />
         ))}
       </div>
     </fieldset>
+  );
+}
+
+type ChoiceRowProps = Choice & { name: string; isChosen: boolean; onChoose: (value: string) => void };
+
+function ChoiceRow({ name, value, label, note, why, isChosen, onChoose }: ChoiceRowProps) {
+  const id = useId();
+  const words = why ?? note;
+  return (
+    <label className="choice" data-barred={why === undefined ? undefined : true}>
+      <input
+        type="radio"
+        name={name}
+        value={value}
+        checked={isChosen}
+        disabled={why !== undefined}
+        onChange={() => onChoose(value)}
+        aria-labelledby={`${id}-label`}
+        aria-describedby={words === undefined ? undefined : `${id}-words`}
+      />
+      <span className="choice-ring" aria-hidden="true" />
+      <span className="choice-words">
+        <span className="choice-label" id={`${id}-label`}>
+          {label}
+        </span>
+        {words !== undefined && (
+          <span className="choice-note" id={`${id}-words`}>
+            {words}
+          </span>
+        )}
+      </span>
+    </label>
   );
 }

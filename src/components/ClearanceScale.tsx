@@ -26,7 +26,10 @@ export interface ClearanceScaleProps {
   }[];
 }
 
-type Span = { from: number; to: number };
+interface Span {
+  from: number;
+  to: number;
+}
 
 /** All rods on one scale between tight and wide, so that the odd one shows: front solid, rear open, whiskers for how sure. */
 export function ClearanceScale({ low, high, target, unit, rods }: ClearanceScaleProps) {
@@ -52,7 +55,7 @@ export function ClearanceScale({ low, high, target, unit, rods }: ClearanceScale
       </div>
       <ol>
         {rods.map((rod) => (
-          <li key={rod.rod} className="clearance-row" data-in-hand={rod.isInHand || undefined}>
+          <li key={rod.rod} className="clearance-row" data-in-hand={rod.isInHand === true || undefined}>
             <span className="clearance-rod">
               <span className="unseen">Rod </span>
               {rod.rod}

@@ -45,7 +45,11 @@ export function DataTable({ caption, isCaptionShown = false, columns, rows, empt
         </thead>
         <tbody>
           {rows.map((row) => (
-            <tr key={row.key} aria-current={row.isCurrent || undefined} data-soft={row.isSoft || undefined}>
+            <tr
+              key={row.key}
+              aria-current={row.isCurrent === true || undefined}
+              data-soft={row.isSoft === true || undefined}
+            >
               {columns.map((column) => (
                 <td key={column.key} {...columnMarks(column)}>
                   {row.cells[column.key]}

@@ -71,8 +71,8 @@ function RodRow({ rod, bolts, figure, words, note, isInHand = false, bolt, isCom
       </span>
       <CapRow bolts={bolts} figure={figure} inHand={bolt} isCompact={isCompact} />
       <span className="unseen">
-        {figure === undefined ? '' : `clearance ${figure} mm. `}
-        {bolts.map((each) => boltWords(each)).join('. ')}.
+        {figure === undefined ? '. ' : `, clearance ${figure} mm. `}
+        {bolts.map((each) => boltWords(each)).join('. ')}.{' '}
       </span>
       <span className="engine-words">
         <b>{words}</b>

@@ -68,7 +68,7 @@ export function FloorFrame({
 function TopCell({ place, label, note, onPress, does }: FloorCell & { place: string }) {
   const words = (
     <>
-      <span className="floor-cell-label">{label}</span>
+      <span className="floor-cell-label">{label} </span>
       {note !== undefined && <span className="floor-cell-note">{note}</span>}
     </>
   );

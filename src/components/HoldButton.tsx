@@ -1,4 +1,13 @@
-import { useEffect, useRef, useState, type KeyboardEvent, type MouseEvent, type PointerEvent } from 'react';
+import {
+  useEffect,
+  useId,
+  useRef,
+  useState,
+  type KeyboardEvent,
+  type MouseEvent,
+  type PointerEvent,
+  type RefObject,
+} from 'react';
 
 export interface HoldButtonProps {
   label: string;
@@ -26,13 +35,15 @@ export function HoldButton({
   size = 'wide',
   why,
 }: HoldButtonProps) {
-  const hold = useHold(holdMs, onHeld, why !== undefined);
+  const id = useId();
+  const progressRef = useRef<HTMLSpanElement>(null);
+  const { isHeld, listeners } = useHold({ holdMs, onHeld, isBarred: why !== undefined, progressRef });
   const [isArmed, arm, disarm] = useArmed();
-  const words = why ?? (hold.isHeld ? 'keep holding' : isArmed ? 'press again to confirm' : hint);
+  const words = why ?? (isHeld ? 'keep holding' : isArmed ? 'press again to confirm' : hint);
 
   function pressWithoutHolding(event: MouseEvent) {
     // A screen reader presses without a pointer and can't hold: it presses twice instead.
-    if (event.detail !== 0 || hold.isHeld || why !== undefined) return;
+    if (event.detail !== 0 || isHeld || why !== undefined) return;
     if (isArmed) {
       disarm();
       onHeld();
@@ -43,27 +54,37 @@ export function HoldButton({
     <button
       type="button"
       className="hold-button"
+      aria-labelledby={`${id}-label`}
+      aria-describedby={`${id}-words`}
       data-tone={tone}
       data-size={size}
-      data-held={hold.isHeld || undefined}
+      data-held={isHeld || undefined}
       aria-disabled={why === undefined ? undefined : true}
       onClick={pressWithoutHolding}
       onContextMenu={(event) => event.preventDefault()}
-      {...hold.listeners}
+      {...listeners}
     >
-      <span className="hold-label">{label}</span>
-      <span className="hold-hint" aria-live="polite">
+      <span className="hold-label" id={`${id}-label`}>
+        {label}
+      </span>
+      <span className="hold-hint" id={`${id}-words`} aria-live="polite">
         {words}
       </span>
-      <span className="hold-progress" aria-hidden="true" ref={hold.progressRef} />
+      <span className="hold-progress" aria-hidden="true" ref={progressRef} />
     </button>
   );
 }
 
+interface Hold {
+  holdMs: number;
+  onHeld: () => void;
+  isBarred: boolean;
+  progressRef: RefObject<HTMLSpanElement | null>;
+}
+
 /** Follows one hold from press to release and tells once when it lasted long enough. */
-function useHold(holdMs: number, onHeld: () => void, isBarred: boolean) {
+function useHold({ holdMs, onHeld, isBarred, progressRef }: Hold) {
   const [isHeld, setHeld] = useState(false);
-  const progressRef = useRef<HTMLSpanElement>(null);
   const timer = useRef<ReturnType<typeof setTimeout> | undefined>(undefined);
   useEffect(() => () => clearTimeout(timer.current), []);
 
@@ -109,7 +130,7 @@ function useHold(holdMs: number, onHeld: () => void, isBarred: boolean) {
     onKeyUp: stopByKey,
     onBlur: stop,
   };
-  return { isHeld, progressRef, listeners };
+  return { isHeld, listeners };
 }
 
 function isPressKey(event: KeyboardEvent): boolean {

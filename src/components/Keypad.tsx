@@ -39,8 +39,8 @@ export function Keypad(props: KeypadProps) {
   const shape = { kind, maxLength };
   const press = (key: string) => onChange(typeKey(value, key, shape));
   return (
-    <div className="keypad" role="group" aria-labelledby={`${id}-label`}>
-      <label className="form-label" id={`${id}-label`} htmlFor={`${id}-value`}>
+    <div className="keypad">
+      <label className="form-label" htmlFor={`${id}-value`}>
         {label}
       </label>
       <div className="keypad-value">
@@ -63,7 +63,7 @@ export function Keypad(props: KeypadProps) {
       <p className="keypad-hint" id={`${id}-hint`} role={error === undefined ? undefined : 'alert'}>
         {error ?? hint ?? ''}
       </p>
-      <div className="keypad-keys">
+      <div className="keypad-keys" role="group" aria-label="Number keys">
         {DIGITS.map((digit) => (
           <PadKey key={digit} words={digit} onPress={() => press(digit)} />
         ))}

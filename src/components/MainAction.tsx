@@ -1,4 +1,4 @@
-import type { KeyboardEvent } from 'react';
+import { useId, type KeyboardEvent } from 'react';
 
 export interface MainActionProps {
   /** What was done or is to be done, as "Turned 110°". */
@@ -14,18 +14,28 @@ export interface MainActionProps {
 
 /** The one wide block at the bottom of a Floor screen that records the present step. */
 export function MainAction({ label, next, onPress, why, isBusy = false, type = 'button' }: MainActionProps) {
+  const id = useId();
+  const words = why ?? next;
   const isBarred = why !== undefined || isBusy;
   return (
     <button
       type={type}
       className="main-action"
+      aria-labelledby={`${id}-label`}
+      aria-describedby={words === undefined ? undefined : `${id}-words`}
       aria-disabled={isBarred || undefined}
       aria-busy={isBusy || undefined}
       onClick={isBarred ? (event) => event.preventDefault() : onPress}
       onKeyDown={ignoreRepeat}
     >
-      <span className="main-action-label">{label}</span>
-      {(why ?? next) !== undefined && <span className="main-action-next">{why ?? next}</span>}
+      <span className="main-action-label" id={`${id}-label`}>
+        {label}
+      </span>
+      {words !== undefined && (
+        <span className="main-action-next" id={`${id}-words`}>
+          {words}
+        </span>
+      )}
     </button>
   );
 }

@@ -33,8 +33,8 @@ export function PinPad({
   const type = (text: string) => onChange(text.replace(/\D/g, '').slice(0, maxLength));
   const rings = Math.max(length, value.length);
   return (
-    <div className="keypad is-pin" role="group" aria-labelledby={`${id}-label`}>
-      <label className="form-label" id={`${id}-label`} htmlFor={`${id}-value`}>
+    <div className="keypad is-pin">
+      <label className="form-label" htmlFor={`${id}-value`}>
         {label}
       </label>
       <div className="pin-value">
@@ -59,7 +59,7 @@ export function PinPad({
       <p className="keypad-hint" id={`${id}-hint`} role={error === undefined ? undefined : 'alert'}>
         {error ?? hint ?? ''}
       </p>
-      <div className="keypad-keys">
+      <div className="keypad-keys" role="group" aria-label="Number keys">
         {DIGITS.map((digit) => (
           <button key={digit} type="button" className="pad-key" onClick={() => type(value + digit)}>
             {digit}

@@ -1,5 +1,5 @@
-import type { SignName } from './Sign';
-import { Sign } from './Sign';
+import { useId } from 'react';
+import { Sign, type SignName } from './Sign';
 
 export interface QuietButtonProps {
   label: string;
@@ -15,18 +15,25 @@ export interface QuietButtonProps {
 
 /** A ruled button for whatever is not the main action. */
 export function QuietButton({ label, onPress, sign, why, shape = 'square', isPressed }: QuietButtonProps) {
+  const id = useId();
   return (
     <button
       type="button"
       className="quiet-button"
       data-shape={shape}
+      aria-labelledby={`${id}-label`}
+      aria-describedby={why === undefined ? undefined : `${id}-why`}
       aria-pressed={isPressed}
       aria-disabled={why === undefined ? undefined : true}
       onClick={why === undefined ? onPress : undefined}
     >
       {sign !== undefined && <Sign name={sign} />}
-      <span>{label}</span>
-      {why !== undefined && <span className="quiet-button-why">{why}</span>}
+      <span id={`${id}-label`}>{label}</span>
+      {why !== undefined && (
+        <span className="quiet-button-why" id={`${id}-why`}>
+          {why}
+        </span>
+      )}
     </button>
   );
 }

@@ -55,13 +55,13 @@ export function TrailStrip({ total, position, phases, signatures, onScrub }: Tra
   );
 }
 
-type PhaseTicksProps = {
+interface PhaseTicksProps {
   from: number;
   to: number;
   position: number;
   height: number;
   at: (entry: number) => string;
-};
+}
 
 /** Ticks up to the present entry are dark, those after it faint; a dash pattern draws any number of them. */
 function PhaseTicks({ from, to, position, height, at }: PhaseTicksProps) {

@@ -27,10 +27,10 @@ export function chooseLook<K extends keyof LookSettings>(
 ): void {
   if (value === UNCHOSEN[key]) {
     storage.removeItem(`witnessmark.${key}`);
-    delete root.dataset[key];
+    root.removeAttribute(`data-${key}`);
   } else {
     storage.setItem(`witnessmark.${key}`, value);
-    root.dataset[key] = value;
+    root.setAttribute(`data-${key}`, value);
   }
 }
 

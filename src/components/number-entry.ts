@@ -18,7 +18,7 @@ export function typeKey(value: string, key: string, { kind, maxLength }: NumberS
 
 /** Reads what a keyboard, a scanner or a paste put into the field; what doesn't fit is left out. */
 export function readTyped(text: string, shape: NumberShape): string {
-  return [...text.trim()].reduce((value, key) => typeKey(value, key, shape), '');
+  return Array.from(text.trim()).reduce((value, key) => typeKey(value, key, shape), '');
 }
 
 /** A number as typed, shown with the decimal sign of the shop. */
