@@ -1,0 +1,101 @@
+import type { Entry, EntryOf } from '@/domain/entry';
+import { evidenceFor } from '@/domain/job';
+import { findStep } from '@/domain/plan';
+import { stamp } from './clock';
+import type { App } from './compose';
+import { sha256Hex } from './crypto';
+import { AppError } from './errors';
+import { type JobFold, UNHEARD } from './job-fold';
+import { checkPin } from './pins';
+import { openSealed } from './sealing';
+import { signHead } from './signed-heads';
+import { type Batch, flush, type PinResult, type ProvedItem } from './sync-batch';
+
+/*
+ * A signature binds to exactly the evidence that its signer was shown. The server waits until it holds all of
+ * that, works the digest out anew, and only then tries the PIN, so that no attempt is spent on a signature that
+ * could not stand anyway.
+ */
+
+/** Why a signature has to wait: something that it covers has not come in yet. */
+export function whyWaitForEvidence(fold: JobFold, entry: Entry): string | undefined {
+  if (entry.kind !== 'signed') return undefined;
+  const missing = Object.entries(entry.data.covers.upTo).find(
+    ([device, number]) => (fold.heard.get(device) ?? UNHEARD).number < number,
+  );
+  if (missing === undefined) return undefined;
+  return `The signature covers records of a tablet up to number ${missing[1]} that have not come in yet. It waits for them.`;
+}
+
+/** Why a signature does not cover what the server holds as evidence for its hold point. */
+export async function whyNotCovered(
+  batch: Batch,
+  fold: JobFold,
+  entry: EntryOf<'signed'>,
+): Promise<string | undefined> {
+  const { covers } = entry.data;
+  const evidence = evidenceFor(fold.state, entry.step ?? '');
+  const outside = evidence.filter(({ device, deviceSeq }) => deviceSeq > (covers.upTo[device] ?? 0));
+  if (outside.length > 0) {
+    const words = outside.length === 1 ? 'one record was' : `${outside.length} records were`;
+    return `The evidence changed since you saw it: ${words} added. Look at it again and sign again.`;
+  }
+  const hashes = await contentHashes(batch, fold.job);
+  const covered = evidence.flatMap(({ id }) => hashes.get(id) ?? []);
+  if (covered.length === covers.count && evidenceDigest(covered) === covers.digest) return undefined;
+  return 'The evidence changed since you saw it: something that you saw was refused or is not the same. Look at it again and sign again.';
+}
+
+/** The digest of a hold point's evidence: SHA-256 over the sorted content hashes, a line each. */
+export function evidenceDigest(contentHashes: readonly string[]): string {
+  return sha256Hex([...contentHashes].sort().join('\n'));
+}
+
+async function contentHashes(batch: Batch, job: string): Promise<ReadonlyMap<string, string>> {
+  const stored = await batch.trx
+    .selectFrom('job_entry')
+    .select(['id', 'content_hash'])
+    .where('job_id', '=', job)
+    .execute();
+  const added = batch.newEntries.filter((row) => row.job_id === job);
+  return new Map([...stored, ...added].map((row) => [row.id, row.content_hash]));
+}
+
+/** Opens the PIN that was sealed to an entry and tries it; never inside a transaction. */
+export async function tryPin(app: App, item: ProvedItem): Promise<PinResult> {
+  const sealed = item.carried?.sealed;
+  if (sealed === undefined) throw new RangeError('This entry carries no PIN.');
+  const { entry } = item;
+  const digest = entry.kind === 'signed' ? entry.data.covers.digest : item.contentHash;
+  let pin: string;
+  try {
+    pin = await openSealed(app.keys, sealed, `${entry.id}.${digest}`);
+  } catch (error) {
+    if (error instanceof AppError) return { result: 'unreadable' };
+    throw error;
+  }
+  const purpose = entry.kind === 'signed' ? `hold point ${entry.data.holdPoint}` : entry.kind;
+  const checked = await checkPin(app, entry.by, pin, { purpose, deviceId: entry.device });
+  switch (checked.result) {
+    case 'right':
+      return { result: 'right', keyId: sealed.keyId, checkedAt: stamp(app.clock) };
+    case 'wrong':
+      return { result: 'wrong' };
+    case 'locked':
+      return { result: 'locked', until: checked.until };
+    case 'none set':
+      return { result: 'none set' };
+  }
+}
+
+/** Signs the trail's head after a class A hold point and at handover, in the transaction that records it. */
+export async function signHeadAfter(batch: Batch, fold: JobFold, entry: Entry): Promise<void> {
+  const step = entry.step === undefined ? undefined : findStep(fold.state.plan, entry.step);
+  const isHoldPoint = entry.kind === 'signed' && step?.class === 'A';
+  if (!isHoldPoint && entry.kind !== 'handed-over') return;
+  await flush(batch);
+  const person = batch.history.at(batch.history.seq).people.find(({ id }) => id === entry.by);
+  const roles = (person?.roles ?? []) as Parameters<typeof signHead>[1]['roles'];
+  const signer = { personId: entry.by, name: entry.author.name, roles, sessionId: undefined };
+  await signHead(batch.trx, signer, fold.job, batch.app);
+}

@@ -1,0 +1,322 @@
+import { type Entry, judgementKinds, officeKinds } from '@/domain/entry';
+import { mayRecord } from '@/domain/job';
+import type { Verdict, Workshop } from '@/domain/job-state';
+import { isSignedBy } from './author-signature';
+import { MINUTE } from './clock';
+import { isBehind, type JobFold, SERVER_DEVICE, UNHEARD } from './job-fold';
+import { whyNotCovered, whyWaitForEvidence } from './signing';
+import { type Batch, foldOf, type KeyRow, type ProvedItem, record, refuse } from './sync-batch';
+import type { EntryVerdict } from './sync-body';
+import type { ReadItem } from './sync-read';
+import { noteAct, tabletView, UNFORESEEN } from './tablet-view';
+
+/** A tablet's clock may be so far off before its people are told. */
+export const CLOCK_TOLERANCE_MS = 5 * MINUTE;
+
+/** An entry that passed everything but its PIN, which is tried outside any transaction. */
+export interface NeedsPin {
+  needsPin: ProvedItem;
+}
+
+/** The verdict on one pushed entry; what is to be kept of it is in the batch when this returns. */
+export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerdict | NeedsPin> {
+  const final = finalVerdict(batch, item);
+  if (final !== undefined) return final;
+  const ownDevice = item.device !== null && item.device === batch.device?.id ? item.device : undefined;
+  if (!item.read.ok) {
+    if (item.read.newer) {
+      return waiting(
+        item,
+        'server-older',
+        'This record is of a newer kind than the server knows. It waits on the tablet until the server is updated.',
+      );
+    }
+    return refuse(batch, item, {
+      code: 'malformed',
+      reason: `It could not be read: ${item.read.why}`,
+      device: ownDevice,
+    });
+  }
+  const { entry } = item.read;
+  if (batch.recorded.has(entry.id) || batch.refused.has(entry.id)) {
+    const reason =
+      'Another record came under the same id before. Both are kept; record it again if it is missing.';
+    return refuse(batch, item, { code: 'id-taken', reason, device: ownDevice });
+  }
+  const fold = await foldOf(batch, entry.job);
+  if (fold === undefined) {
+    return waiting(
+      item,
+      'job-unknown',
+      'The server does not hold this job yet. Its records stay on the tablet and are sent again.',
+    );
+  }
+  if (entry.device === SERVER_DEVICE || isOneOf(officeKinds, entry.kind)) {
+    return refuse(batch, item, {
+      code: 'office-kind',
+      reason: 'Only the server makes this kind of entry.',
+      device: ownDevice,
+    });
+  }
+  const heard = (fold.heard.get(entry.device) ?? UNHEARD).number;
+  if (entry.deviceSeq > heard + 1) {
+    return waiting(
+      item,
+      'earlier-missing',
+      `Record ${heard + 1} of this tablet has not come yet. It goes first.`,
+    );
+  }
+  const proof = proveAuthor(batch, item, entry);
+  if (!proof.ok) return refuse(batch, item, { ...proof, device: ownDevice });
+  const { signature, key } = proof;
+  return judgeProved(batch, fold, {
+    ...item,
+    entry,
+    signature,
+    key,
+    isNumberReused: entry.deviceSeq <= heard,
+  });
+}
+
+/** A verdict is final for an id: the same entry gets the same answer however often it comes. */
+function finalVerdict(batch: Batch, item: ReadItem): EntryVerdict | undefined {
+  if (item.id === null) return undefined;
+  const known = batch.recorded.get(item.id);
+  if (known?.contentHash === item.contentHash) {
+    return { id: item.id, verdict: 'already recorded', seq: known.seq, hash: known.hash };
+  }
+  const refused = batch.refused.get(item.id)?.find((one) => one.contentHash === item.contentHash);
+  if (refused === undefined) return undefined;
+  return { id: item.id, verdict: 'refused', code: refused.code, reason: refused.reason };
+}
+
+type Proof = { ok: true; signature: string; key: KeyRow } | { ok: false; code: string; reason: string };
+
+/** Authorship is proved by the person's key for that tablet; no session is needed, and none would do. */
+function proveAuthor(batch: Batch, item: ReadItem, entry: Entry): Proof {
+  const { carried } = item;
+  const key = carried === undefined ? undefined : batch.keys.get(carried.key);
+  if (carried === undefined || key === undefined) {
+    return {
+      ok: false,
+      code: 'key-unknown',
+      reason: 'It is signed with a key that the workshop does not know.',
+    };
+  }
+  if (key.device !== entry.device || key.person !== entry.by) {
+    return {
+      ok: false,
+      code: 'key-foreign',
+      reason: 'It is signed with the key of another person or another tablet.',
+    };
+  }
+  if (!isSignedBy(key.publicKey, item.contentHash, carried.signature)) {
+    return {
+      ok: false,
+      code: 'signature-wrong',
+      reason: "The author's signature does not fit what is written.",
+    };
+  }
+  return { ok: true, signature: carried.signature, key };
+}
+
+async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promise<EntryVerdict | NeedsPin> {
+  const { entry } = item;
+  const refuseIt = (code: string, reason: string) => setAside(batch, item, code, reason);
+  if (entry.plan !== fold.planHash && !fold.plans.has(entry.plan)) {
+    return refuseIt('plan-unknown', 'It was made under a plan that this job never had.');
+  }
+  const wait = whyWaitForEvidence(fold, entry);
+  if (wait !== undefined) return waiting(item, 'evidence-missing', wait);
+  const times = timesOf(batch, entry);
+  const own = await ownVerdict(batch, fold, item, times);
+  if (!own.ok) return refuseIt(own.code, own.why);
+  const here = serverVerdict(batch, fold, item, times);
+  const isJudgement = isOneOf(judgementKinds, entry.kind);
+  if (!here.ok && isJudgement) {
+    return refuseIt('overtaken', `It was in order on the tablet, but not any more: ${here.why}`);
+  }
+  if (entry.kind === 'signed') {
+    const uncovered = await whyNotCovered(batch, fold, entry);
+    if (uncovered !== undefined) return refuseIt('evidence-changed', uncovered);
+  }
+  const pin = checkedPin(batch, item);
+  if ('needsPin' in pin) return pin;
+  if ('code' in pin) {
+    return pin.code === 'pin-locked' ? waiting(item, pin.code, pin.reason) : refuseIt(pin.code, pin.reason);
+  }
+  const conflict = here.ok ? undefined : { code: here.code, why: here.why };
+  return keep(batch, fold, item, { pin: pin.pin, conflict });
+}
+
+function keep(
+  batch: Batch,
+  fold: JobFold,
+  item: ProvedItem,
+  extra: Pick<Parameters<typeof record>[3], 'pin' | 'conflict'>,
+): EntryVerdict {
+  const { entry, contentHash, signature, key } = item;
+  const { clockOffsetMs } = batch;
+  const recorded = record(
+    batch,
+    fold,
+    { entry, contentHash, signature, key: key.id },
+    { ...extra, clockOffsetMs },
+  );
+  noteAct(batch, entry);
+  countToolUse(batch, entry);
+  const hash = batch.recorded.get(entry.id)?.hash;
+  return {
+    id: entry.id,
+    verdict: 'recorded',
+    seq: recorded.seq,
+    ...(hash === undefined ? {} : { hash }),
+    ...(recorded.conflict === undefined
+      ? {}
+      : { code: recorded.conflict.code, reason: recorded.conflict.why }),
+  };
+}
+
+async function setAside(batch: Batch, item: ProvedItem, code: string, reason: string): Promise<EntryVerdict> {
+  const verdict = await refuse(batch, item, { code, reason, device: item.entry.device });
+  if (isOneOf(UNFORESEEN, code)) noteAct(batch, item.entry);
+  return verdict;
+}
+
+/** The workshop's numbers that an entry is judged by: what its tablet knew, and what held when it was made. */
+interface Times {
+  known: number;
+  held: number;
+  /** When it was made by the server's clock. */
+  at: string;
+}
+
+function timesOf(batch: Batch, entry: Entry): Times {
+  const made = Math.min(Date.parse(entry.at) - batch.clockOffsetMs, Date.parse(batch.receivedAt));
+  const at = new Date(made).toISOString();
+  const known = Math.min(entry.workshop, batch.history.seq);
+  return { known, held: Math.max(known, batch.history.seqAt(at)), at };
+}
+
+/** Was it in order on its own tablet, by what that tablet knew? */
+async function ownVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Times): Promise<Verdict> {
+  const { entry } = item;
+  const workshop = batch.history.at(times.known);
+  if (isRevoked(batch, item.key, times.known)) {
+    return no('key-revoked', "The author's key had been revoked before this was made.");
+  }
+  if (!isTrueToWorkshop(entry, workshop) && !isTrueToWorkshop(entry, batch.history.at(times.held))) {
+    return no(
+      'author-differs',
+      'The name, the roles or the tool written on it are not those that the workshop had.',
+    );
+  }
+  const isOther = item.isNumberReused || isBehind(fold, entry.device, entry.basis);
+  return mayRecord(isOther ? await tabletView(batch, fold, entry) : fold.state, entry, workshop);
+}
+
+/** Is it in order by all that the server knows? */
+function serverVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Times): Verdict {
+  const { entry } = item;
+  if (item.isNumberReused) {
+    return no(
+      'number-used-twice',
+      'This tablet used the same number for another record: it was copied or restored. Enrol it anew.',
+    );
+  }
+  if (isRevoked(batch, item.key, times.held))
+    return no('key-revoked', "The author's key was revoked meanwhile.");
+  const workshop = batch.history.at(times.held);
+  const isSameView = !isBehind(fold, entry.device, entry.basis) && isSameWorkshop(batch, times, workshop);
+  const isClockOff = Math.abs(batch.clockOffsetMs) > CLOCK_TOLERANCE_MS && entry.kind === 'tightened';
+  // Judged in order a moment ago, and here everything is the same.
+  if (isSameView && !isClockOff) return { ok: true };
+  return mayRecord(fold.state, isClockOff ? { ...entry, at: times.at } : entry, workshop);
+}
+
+function isSameWorkshop(batch: Batch, times: Times, held: Workshop): boolean {
+  if (times.known === times.held) return true;
+  const known = batch.history.at(times.known);
+  return known.people === held.people && known.tools === held.tools && known.zone === held.zone;
+}
+
+/** Entries made before a key was revoked are still taken, however late they come. */
+function isRevoked(batch: Batch, key: KeyRow, workshopSeq: number): boolean {
+  return key.revokedAt !== null && workshopSeq >= batch.history.seqAt(key.revokedAt);
+}
+
+/** An entry carries the printed name, the roles and the tool's plate as used; they must be the workshop's. */
+function isTrueToWorkshop(entry: Entry, workshop: Workshop): boolean {
+  const person = workshop.people.find(({ id }) => id === entry.by);
+  if (person === undefined) return true;
+  const { name, roles } = entry.author;
+  if (person.name !== name || !isSameSet(person.roles, roles)) return false;
+  if (entry.kind === 'signed' && (entry.data.name !== name || !isSameSet(entry.data.roles, roles)))
+    return false;
+  const used = 'tool' in entry.data ? entry.data.tool : undefined;
+  if (used === undefined) return true;
+  const tool = workshop.tools.find(({ id }) => id === used.id);
+  return tool === undefined || (tool.serial === used.serial && tool.dueOn === used.dueOn);
+}
+
+function isSameSet(some: readonly string[], others: readonly string[]): boolean {
+  return some.length === others.length && some.every((one) => others.includes(one));
+}
+
+type PinVerdict =
+  | NeedsPin
+  | { pin: { keyId: string; checkedAt: string } | undefined }
+  | { code: 'pin-missing' | 'pin-wrong' | 'pin-unreadable' | 'pin-none-set' | 'pin-locked'; reason: string };
+
+/** What the sealed PIN comes to, for the kinds that carry one. */
+function checkedPin(batch: Batch, item: ProvedItem): PinVerdict {
+  const { entry } = item;
+  if (entry.kind !== 'signed' && entry.kind !== 'countersigned' && entry.kind !== 'took-over')
+    return { pin: undefined };
+  if (item.carried?.sealed === undefined) {
+    if (entry.kind === 'took-over') return { pin: undefined };
+    return { code: 'pin-missing', reason: 'It came without a PIN. Sign again, with the PIN.' };
+  }
+  const tried = batch.pins.get(item.contentHash);
+  switch (tried?.result) {
+    case undefined:
+      return { needsPin: item };
+    case 'right':
+      return { pin: { keyId: tried.keyId, checkedAt: tried.checkedAt } };
+    case 'wrong':
+      return { code: 'pin-wrong', reason: 'The PIN was wrong. Sign again.' };
+    case 'unreadable':
+      return {
+        code: 'pin-unreadable',
+        reason: 'The PIN could not be opened: it was sealed to another key or for another entry. Sign again.',
+      };
+    case 'none set':
+      return {
+        code: 'pin-none-set',
+        reason: `${entry.author.name} has no PIN yet. Set one under "My account", then sign again.`,
+      };
+    case 'locked':
+      return {
+        code: 'pin-locked',
+        reason: `Too many wrong PINs: ${entry.author.name}'s PIN is locked until ${tried.until}. The record waits on the tablet.`,
+      };
+  }
+}
+
+function countToolUse(batch: Batch, entry: Entry): void {
+  if (entry.kind !== 'tightened' || entry.data.tool === undefined) return;
+  const { id } = entry.data.tool;
+  batch.toolUses.set(id, (batch.toolUses.get(id) ?? 0) + 1);
+}
+
+function waiting(item: ReadItem, code: string, reason: string): EntryVerdict {
+  return { id: item.id ?? '', verdict: 'waiting', code, reason };
+}
+
+function no(code: string, why: string): Verdict {
+  return { ok: false, code, why };
+}
+
+function isOneOf(list: readonly string[], value: string): boolean {
+  return list.includes(value);
+}

@@ -1,0 +1,201 @@
+import { stamp } from './clock';
+import type { App } from './compose';
+import type { Trx } from './database';
+import { type Device, noteHeardFrom } from './devices';
+import { AppError } from './errors';
+import { type JobFold, rememberFolds, storeFolds } from './job-fold';
+import { closeStates } from './job-rows';
+import { signHeadAfter, tryPin } from './signing';
+import { type Batch, beginBatch, flush, foldOf, type PinResult, recordByServer } from './sync-batch';
+import type { EntryVerdict, SyncBody } from './sync-body';
+import { pullJobs, type PulledJob } from './sync-pull';
+import { type ReadItem, readItem } from './sync-read';
+import { judgeItem, type NeedsPin } from './sync-verdict';
+import { readWorkshopHistory } from './workshop-history';
+
+/*
+ * One round trip of a tablet: what it recorded goes in, what others recorded comes back. Every entry gets its
+ * own verdict, and none is given before the transaction that it rests on is on disk.
+ */
+
+export interface SyncResult {
+  at: string;
+  verdicts: EntryVerdict[];
+  jobs: PulledJob[];
+  workshop: number;
+  clockOffsetMs: number;
+}
+
+/** Verdicts that entries further on in the same push may still change. */
+const RETRIED = ['earlier-missing', 'evidence-missing'];
+
+/** Takes what a tablet pushes and gives what it lacks. */
+export async function syncTablet(app: App, device: Device, body: SyncBody): Promise<SyncResult> {
+  if (body.device !== device.id) {
+    throw new AppError('invalid-field', 'The tablet that pushes is not the one that it says it is.', {
+      field: 'device',
+    });
+  }
+  const received = app.clock.now();
+  const clockOffsetMs = Date.parse(body.sentAt) - received.getTime();
+  const items = body.entries.map(readItem);
+  const verdicts = new Map<number, EntryVerdict>();
+  const pins = new Map<string, PinResult>();
+  let pulled: { jobs: PulledJob[]; workshop: number } | undefined;
+  while (pulled === undefined) {
+    const round = await oneRound(app, device, { body, items, verdicts, pins, clockOffsetMs });
+    if ('needsPin' in round) pins.set(round.needsPin.contentHash, await tryPin(app, round.needsPin));
+    else pulled = round;
+  }
+  return {
+    at: received.toISOString(),
+    verdicts: items.map(({ index, id }) => verdicts.get(index) ?? unexpected(id)),
+    ...pulled,
+    clockOffsetMs,
+  };
+}
+
+interface Round {
+  body: SyncBody;
+  items: readonly ReadItem[];
+  /** Verdicts of earlier rounds, which are final; this round adds its own once it is committed. */
+  verdicts: Map<number, EntryVerdict>;
+  pins: ReadonlyMap<string, PinResult>;
+  clockOffsetMs: number;
+}
+
+/** One transaction: as far as the next PIN that has to be tried, or to the end. */
+async function oneRound(
+  app: App,
+  device: Device,
+  { body, items, verdicts, pins, clockOffsetMs }: Round,
+): Promise<NeedsPin | { jobs: PulledJob[]; workshop: number }> {
+  const { found, folds, result } = await app.db.transaction().execute(async (trx) => {
+    // A write first, so that the transaction holds the write lock from its beginning.
+    await noteHeardFrom(trx, device.id, app.clock);
+    const history = await readWorkshopHistory(app.db, trx);
+    const rest = items.filter(({ index }) => !verdicts.has(index));
+    const receivedAt = stamp(app.clock);
+    const batch = await beginBatch({ app, trx, history, device, receivedAt, clockOffsetMs, pins }, rest);
+    if (verdicts.size === 0) await noteRestores(batch, body);
+    const judged = await judgeAll(batch, rest);
+    await flush(batch);
+    const changed = [...batch.changed].flatMap((job) => batch.folds.get(job) ?? []);
+    await closeStates(trx, changed);
+    await storeFolds(trx, changed);
+    return {
+      found: judged.verdicts,
+      folds: changed,
+      result: judged.needsPin ?? (await pull(trx, device, body)),
+    };
+  });
+  rememberFolds(app.db, folds);
+  for (const [index, verdict] of found) verdicts.set(index, verdict);
+  return result;
+}
+
+async function pull(
+  trx: Trx,
+  device: Device,
+  body: SyncBody,
+): Promise<{ jobs: PulledJob[]; workshop: number }> {
+  const jobs = await pullJobs(trx, device, body.jobs);
+  const last = await trx
+    .selectFrom('workshop_entry')
+    .select('seq')
+    .orderBy('seq', 'desc')
+    .limit(1)
+    .executeTakeFirst();
+  return { jobs, workshop: last?.seq ?? 0 };
+}
+
+/** Judges entries in the order in which they came; those that wait are tried again when others went in. */
+async function judgeAll(
+  batch: Batch,
+  items: readonly ReadItem[],
+): Promise<{ verdicts: Map<number, EntryVerdict>; needsPin?: NeedsPin }> {
+  const verdicts = new Map<number, EntryVerdict>();
+  let pending = items;
+  for (let isProgress = true; isProgress;) {
+    isProgress = false;
+    const waiting: ReadItem[] = [];
+    for (const item of pending) {
+      const verdict = await judgeSafely(batch, item);
+      if ('needsPin' in verdict) {
+        for (const { index } of items) if (isRetried(verdicts.get(index))) verdicts.delete(index);
+        return { verdicts, needsPin: verdict };
+      }
+      verdicts.set(item.index, verdict);
+      if (isRetried(verdict)) waiting.push(item);
+      else isProgress = true;
+    }
+    pending = waiting;
+    if (waiting.length === 0) break;
+  }
+  return { verdicts };
+}
+
+function isRetried(verdict: EntryVerdict | undefined): boolean {
+  return verdict?.verdict === 'waiting' && RETRIED.includes(verdict.code ?? '');
+}
+
+/** One record that trips a rule up never fails the others; it waits, and the owner's log has the reason. */
+async function judgeSafely(batch: Batch, item: ReadItem): Promise<EntryVerdict | NeedsPin> {
+  let verdict: EntryVerdict | NeedsPin;
+  try {
+    verdict = await judgeItem(batch, item);
+  } catch (error) {
+    if (isDatabaseError(error)) throw error;
+    batch.app.log.error({ err: error, entry: item.id, job: item.job }, 'An entry could not be judged');
+    return unexpected(item.id);
+  }
+  if (!('needsPin' in verdict) && verdict.verdict === 'recorded' && item.read.ok) {
+    const fold = await foldOf(batch, item.read.entry.job);
+    if (fold !== undefined) await signHeadAfter(batch, fold, item.read.entry);
+  }
+  return verdict;
+}
+
+function isDatabaseError(error: unknown): boolean {
+  return error instanceof Error && 'code' in error && String(error.code).startsWith('SQLITE');
+}
+
+function unexpected(id: string | null): EntryVerdict {
+  return {
+    id: id ?? '',
+    verdict: 'waiting',
+    code: 'unexpected',
+    reason:
+      'The server could not judge this record. It stays on the tablet and is sent again; tell the owner if it stays.',
+  };
+}
+
+/** A tablet that holds what the server does not: the server was restored from a backup, and says so once. */
+async function noteRestores(batch: Batch, body: SyncBody): Promise<void> {
+  for (const { id, have } of body.jobs) {
+    if (have === null) continue;
+    const fold = await foldOf(batch, id);
+    if (fold === undefined || (await holds(batch.trx, id, have))) continue;
+    const reason = `A tablet holds entry ${have.seq} (${have.hash.slice(0, 16)}) that the server does not hold.`;
+    if (!isNoted(fold, reason)) {
+      const data = { after: fold.seq, reason };
+      recordByServer(batch, fold, { id: batch.app.ids.next(), kind: 'restored', data });
+    }
+  }
+}
+
+async function holds(trx: Trx, job: string, have: { seq: number; hash: string }): Promise<boolean> {
+  const row = await trx
+    .selectFrom('job_entry')
+    .select('hash')
+    .where('job_id', '=', job)
+    .where('seq', '=', have.seq)
+    .executeTakeFirst();
+  return row?.hash === have.hash;
+}
+
+function isNoted(fold: JobFold, reason: string): boolean {
+  return fold.state.unstepped.some(
+    (kept) => kept.kind === 'restored' && 'reason' in kept.data && kept.data.reason === reason,
+  );
+}
