@@ -58,3 +58,16 @@ export const secret = z.string().regex(/^[\w-]{43}$/, 'is not whole; use the lin
 
 /** The answer of something that has nothing more to say. */
 export const nothing = z.strictObject({ ok: z.literal(true) });
+
+/** A time zone that this server knows. */
+export const zone = line(60).refine(isZone, 'has to be a time zone such as Europe/London');
+
+function isZone(name: string): boolean {
+  try {
+    new Intl.DateTimeFormat('en-GB', { timeZone: name });
+    return true;
+  } catch (error) {
+    if (error instanceof RangeError) return false;
+    throw error;
+  }
+}

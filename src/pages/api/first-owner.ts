@@ -1,5 +1,5 @@
 import * as z from 'zod';
-import { email, line, nothing, password, personName, secret } from '@/server/fields';
+import { email, line, nothing, password, personName, secret, zone } from '@/server/fields';
 import { endpoint } from '@/server/http';
 import { makeFirstOwner } from '@/server/one-time-links';
 
@@ -14,7 +14,7 @@ export const POST = endpoint(
       name: personName,
       email,
       password,
-      workshop: z.strictObject({ name: line(120), zone: line(60) }),
+      workshop: z.strictObject({ name: line(120), zone }),
     }),
     answer: nothing,
     status: 201,

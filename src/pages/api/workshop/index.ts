@@ -1,6 +1,6 @@
 import * as z from 'zod';
 import { toolAnswer } from '@/server/answers';
-import { line, nothing, role } from '@/server/fields';
+import { line, nothing, role, zone } from '@/server/fields';
 import { endpoint } from '@/server/http';
 import { getWorkshopView, setWorkshop } from '@/server/workshop';
 
@@ -37,7 +37,7 @@ export const PUT = endpoint(
     path: '/api/workshop',
     summary: 'Name the workshop and its time zone',
     who: ['owner'],
-    body: z.strictObject({ name: line(120), zone: line(60) }),
+    body: z.strictObject({ name: line(120), zone }),
     answer: nothing,
   },
   async ({ app, actor, body }) => {
