@@ -35,8 +35,9 @@ export function assemblePlan(input: CompileInput): { plan: Plan; looseEnds: Loos
   const { route, engine, options } = input;
   const optionWords = chosenOptions(route, options);
   const procedures = orderedProcedures(input);
-  const stops = turningPlan(engine, { reach: engine.capReach, start: 0 });
-  const placed = expandProcedures({ procedures, rods: rodsInOrder(engine), stops, options });
+  const stops = turningStops(engine);
+  const grades = engine.shells.grades.map(({ grade }) => grade);
+  const placed = expandProcedures({ procedures, rods: rodsInOrder(engine), grades, stops, options });
   const steps = buildSteps(placed, input, stops);
   const barsByStep = new Map(placed.map(({ id, step }) => [id, 'bars' in step ? step.bars : undefined]));
   const { items, looseEnds } = pairItems(steps, (id) => barsByStep.get(id));
@@ -113,6 +114,12 @@ function orderedProcedures({ route, procedures }: CompileInput): Procedure[] {
       throw new RangeError(`The route "${route.id}" names the procedure "${id}", which isn't there.`);
     return found;
   });
+}
+
+/** Where the crank stops: each rod within reach of the place short of bottom at which its cap is worked on. */
+function turningStops({ crankpins, capOffset, capReach }: EngineSheet): TurningStop[] {
+  const ahead = crankpins.map((pin) => ({ ...pin, angle: (pin.angle + capOffset) % 360 }));
+  return turningPlan({ crankpins: ahead }, { reach: capReach, start: 0 });
 }
 
 function rodsInOrder({ crankpins }: EngineSheet): number[] {

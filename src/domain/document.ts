@@ -66,7 +66,9 @@ export const engineSchema = z.strictObject({
       }),
     )
     .min(1),
-  /** Half the window around bottom dead centre in which a cap can be reached, in degrees. */
+  /** How far short of bottom dead centre a cap is worked on, in degrees; about 30 where thread is gauged. */
+  capOffset: z.int().min(0).max(90).default(0),
+  /** Half the window around that place in which a cap can be reached, in degrees. */
   capReach: z.int().min(0).max(90),
   /** The bolts of one cap by letter, and where each sits seen from below with the front at the top. */
   capBolts: z.array(z.strictObject({ bolt: z.string().regex(/^[A-D]$/), sits: words })).min(1),

@@ -15,6 +15,8 @@ export interface PlacedStep {
   step: ProcedureStep;
   rod?: number;
   half?: ShellHalf;
+  /** Shell grade, in a step for each of them. */
+  grade?: string;
   /** Index of the turning stop, in a section that loops over the rods. */
   stop?: number;
   dropped: boolean;
@@ -23,6 +25,8 @@ export interface PlacedStep {
 export interface ExpandInput {
   procedures: Procedure[];
   rods: number[];
+  /** The engine sheet's shell grades. */
+  grades: string[];
   stops: TurningStop[];
   options: Record<string, string>;
 }
@@ -40,7 +44,7 @@ export function expandProcedures(input: ExpandInput): PlacedStep[] {
     procedure.sections.flatMap((section) =>
       section.loop === 'rods'
         ? expandLoop(procedure, section, input)
-        : section.steps.flatMap((step) => expandStep(procedure, section, step, input.rods, input.options)),
+        : section.steps.flatMap((step) => expandStep(procedure, section, step, input)),
     ),
   );
 }
@@ -59,7 +63,7 @@ function expandLoop(procedure: Procedure, section: ProcedureSection, input: Expa
     })),
     ...rods.flatMap((rod) =>
       work.flatMap((step) =>
-        expandStep(procedure, section, { ...step, each: step.each ?? 'rod' }, [rod], input.options).map(
+        expandStep(procedure, section, { ...step, each: step.each ?? 'rod' }, { ...input, rods: [rod] }).map(
           (placed) => ({ ...placed, step, stop }),
         ),
       ),
@@ -71,8 +75,7 @@ function expandStep(
   procedure: Procedure,
   section: ProcedureSection,
   step: ProcedureStep,
-  rods: number[],
-  options: Record<string, string>,
+  { rods, grades, options }: ExpandInput,
 ): PlacedStep[] {
   const base = `${procedure.id}.${step.id}`;
   const common = { procedure, section, step, dropped: isDropped(section, step, options) };
@@ -82,6 +85,13 @@ function expandStep(
     return rods.flatMap((rod) =>
       halves.map((half) => ({ ...common, id: `${base}@${rod}${half}`, rod, half })),
     );
+  }
+  if (step.each === 'grade') {
+    return grades.map((grade) => ({
+      ...common,
+      id: `${base}@${grade.toLowerCase().replace(/[^a-z0-9]+/g, '-')}`,
+      grade,
+    }));
   }
   return [{ ...common, id: base }];
 }

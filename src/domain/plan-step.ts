@@ -47,11 +47,12 @@ export function buildStep(placed: PlacedStep, context: StepContext): PlanStep {
   } as PlanStep;
 }
 
-function placeOf({ step, rod, half, stop }: PlacedStep, { engine, stops }: StepContext): StepPlace {
+function placeOf({ step, rod, half, grade, stop }: PlacedStep, { engine, stops }: StepContext): StepPlace {
   const turning = stop === undefined ? undefined : stops[stop];
   return {
     rod,
     half,
+    grade,
     angle: turning?.angle,
     rods: turning?.rods,
     minutes: step.kind === 'watch' ? engine.figures[step.minutes]?.value : undefined,

@@ -8,6 +8,7 @@ import type { EngineSheet } from './document';
 export interface StepPlace {
   rod?: number | undefined;
   half?: string | undefined;
+  grade?: string | undefined;
   angle?: number | undefined;
   rods?: number[] | undefined;
   minutes?: string | undefined;
@@ -31,7 +32,7 @@ export function fillText(text: string, engine: EngineSheet, place: StepPlace): s
 
 /** Whether the engine sheet, some step's place or the work itself can fill in the name. */
 export function isKnownName(name: string, engine: EngineSheet): boolean {
-  const anywhere = { rod: 1, half: 'U', angle: 0, rods: [1], minutes: '1', distance: '1' };
+  const anywhere = { rod: 1, half: 'U', grade: 'g', angle: 0, rods: [1], minutes: '1', distance: '1' };
   return lateNames.includes(name) || valueOf(name, engine, anywhere) !== undefined;
 }
 
@@ -48,10 +49,18 @@ function valueOf(name: string, engine: EngineSheet, place: StepPlace): string | 
     case 'limit':
       return limitField(engine, key, field);
     case 'engine':
-      return field === '' ? fieldOf(engine, key, ['name', 'code', 'rotation', 'markColour']) : undefined;
+      return field === '' ? engineField(engine, key) : undefined;
     default:
       return key === '' ? placeValue(head, place) : undefined;
   }
+}
+
+const boltSetWords = { old: 'old bolts', measuring: 'measuring set', new: 'new bolts' } as const;
+
+function engineField(engine: EngineSheet, field: string): string | undefined {
+  if (field === 'thread') return engine.card.thread;
+  if (field === 'measuringBolts') return boltSetWords[engine.measuringBolts];
+  return fieldOf(engine, field, ['name', 'code', 'rotation', 'markColour']);
 }
 
 function limitField(engine: EngineSheet, key: string, field: string): string | undefined {
@@ -78,6 +87,8 @@ function placeValue(name: string, place: StepPlace): string | undefined {
       return place.rod?.toString();
     case 'half':
       return place.half;
+    case 'grade':
+      return place.grade;
     case 'angle':
       return place.angle?.toString();
     case 'rods':
