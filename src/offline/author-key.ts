@@ -11,7 +11,9 @@ const CURVE = { name: 'ECDSA', namedCurve: 'P-256' } as const;
 const SIGNING = { name: 'ECDSA', hash: 'SHA-256' } as const;
 
 /** A new key, with its public half as the raw 65-byte point. */
-export async function newAuthorKey(subtle: SubtleCrypto): Promise<Pick<AuthorKeyRow, 'id' | 'publicKey' | 'pair'>> {
+export async function newAuthorKey(
+  subtle: SubtleCrypto,
+): Promise<Pick<AuthorKeyRow, 'id' | 'publicKey' | 'pair'>> {
   const pair = await subtle.generateKey(CURVE, false, ['sign', 'verify']);
   const point = new Uint8Array(await subtle.exportKey('raw', pair.publicKey));
   return { id: authorKeyId(point, sha256OfBytes), publicKey: toBase64url(point), pair };

@@ -142,14 +142,19 @@ export interface CounterRow {
 export interface PhotoRow {
   hash: string;
   job: string;
-  /** An ArrayBuffer, because Safari loses Blobs. */
-  bytes: ArrayBuffer;
   type: string;
   keptAt: string;
   /** 0 or 1: IndexedDB has no index over booleans. */
   sent: 0 | 1;
   /** What the server said the last time it didn't take it. */
   trouble?: string | undefined;
+}
+
+/** Apart from what is known of the photograph, so that a change of that does not write megabytes. */
+export interface PhotoBytesRow {
+  hash: string;
+  /** An ArrayBuffer, because Safari loses Blobs. */
+  bytes: ArrayBuffer;
 }
 
 export interface PlaceRow {
@@ -174,6 +179,7 @@ export type FloorDatabase = Dexie & {
   setAside: Table<SetAsideRow, string>;
   counters: Table<CounterRow, string>;
   photos: Table<PhotoRow, string>;
+  photoBytes: Table<PhotoBytesRow, string>;
   places: Table<PlaceRow, string>;
 };
 
@@ -195,6 +201,7 @@ const VERSIONS: readonly Record<string, string>[] = [
     setAside: 'hash, job',
     counters: 'job',
     photos: 'hash, job, sent',
+    photoBytes: 'hash',
     places: 'job',
   },
 ];

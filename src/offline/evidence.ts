@@ -31,7 +31,8 @@ export async function coverEntries(
   const digested = evidence.map(({ id, device, deviceSeq }) => {
     upTo[device] = Math.max(upTo[device] ?? 0, deviceSeq);
     const hash = hashes.get(id);
-    if (hash === undefined) throw new Error('An entry of the evidence is no longer on this tablet. Reload the page.');
+    if (hash === undefined)
+      throw new Error('An entry of the evidence is no longer on this tablet. Reload the page.');
     return hash;
   });
   return { upTo, count: evidence.length, digest: sha256OfText(digested.sort().join('\n')) };

@@ -124,7 +124,10 @@ export function createJobStore(db: FloorDatabase): JobStore {
       if (present?.view !== before) return refresh(before.job);
       const row = { ...before.row, revision: before.row.revision + 1 };
       const pending = [...before.pending, ...rows];
-      const state = foldOn(before.state, rows.map(({ entry }) => entry));
+      const state = foldOn(
+        before.state,
+        rows.map(({ entry }) => entry),
+      );
       if (!state) return refresh(before.job);
       return Promise.resolve(
         keep(before.job, { ...present, view: { ...before, row, pending, state, deviceSeq } }),
@@ -175,7 +178,11 @@ function foldOn(state: JobState, entries: readonly (Entry | Recorded)[]): JobSta
   return entries.reduce(applyEntry, state);
 }
 
-function foldAll(plans: ReadonlyMap<string, Plan>, planHash: string, entries: (Entry | Recorded)[]): JobState {
+function foldAll(
+  plans: ReadonlyMap<string, Plan>,
+  planHash: string,
+  entries: (Entry | Recorded)[],
+): JobState {
   if (entries.length > 0) return replay(plans, entries);
   const plan = plans.get(planHash);
   if (!plan) throw new JobNotHereError('plan-not-here');

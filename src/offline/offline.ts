@@ -9,8 +9,7 @@ export interface Offline extends Surroundings {
 }
 
 /** Opens the tablet's records; once a page, in the browser. `sync.start()` begins to send. */
-export function openOffline(over: Partial<Surroundings> = {}): Offline {
-  const surroundings = browserSurroundings(over);
+export function openOffline(surroundings: Surroundings = browserSurroundings()): Offline {
   return {
     ...surroundings,
     jobs: createJobStore(surroundings.db),

@@ -16,9 +16,9 @@ export async function sendPhotos(s: Surroundings): Promise<Outcome> {
   const hashes = await s.db.photos.where('sent').equals(0).primaryKeys();
   let trouble: Trouble | undefined;
   for (const hash of hashes) {
-    const photo = await s.db.photos.get(hash);
-    if (!photo) continue;
-    const sent = await sendPhoto(s, photo);
+    const [photo, bytes] = await Promise.all([s.db.photos.get(hash), s.db.photoBytes.get(hash)]);
+    if (!photo || !bytes) continue;
+    const sent = await sendPhoto(s, photo, bytes.bytes);
     if (sent.ok) continue;
     if (sent.offline) return sent;
     trouble ??= { ...sent, why: `A photograph was not taken: ${sent.why}` };
@@ -26,7 +26,7 @@ export async function sendPhotos(s: Surroundings): Promise<Outcome> {
   return trouble ?? { ok: true };
 }
 
-async function sendPhoto(s: Surroundings, { hash, bytes, type }: PhotoRow): Promise<Outcome> {
+async function sendPhoto(s: Surroundings, { hash, type }: PhotoRow, bytes: ArrayBuffer): Promise<Outcome> {
   const answer = await callServer(s, {
     method: 'PUT',
     path: `/api/photos/${hash}`,

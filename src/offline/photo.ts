@@ -31,7 +31,9 @@ export interface Darkroom {
 export class PhotoError extends Error {
   readonly code = 'unreadable-photo';
   constructor(cause: unknown) {
-    super('This picture can’t be read. Nothing was recorded: take it again, or choose another file.', { cause });
+    super('This picture can’t be read. Nothing was recorded: take it again, or choose another file.', {
+      cause,
+    });
     this.name = 'PhotoError';
   }
 }
@@ -53,7 +55,11 @@ export async function preparePhoto(file: Blob, darkroom: Darkroom = browserDarkr
 }
 
 /** The size with the same shape whose longest side is no longer than asked; never larger than it was. */
-export function boundedSize(width: number, height: number, longest: number): { width: number; height: number } {
+export function boundedSize(
+  width: number,
+  height: number,
+  longest: number,
+): { width: number; height: number } {
   const scale = Math.min(1, longest / Math.max(width, height));
   return { width: Math.max(1, Math.round(width * scale)), height: Math.max(1, Math.round(height * scale)) };
 }
@@ -79,8 +85,8 @@ const browserDarkroom: Darkroom = {
 
 /** An address under which a picture that is on this tablet can be shown; revoke it after use. */
 export async function photoUrl({ db }: Surroundings, hash: string): Promise<string | undefined> {
-  const row = await db.photos.get(hash);
-  return row && URL.createObjectURL(new Blob([row.bytes], { type: row.type }));
+  const [photo, kept] = await Promise.all([db.photos.get(hash), db.photoBytes.get(hash)]);
+  return photo && kept && URL.createObjectURL(new Blob([kept.bytes], { type: photo.type }));
 }
 
 /** Is there room for photographs beside the records? In words when not; `low` is false where nobody can tell. */

@@ -4,7 +4,7 @@
  */
 import * as z from 'zod/mini';
 import type { Plan } from '@/domain/plan';
-import { NO_PREVIOUS } from '@/domain/trail';
+import { NO_PREVIOUS } from '@/domain/trail-chain';
 import { changeJob, ofJob, type JobRow, type WorkshopRow } from './database';
 import { documentHash } from './hashing';
 import { plansNeeded } from './job-store';
@@ -124,7 +124,13 @@ export async function fetchMissingPlans(s: Surroundings): Promise<Outcome> {
     const moves = await ofJob(s.db.entries, id)
       .filter(({ seq, recorded }) => seq === 1 || recorded.kind === 'plan-moved')
       .toArray();
-    const needed = [plan, ...plansNeeded(plan, moves.map(({ recorded }) => recorded))];
+    const needed = [
+      plan,
+      ...plansNeeded(
+        plan,
+        moves.map(({ recorded }) => recorded),
+      ),
+    ];
     for (const hash of new Set(needed)) {
       const brought = await fetchPlan(s, hash);
       if (!brought.ok) return brought;

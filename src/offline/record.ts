@@ -7,7 +7,7 @@ import { parseEntry, type Entry, type EntryData, type EntryKind } from '@/domain
 import { applyEntry, mayRecord } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
 import { signContent } from './author-key';
-import type { AuthorKeyRow, OutboxRow, PhotoRow, SealedPin, WorkshopRow } from './database';
+import type { AuthorKeyRow, FloorDatabase, OutboxRow, SealedPin, WorkshopRow } from './database';
 import { readDevice } from './device';
 import { contentHashOf } from './hashing';
 import type { JobView } from './job-store';
@@ -82,7 +82,7 @@ export async function recordEntries(
     const orphan = refusePhotos(view.state, drawn.entries, photos);
     if (orphan) return orphan;
     const signed = await signAll(offline, drawn.entries, drafts, ground);
-    const rows = await writeAll(offline, view, signed, ground.key, keptPhotos(photos, job, now));
+    const rows = await writeAll(offline, view, signed, ground.key, { photos, keptAt: instantOf(now) });
     if (rows) {
       await offline.jobs.extend(view, rows, view.deviceSeq + rows.length);
       offline.sync.nudge();
@@ -222,8 +222,15 @@ async function signAll(
   );
 }
 
-function keptPhotos(photos: PreparedPhoto[], job: string, now: number): PhotoRow[] {
-  return photos.map(({ hash, bytes, type }) => ({ hash, job, bytes, type, keptAt: instantOf(now), sent: 0 }));
+/** Call it inside the transaction of the record that names the photographs. */
+async function keepPhotos(
+  db: FloorDatabase,
+  job: string,
+  photos: PreparedPhoto[],
+  keptAt: string,
+): Promise<void> {
+  await db.photoBytes.bulkPut(photos.map(({ hash, bytes }) => ({ hash, bytes })));
+  await db.photos.bulkPut(photos.map(({ hash, type }) => ({ hash, job, type, keptAt, sent: 0 })));
 }
 
 /** Writes all of it in one transaction; undefined if the job has changed since the rules were asked. */
@@ -232,9 +239,9 @@ async function writeAll(
   view: JobView,
   signed: Signed[],
   key: AuthorKeyRow,
-  photos: PhotoRow[],
+  { photos, keptAt }: { photos: PreparedPhoto[]; keptAt: string },
 ): Promise<OutboxRow[] | undefined> {
-  const tables = [db.jobs, db.counters, db.outbox, db.photos, db.authorKeys];
+  const tables = [db.jobs, db.counters, db.outbox, db.photos, db.photoBytes, db.authorKeys];
   return db.transaction('rw', tables, async () => {
     const [row, counter, present] = await Promise.all([
       db.jobs.get(view.job),
@@ -246,18 +253,16 @@ async function writeAll(
       row?.revision === view.row.revision && deviceSeq === view.deviceSeq && present?.id === key.id;
     if (!isUnchanged) return undefined;
     const place = counter?.place ?? 0;
-    const rows = signed.map(
-      (one, index): OutboxRow => ({
-        job: view.job,
-        place: place + index + 1,
-        id: one.entry.id,
-        ...one,
-        key: key.id,
-        where: 'on this tablet',
-      }),
-    );
+    const rows = signed.map((one, index): OutboxRow => ({
+      job: view.job,
+      place: place + index + 1,
+      id: one.entry.id,
+      ...one,
+      key: key.id,
+      where: 'on this tablet',
+    }));
     await db.outbox.bulkAdd(rows);
-    await db.photos.bulkPut(photos);
+    await keepPhotos(db, view.job, photos, keptAt);
     await db.counters.put({ job: view.job, deviceSeq: deviceSeq + rows.length, place: place + rows.length });
     await db.jobs.put({ ...row, revision: row.revision + 1 });
     return rows;

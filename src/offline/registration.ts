@@ -15,15 +15,23 @@ export interface Registration {
   look(): Promise<void>;
 }
 
+/** What is used of a Workbox; a test stands in for it. */
+export interface WorkerHandle extends Pick<Workbox, 'register' | 'messageSkipWaiting' | 'update'> {
+  addEventListener(type: 'waiting' | 'controlling', listener: () => void): void;
+}
+
 interface Parts {
-  workbox?: Pick<Workbox, 'register' | 'addEventListener' | 'messageSkipWaiting' | 'update'> | undefined;
+  workbox?: WorkerHandle | undefined;
   reload?: (() => void) | undefined;
 }
 
 /** Registers the service worker; undefined where the browser has none (no HTTPS, or too old). */
 export async function registerWorker(
   script: string,
-  { workbox = 'serviceWorker' in navigator ? new Workbox(script) : undefined, reload = reloadPage }: Parts = {},
+  {
+    workbox = 'serviceWorker' in navigator ? new Workbox(script) : undefined,
+    reload = reloadPage,
+  }: Parts = {},
 ): Promise<Registration | undefined> {
   if (!workbox) return undefined;
   let isWaiting = false;

@@ -69,7 +69,11 @@ export async function callServer<S extends z.ZodMiniType>(
   return readAnswer(response, text, call.answer);
 }
 
-function readAnswer<S extends z.ZodMiniType>(response: Response, text: string, answer: S): Answer<z.output<S>> {
+function readAnswer<S extends z.ZodMiniType>(
+  response: Response,
+  text: string,
+  answer: S,
+): Answer<z.output<S>> {
   const json = parseJson(text);
   if (!response.ok) {
     const refusal = z.safeParse(refusalBody, json);

@@ -18,10 +18,10 @@ export interface Surroundings {
   after: (ms: number, then: () => void) => () => void;
 }
 
-/** The browser as it is, but for what is given. */
-export function browserSurroundings(over: Partial<Surroundings> = {}): Surroundings {
+/** The browser as it is. */
+export function browserSurroundings(): Surroundings {
   return {
-    db: over.db ?? openFloorDatabase(),
+    db: openFloorDatabase(),
     fetch: (path, init) => fetch(path, init),
     now: () => Date.now(),
     newId: () => v7(),
@@ -32,7 +32,6 @@ export function browserSurroundings(over: Partial<Surroundings> = {}): Surroundi
       const timer = setTimeout(then, ms);
       return () => clearTimeout(timer);
     },
-    ...over,
   };
 }
 

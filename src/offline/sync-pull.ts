@@ -3,7 +3,7 @@
  * takes its place among the confirmed entries, and only if it is the same record to the letter.
  */
 import { officeKinds, type EntryKind } from '@/domain/entry';
-import { NO_PREVIOUS } from '@/domain/trail';
+import { NO_PREVIOUS } from '@/domain/trail-chain';
 import { changeJob, ofJob, type EntryRow, type FloorDatabase, type JobRow, type OutboxRow } from './database';
 import { findDevice } from './device';
 import { entryOf } from './hashing';
@@ -95,7 +95,11 @@ interface Taken {
   stopped: JobRow['stopped'];
 }
 
-async function noteTaken(db: FloorDatabase, row: JobRow, { last, plan, head, stopped }: Taken): Promise<void> {
+async function noteTaken(
+  db: FloorDatabase,
+  row: JobRow,
+  { last, plan, head, stopped }: Taken,
+): Promise<void> {
   const isSame = !last && row.stopped?.code === stopped?.code && row.head.hash === (head ?? row.head).hash;
   if (isSame) return;
   await changeJob(db, row.id, {

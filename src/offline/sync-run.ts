@@ -24,8 +24,10 @@ export async function runSync(s: Surroundings): Promise<Outcome> {
     if (!answer.ok) return noteTrouble(s, device, answer);
     const at = instantOf(s.now());
     await applyVerdicts(s.db, batch.rows, answer.body.verdicts, at);
-    const goesOn = await applyJobs(s, jobs, answer.body, at);
-    for (const { id } of batch.rows) tried.add(id);
+    const { goesOn, isRestored } = await applyJobs(s, jobs, answer.body, at);
+    // What a restored server lacks goes first; whatever waited for it is worth another try.
+    if (isRestored) tried.clear();
+    else for (const { id } of batch.rows) tried.add(id);
     if (!batch.more && !goesOn) return afterwards(s, device, answer.body.workshop);
   }
 }
@@ -63,16 +65,23 @@ function exchange(s: Surroundings, device: Device, batch: Batch, jobs: JobRow[])
   });
 }
 
-/** Whether there is more to fetch, and fetching got further than before. */
-async function applyJobs(s: Surroundings, jobs: JobRow[], answer: SyncAnswer, at: string): Promise<boolean> {
+interface Applied {
+  /** There is more to fetch, and fetching got further than before. */
+  goesOn: boolean;
+  isRestored: boolean;
+}
+
+async function applyJobs(s: Surroundings, jobs: JobRow[], answer: SyncAnswer, at: string): Promise<Applied> {
   let goesOn = false;
+  let isRestored = false;
   for (const part of answer.jobs) {
     const asked = jobs.find(({ id }) => id === part.id);
     if (!asked) continue;
     const moved = await applyJobAnswer(s.db, asked, part, at);
-    goesOn ||= moved && (part.more || part.restored === true);
+    isRestored ||= moved && part.restored === true;
+    goesOn ||= isRestored || (moved && part.more);
   }
-  return goesOn;
+  return { goesOn, isRestored };
 }
 
 /** A tablet that the server no longer knows keeps everything and says so. */
@@ -80,7 +89,8 @@ async function noteTrouble(s: Surroundings, device: Device, trouble: Trouble): P
   if (trouble.code !== 'unknown-tablet') return trouble;
   await s.db.transaction('rw', s.db.meta, async () => {
     const present = await readDevice(s);
-    if (present.credential === device.credential) await keepDevice(s.db, { ...present, mustEnrolAgain: true });
+    if (present.credential === device.credential)
+      await keepDevice(s.db, { ...present, mustEnrolAgain: true });
   });
   return { ...ENROL_AGAIN };
 }

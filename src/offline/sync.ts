@@ -105,6 +105,7 @@ export function createSyncLoop(s: Surroundings): SyncLoop {
       runQuietly();
     },
     stop() {
+      if (!isStarted) return;
       isStarted = false;
       cancelTimer?.();
       stopWatching?.();
@@ -133,7 +134,8 @@ const NOTHING_KNOWN: SyncStatus = {
 
 const STORAGE_TROUBLE = {
   code: 'storage',
-  words: 'This tablet could not read its own records. Reload the page; if that does not help, do not clear the browser: tell the supervisor.',
+  words:
+    'This tablet could not read its own records. Reload the page; if that does not help, do not clear the browser: tell the supervisor.',
 };
 
 /** Between half and one and a half times the time given, so that tablets don't all come back at once. */

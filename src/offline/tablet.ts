@@ -153,7 +153,9 @@ export async function canMakeEntries(s: Surroundings, person: string, now = s.no
     return {
       ok: false,
       code: 'not-signed-in',
-      why: session ? `${session.name} has been signed in here too long ago.` : 'This person is not signed in here.',
+      why: session
+        ? `${session.name} has been signed in here too long ago.`
+        : 'This person is not signed in here.',
       unlock: 'Sign in on this tablet. What was recorded before is safe.',
     };
   }
