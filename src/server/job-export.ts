@@ -31,11 +31,12 @@ export interface TrailBundle {
   photographs: { hash: string; bytes: number }[];
 }
 
-/** The whole trail of a job that this person may read. */
-export async function readTrail(app: App, actor: Actor, id: string): Promise<TrailBundle> {
+/** The signed trail of a job for reading on a page: the form of an export, but nothing leaves the house. */
+export async function readTrail(app: App, actor: Actor, id: string): Promise<string> {
   const job = await getReadableJob(app.db, actor, id);
   // One transaction, so that nothing comes in between the entries and what is read for them.
-  return app.db.transaction().execute((trx) => bundle(trx, actor, job, stamp(app.clock)));
+  const body = await app.db.transaction().execute((trx) => bundle(trx, actor, job, stamp(app.clock)));
+  return signedText(app, body);
 }
 
 /** The export file of a job: exactly these bytes are signed, and the workshop's trail tells that they went out. */
@@ -47,12 +48,15 @@ export async function exportTrail(
   const job = await getReadableJob(app.db, actor, id);
   return app.db.transaction().execute(async (trx) => {
     const body = await bundle(trx, actor, job, stamp(app.clock));
-    const { head } = app.keys;
-    const signature = signWithHeadKey(head, exportMessage(body, sha256Hex));
     const data = { job: id, number: job.number, entries: body.entries.length };
     await appendWorkshopEntry(trx, actor, { kind: 'exported', data }, app);
-    return { text: canonicalJson({ body, publicKey: head.publicKey, signature }), number: job.number };
+    return { text: signedText(app, body), number: job.number };
   });
+}
+
+function signedText({ keys: { head } }: App, body: TrailBundle): string {
+  const signature = signWithHeadKey(head, exportMessage(body, sha256Hex));
+  return canonicalJson({ body, publicKey: head.publicKey, signature });
 }
 
 async function bundle(db: Db, actor: Actor, job: JobRow, exportedAt: string): Promise<TrailBundle> {

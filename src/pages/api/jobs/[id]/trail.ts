@@ -1,21 +1,23 @@
 import * as z from 'zod';
 import { endpoint } from '@/server/http';
 import { readTrail } from '@/server/job-export';
-import { trailEntrySchema } from '@/server/sync-body';
 
 export const GET = endpoint(
   {
     method: 'GET',
     path: '/api/jobs/{id}/trail',
-    summary: 'The whole trail of a job with the plans, keys, heads and workshop entries that prove it',
+    summary: 'The signed trail of a job, in the form of its export, for reading on a page',
     who: 'session',
-    answer: z.looseObject({ entries: z.array(trailEntrySchema) }),
+    answer: z.strictObject({
+      body: z.looseObject({}),
+      publicKey: z.string(),
+      signature: z.string(),
+    }),
   },
   async ({ app, actor, params }) => {
-    const trail = await readTrail(app, actor, params.id ?? '');
-    return {
-      ...trail,
-      entries: trail.entries.map((entry) => ({ ...entry, recorded: { ...entry.recorded } })),
-    };
+    const text = await readTrail(app, actor, params.id ?? '');
+    return new Response(text, {
+      headers: { 'content-type': 'application/json', 'cache-control': 'no-store' },
+    });
   },
 );
