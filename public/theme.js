@@ -12,6 +12,7 @@
       return null;
     }
   }
+  if (fallback) root.dataset.defaultTheme = fallback;
   var theme = read('witnessmark.theme') || fallback;
   if (theme) root.dataset.theme = theme;
   ['text', 'hand', 'motion'].forEach(function (key) {

@@ -126,7 +126,7 @@ function Stripe({ centre, radius, className }: { centre: Point; radius: number; 
       width={width}
       height={radius * 1.2}
       transform={`rotate(14 ${centre.x} ${centre.y})`}
-      strokeWidth={Math.max(0.8, radius * 0.04)}
+      strokeWidth={Math.max(0.8, radius * (className === 'paint' ? 0.04 : 0.065))}
     />
   );
 }

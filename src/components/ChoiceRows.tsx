@@ -1,33 +1,33 @@
 import { useId } from 'react';
 
 /** One answer among a few. */
-export interface Choice {
-  value: string;
+export interface Choice<T extends string = string> {
+  value: T;
   label: string;
   note?: string | undefined;
   /** Why it can't be chosen now. */
   why?: string | undefined;
 }
 
-export interface ChoiceRowsProps {
+export interface ChoiceRowsProps<T extends string = string> {
   label: string;
-  choices: Choice[];
-  value?: string | undefined;
-  onChoose: (value: string) => void;
+  choices: Choice<T>[];
+  value?: T | undefined;
+  onChoose: (value: T) => void;
   columns?: 1 | 2 | 3 | undefined;
   /** The label stays for a screen reader only, where the heading of the screen says it. */
   isLabelUnseen?: boolean | undefined;
 }
 
 /** A few answers as large rows, one of which is chosen. */
-export function ChoiceRows({
+export function ChoiceRows<T extends string>({
   label,
   choices,
   value,
   onChoose,
   columns = 1,
   isLabelUnseen = false,
-}: ChoiceRowsProps) {
+}: ChoiceRowsProps<T>) {
   const name = useId();
   return (
     <fieldset className="choices">
@@ -47,9 +47,21 @@ export function ChoiceRows({
   );
 }
 
-type ChoiceRowProps = Choice & { name: string; isChosen: boolean; onChoose: (value: string) => void };
+type ChoiceRowProps<T extends string> = Choice<T> & {
+  name: string;
+  isChosen: boolean;
+  onChoose: (value: T) => void;
+};
 
-function ChoiceRow({ name, value, label, note, why, isChosen, onChoose }: ChoiceRowProps) {
+function ChoiceRow<T extends string>({
+  name,
+  value,
+  label,
+  note,
+  why,
+  isChosen,
+  onChoose,
+}: ChoiceRowProps<T>) {
   const id = useId();
   const words = why ?? note;
   return (

@@ -1,3 +1,4 @@
+import { useEffect, useRef } from 'react';
 import { CapRow, type CapRowBolt } from './CapRow';
 import { CrankDial } from './CrankDial';
 import { boltWords } from './bolt-words';
@@ -80,8 +81,14 @@ function RodRow({ rod, bolts, figure, words, note, isInHand = false, bolt, isCom
       </span>
     </>
   );
+  const item = useRef<HTMLLIElement>(null);
+  useEffect(() => {
+    // With large text the engine may be taller than its place; the rod in hand is then brought into sight.
+    if (isInHand) item.current?.scrollIntoView({ block: 'nearest' });
+  }, [isInHand]);
   return (
     <li
+      ref={item}
       className="engine-rod"
       data-in-hand={isInHand || undefined}
       aria-current={isInHand ? 'step' : undefined}

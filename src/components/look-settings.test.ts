@@ -7,7 +7,7 @@ const place = () => ({ storage: localStorage, root: document.documentElement });
 
 beforeEach(() => {
   localStorage.clear();
-  for (const key of ['theme', 'text', 'hand', 'motion'])
+  for (const key of ['theme', 'text', 'hand', 'motion', 'default-theme'])
     document.documentElement.removeAttribute(`data-${key}`);
 });
 
@@ -32,6 +32,13 @@ describe('the look of this device', () => {
     chooseLook('hand', 'right', place());
     expect(document.documentElement).not.toHaveAttribute('data-hand');
     expect(localStorage).toHaveLength(0);
+  });
+
+  it('goes back to the theme that the page has for those who never chose', () => {
+    document.documentElement.setAttribute('data-default-theme', 'graphite');
+    chooseLook('theme', 'paper', place());
+    chooseLook('theme', 'system', place());
+    expect(document.documentElement).toHaveAttribute('data-theme', 'graphite');
   });
 
   it('pays no heed to a value that it does not know', () => {

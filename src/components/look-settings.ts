@@ -19,7 +19,10 @@ export function readLook(storage: Pick<Storage, 'getItem'>): LookSettings {
   };
 }
 
-/** Keeps one choice on this device and shows it at once; choosing the usual again leaves no mark. */
+/**
+ * Keeps one choice on this device and shows it at once; choosing the usual again leaves no mark. A page that
+ * has a theme of its own for those who never chose (`data-default-theme` on the root) goes back to that.
+ */
 export function chooseLook<K extends keyof LookSettings>(
   key: K,
   value: LookSettings[K],
@@ -27,11 +30,26 @@ export function chooseLook<K extends keyof LookSettings>(
 ): void {
   if (value === UNCHOSEN[key]) {
     storage.removeItem(`witnessmark.${key}`);
-    root.removeAttribute(`data-${key}`);
+    const usual = root.getAttribute(`data-default-${key}`);
+    if (usual === null) root.removeAttribute(`data-${key}`);
+    else root.setAttribute(`data-${key}`, usual);
   } else {
     storage.setItem(`witnessmark.${key}`, value);
     root.setAttribute(`data-${key}`, value);
   }
+}
+
+/** Tells of every change of the look, here or in another tab. */
+export function watchLook(onChange: () => void): () => void {
+  const watcher = new MutationObserver(onChange);
+  watcher.observe(document.documentElement, {
+    attributeFilter: ['data-theme', 'data-text', 'data-hand', 'data-motion'],
+  });
+  window.addEventListener('storage', onChange);
+  return () => {
+    watcher.disconnect();
+    window.removeEventListener('storage', onChange);
+  };
 }
 
 function oneOf<T extends string>(known: readonly T[], value: string | null): T | undefined {

@@ -1,14 +1,16 @@
-import { act, render, screen } from '@testing-library/react';
+import { act, fireEvent, render, screen, within } from '@testing-library/react';
 import { describe, expect, it, vi } from 'vitest';
 import { Caution } from './Caution';
 import { Countdown } from './Countdown';
 import { DataTable } from './DataTable';
 import { DeskFrame } from './DeskFrame';
 import { FloorFrame } from './FloorFrame';
+import { LookPanel } from './LookPanel';
 import { SignatureStamp } from './SignatureStamp';
 import { syncWords } from './SyncWords';
 import { clockText } from './TimerFace';
 import { Verdict } from './Verdict';
+import { WipeCover } from './WipeCover';
 
 const cells = {
   job: { label: 'Job 12' },
@@ -153,5 +155,43 @@ describe('DataTable', () => {
       />,
     );
     expect(screen.getByRole('cell', { name: 'No job is open.' })).toBeVisible();
+  });
+});
+
+describe('WipeCover', () => {
+  it('swallows touches until its time is over', () => {
+    vi.useFakeTimers();
+    let now = 0;
+    const onEnd = vi.fn();
+    const onClick = vi.fn();
+    render(
+      <>
+        <button onClick={onClick}>Turned 110°</button>
+        <WipeCover endsAtMs={10_000} secondsInAll={10} onEnd={onEnd} now={() => now} />
+      </>,
+    );
+    fireEvent.click(screen.getByText('Wipe the screen now'));
+    expect(onClick).not.toHaveBeenCalled();
+    expect(onEnd).not.toHaveBeenCalled();
+    now = 10_000;
+    act(() => {
+      vi.advanceTimersByTime(250);
+    });
+    expect(onEnd).toHaveBeenCalledOnce();
+    vi.useRealTimers();
+  });
+});
+
+describe('LookPanel', () => {
+  it('shows what is chosen on this device and changes it at once', () => {
+    localStorage.setItem('witnessmark.text', 'large');
+    render(<LookPanel />);
+    const sizes = within(screen.getByRole('group', { name: 'Size of text' }));
+    expect(sizes.getByRole('radio', { name: 'Large' })).toBeChecked();
+    fireEvent.click(sizes.getByRole('radio', { name: 'Largest' }));
+    expect(document.documentElement).toHaveAttribute('data-text', 'largest');
+    expect(sizes.getByRole('radio', { name: 'Largest' })).toBeChecked();
+    fireEvent.click(sizes.getByRole('radio', { name: 'Normal' }));
+    expect(document.documentElement).not.toHaveAttribute('data-text');
   });
 });

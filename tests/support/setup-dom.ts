@@ -2,8 +2,8 @@ import '@testing-library/jest-dom/vitest';
 import 'fake-indexeddb/auto';
 import { cleanup } from '@testing-library/react';
 import { afterEach } from 'vitest';
-import { teachDialogs } from './dialog';
+import { fillJsdomGaps } from './jsdom-gaps';
 
-teachDialogs(HTMLDialogElement.prototype);
+fillJsdomGaps();
 
 afterEach(() => cleanup());
