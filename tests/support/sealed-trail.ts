@@ -108,9 +108,9 @@ export function rechain(body: TrailBody): TrailBody {
 export function signHead(
   body: TrailBody,
   seq: number,
-  { trail = JOB, hash = body.entries[seq - 1]!.hash } = {},
+  { trail = JOB, hash = body.entries[seq - 1]?.hash ?? NO_PREVIOUS, key = fingerprint } = {},
 ): TrailBody['heads'][number] {
-  const head = { trail, seq, hash, at: '2031-03-04T16:00:00Z', key: fingerprint };
+  const head = { trail, seq, hash, at: '2031-03-04T16:00:00Z', key };
   return { ...head, signature: sign(null, headMessage(head), workshopKey.privateKey).toString('base64url') };
 }
 
