@@ -1,10 +1,12 @@
 import { fileURLToPath } from 'node:url';
+import { ROOT } from './root.mjs';
 
-/** The commands that run on a plain Node from `dist/server`, by the name of their built file. */
-const COMMANDS = { serve: 'serve.ts' };
+/** The commands that a plain Node runs from `dist/server`: NAME.ts here becomes NAME.mjs there. */
+const COMMANDS = ['serve'];
 
 /**
- * An Astro integration that builds the commands together with the pages.
+ * An Astro integration that builds the commands together with the pages, and makes the data folder ready for
+ * the development server.
  *
  * They become further entries of the server build, so they share its chunks: every module exists once in
  * the running process, and there is one bundler, one alias and one set of build settings to understand.
@@ -18,6 +20,10 @@ export function commandEntryPoints() {
       'astro:build:setup': ({ target, updateConfig }) => {
         if (target === 'server') updateConfig({ plugins: [emitCommands()] });
       },
+      'astro:server:setup': async ({ server, logger }) => {
+        const { prepareDevelopment } = await server.ssrLoadModule('/src/commands/develop.ts');
+        logger.info(await prepareDevelopment(process.env, ROOT));
+      },
     },
   };
 }
@@ -27,8 +33,8 @@ function emitCommands() {
   return {
     name: 'witnessmark:emit-commands',
     buildStart() {
-      for (const [name, file] of Object.entries(COMMANDS)) {
-        const id = fileURLToPath(new URL(file, import.meta.url));
+      for (const name of COMMANDS) {
+        const id = fileURLToPath(new URL(`${name}.ts`, import.meta.url));
         this.emitFile({ type: 'chunk', id, fileName: `${name}.mjs`, preserveSignature: 'strict' });
       }
     },

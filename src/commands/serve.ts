@@ -2,12 +2,12 @@ import { once } from 'node:events';
 import type { Server } from 'node:http';
 import path from 'node:path';
 import { pathToFileURL } from 'node:url';
-import { seedDemo } from '@db/seed';
-import { closeApp, openApp, provideApp } from '@/server/compose';
+import { closeApp } from '@/server/compose';
 import { readSettings, SettingsError, type Settings } from '@/server/settings';
 import { greeting } from './greeting';
 import { createHttpServer, type PageHandler } from './http/http-server';
 import { readStaticFiles } from './http/static-files';
+import { prepareApp } from './prepare';
 
 /*
  * The server process. Astro's build also builds this file (see entry-points.mjs), into the same module graph
@@ -16,23 +16,21 @@ import { readStaticFiles } from './http/static-files';
  */
 
 const DRAIN_MS = 10_000;
+const PARENT_CHECK_MS = 1_000;
 
 /** Opens the data folder, serves, and returns when the server has been told to stop and has drained. */
 export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void> {
   const settings = readSettings(env, root);
   const built = path.join(root, 'dist');
-  const app = await openApp(settings);
-  provideApp(app);
+  const app = await prepareApp(settings);
   try {
-    if (settings.demo && (await seedDemo(app)))
-      console.log('Loaded the demo workshop into an empty data folder.');
     const entry = pathToFileURL(path.join(built, 'server', 'entry.mjs')).href;
     const { handler } = (await import(/* @vite-ignore */ entry)) as { handler: PageHandler };
     const files = await readStaticFiles(path.join(built, 'client'));
     const server = createHttpServer({ settings, files, handler });
     await listen(server, settings);
     console.log(await greeting(app));
-    await stopSignal();
+    await stopSignal(env);
     await drain(server);
   } finally {
     await closeApp(app);
@@ -50,17 +48,31 @@ async function listen(server: Server, settings: Settings): Promise<void> {
 
 function whyNotListening(error: unknown, { port, host }: Settings): string {
   const code = error instanceof Error && 'code' in error ? error.code : undefined;
-  if (code === 'EADDRINUSE')
+  if (code === 'EADDRINUSE') {
     return `Port ${port} is taken by another program. Stop that one, or set PORT to a free port.`;
-  if (code === 'EACCES')
+  }
+  if (code === 'EACCES') {
     return `Port ${port} may not be used by this account. Set PORT to a number above 1023.`;
+  }
   return `The server cannot listen at ${host}. Set HOST to an address of this machine, or leave it out.`;
 }
 
-async function stopSignal(): Promise<void> {
+/**
+ * Waits to be told to stop. npm passes a signal to its shell, which dies of it without passing it on: under npm
+ * the loss of the parent therefore counts as one, else the server would live on unseen and hold its port.
+ */
+async function stopSignal(env: NodeJS.ProcessEnv): Promise<void> {
+  const parent = process.ppid;
   await new Promise<void>((resolve) => {
     process.once('SIGTERM', () => resolve());
     process.once('SIGINT', () => resolve());
+    if (env.npm_lifecycle_event === undefined) return;
+    const watch = setInterval(() => {
+      if (process.ppid === parent) return;
+      clearInterval(watch);
+      resolve();
+    }, PARENT_CHECK_MS);
+    watch.unref();
   });
 }
 

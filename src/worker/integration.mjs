@@ -1,4 +1,4 @@
-import { readdir, readFile, stat } from 'node:fs/promises';
+import { readdir, readFile, rm, stat } from 'node:fs/promises';
 import path from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { build } from 'esbuild';
@@ -41,6 +41,7 @@ export function serviceWorker() {
           dontCacheBustURLsMatching: /^_astro\//,
           maximumFileSizeToCacheInBytes: 2 * 1024 * 1024,
         });
+        await rm(bundle);
         if (warnings.length > 0)
           throw new Error(`The service worker would miss files: ${warnings.join(' ')}`);
         logger.info(`precaches ${count} files, ${Math.round(size / 1024)} kB`);
