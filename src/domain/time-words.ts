@@ -1,0 +1,35 @@
+/* Instants in words, in the workshop's zone. Times are kept in UTC and shown as the workshop's clock has them. */
+
+function format(at: string | number, zone: string, parts: Intl.DateTimeFormatOptions): string {
+  return new Intl.DateTimeFormat('en-GB', { timeZone: zone, ...parts }).format(new Date(at));
+}
+
+/** The time of day of an instant in the workshop's zone, as "10:42". */
+export function clockTime(at: string | number, zone: string): string {
+  return format(at, zone, { hour: '2-digit', minute: '2-digit' });
+}
+
+/** The time of day with its seconds, as "10:42:05". */
+export function clockSeconds(at: string | number, zone: string): string {
+  return format(at, zone, { hour: '2-digit', minute: '2-digit', second: '2-digit' });
+}
+
+/** Day and time of an instant in the workshop's zone, as "6 Oct, 10:42". */
+export function dayAndTime(at: string | number, zone: string): string {
+  return `${format(at, zone, { day: 'numeric', month: 'short' })}, ${clockTime(at, zone)}`;
+}
+
+/** The day of an instant in the workshop's zone, as "Tue 6 Oct 2026". */
+export function dayOf(at: string | number, zone: string): string {
+  return format(at, zone, { weekday: 'short', day: 'numeric', month: 'short', year: 'numeric' }).replace(
+    ',',
+    '',
+  );
+}
+
+/** A calendar day `YYYY-MM-DD` in words, as "14 Mar 2027"; anything else as it stands. */
+export function dayWords(day: string): string {
+  const instant = new Date(`${day}T00:00:00Z`);
+  if (Number.isNaN(instant.getTime())) return day;
+  return format(instant.getTime(), 'UTC', { day: 'numeric', month: 'short', year: 'numeric' });
+}
