@@ -1,0 +1,80 @@
+import { readFileSync } from 'node:fs';
+import path from 'node:path';
+import { parseArgs } from 'node:util';
+import { type TrailVerdict, verifyTrail } from '@/domain/trail';
+import { nodeChecks } from '@/server/trail-checks';
+
+/*
+ * npm run verify-trail -- FILE [--head HASH] [--key FINGERPRINT]
+ *
+ * Says whether an exported trail is whole: exit 0 whole, 1 broken, 2 not a trail or not asked rightly.
+ */
+
+const WHOLE = 0;
+const BROKEN = 1;
+const NOT_A_TRAIL = 2;
+
+const USAGE = `Use it like this: npm run verify-trail -- FILE [--head HASH] [--key FINGERPRINT]
+  FILE   an exported trail, as it was given to you
+  --head the hash of a signed head that you have from elsewhere, such as a printed Pack
+  --key  the fingerprint of the workshop's key that you have from elsewhere`;
+
+/** Verifies one file and prints what was found, in plain words; `cwd` is where relative paths begin. */
+export async function main(args: string[], cwd: string): Promise<number> {
+  const asked = readArguments(args);
+  if ('why' in asked) return say(NOT_A_TRAIL, `${asked.why}\n${USAGE}`);
+  let bytes: Uint8Array;
+  try {
+    bytes = readFileSync(path.resolve(cwd, asked.file));
+  } catch (error) {
+    return say(NOT_A_TRAIL, `${asked.file} could not be read: ${wordsOf(error)}.`);
+  }
+  const { head, key } = asked;
+  return report(asked.file, await verifyTrail(bytes, { ...nodeChecks(), head, key }));
+}
+
+type Asked = { file: string; head: string | undefined; key: string | undefined } | { why: string };
+
+function readArguments(args: string[]): Asked {
+  try {
+    const { values, positionals } = parseArgs({
+      args,
+      options: { head: { type: 'string' }, key: { type: 'string' } },
+      allowPositionals: true,
+    });
+    const [file, ...more] = positionals;
+    if (file === undefined || more.length > 0) return { why: 'One file is verified at a time.' };
+    for (const [name, value] of Object.entries(values)) {
+      if (!/^[0-9a-f]{64}$/.test(value))
+        return { why: `--${name} has to be 64 characters, 0 to 9 and a to f.` };
+    }
+    return { file, head: values.head, key: values.key };
+  } catch (error) {
+    if (error instanceof TypeError) return { why: error.message };
+    throw error;
+  }
+}
+
+function report(file: string, verdict: TrailVerdict): number {
+  if (verdict.ok) {
+    const { entries, signatures, heads, key, notes } = verdict;
+    const counts = `${entries} entries, ${signatures} author signatures, ${heads} signed heads.`;
+    return say(WHOLE, [`Whole: ${file}`, counts, `Signed by the workshop key ${key}.`, ...notes].join('\n'));
+  }
+  if ('notATrail' in verdict) return say(NOT_A_TRAIL, `Not a trail: ${file}\n${verdict.why}`);
+  return say(BROKEN, `Broken: ${file}\nAt ${verdict.brokenAt}: ${verdict.why}`);
+}
+
+function say(code: number, words: string): number {
+  if (code === WHOLE) console.log(words);
+  else console.error(words);
+  return code;
+}
+
+function wordsOf(error: unknown): string {
+  const code = error instanceof Error && 'code' in error ? error.code : undefined;
+  if (code === 'ENOENT') return 'there is no such file';
+  if (code === 'EISDIR') return 'it is a folder';
+  if (code === 'EACCES') return 'this account may not read it';
+  return error instanceof Error ? error.message : String(error);
+}
