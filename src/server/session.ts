@@ -1,6 +1,7 @@
 import { type Actor, parseRoles } from './actor';
 import type { App } from './compose';
 import type { Db } from './database';
+import { notFound } from './errors';
 
 export interface SessionReading {
   /** The person whose session this browser has active. */
@@ -48,6 +49,13 @@ export async function findActor(
     .executeTakeFirst();
   if (row === undefined) return undefined;
   return { personId: row.id, name: row.printed_name, roles: parseRoles(row.roles), sessionId };
+}
+
+/** The acting person by id; throws if they are not there or not active. */
+export async function getActor(db: Db, personId: string): Promise<Actor> {
+  const actor = await findActor(db, personId, undefined);
+  if (actor === undefined) throw notFound('This person');
+  return actor;
 }
 
 /** Everybody who is signed in at this browser. */

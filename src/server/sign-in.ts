@@ -10,13 +10,14 @@ import { listSignedIn } from './session';
  */
 
 const failure = z.object({ code: z.string().optional() });
+const success = z.object({ user: z.object({ id: z.string() }) });
 
-/** Signs a person in at this browser, beside whoever is; returns the cookies that the answer must carry. */
+/** Signs a person in at this browser, beside whoever is; the answer must carry the cookies. */
 export async function signIn(
   app: App,
   request: Request,
   credentials: { email: string; password: string },
-): Promise<string[]> {
+): Promise<{ personId: string; cookies: string[] }> {
   const { publicUrl } = app.settings;
   const headers = new Headers({ 'content-type': 'application/json', origin: publicUrl });
   for (const name of ['cookie', 'user-agent', CLIENT_ADDRESS_HEADER]) {
@@ -30,7 +31,10 @@ export async function signIn(
       body: JSON.stringify(credentials),
     }),
   );
-  if (response.ok) return response.headers.getSetCookie();
+  if (response.ok) {
+    const { user } = success.parse(await response.json());
+    return { personId: user.id, cookies: response.headers.getSetCookie() };
+  }
   if (response.status === 429) {
     throw new AppError(
       'too-many-attempts',

@@ -37,7 +37,7 @@ describe('the description of the API', () => {
 
   it('says what a body may hold, and that nothing else may be in it', async () => {
     const { paths } = await readDocument();
-    expect(paths['/api/people']?.['post']).toMatchObject({
+    expect(paths['/api/people']?.post).toMatchObject({
       requestBody: {
         content: {
           'application/json': {
@@ -52,10 +52,10 @@ describe('the description of the API', () => {
       },
       security: [{ session: [] }],
     });
-    expect(paths['/api/people/{id}']?.['get']).toMatchObject({
+    expect(paths['/api/people/{id}']?.get).toMatchObject({
       parameters: [{ name: 'id', in: 'path', required: true }],
     });
-    expect(paths['/api/workshop/trail']?.['get']).toMatchObject({
+    expect(paths['/api/workshop/trail']?.get).toMatchObject({
       parameters: [{ name: 'after', in: 'query', required: false }, { name: 'limit' }],
     });
   });

@@ -1,6 +1,7 @@
 import * as z from 'zod';
-import { email, givenPassword, nothing } from '@/server/fields';
+import { email, givenPassword, role } from '@/server/fields';
 import { endpoint } from '@/server/http';
+import { getActor } from '@/server/session';
 import { signIn } from '@/server/sign-in';
 
 export const POST = endpoint(
@@ -10,10 +11,12 @@ export const POST = endpoint(
     summary: 'Sign in at this browser, beside whoever is signed in there already',
     who: 'anyone',
     body: z.strictObject({ email, password: givenPassword }),
-    answer: nothing,
+    answer: z.strictObject({ personId: z.string(), name: z.string(), roles: z.array(role) }),
   },
   async ({ app, request, body, cookies }) => {
-    cookies.push(...(await signIn(app, request, body)));
-    return { ok: true as const };
+    const signedIn = await signIn(app, request, body);
+    const { personId, name, roles } = await getActor(app.db, signedIn.personId);
+    cookies.push(...signedIn.cookies);
+    return { personId, name, roles: [...roles] };
   },
 );
