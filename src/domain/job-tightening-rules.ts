@@ -24,11 +24,7 @@ export function whyNotTighten(
   const next = nextTightening(state, step);
   if (!next) return no('already-done', `"${step.title}" is done.`);
   if (entry.kind === 'started-again') return whyNotStartedAgain(step, entry);
-  if (entry.kind === 'bolt-replaced') {
-    return next.kind === 'replace' && next.bolt === entry.data.bolt
-      ? OK
-      : no('order', `Bolt ${entry.data.bolt} is not waiting to be replaced.`);
-  }
+  if (entry.kind === 'bolt-replaced') return whyNotReplaced(state, step, entry.data.bolt);
   if (entry.kind === 'released' && next.kind === 'release') {
     return next.bolt === entry.data.bolt ? OK : no('order', `Bolt ${next.bolt} is released first.`);
   }
@@ -54,6 +50,20 @@ export function whyNotTighten(
   const left = whyNotStart(state, step);
   if (!left.ok) return left;
   return entry.kind === 'tightened' ? whyNotTool(step, entry, workshop) : OK;
+}
+
+/** A bolt is replaced when it was turned too far, or when it can't last through the programme again. */
+function whyNotReplaced(state: JobState, step: StepOf<'tighten'>, bolt: string): Verdict {
+  const next = nextTightening(state, step);
+  if (next?.kind === 'replace' && next.bolt === bolt) return OK;
+  const isWorn = tighteningsLeft(state, step, bolt) < cyclesOf(state, step);
+  return isWorn && step.bolts.includes(bolt) && startsAgain(state, step)
+    ? OK
+    : no('order', `Bolt ${bolt} is not waiting to be replaced.`);
+}
+
+function cyclesOf(state: JobState, step: StepOf<'tighten'>): number {
+  return state.plan.programmes[step.programme]?.cycles.length ?? 0;
 }
 
 function whyNotStartedAgain(step: StepOf<'tighten'>, entry: EntryOf<'started-again'>): Verdict {
@@ -92,7 +102,7 @@ function whyNotStage(
 /** Checked for the whole programme before it starts, and again wherever the cap starts again. */
 export function whyNotStart(state: JobState, step: StepOf<'tighten'>): Verdict {
   if (!startsAgain(state, step)) return OK;
-  const cycles = state.plan.programmes[step.programme]?.cycles.length ?? 0;
+  const cycles = cyclesOf(state, step);
   const short = step.bolts.find((bolt) => tighteningsLeft(state, step, bolt) < cycles);
   return short === undefined
     ? OK

@@ -314,6 +314,26 @@ describe('tightening', () => {
     expect(journal.state.bolts['2B']?.used.old).toBe(2);
   });
 
+  it('replaces a bolt that cannot last through its programme again, and no other', () => {
+    const step = 'build.tighten@rod1';
+    const journal = begin().performUntil(step);
+    journal.tightenOnce(step);
+    expect(journal.ask('bolt-replaced', { bolt: '1A', reason: 'worn' }, { step })).toMatchObject({
+      code: 'order',
+    });
+    journal.record('started-again', { bolts: ['1A', '1B'], reason: 'called away' }, { step });
+    const torque = () => journal.tightenOnce(step);
+    expect(torque).toThrow(/tightenings left/);
+    for (const bolt of ['1A', '1B']) {
+      journal.record('bolt-replaced', { bolt, reason: 'no tightenings left', lot: 'B-2' }, { step });
+    }
+    expect(journal.ask('bolt-replaced', { bolt: '1A', reason: 'worn' }, { step })).toMatchObject({
+      code: 'order',
+    });
+    journal.tighten(step);
+    expect(journal.state.bolts['1A']).toMatchObject({ used: { new: 2 }, replaced: 1 });
+  });
+
   it('takes no tool that is missing, unknown, or past its date for class A', () => {
     const journal = ready();
     const target = { kind: 'torque' as const, target: '10', tolerance: '1', unit: 'N·m' as const };
