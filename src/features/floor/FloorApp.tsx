@@ -1,0 +1,86 @@
+import { useEffect, useState, useSyncExternalStore } from 'react';
+import { openOffline, type Offline } from '@/offline/offline';
+import { askToPersist } from '@/offline/photo';
+import { registerWorker } from '@/offline/registration';
+import { makeAvailableOffline } from '@/offline/prefetch';
+import { refreshSignedIn } from '@/offline/tablet';
+import { FloorContext, useFloor, useFloorStore } from './floor-context';
+import { createFloorStore, type FloorStore } from './floor-store';
+import { RunScreen } from './RunScreen';
+import { bringWork } from './sign-in';
+import { StartScreen } from './StartScreen';
+import { keepRegistration } from './use-update';
+
+const WORKER = '/sw.js';
+
+/** The Floor: one page that reads everything from this tablet, so that it opens with no network. */
+export function FloorApp() {
+  const [store] = useState(() => createFloorStore(openOffline()));
+  useEffect(() => startFloor(store), [store]);
+  return (
+    <FloorContext value={store}>
+      <Floor />
+    </FloorContext>
+  );
+}
+
+function Floor() {
+  const job = useSyncExternalStore(watchAddress, jobInAddress, () => null);
+  const store = useFloorStore();
+  const isReady = useFloor((floor) => floor.isReady);
+  const jobId = useFloor((floor) => floor.jobId);
+  useEffect(() => {
+    if (!isReady) return;
+    const { openJob, leaveJob, offline } = store.getState();
+    if (job === null) leaveJob();
+    else void bringAndOpen(offline, job, openJob);
+  }, [store, job, isReady]);
+  return job !== null && jobId === job ? <RunScreen /> : <StartScreen />;
+}
+
+/** A job that is not here yet is fetched first where there is a network; its absence is told by the run screen. */
+async function bringAndOpen(
+  offline: Offline,
+  job: string,
+  openJob: (job: string) => Promise<void>,
+): Promise<void> {
+  const row = await offline.db.jobs.get(job);
+  if (row?.availableOffline !== true) await makeAvailableOffline(offline, job);
+  await openJob(job);
+}
+
+/** Begins what lasts as long as the page: reading, sending, and the service worker. */
+function startFloor(store: FloorStore): () => void {
+  const { offline, reload } = store.getState();
+  const stopSync = offline.sync.subscribe((sync) => store.setState({ sync }));
+  offline.sync.start();
+  void reload().then(() => catchUp(store));
+  registerWorker(WORKER).then(keepRegistration, () => {
+    // Without a service worker (no HTTPS, a private window) the Floor works as long as the page stays open.
+    keepRegistration(undefined);
+  });
+  void askToPersist();
+  return () => {
+    stopSync();
+    offline.sync.stop();
+  };
+}
+
+/** What the server knows newer than this tablet; with no network nothing changes. */
+async function catchUp(store: FloorStore): Promise<void> {
+  const { offline, working, signedIn, tablet, reload } = store.getState();
+  if (signedIn.length === 0 && tablet?.enrolled !== true) return;
+  await refreshSignedIn(offline);
+  await bringWork(offline, working);
+  await reload();
+}
+
+function jobInAddress(): string | null {
+  const inHash = new URLSearchParams(location.hash.slice(1)).get('job');
+  return inHash ?? new URLSearchParams(location.search).get('job');
+}
+
+function watchAddress(listener: () => void): () => void {
+  addEventListener('hashchange', listener);
+  return () => removeEventListener('hashchange', listener);
+}

@@ -1,0 +1,78 @@
+import { FloorFrame } from '@/components/FloorFrame';
+import { EngineBelow } from '@/components/EngineBelow';
+import { MainAction } from '@/components/MainAction';
+import { QuietButton } from '@/components/QuietButton';
+import { openBlockers } from '@/domain/job-order';
+import { findSignature } from '@/domain/job-evidence';
+import { whyNot } from '@/domain/job';
+import type { JobState } from '@/domain/job-state';
+import { isOpen } from './current-step';
+import { engineView } from './engine-view';
+import { useRun } from './run-context';
+
+/** Nothing can be done on the job now: it has ended, or everything waits for something, and for what. */
+export function NothingToDo() {
+  const run = useRun();
+  const { state } = run;
+  const hasEnded = state.phase === 'handed over' || state.phase === 'ended unfinished';
+  const waits = hasEnded ? [] : waitingFor(state);
+  return (
+    <FloorFrame
+      {...run.cells}
+      flash={run.flash}
+      side={<EngineBelow {...engineView(state, undefined, run.workshop.zone)} />}
+      quiet={<QuietButton label="Problem" onPress={() => run.openSheet('problem')} />}
+      main={
+        <MainAction
+          label={hasEnded ? 'Send it now' : 'What is open'}
+          next={hasEnded ? (run.isOnline ? undefined : 'no network') : 'deviations and open list'}
+          onPress={() => (hasEnded ? void run.syncNow() : run.openSheet('job'))}
+        />
+      }
+    >
+      <h1 className="floor-step pb-4">{endWords(state)}</h1>
+      <ul className="grid gap-3">
+        {waits.map(({ title, why }) => (
+          <li key={title} className="border-b border-rule pb-3 text-xl">
+            <b>{title}</b>: {why}
+          </li>
+        ))}
+      </ul>
+    </FloorFrame>
+  );
+}
+
+function endWords(state: JobState): string {
+  switch (state.phase) {
+    case 'handed over':
+      return 'The job is handed over';
+    case 'ended unfinished':
+      return 'The job was ended unfinished: not to be run';
+    case 'not opened':
+      return 'The job has not been opened';
+    default:
+      return 'Nothing can be done just now';
+  }
+}
+
+const SHOWN = 6;
+
+function waitingFor(state: JobState): { title: string; why: string }[] {
+  const deviations = openBlockers(state).map(({ words }) => ({
+    title: 'Deviation',
+    why: `${words}. The supervisor disposes of it.`,
+  }));
+  const parts = state.plan.steps
+    .filter(({ id }) => state.steps[id]?.status === 'waiting for a part')
+    .map(({ title }) => ({ title, why: 'waits for a part' }));
+  const signatures = state.plan.steps
+    .filter(({ kind, id }) => kind === 'hold' && isOpen(state, id) && findSignature(state, id) !== undefined)
+    .map(({ title }) => ({ title, why: 'signed, and waits to be checked: bring the tablet to the network' }));
+  const known = [...deviations, ...parts, ...signatures];
+  if (known.length > 0) return known.slice(0, SHOWN);
+  const first = state.plan.steps.find(
+    ({ id, onDemand, kind }) => onDemand !== true && kind !== 'witness' && isOpen(state, id),
+  );
+  const verdict = first && whyNot(state, first.id);
+  return first && verdict && !verdict.ok ? [{ title: first.title, why: verdict.why }] : [];
+}

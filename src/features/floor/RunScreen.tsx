@@ -1,0 +1,122 @@
+import { Suspense, lazy, useEffect, useState } from 'react';
+import { EmptyState } from '@/components/EmptyState';
+import { ErrorNote } from '@/components/ErrorNote';
+import { FloorFrame } from '@/components/FloorFrame';
+import { MainAction } from '@/components/MainAction';
+import { QuietButton } from '@/components/QuietButton';
+import type { JobView } from '@/offline/job-store';
+import type { WorkshopRow } from '@/offline/database';
+import { currentStep } from './current-step';
+import { useFloor, useFloorStore } from './floor-context';
+import { NothingToDo } from './NothingToDo';
+import { RunContext, type SheetName, type Worker } from './run-context';
+import { mustTakeOver } from './shift';
+import { fetchLaterScreens, StepScreen } from './steps/StepScreen';
+import { useIsOnline } from './use-is-online';
+import { useMainKeys } from './use-main-keys';
+import { useRunOf } from './use-run';
+import { useWakeLock } from './use-wake-lock';
+import { useWatchfulness } from './use-watchfulness';
+
+const RunSheets = lazy(() => import('./sheets/RunSheets').then((m) => ({ default: m.RunSheets })));
+const TakeOverScreen = lazy(() => import('./TakeOverScreen').then((m) => ({ default: m.TakeOverScreen })));
+
+const LATER_MS = 4000;
+
+/** One job on the tablet, a step at a time. */
+export function RunScreen() {
+  const view = useFloor((floor) => floor.view);
+  const trouble = useFloor((floor) => floor.trouble);
+  const workshop = useFloor((floor) => floor.workshop);
+  const person = useWorker();
+  if (trouble !== undefined) return <CannotOpen why={trouble} />;
+  if (!view || !workshop) return <Opening />;
+  if (!person) return <CannotOpen why="Nobody is working on this tablet yet. Go back and touch your name." />;
+  return <Running view={view} workshop={workshop} person={person} />;
+}
+
+function useWorker(): Worker | undefined {
+  const working = useFloor((floor) => floor.working);
+  const signedIn = useFloor((floor) => floor.signedIn);
+  const who = signedIn.find(({ person }) => person === working);
+  return who && { id: who.person, name: who.name, roles: who.roles };
+}
+
+function Running({ view, workshop, person }: { view: JobView; workshop: WorkshopRow; person: Worker }) {
+  const place = useFloor((floor) => floor.place);
+  const isOnline = useIsOnline();
+  const [sheet, setSheet] = useState<SheetName>();
+  const step = currentStep(view.state, place);
+  const run = useRunOf({ view, workshop, person, step, isOnline, openSheet: setSheet });
+  useWatchfulness();
+  useWakeLock();
+  useMainKeys(sheet === undefined);
+  useLaterScreens();
+  if (mustTakeOver(view.state, person.id)) {
+    return (
+      <RunContext value={run}>
+        <Suspense fallback={<Opening />}>
+          <TakeOverScreen />
+        </Suspense>
+      </RunContext>
+    );
+  }
+  return (
+    <RunContext value={run}>
+      {step ? <StepScreen key={step.id} step={step} /> : <NothingToDo />}
+      {sheet !== undefined && (
+        <Suspense fallback={null}>
+          <RunSheets name={sheet} step={step} onClose={() => setSheet(undefined)} />
+        </Suspense>
+      )}
+    </RunContext>
+  );
+}
+
+/** The screens that come later are fetched once the first action has long been on the screen. */
+function useLaterScreens() {
+  useEffect(() => {
+    const timer = setTimeout(() => {
+      fetchLaterScreens();
+      // Asked for again when a sheet opens, if it does not come now.
+      import('./sheets/RunSheets').catch(() => undefined);
+    }, LATER_MS);
+    return () => clearTimeout(timer);
+  }, []);
+}
+
+function Opening() {
+  const cell = { label: 'Opening…' };
+  return (
+    <FloorFrame job={cell} phase={{ label: '' }} sync={{ label: '' }} person={{ label: '' }}>
+      <p className="floor-then">The job is read from this tablet.</p>
+    </FloorFrame>
+  );
+}
+
+function CannotOpen({ why }: { why: string }) {
+  const store = useFloorStore();
+  const leave = () => {
+    store.getState().leaveJob();
+    location.hash = '';
+  };
+  return (
+    <FloorFrame
+      job={{ label: 'The Floor' }}
+      phase={{ label: 'This job can’t be opened' }}
+      sync={{ label: '' }}
+      person={{ label: '' }}
+      quiet={<QuietButton label="Try again" onPress={() => location.reload()} />}
+      main={<MainAction label="Back to the jobs" onPress={leave} />}
+    >
+      <ErrorNote
+        happened={why}
+        kept="Nothing that was recorded is lost."
+        next="Go back, or try again with a network."
+      />
+      <div className="pt-6">
+        <EmptyState title="No job is open here" />
+      </div>
+    </FloorFrame>
+  );
+}

@@ -1,0 +1,69 @@
+import { useState } from 'react';
+import { FloorFrame } from '@/components/FloorFrame';
+import { MainAction } from '@/components/MainAction';
+import { PinPad } from '@/components/PinPad';
+import { QuietButton } from '@/components/QuietButton';
+import { findKept } from '@/domain/job';
+import { dataOf, doneWords } from './done-words';
+import { useRun } from './run-context';
+import { needsPin } from './shift';
+import { SheetRefusal } from './sheets/SheetRefusal';
+import { dayAndTime } from './time-words';
+
+const SHORTEST_PIN = 4;
+
+/** Someone else worked on the job last: taking it over is said, with a PIN at the first of a shift. */
+export function TakeOverScreen() {
+  const run = useRun();
+  const [pin, setPin] = useState('');
+  const { working, lastAt, lastEntry, plan } = run.state;
+  const asksPin = needsPin(run.state, run.person.id, run.now());
+  const last = lastEntry === undefined ? undefined : findKept(run.state, lastEntry);
+  const note = last?.kind === 'took-over' ? dataOf(last, 'took-over').note : undefined;
+  async function takeOver() {
+    await run.record([
+      {
+        kind: 'took-over',
+        with: [],
+        ...(asksPin ? { pin } : {}),
+        data: { firstOfShift: asksPin, ...(working ? { from: working.by } : {}) },
+      },
+    ]);
+    setPin('');
+  }
+  return (
+    <FloorFrame
+      {...run.cells}
+      flash={run.flash}
+      quiet={<QuietButton label="Other job" onPress={() => (location.hash = '')} />}
+      main={
+        <MainAction
+          label="Take the job over"
+          next={`as ${run.person.name}`}
+          why={asksPin && pin.length < SHORTEST_PIN ? 'enter your PIN' : undefined}
+          isBusy={run.isBusy}
+          onPress={() => void takeOver()}
+        />
+      }
+    >
+      <div className="grid gap-5">
+        <h1 className="floor-step">Take over from {working?.name ?? 'whoever worked last'}</h1>
+        <SheetRefusal />
+        {last && lastAt !== undefined && (
+          <p className="floor-then">
+            Last, {dayAndTime(lastAt, run.workshop.zone)}: {doneWords(last, plan)}
+          </p>
+        )}
+        {note !== undefined && <p className="text-xl">“{note}”</p>}
+        {asksPin && (
+          <PinPad
+            label={`PIN of ${run.person.name}`}
+            value={pin}
+            onChange={setPin}
+            hint="first change of this shift"
+          />
+        )}
+      </div>
+    </FloorFrame>
+  );
+}

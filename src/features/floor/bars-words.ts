@@ -1,0 +1,16 @@
+import type { Gate } from '@/domain/plan';
+
+const GATES: Record<Gate, string> = {
+  close: 'closing up',
+  start: 'the first start',
+  move: 'lowering or moving the vehicle',
+  handover: 'the handover',
+};
+
+/** What an open item bars, in words that follow its sentence; nothing where it bars nothing. */
+export function barsWords(bars: readonly Gate[]): string {
+  if (bars.length === 0) return '';
+  const names = bars.map((gate) => GATES[gate]);
+  const last = names.at(-1) ?? '';
+  return `; until then it bars ${names.length === 1 ? last : `${names.slice(0, -1).join(', ')} and ${last}`}`;
+}

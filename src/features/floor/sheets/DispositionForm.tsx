@@ -1,0 +1,101 @@
+import { useState } from 'react';
+import { ChoiceRows } from '@/components/ChoiceRows';
+import { MainAction } from '@/components/MainAction';
+import { QuietButton } from '@/components/QuietButton';
+import type { Deviation } from '@/domain/job-state';
+import { NoteField } from '../NoteField';
+import { useRun } from '../run-context';
+import { SheetRefusal } from './SheetRefusal';
+
+const DISPOSITIONS = [
+  { value: 'rework', label: 'Rework', note: 'it is done again' },
+  { value: 'replace', label: 'Replace', note: 'with another part, and done again' },
+  { value: 'accept as is', label: 'Accept as is', note: 'it stays, with the reason' },
+  { value: 'scrap', label: 'Scrap', note: 'the part is not used' },
+] as const;
+
+type Disposition = (typeof DISPOSITIONS)[number]['value'];
+
+/** What becomes of a deviation; a supervisor or the quality lead says so. */
+export function DispositionForm({ deviation, onDone }: { deviation: Deviation; onDone: () => void }) {
+  const run = useRun();
+  const [disposition, setDisposition] = useState<Disposition>();
+  const [reason, setReason] = useState('');
+  const [agreed, setAgreed] = useState<'by telephone' | 'in person' | 'in writing'>();
+  const may = run.person.roles.some((role) => role === 'supervisor' || role === 'quality lead');
+  const isOutside = deviation.rule === 'clearance-outside' || deviation.rule === 'limit-outside';
+  const needsCustomer = isOutside && disposition === 'accept as is';
+  if (!may) return <NeedsSupervisor words={deviation.words} />;
+  const why =
+    disposition === undefined
+      ? 'what becomes of it?'
+      : needsCustomer && !agreed
+        ? 'the customer’s word is needed'
+        : reason.trim() === ''
+          ? 'give the reason'
+          : undefined;
+  async function dispose(chosen: Disposition) {
+    const customerAgreed =
+      agreed && needsCustomer
+        ? { customerAgreed: { when: new Date(run.now()).toISOString(), how: agreed } }
+        : {};
+    const isRecorded = await run.record([
+      {
+        kind: 'deviation-disposed',
+        data: { deviation: deviation.id, disposition: chosen, reason: reason.trim(), ...customerAgreed },
+      },
+    ]);
+    if (isRecorded) onDone();
+  }
+  return (
+    <div className="grid gap-5">
+      <SheetRefusal />
+      <p className="text-xl font-bold">{deviation.words}</p>
+      <ChoiceRows
+        label="What becomes of it"
+        columns={2}
+        choices={[...DISPOSITIONS]}
+        value={disposition}
+        onChoose={(value) => setDisposition(DISPOSITIONS.find((each) => each.value === value)?.value)}
+      />
+      {needsCustomer && (
+        <ChoiceRows
+          label="The customer agreed, just now"
+          columns={3}
+          choices={(['by telephone', 'in person', 'in writing'] as const).map((value) => ({
+            value,
+            label: value,
+          }))}
+          value={agreed}
+          onChoose={(value) => setAgreed(value as typeof agreed)}
+        />
+      )}
+      <NoteField label="Reason" value={reason} onChange={setReason} />
+      <div className="flex">
+        <MainAction
+          label="Dispose of it"
+          next={`as ${run.person.name}`}
+          why={why}
+          isBusy={run.isBusy}
+          onPress={() => disposition && void dispose(disposition)}
+        />
+      </div>
+    </div>
+  );
+}
+
+function NeedsSupervisor({ words }: { words: string }) {
+  const run = useRun();
+  return (
+    <div className="grid gap-4">
+      <p className="text-xl font-bold">{words}</p>
+      <p className="text-lg">
+        A supervisor or the quality lead disposes of a deviation. Hand the tablet over and change who is
+        working; change back after.
+      </p>
+      <div>
+        <QuietButton shape="wide" label="Change who is working" onPress={() => run.openSheet('person')} />
+      </div>
+    </div>
+  );
+}

@@ -1,0 +1,160 @@
+import { useState } from 'react';
+import { QuietButton } from '@/components/QuietButton';
+import { Sign } from '@/components/Sign';
+import type { Deviation, JobState, OpenItem } from '@/domain/job-state';
+import { findStep } from '@/domain/plan';
+import { barsWords } from '../bars-words';
+import { openWitnessPoints } from '../current-step';
+import { useRun } from '../run-context';
+import { dayAndTime } from '../time-words';
+import { DispositionForm } from './DispositionForm';
+import { Sheet } from './Sheet';
+
+interface JobSheetProps {
+  onClose: () => void;
+  onLeave: () => void;
+}
+
+/** What is open on the job: things off and things in, deviations, invitations to look. */
+export function JobSheet({ onClose, onLeave }: JobSheetProps) {
+  const run = useRun();
+  const [disposing, setDisposing] = useState<string>();
+  const { state } = run;
+  const open = state.deviations.filter(({ disposed }) => !disposed);
+  const deviation = open.find(({ id }) => id === disposing);
+  const witness = openWitnessPoints(state);
+  if (deviation) {
+    return (
+      <Sheet title="Dispose of the deviation" onClose={() => setDisposing(undefined)}>
+        <DispositionForm deviation={deviation} onDone={() => setDisposing(undefined)} />
+      </Sheet>
+    );
+  }
+  return (
+    <Sheet
+      title={`Job ${state.number ?? ''}: what is open`}
+      onClose={onClose}
+      actions={<QuietButton shape="wide" sign="back" label="Other job" onPress={onLeave} />}
+    >
+      <Deviations deviations={open} onDispose={setDisposing} />
+      <OpenList
+        state={state}
+        zone={run.workshop.zone}
+        onGo={(step) => {
+          run.goTo(step);
+          onClose();
+        }}
+      />
+      {witness.length > 0 && (
+        <section className="pb-4">
+          <h3 className="form-label border-b-2 border-text pb-1">Invitations to look</h3>
+          <ul className="flex flex-wrap gap-3 pt-3">
+            {witness.map((step) => (
+              <li key={step.id}>
+                <QuietButton
+                  shape="wide"
+                  label={step.title}
+                  onPress={() => {
+                    run.goTo(step.id);
+                    onClose();
+                  }}
+                />
+              </li>
+            ))}
+          </ul>
+        </section>
+      )}
+      <Disposed deviations={state.deviations.filter(({ disposed }) => disposed)} zone={run.workshop.zone} />
+    </Sheet>
+  );
+}
+
+function Deviations({ deviations, onDispose }: { deviations: Deviation[]; onDispose: (id: string) => void }) {
+  const { workshop } = useRun();
+  return (
+    <section className="pb-5">
+      <h3 className="form-label border-b-2 border-text pb-1">Deviations, open</h3>
+      {deviations.length === 0 && <p className="pt-2 text-lg">None.</p>}
+      <ul className="grid gap-3 pt-3">
+        {deviations.map((deviation) => (
+          <li
+            key={deviation.id}
+            className="grid grid-cols-[1fr_auto] items-center gap-4 border-b border-rule pb-3"
+          >
+            <div>
+              <p className="flex items-start gap-2 text-lg font-bold">
+                <Sign name={deviation.blocks ? 'cross' : 'question'} />
+                {deviation.words}
+              </p>
+              <p className="text-base text-soft">
+                class {deviation.class}, {deviation.raisedByName},{' '}
+                {dayAndTime(deviation.raisedAt, workshop.zone)}
+                {deviation.blocks ? '; what follows waits' : '; nothing waits for it'}
+              </p>
+            </div>
+            <QuietButton shape="wide" label="Dispose of it" onPress={() => onDispose(deviation.id)} />
+          </li>
+        ))}
+      </ul>
+    </section>
+  );
+}
+
+const HOW: Record<OpenItem['how'], string> = {
+  removed: 'off',
+  placed: 'in place for now',
+  counted: 'counted out',
+};
+
+function OpenList({ state, zone, onGo }: { state: JobState; zone: string; onGo: (step: string) => void }) {
+  return (
+    <section className="pb-5">
+      <h3 className="form-label border-b-2 border-text pb-1">Open list: {state.open.length}</h3>
+      {state.open.length === 0 && (
+        <p className="pt-2 text-lg">Nothing is off, and nothing temporary is in.</p>
+      )}
+      <ul className="grid gap-3 pt-3">
+        {state.open.map((item) => {
+          const planned = state.plan.items.find(({ id }) => id === item.item);
+          const closes = planned && findStep(state.plan, planned.closes);
+          return (
+            <li
+              key={item.item}
+              className="grid grid-cols-[1fr_auto] items-center gap-4 border-b border-rule pb-3"
+            >
+              <div>
+                <p className="text-lg font-semibold">
+                  {item.name}: {HOW[item.how]}
+                  {item.count === undefined ? '' : `, ${item.count} pieces`}
+                  {item.into === undefined ? '' : `, in ${item.into}`}
+                </p>
+                <p className="text-base text-soft">
+                  since {item.since === '' ? 'an earlier entry' : dayAndTime(item.since, zone)}
+                  {planned ? barsWords(planned.bars) : ''}
+                </p>
+              </div>
+              {closes && <QuietButton shape="wide" label="Go to it" onPress={() => onGo(closes.id)} />}
+            </li>
+          );
+        })}
+      </ul>
+    </section>
+  );
+}
+
+function Disposed({ deviations, zone }: { deviations: Deviation[]; zone: string }) {
+  if (deviations.length === 0) return null;
+  return (
+    <section>
+      <h3 className="form-label border-b-2 border-text pb-1">Deviations, disposed of</h3>
+      <ul className="grid gap-2 pt-3 text-base">
+        {deviations.map(({ id, words, disposed }) => (
+          <li key={id}>
+            {words}. <b>{disposed?.disposition}</b>: {disposed?.reason} ({disposed?.name},{' '}
+            {disposed && dayAndTime(disposed.at, zone)})
+          </li>
+        ))}
+      </ul>
+    </section>
+  );
+}

@@ -1,0 +1,100 @@
+import type { PlanStep } from '@/domain/plan';
+import { setWorking } from '@/offline/tablet';
+import { useFloor, useFloorStore } from '../floor-context';
+import { useUpdate } from '../use-update';
+import type { SheetName, Worker } from '../run-context';
+import { DeviationForm } from './DeviationForm';
+import { JobSheet } from './JobSheet';
+import { PersonSheet } from './PersonSheet';
+import { ProblemSheet } from './ProblemSheet';
+import { StepsSheet } from './StepsSheet';
+import { SyncSheet } from './SyncSheet';
+import { TakeBackSheet } from './TakeBackSheet';
+import { ToolSheet } from './ToolSheet';
+import {
+  AfterwardsSheet,
+  EndUnfinishedSheet,
+  ExtraWorkSheet,
+  NotApplicableSheet,
+  WaitingForPartSheet,
+} from './WordsSheets';
+
+interface RunSheetsProps {
+  name: SheetName;
+  step: PlanStep | undefined;
+  onClose: () => void;
+}
+
+/** The sheet of this name over the run screen. */
+export function RunSheets({ name, step, onClose }: RunSheetsProps) {
+  const store = useFloorStore();
+  const signedIn = useFloor((floor) => floor.signedIn);
+  const status = useFloor((floor) => floor.sync);
+  const update = useUpdate();
+  switch (name) {
+    case 'steps':
+      return <StepsSheet current={step} onClose={onClose} />;
+    case 'job':
+      return <JobSheet onClose={onClose} onLeave={() => (location.hash = '')} />;
+    case 'sync':
+      return (
+        <SyncSheet
+          status={status}
+          hasUpdate={update.isWaiting}
+          onUpdate={update.activate}
+          onClose={onClose}
+        />
+      );
+    case 'person':
+      return (
+        <PersonSheet
+          step={step}
+          signedIn={signedIn}
+          onClose={onClose}
+          onHelpers={store.getState().setHelpers}
+          onChanged={(person) => changePerson(store.getState(), person)}
+        />
+      );
+    case 'problem':
+      return <ProblemSheet step={step} onClose={onClose} />;
+    case 'take back':
+      return <TakeBackSheet onClose={onClose} />;
+    case 'deviation':
+      return <DeviationForm step={step} onClose={onClose} />;
+    case 'not applicable':
+      return step ? <NotApplicableSheet step={step} onClose={onClose} /> : null;
+    case 'waiting for a part':
+      return step ? <WaitingForPartSheet step={step} onClose={onClose} /> : null;
+    case 'extra work':
+      return <ExtraWorkSheet onClose={onClose} />;
+    case 'recorded afterwards':
+      return (
+        <AfterwardsSheet
+          onClose={onClose}
+          onChoose={(afterwards) => {
+            store.getState().setAfterwards(afterwards);
+            onClose();
+          }}
+        />
+      );
+    case 'end unfinished':
+      return <EndUnfinishedSheet onClose={onClose} />;
+    case 'torque tool':
+      return <ToolSheet hand="torque" step={step} onClose={onClose} />;
+    case 'angle tool':
+      return <ToolSheet hand="angle" step={step} onClose={onClose} />;
+    case 'measuring tool':
+      return <ToolSheet hand="measuring" step={step} onClose={onClose} />;
+  }
+}
+
+/** Someone else works here now; what stood on the screen is asked about. */
+async function changePerson(
+  floor: ReturnType<ReturnType<typeof useFloorStore>['getState']>,
+  person: Worker,
+): Promise<void> {
+  await setWorking(floor.offline, person.id);
+  await floor.reload();
+  floor.setHelpers([]);
+  floor.noteAway();
+}

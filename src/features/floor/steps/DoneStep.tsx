@@ -1,0 +1,31 @@
+import { Sign } from '@/components/Sign';
+import type { PlanStep } from '@/domain/plan';
+import { activeEntries } from '@/domain/job-kept';
+import { doneWords } from '../done-words';
+import { NextAction } from '../NextAction';
+import { StepFrame } from '../StepFrame';
+import { useRun } from '../run-context';
+import { dayAndTime } from '../time-words';
+
+/** A step that is done or set aside, as it was recorded. */
+export function DoneStep({ step }: { step: PlanStep }) {
+  const { state, workshop } = useRun();
+  const own = state.steps[step.id];
+  const status = own?.status ?? 'open';
+  return (
+    <StepFrame step={step} main={<NextAction step={step} />}>
+      <p className="flex items-center gap-3 pb-3 text-2xl font-bold">
+        <Sign name={status === 'done' ? 'tick' : 'minus'} />
+        {status === 'done' ? 'Done' : status === 'not applicable' ? 'Not applicable' : status}
+      </p>
+      <ol className="grid gap-2">
+        {activeEntries(own).map((kept) => (
+          <li key={kept.id} className="border-b border-rule pb-2 text-lg">
+            <span className="figure">{dayAndTime(kept.at, workshop.zone)}</span> {kept.name}:{' '}
+            {doneWords(kept, state.plan)}
+          </li>
+        ))}
+      </ol>
+    </StepFrame>
+  );
+}

@@ -1,0 +1,96 @@
+import { useState } from 'react';
+import type { StepOf } from '@/domain/plan';
+import { knownLots } from '../known-lots';
+import { LotEntry } from '../LotEntry';
+import { MainAction } from '@/components/MainAction';
+import { StepFrame } from '../StepFrame';
+import { dataOf } from '../done-words';
+import { endToRead, type End } from '../gauge-reading';
+import { useRun, type Run } from '../run-context';
+import { GaugeKept } from './GaugeKept';
+import { GaugeRead } from './GaugeRead';
+
+export interface ThreadLots {
+  thread: string;
+  card: string;
+}
+
+/** The oil clearance of one rod: front, then rear, each read off the card and judged after it is kept. */
+export function GaugeStep({ step }: { step: StepOf<'gauge'> }) {
+  const run = useRun();
+  const rod = step.rod === undefined ? undefined : run.state.rods[step.rod];
+  const [lots, setLots] = useState(() => lotsInUse(run));
+  const [again, setAgain] = useState<End>();
+  const [keptEnd, setKeptEnd] = useState<End | undefined>(rod?.rear ? 'rear' : undefined);
+  const kept = keptEnd !== undefined && again === undefined ? rod?.[keptEnd] : undefined;
+  if (kept && rod) {
+    return (
+      <GaugeKept
+        step={step}
+        rod={rod}
+        kept={kept}
+        onRear={() => setKeptEnd(undefined)}
+        onReadAgain={(end) => setAgain(end)}
+      />
+    );
+  }
+  if (!lots) return <AskThread step={step} onLots={setLots} />;
+  const end = endToRead(rod, again);
+  return (
+    <GaugeRead
+      key={`${end} ${again ?? ''}`}
+      step={step}
+      rod={rod}
+      end={end}
+      lots={lots}
+      onOtherThread={() => setLots(undefined)}
+      onKept={() => {
+        setAgain(undefined);
+        setKeptEnd(end);
+      }}
+    />
+  );
+}
+
+/** Thread and card as last used on this job, else the only lot of the kit check. */
+function lotsInUse({ state }: Run): ThreadLots | undefined {
+  const gauged = Object.values(state.steps)
+    .flatMap(({ entries }) => entries.filter(({ kind }) => kind === 'gauged'))
+    .sort((a, b) => a.at.localeCompare(b.at))
+    .at(-1);
+  if (gauged) {
+    const { threadLot, cardLot } = dataOf(gauged, 'gauged');
+    return { thread: threadLot, card: cardLot };
+  }
+  const known = knownLots(state, 'gauging thread');
+  const [only] = known;
+  return known.length === 1 && only !== undefined ? { thread: only, card: only } : undefined;
+}
+
+function AskThread({ step, onLots }: { step: StepOf<'gauge'>; onLots: (lots: ThreadLots) => void }) {
+  const { state } = useRun();
+  const [lot, setLot] = useState('');
+  const { thread } = state.plan.engine.card;
+  return (
+    <StepFrame
+      step={step}
+      side={null}
+      heading={<h1 className="floor-step pb-2">Which thread, with its own card?</h1>}
+      main={
+        <MainAction
+          label="Use this thread and its card"
+          why={lot === '' ? 'the lot is needed' : undefined}
+          onPress={() => onLots({ thread: lot, card: lot })}
+        />
+      }
+    >
+      <p className="pb-4 text-lg text-soft">{thread}. A thread is read against the card of its own packet.</p>
+      <LotEntry
+        part="gauging thread"
+        known={knownLots(state, 'gauging thread')}
+        value={lot}
+        onChange={setLot}
+      />
+    </StepFrame>
+  );
+}

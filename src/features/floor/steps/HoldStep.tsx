@@ -1,0 +1,132 @@
+import { useState } from 'react';
+import { MainAction } from '@/components/MainAction';
+import { Notice } from '@/components/Notice';
+import { SignatureStamp } from '@/components/SignatureStamp';
+import { findSignature, isPassed } from '@/domain/job-evidence';
+import { authorsUnder } from '@/domain/job-signing-rules';
+import type { Signature } from '@/domain/job-state';
+import type { StepOf } from '@/domain/plan';
+import type { Coverage } from '@/offline/evidence';
+import { NextAction } from '../NextAction';
+import { StepFrame } from '../StepFrame';
+import { useRun } from '../run-context';
+import { dayAndTime } from '../time-words';
+import { HoldEvidence } from './HoldEvidence';
+import { HoldSign } from './HoldSign';
+import { SignerChoice, type Signer } from './SignerChoice';
+
+type HoldPlan = StepOf<'hold'>;
+
+/** A hold point: the tablet is handed to a signer, who looks at the evidence and signs with a PIN of their own. */
+export function HoldStep({ step }: { step: HoldPlan }) {
+  const run = useRun();
+  const [stage, setStage] = useState<'evidence' | 'signer' | 'sign'>('evidence');
+  const [signer, setSigner] = useState<Signer>();
+  const [covers, setCovers] = useState<Coverage>();
+  const signature = findSignature(run.state, step.id);
+  if (signature) return <Signed step={step} signature={signature} />;
+  if (stage === 'sign' && signer && covers) {
+    return <HoldSign step={step} signer={signer} covers={covers} onBack={() => setStage('signer')} />;
+  }
+  if (stage === 'signer') {
+    return (
+      <SignerChoice
+        step={step}
+        onBack={() => setStage('evidence')}
+        onSigner={(chosen) => {
+          setSigner(chosen);
+          setStage('sign');
+        }}
+      />
+    );
+  }
+  /** What is on the screen is what is signed: the coverage is taken as the tablet is handed over. */
+  async function handOver() {
+    if (authorsUnder(run.state, step).includes(run.person.id)) {
+      const own = await run.coverage(step.id);
+      if (!(await run.record([{ kind: 'work-signed', step: step.id, data: { covers: own } }]))) return;
+    }
+    setCovers(await run.coverage(step.id));
+    setStage('signer');
+  }
+  return (
+    <StepFrame
+      step={step}
+      heading={
+        <div className="pb-3">
+          <h1 className="floor-step">{step.title}</h1>
+          {step.why !== undefined && <p className="pt-1 text-lg text-soft">{step.why}</p>}
+        </div>
+      }
+      main={
+        <MainAction
+          label="Hand the tablet to the signer"
+          next={
+            authorsUnder(run.state, step).includes(run.person.id)
+              ? 'with my word: this is my work'
+              : undefined
+          }
+          isBusy={run.isBusy}
+          onPress={() => void handOver()}
+        />
+      }
+    >
+      <RefusedSignature step={step} />
+      <HoldEvidence step={step} />
+    </StepFrame>
+  );
+}
+
+/** A signature that the server did not take: it is kept, and the reason is said. */
+function RefusedSignature({ step }: { step: HoldPlan }) {
+  const { refused } = useRun();
+  const last = refused.findLast(({ entry }) => entry.kind === 'signed' && entry.step === step.id);
+  if (!last) return null;
+  return (
+    <div className="pb-4">
+      <Notice tone="stop" title={`The signature of ${last.entry.author.name} was refused`}>
+        {last.reason} It is kept on this tablet. Sign again.
+      </Notice>
+    </div>
+  );
+}
+
+function Signed({ step, signature }: { step: HoldPlan; signature: Signature }) {
+  const run = useRun();
+  const isChecked = signature.checkedAt !== undefined;
+  return (
+    <StepFrame
+      step={step}
+      heading={<h1 className="floor-step pb-5">{step.title}</h1>}
+      main={
+        isPassed(run.state, step) ? (
+          <NextAction step={step} note={isChecked ? 'PIN checked' : 'to be checked'} />
+        ) : (
+          <MainAction
+            label="Send it now"
+            next={run.isOnline ? 'the PIN is checked there' : 'no network'}
+            onPress={() => void run.syncNow()}
+          />
+        )
+      }
+    >
+      <SignatureStamp
+        state={isChecked ? 'signed' : 'to be checked'}
+        name={signature.name}
+        time={dayAndTime(signature.at, run.workshop.zone)}
+        words={signature.meaning}
+        covers={`${signature.covered} entries`}
+        isNotIndependent={signature.notIndependent !== undefined}
+      />
+      {!isChecked && (
+        <div className="pt-5">
+          <Notice tone="unsure" title="Signed, to be checked">
+            {step.offline === 'proceed'
+              ? 'The PIN is checked as soon as the tablet has a network. Work goes on at risk until then, and the vehicle can’t be handed over.'
+              : 'The PIN is checked as soon as the tablet has a network. Work past this hold point waits until then. Bring the tablet to the network.'}
+          </Notice>
+        </div>
+      )}
+    </StepFrame>
+  );
+}

@@ -1,0 +1,140 @@
+import { lazy, Suspense, type ReactNode } from 'react';
+import { whyNot } from '@/domain/job';
+import type { PlanStep } from '@/domain/plan';
+import { StepFrame } from '../StepFrame';
+import { useRun } from '../run-context';
+import { BarredStep } from './BarredStep';
+import { CountStep } from './CountStep';
+import { DoneStep } from './DoneStep';
+import { DoStep } from './DoStep';
+import { FillStep } from './FillStep';
+import { FitStep } from './FitStep';
+import { InspectStep } from './InspectStep';
+import { PhotographStep } from './PhotographStep';
+import { PlaceStep } from './PlaceStep';
+import { ReadStep } from './ReadStep';
+import { RefitStep } from './RefitStep';
+import { RemoveStep } from './RemoveStep';
+import { TightenStep } from './TightenStep';
+import { TurnStep } from './TurnStep';
+
+/*
+ * The screens of the rarer kinds come after the first action could be recorded; the service worker holds them,
+ * so that they come without a network too.
+ */
+const loaders = {
+  chooseShells: () => import('./ChooseShellsStep'),
+  gauge: () => import('./GaugeStep'),
+  hold: () => import('./HoldStep'),
+  witness: () => import('./WitnessStep'),
+  watch: () => import('./WatchStep'),
+  drive: () => import('./DriveStep'),
+  makeSafe: () => import('./MakeSafeStep'),
+  resume: () => import('./ResumeStep'),
+  handOver: () => import('./HandOverStep'),
+};
+const ChooseShellsStep = lazy(() => loaders.chooseShells().then((m) => ({ default: m.ChooseShellsStep })));
+const GaugeStep = lazy(() => loaders.gauge().then((m) => ({ default: m.GaugeStep })));
+const HoldStep = lazy(() => loaders.hold().then((m) => ({ default: m.HoldStep })));
+const WitnessStep = lazy(() => loaders.witness().then((m) => ({ default: m.WitnessStep })));
+const WatchStep = lazy(() => loaders.watch().then((m) => ({ default: m.WatchStep })));
+const DriveStep = lazy(() => loaders.drive().then((m) => ({ default: m.DriveStep })));
+const MakeSafeStep = lazy(() => loaders.makeSafe().then((m) => ({ default: m.MakeSafeStep })));
+const ResumeStep = lazy(() => loaders.resume().then((m) => ({ default: m.ResumeStep })));
+const HandOverStep = lazy(() => loaders.handOver().then((m) => ({ default: m.HandOverStep })));
+
+/** Brings the screens that come later, once nothing more urgent is to be done. */
+export function fetchLaterScreens(): void {
+  for (const load of Object.values(loaders)) {
+    // Not here yet is no trouble: the screen asks for it again when it is needed.
+    load().catch(() => undefined);
+  }
+}
+
+/** The screen of one step: its own by its kind, or what stands in its way, or what was recorded on it. */
+export function StepScreen({ step }: { step: PlanStep }) {
+  return (
+    <Suspense fallback={<StepFrame step={step} main={null} />}>{screenOf(step, useStanding(step))}</Suspense>
+  );
+}
+
+type Standing = 'open' | 'barred' | 'done';
+
+function useStanding(step: PlanStep): Standing {
+  const { state } = useRun();
+  const status = state.steps[step.id]?.status;
+  if (status === 'not applicable') return 'done';
+  if (status === 'done' && !OWN_DONE_SCREEN.has(step.kind)) return 'done';
+  if (status === 'done' || isSignedAlready(step, state.signatures)) return 'open';
+  return whyNot(state, step.id).ok ? 'open' : 'barred';
+}
+
+/** Kinds whose own screen shows what was recorded. */
+const OWN_DONE_SCREEN = new Set<PlanStep['kind']>([
+  'read',
+  'gauge',
+  'hold',
+  'count',
+  'watch',
+  'drive',
+  'choose-shells',
+]);
+
+function isSignedAlready(
+  step: PlanStep,
+  signatures: { step: string; reopened?: string | undefined }[],
+): boolean {
+  return (
+    step.kind === 'hold' &&
+    signatures.some((signature) => signature.step === step.id && signature.reopened === undefined)
+  );
+}
+
+function screenOf(step: PlanStep, standing: Standing): ReactNode {
+  if (standing === 'barred') return <BarredStep step={step} />;
+  if (standing === 'done') return <DoneStep step={step} />;
+  switch (step.kind) {
+    case 'do':
+      return <DoStep step={step} />;
+    case 'remove':
+      return <RemoveStep step={step} />;
+    case 'refit':
+      return <RefitStep step={step} />;
+    case 'place':
+      return <PlaceStep step={step} />;
+    case 'count':
+      return <CountStep step={step} />;
+    case 'inspect':
+      return <InspectStep step={step} />;
+    case 'read':
+      return <ReadStep step={step} />;
+    case 'turn':
+      return <TurnStep step={step} />;
+    case 'gauge':
+      return <GaugeStep step={step} />;
+    case 'choose-shells':
+      return <ChooseShellsStep step={step} />;
+    case 'tighten':
+      return <TightenStep step={step} />;
+    case 'fit':
+      return <FitStep step={step} />;
+    case 'fill':
+      return <FillStep step={step} />;
+    case 'photograph':
+      return <PhotographStep step={step} />;
+    case 'watch':
+      return <WatchStep step={step} />;
+    case 'drive':
+      return <DriveStep step={step} />;
+    case 'hold':
+      return <HoldStep step={step} />;
+    case 'witness':
+      return <WitnessStep step={step} />;
+    case 'make-safe':
+      return <MakeSafeStep step={step} />;
+    case 'resume':
+      return <ResumeStep step={step} />;
+    case 'hand-over':
+      return <HandOverStep step={step} />;
+  }
+}

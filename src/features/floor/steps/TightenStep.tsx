@@ -1,0 +1,199 @@
+import { useEffect, useState, type ReactNode } from 'react';
+import { LoudAction } from '@/components/LoudAction';
+import { MainAction } from '@/components/MainAction';
+import { QuietButton } from '@/components/QuietButton';
+import type { StepOf } from '@/domain/plan';
+import { following } from '../current-step';
+import { boltName } from '../done-words';
+import { NextAction } from '../NextAction';
+import { RecordAction } from '../RecordAction';
+import { StepCautions, StepFrame } from '../StepFrame';
+import { useRun, type Run } from '../run-context';
+import {
+  actionWords,
+  afterTouch,
+  nextTouch,
+  placeWords,
+  stageAmount,
+  touchDrafts,
+  wornBolt,
+  type TightenTouch,
+} from '../tighten-touch';
+import { fitToolInHand, toolWords, useFor, type Hand } from '../tool-choice';
+import { ReplaceBolt } from './ReplaceBolt';
+import { TightenDrawings } from './TightenDrawings';
+import { TypedReading } from './TypedReading';
+import { WasItTurned } from './WasItTurned';
+
+type TightenStepPlan = StepOf<'tighten'>;
+
+/** The programme of one cap or joint, an action a touch. */
+export function TightenStep({ step }: { step: TightenStepPlan }) {
+  const run = useRun();
+  const touch = nextTouch(run.state, step);
+  const isPass = touch?.actions[0].kind === 'stage' && isTorqueOrAngle(touch);
+  const asksAbout = isPass && run.askAbout === touch.key;
+  const { showAction } = run;
+  const key = touch?.key;
+  useEffect(() => {
+    if (key !== undefined) showAction(key);
+  }, [key, showAction]);
+  if (!touch) return <StepFrame step={step} main={<NextAction step={step} />} />;
+  if (asksAbout) return <WasItTurned step={step} touch={touch} />;
+  const [action] = touch.actions;
+  const worn = wornBolt(run.state, step);
+  if (action.kind === 'replace' || worn !== undefined) {
+    return (
+      <ReplaceBolt key={worn} step={step} bolt={worn ?? action.bolt} isWorn={action.kind !== 'replace'} />
+    );
+  }
+  return <TightenAction key={touch.key} step={step} touch={touch} />;
+}
+
+function isTorqueOrAngle({ actions: [action] }: TightenTouch): boolean {
+  return action.kind === 'stage' && (action.spec.kind === 'torque' || action.spec.kind === 'angle');
+}
+
+function TightenAction({ step, touch }: { step: TightenStepPlan; touch: TightenTouch }) {
+  const run = useRun();
+  const [isTyping, setTyping] = useState(false);
+  const [action] = touch.actions;
+  const hand = handFor(touch);
+  const tool = hand && fitToolInHand(run.state, run.workshop, hand, toolUse(step, touch, hand), run.now());
+  const needsTool = hand !== undefined && step.class === 'A' && !tool;
+  if (isTyping && action.kind === 'stage') {
+    return <TypedReading step={step} action={action} tool={tool} onClose={() => setTyping(false)} />;
+  }
+  return (
+    <StepFrame
+      step={step}
+      heading={<ActionHeading step={step} touch={touch} run={run} />}
+      then={thenWords(run, step, touch)}
+      foot={tool ? <p>{toolWords(tool)}</p> : undefined}
+      quiet={<SecondQuiet hand={hand} needsTool={needsTool} onType={() => setTyping(true)} />}
+      main={
+        needsTool ? (
+          <MainAction
+            label={hand === 'angle' ? 'Choose the angle gauge' : 'Choose the torque wrench'}
+            next={run.state.tools[hand] ? 'the one in hand doesn’t fit' : 'class A names its tool'}
+            onPress={() => run.openSheet(hand === 'angle' ? 'angle tool' : 'torque tool')}
+          />
+        ) : (
+          <RecordAction
+            label={mainLabel(run, step, touch)}
+            drafts={() => touchDrafts(run.state, step, touch, tool)}
+          />
+        )
+      }
+    >
+      <TightenDrawings step={step} action={action} />
+    </StepFrame>
+  );
+}
+
+function SecondQuiet({
+  hand,
+  needsTool,
+  onType,
+}: {
+  hand: Hand | undefined;
+  needsTool: boolean;
+  onType: () => void;
+}): ReactNode {
+  const run = useRun();
+  if (hand !== undefined && !needsTool) {
+    return <QuietButton label={hand === 'angle' ? 'Enter angle' : 'Enter torque'} onPress={onType} />;
+  }
+  return <QuietButton label="Steps" onPress={() => run.openSheet('steps')} />;
+}
+
+/** Which bolt and how much, equally loud; the name of a joint that is no cap is a heading. */
+function ActionHeading({ step, touch, run }: { step: TightenStepPlan; touch: TightenTouch; run: Run }) {
+  const [action] = touch.actions;
+  const names = touch.actions.map(({ bolt }) => bolt);
+  const isShort = names.every((name) => name.length <= 3);
+  const { words, figure, unit } = loudWords(run, step, touch);
+  return (
+    <div className="grid gap-3">
+      {isShort ? null : <h1 className="floor-step">{names.join(', ')}</h1>}
+      <div className={names.length > 1 ? '[&_.loud-name]:text-7xl [&_.loud-figure]:text-7xl' : undefined}>
+        <LoudAction
+          name={isShort ? names.join(' ') : ''}
+          words={words}
+          figure={figure}
+          unit={unit}
+          step={placeWords(run.state, step, action)}
+        />
+      </div>
+      {action.kind === 'stage' && action.cycle === 0 && action.stage === 0 && <StepCautions step={step} />}
+    </div>
+  );
+}
+
+function loudWords(
+  run: Run,
+  step: TightenStepPlan,
+  { actions: [action] }: TightenTouch,
+): { words: string; figure?: string; unit?: string } {
+  if (action.kind === 'release') return { words: `release: ${releaseReasons[action.because]}` };
+  if (action.kind === 'replace') return { words: 'replace' };
+  const amount = stageAmount(run.state, step, action);
+  switch (action.spec.kind) {
+    case 'torque': {
+      const [figure = '', unit = ''] = amount?.split(' ') ?? [];
+      return { words: 'tighten to', figure, unit };
+    }
+    case 'angle':
+      return { words: 'turn through', ...(amount === undefined ? {} : { figure: amount }) };
+    case 'release':
+      return { words: 'release, a quarter turn at a time' };
+    case 'mark':
+      return { words: `paint the ${action.spec.colour} mark` };
+  }
+}
+
+const releaseReasons = {
+  over: 'its partner was turned too far',
+  replaced: 'its partner was replaced',
+  released: 'its partner was let off',
+} as const;
+
+function mainLabel(run: Run, step: TightenStepPlan, touch: TightenTouch): string {
+  const [action, ...others] = touch.actions;
+  if (action.kind !== 'stage') return `Released ${touch.actions.map(({ bolt }) => bolt).join(' and ')}`;
+  const amount = stageAmount(run.state, step, action) ?? '';
+  switch (action.spec.kind) {
+    case 'torque':
+      return others.length === 0
+        ? `Tightened to ${amount}`
+        : `${others.length === 1 ? 'Both' : 'All'} at ${amount}`;
+    case 'angle':
+      return `Turned ${amount}`;
+    case 'release':
+      return others.length === 0 ? 'Released' : `${others.length === 1 ? 'Both' : 'All'} released`;
+    case 'mark':
+      return action.bolt.length <= 3 ? `Marked ${action.bolt}` : 'Marked';
+  }
+}
+
+function thenWords(run: Run, step: TightenStepPlan, touch: TightenTouch): string {
+  const next = afterTouch(run.state, step, touch);
+  if (next) return `then ${actionWords(run.state, step, next)}`;
+  const after = following(run.state, step);
+  return after
+    ? `then ${after.title.charAt(0).toLowerCase()}${after.title.slice(1)}`
+    : `then ${boltName(step.bolts[0] ?? '')} is finished`;
+}
+
+/** Which tool a touch needs; none for a release or a mark. */
+export function handFor({ actions: [action] }: TightenTouch): Hand | undefined {
+  if (action.kind !== 'stage') return undefined;
+  if (action.spec.kind === 'angle') return 'angle';
+  return action.spec.kind === 'torque' ? 'torque' : undefined;
+}
+
+/** What the touch asks of its tool. */
+export function toolUse(step: TightenStepPlan, { actions: [action] }: TightenTouch, hand: Hand) {
+  const torque = action.kind === 'stage' && action.spec.kind === 'torque' ? action.spec.target : undefined;
+  return useFor(hand, step.class, torque);
+}
