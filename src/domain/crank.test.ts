@@ -126,10 +126,18 @@ describe('turningPlan', () => {
     );
   });
 
-  it('does not lose a whole turn to a rounding error at the edge of a window', () => {
-    const engine: Engine = { crankpins: [{ pin: 1, angle: 360 / 7, rods: [{ rod: 1, bankAxis: 0 }] }] };
-    const edge = 180 - 360 / 7 - 10.1;
-    expect(turningPlan(engine, { reach: 10.1, start: edge })).toHaveLength(1);
+  it('does not lose a whole turn to a rounding error at the far edge of a window', () => {
+    const degrees = (min: number, max: number): fc.Arbitrary<number> =>
+      fc.integer({ min: min * 1e6, max: max * 1e6 }).map((millionths) => millionths / 1e6);
+    fc.assert(
+      fc.property(degrees(-360, 360), degrees(-60, 60), degrees(0, 90), (angle, bankAxis, reach) => {
+        const engine: Engine = { crankpins: [{ pin: 1, angle, rods: [{ rod: 1, bankAxis }] }] };
+        const edge = bankAxis + 180 - angle + reach;
+        const [stop] = turningPlan(engine, { reach, start: edge });
+        const off = mod((stop?.angle ?? Number.NaN) - edge);
+        expect(Math.min(off, 360 - off)).toBeLessThan(1e-5);
+      }),
+    );
   });
 
   it('refuses what can not be', () => {
