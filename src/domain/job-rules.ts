@@ -92,6 +92,8 @@ function whyNotRole(kind: EntryKind, roles: string[]): Verdict {
     case 'revoked':
     case 'plan-moved':
       return may('supervisor', 'quality lead');
+    case 'photographed':
+      return may('technician', 'supervisor', 'owner');
     case 'witnessed':
       return may('supervisor', 'quality lead', 'auditor', 'owner');
     case 'refused':

@@ -5,7 +5,7 @@ import { ButtonLink } from '@/components/ButtonLink';
 import { Notice } from '@/components/Notice';
 import { TextField } from '@/components/TextField';
 import { FormTrouble } from './FormTrouble';
-import { prepareTablet } from './prepare-tablet';
+import { prepareTablet } from '@/offline/prepare-tablet';
 import { usePostedForm } from './use-posted-form';
 
 const signedIn = z.object({ personId: z.string(), name: z.string() });

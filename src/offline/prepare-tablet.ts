@@ -1,4 +1,4 @@
-import { openOffline } from '@/offline/offline';
+import { openOffline } from './offline';
 import {
   enrolAuthorKey,
   enrolTablet,
@@ -6,8 +6,8 @@ import {
   refreshSignedIn,
   whoIsWorking,
   setWorking,
-} from '@/offline/tablet';
-import type { Outcome } from '@/offline/server-call';
+} from './tablet';
+import type { Outcome } from './server-call';
 
 /**
  * Makes this browser ready for the person who has just signed in: known to the workshop as a tablet, with

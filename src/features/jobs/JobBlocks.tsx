@@ -1,0 +1,78 @@
+import { nextSteps, whyNot } from '@/domain/job';
+import { openBlockers } from '@/domain/job-order';
+import type { JobState } from '@/domain/job-state';
+import { dayAndTime } from '@/domain/time-words';
+
+export interface JobBlocksProps {
+  state: JobState;
+  zone: string;
+  waiting: { step: string; holdPoint: string; title: string }[];
+}
+
+/** What stands in the way: signatures that are due, open deviations, parts, and what is still open. */
+export function JobBlocks({ state, zone, waiting }: JobBlocksProps) {
+  const things = [
+    ...waiting.map(({ step, title }) => ({
+      key: step,
+      what: `Signature due: ${title}`,
+      note: 'at the vehicle, on the Floor',
+    })),
+    ...openBlockers(state).map((deviation) => ({
+      key: deviation.id,
+      what: `Deviation, class ${deviation.class}: ${deviation.words}`,
+      note: `${deviation.raisedByName}, ${dayAndTime(deviation.raisedAt, zone)}`,
+    })),
+    ...state.plan.steps
+      .filter(({ id }) => state.steps[id]?.status === 'waiting for a part')
+      .map(({ id, title }) => ({ key: id, what: `Waiting for a part: ${title}`, note: '' })),
+    ...state.signatures
+      .filter(({ checkedAt, reopened }) => checkedAt === undefined && reopened === undefined)
+      .map(({ entry, holdPoint }) => ({
+        key: entry,
+        what: `Signed, to be checked: ${holdPoint}`,
+        note: 'bring the tablet to the network',
+      })),
+    ...barred(state),
+  ];
+  return (
+    <section className="part">
+      <h2 className="part-title">What blocks it</h2>
+      {things.length === 0 ? <p>Nothing blocks it.</p> : <BlockList things={things} />}
+      {state.open.length > 0 && (
+        <>
+          <h3 className="form-label mt-4">Taken off or put in, still open</h3>
+          <p>
+            {state.open
+              .map(({ name, count }) => (count === undefined ? name : `${name} (${count})`))
+              .join(', ')}
+          </p>
+        </>
+      )}
+    </section>
+  );
+}
+
+function BlockList({ things }: { things: { key: string; what: string; note: string }[] }) {
+  return (
+    <ul className="job-list">
+      {things.map(({ key, what, note }) => (
+        <li key={key}>
+          <b>{what}</b>
+          {note !== '' && <span className="text-soft"> {note}</span>}
+        </li>
+      ))}
+    </ul>
+  );
+}
+
+/** A job that runs and has nothing that can be done says why at its first open step. */
+function barred(state: JobState): { key: string; what: string; note: string }[] {
+  if (state.phase !== 'running' || nextSteps(state).length > 0) return [];
+  const first = state.plan.steps.find(
+    ({ id, onDemand }) => onDemand !== true && state.steps[id]?.status === 'open',
+  );
+  const verdict = first && whyNot(state, first.id);
+  return first && verdict && !verdict.ok
+    ? [{ key: first.id, what: `${first.title}: ${verdict.why}`, note: verdict.unlock ?? '' }]
+    : [];
+}

@@ -1,0 +1,97 @@
+import { QueryClientProvider } from '@tanstack/react-query';
+import { useState } from 'react';
+import { ButtonLink } from '@/components/ButtonLink';
+import { EngineBelow } from '@/components/EngineBelow';
+import { ErrorNote } from '@/components/ErrorNote';
+import { engineView } from '@/domain/engine-view';
+import { JobBlocks } from './JobBlocks';
+import { JobClearances } from './JobClearances';
+import { JobFacts } from './JobFacts';
+import { JobPeople } from './JobPeople';
+import { JobPhotos } from './JobPhotos';
+import { JobProgress } from './JobProgress';
+import { JobSignatures } from './JobSignatures';
+import { jobAnswer, type JobAnswer } from './job-answer';
+import { newQueryClient, useServer } from './use-server';
+
+export interface JobPageProps {
+  job: string;
+  zone: string;
+  /** May this person put people on the job? */
+  canAssign: boolean;
+  /** May this person run jobs on the Floor? */
+  canRun: boolean;
+  canReadTrail: boolean;
+}
+
+/** One job: how far it is, what blocks it, who works on it, and what is known of it. */
+export function JobPage(props: JobPageProps) {
+  const [client] = useState(newQueryClient);
+  return (
+    <QueryClientProvider client={client}>
+      <LoadedJob {...props} />
+    </QueryClientProvider>
+  );
+}
+
+function LoadedJob(props: JobPageProps) {
+  const { data: job, error } = useServer(`/api/jobs/${props.job}`, jobAnswer);
+  if (job) return <Job {...props} answer={job} />;
+  if (error)
+    return (
+      <ErrorNote
+        happened={error.message}
+        kept="The job is as it was."
+        next="It is asked for again by itself."
+      />
+    );
+  return <p role="status">Reading the job</p>;
+}
+
+function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & { answer: JobAnswer }) {
+  const { jobState } = answer;
+  const next = answer.next && jobState.plan.steps.find(({ id }) => id === answer.next?.step);
+  return (
+    <>
+      <div className="page-head">
+        <h1 className="page-title">
+          Job <span className="figure">{answer.number}</span>, {answer.registration ?? 'registration erased'}
+        </h1>
+        <div className="form-actions no-print">
+          {canReadTrail && (
+            <ButtonLink href={`/jobs/${answer.id}/trail`} look="quiet">
+              Read the trail
+            </ButtonLink>
+          )}
+          {canRun && (
+            <ButtonLink href={`/floor#job=${answer.id}`} look="main">
+              Run on the Floor
+            </ButtonLink>
+          )}
+        </div>
+      </div>
+      <div className="job-columns">
+        <div className="job-column">
+          <JobProgress
+            progress={answer.progress}
+            phase={answer.phase}
+            at={answer.at}
+            next={answer.next?.title}
+          />
+          <JobBlocks state={jobState} zone={zone} waiting={answer.waiting} />
+          <JobClearances state={jobState} />
+          <JobSignatures state={jobState} zone={zone} />
+          <JobPhotos photos={jobState.photos} zone={zone} />
+        </div>
+        <div className="job-column">
+          <section className="part">
+            <h2 className="part-title">The engine from below</h2>
+            <EngineBelow {...engineView(jobState, next, zone)} />
+          </section>
+          <JobPeople job={answer} zone={zone} canAssign={canAssign} />
+          <JobFacts job={answer} zone={zone} />
+        </div>
+      </div>
+    </>
+  );
+}

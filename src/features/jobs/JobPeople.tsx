@@ -1,0 +1,98 @@
+import { useQueryClient } from '@tanstack/react-query';
+import { useState } from 'react';
+import * as z from 'zod/mini';
+import { Button } from '@/components/Button';
+import { Checkbox } from '@/components/Checkbox';
+import { ErrorNote } from '@/components/ErrorNote';
+import { dayAndTime } from '@/domain/time-words';
+import { openOffline } from '@/offline/offline';
+import { callServer } from '@/offline/server-call';
+import type { JobAnswer } from './job-answer';
+import { useServer } from './use-server';
+
+export interface JobPeopleProps {
+  job: JobAnswer;
+  zone: string;
+  canAssign: boolean;
+}
+
+/** Who is on the job, who works on it now, and who had a hand in it. */
+export function JobPeople({ job, zone, canAssign }: JobPeopleProps) {
+  const [isEditing, setEditing] = useState(false);
+  const hands = Object.values(job.jobState.people);
+  return (
+    <section className="part">
+      <h2 className="part-title">Who works on it</h2>
+      <p>
+        {job.working ? (
+          <>
+            <b>{job.working.name}</b> since {dayAndTime(job.working.since, zone)}
+          </>
+        ) : (
+          'Nobody yet.'
+        )}
+      </p>
+      <p className="mt-2">
+        On the job: {job.people.length === 0 ? 'nobody' : job.people.map(({ name }) => name).join(', ')}
+      </p>
+      {hands.length > 0 && <p className="mt-2">Had a hand in it: {hands.join(', ')}</p>}
+      {canAssign && !isEditing && (
+        <Button look="quiet" onClick={() => setEditing(true)}>
+          Change who is on it
+        </Button>
+      )}
+      {isEditing && <Assignment job={job} onDone={() => setEditing(false)} />}
+    </section>
+  );
+}
+
+const workshopAnswer = z.object({
+  people: z.array(
+    z.object({ id: z.string(), name: z.string(), roles: z.array(z.string()), active: z.boolean() }),
+  ),
+});
+
+function Assignment({ job, onDone }: { job: JobAnswer; onDone: () => void }) {
+  const { data, error } = useServer('/api/workshop', workshopAnswer);
+  const [chosen, setChosen] = useState(job.people.map(({ id }) => id));
+  const [trouble, setTrouble] = useState<string>();
+  const client = useQueryClient();
+  const save = async () => {
+    const saved = await callServer(openOffline(), {
+      method: 'POST',
+      path: `/api/jobs/${job.id}/people`,
+      body: { people: chosen },
+      answer: z.looseObject({}),
+    });
+    if (!saved.ok) return setTrouble(saved.why);
+    await client.invalidateQueries();
+    onDone();
+  };
+  const people = data?.people.filter(
+    ({ active, roles }) => active && roles.some((r) => r === 'technician' || r === 'supervisor'),
+  );
+  const words = trouble ?? error?.message;
+  return (
+    <div className="form mt-3">
+      {words !== undefined && <ErrorNote happened={words} kept="Nobody was changed." next="Try again." />}
+      {people?.map(({ id, name, roles }) => (
+        <Checkbox
+          key={id}
+          label={`${name}, ${roles.join(', ')}`}
+          checked={chosen.includes(id)}
+          onChange={(event) =>
+            setChosen(event.target.checked ? [...chosen, id] : chosen.filter((other) => other !== id))
+          }
+        />
+      ))}
+      <div className="form-actions">
+        <Button look="main" onClick={() => void save()}>
+          Keep
+        </Button>
+        <Button look="quiet" onClick={onDone}>
+          Leave as it was
+        </Button>
+      </div>
+    </div>
+  );
+}

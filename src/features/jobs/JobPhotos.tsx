@@ -1,0 +1,34 @@
+import type { Photo } from '@/domain/job-state';
+import { dayAndTime } from '@/domain/time-words';
+
+/** The contact sheet of a job. */
+export function JobPhotos({ photos, zone }: { photos: Photo[]; zone: string }) {
+  return (
+    <section className="part">
+      <h2 className="part-title">Photographs</h2>
+      {photos.length === 0 ? (
+        <p>None yet.</p>
+      ) : (
+        <ul className="job-photos">
+          {photos.map(({ entry, hash, subject, at, from }) => (
+            <li key={entry}>
+              <a href={`/api/photos/${hash}`} target="_blank" rel="noreferrer">
+                <img
+                  src={`/api/photos/${hash}?size=thumb`}
+                  alt={subject}
+                  width={160}
+                  height={120}
+                  loading="lazy"
+                />
+                <span>{subject}</span>
+              </a>
+              <span className="text-soft">
+                {dayAndTime(at, zone)}, {from}
+              </span>
+            </li>
+          ))}
+        </ul>
+      )}
+    </section>
+  );
+}

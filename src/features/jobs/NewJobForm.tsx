@@ -1,0 +1,91 @@
+import { useRef, useState } from 'react';
+import { useForm } from 'react-hook-form';
+import { Button } from '@/components/Button';
+import { ErrorNote } from '@/components/ErrorNote';
+import { Notice } from '@/components/Notice';
+import { ArrivalPhotos } from './ArrivalPhotos';
+import { AgreementFields, CustomerFields, PeopleFields, VehicleFields } from './NewJobFieldsets';
+import { isReadyFor, openNewJob, type ArrivalPhoto, type NewJobFields, type PendingOpening } from './new-job';
+import type { PersonChoice, RouteChoice } from './NewJobPage';
+
+export interface NewJobFormProps {
+  actor: string;
+  routes: RouteChoice[];
+  people: PersonChoice[];
+}
+
+const EMPTY: NewJobFields = {
+  route: '',
+  options: {},
+  registration: '',
+  vin: '',
+  odometer: '',
+  odometerUnit: 'km',
+  customerName: '',
+  customerEmail: '',
+  customerPhone: '',
+  approver: '',
+  complaint: '',
+  oldParts: 'shown to the customer, then packed with the vehicle',
+  promisedOn: '',
+  note: '',
+  people: [],
+};
+
+/** The form of a new job. What was typed stays until the job is open. */
+export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
+  const [only] = routes.length === 1 ? routes : [];
+  const form = useForm<NewJobFields>({ defaultValues: { ...EMPTY, route: only?.id ?? '' } });
+  const [photos, setPhotos] = useState<ArrivalPhoto[]>([]);
+  const [trouble, setTrouble] = useState<string>();
+  const [opened, setOpened] = useState<{ id: string; trouble: string }>();
+  const pending = useRef<PendingOpening>(undefined);
+  const route = routes.find(({ id }) => id === form.watch('route'));
+  const send = form.handleSubmit(async (typed) => {
+    setTrouble(undefined);
+    if (!(await isReadyFor(actor))) {
+      setTrouble('This browser can’t sign for you yet. Sign in here once more, then open the job.');
+      return;
+    }
+    const asked = new Set(route?.options.map(({ id }) => id));
+    const options = Object.fromEntries(Object.entries(typed.options).filter(([id]) => asked.has(id)));
+    const outcome = await openNewJob(actor, { ...typed, options }, photos, pending.current, (kept) => {
+      pending.current = kept;
+    });
+    if (!outcome.ok) setTrouble(outcome.why);
+    else if (outcome.trouble === undefined) window.location.assign(`/jobs/${outcome.id}`);
+    else setOpened({ id: outcome.id, trouble: outcome.trouble });
+  });
+  if (opened) {
+    return (
+      <Notice tone="unsure" title="The job is open; the photographs are not in it yet" isAlert>
+        <p>{opened.trouble}</p>
+        <p>
+          <a href={`/jobs/${opened.id}`}>Go to the job</a>
+        </p>
+      </Notice>
+    );
+  }
+  const parts = { form, route, routes, people };
+  return (
+    <form className="form job-form" noValidate onSubmit={(event) => void send(event)}>
+      {trouble !== undefined && (
+        <ErrorNote
+          happened={trouble}
+          kept="No job was opened twice; what you typed is still here."
+          next="Mend it and send it again."
+        />
+      )}
+      <VehicleFields {...parts} />
+      <ArrivalPhotos photos={photos} onChange={setPhotos} />
+      <CustomerFields {...parts} />
+      <AgreementFields {...parts} />
+      <PeopleFields {...parts} />
+      <div className="form-actions">
+        <Button type="submit" look="main" isBusy={form.formState.isSubmitting}>
+          Open the job
+        </Button>
+      </div>
+    </form>
+  );
+}
