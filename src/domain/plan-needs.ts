@@ -204,8 +204,11 @@ function shorten(placed: PlacedStep[], needs: Needs): Needs {
   const short: Needs = new Map();
   for (const { id } of placed) {
     const wanted = [...new Set(needs.get(id) ?? [])];
-    const implied = new Set(wanted.flatMap((need) => [...(behind.get(need) ?? [])]));
-    behind.set(id, new Set([...wanted, ...implied]));
+    const implied = new Set<string>();
+    for (const need of wanted) behind.get(need)?.forEach((far) => implied.add(far));
+    const all = new Set(implied);
+    for (const need of wanted) all.add(need);
+    behind.set(id, all);
     const kept = wanted.filter((need) => !implied.has(need));
     kept.sort((a, b) => (position.get(a) ?? 0) - (position.get(b) ?? 0));
     short.set(id, kept);

@@ -1,7 +1,7 @@
 import { compilePlan } from '@/domain/compile-plan';
 import type { EngineSheet, Procedure, Route } from '@/domain/document';
 import type { Plan } from '@/domain/plan';
-import { loadShippedDocuments } from '@/server/shipped-documents';
+import { loadShippedDocuments, type ShippedDocument } from '@/server/shipped-documents';
 
 export type ShippedRoute = 'merrow-s6-rod-bearings' | 'corvane-v8-rod-bearings';
 
@@ -12,9 +12,11 @@ export const plainOptions: Record<string, string> = {
   plate: 'none',
 };
 
+let shipped: ShippedDocument[] | undefined;
+
 /** A shipped route compiled for the plainest vehicle, or for other options. */
 export function shippedPlan(routeId: ShippedRoute, options: Record<string, string> = {}): Plan {
-  const shipped = loadShippedDocuments();
+  shipped ??= loadShippedDocuments();
   const documents = shipped.map(({ document }) => document);
   const route = documents.find((one): one is Route => one.kind === 'route' && one.id === routeId);
   const engine = documents.find(
