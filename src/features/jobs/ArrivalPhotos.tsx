@@ -1,4 +1,4 @@
-import { useEffect, useState, type ChangeEvent } from 'react';
+import { useEffect, useMemo, useState, type ChangeEvent } from 'react';
 import { Button } from '@/components/Button';
 import { PhotoError, preparePhoto } from '@/offline/photo';
 import type { ArrivalPhoto } from './new-job';
@@ -68,11 +68,7 @@ export function ArrivalPhotos({ photos, onChange }: ArrivalPhotosProps) {
 }
 
 function Preview({ photo }: { photo: ArrivalPhoto }) {
-  const [url, setUrl] = useState<string>();
-  useEffect(() => {
-    const made = URL.createObjectURL(new Blob([photo.bytes], { type: photo.type }));
-    setUrl(made);
-    return () => URL.revokeObjectURL(made);
-  }, [photo]);
-  return url === undefined ? null : <img src={url} alt={photo.subject} width={160} height={120} />;
+  const url = useMemo(() => URL.createObjectURL(new Blob([photo.bytes], { type: photo.type })), [photo]);
+  useEffect(() => () => URL.revokeObjectURL(url), [url]);
+  return <img src={url} alt={photo.subject} width={160} height={120} />;
 }

@@ -64,7 +64,10 @@ function Assignment({ job, onDone }: { job: JobAnswer; onDone: () => void }) {
       body: { people: chosen },
       answer: z.looseObject({}),
     });
-    if (!saved.ok) return setTrouble(saved.why);
+    if (!saved.ok) {
+      setTrouble(saved.why);
+      return;
+    }
     await client.invalidateQueries();
     onDone();
   };

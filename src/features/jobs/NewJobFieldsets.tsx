@@ -1,4 +1,4 @@
-import type { UseFormReturn } from 'react-hook-form';
+import { useWatch, type UseFormReturn } from 'react-hook-form';
 import { Checkbox } from '@/components/Checkbox';
 import { DateField } from '@/components/DateField';
 import { SelectField } from '@/components/SelectField';
@@ -20,7 +20,7 @@ const NEEDED = 'This is needed.';
 /** Which vehicle, which engine, and what is fitted to it. */
 export function VehicleFields({ form, route, routes }: FieldsetProps) {
   const { errors } = form.formState;
-  const vin = form.watch('vin');
+  const vin = useWatch({ control: form.control, name: 'vin' });
   return (
     <fieldset className="part">
       <legend className="part-title">Vehicle</legend>

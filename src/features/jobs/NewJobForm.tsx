@@ -1,5 +1,5 @@
 import { useRef, useState } from 'react';
-import { useForm } from 'react-hook-form';
+import { useForm, useWatch } from 'react-hook-form';
 import { Button } from '@/components/Button';
 import { ErrorNote } from '@/components/ErrorNote';
 import { Notice } from '@/components/Notice';
@@ -39,8 +39,9 @@ export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
   const [photos, setPhotos] = useState<ArrivalPhoto[]>([]);
   const [trouble, setTrouble] = useState<string>();
   const [opened, setOpened] = useState<{ id: string; trouble: string }>();
+  const routeId = useWatch({ control: form.control, name: 'route' });
   const pending = useRef<PendingOpening>(undefined);
-  const route = routes.find(({ id }) => id === form.watch('route'));
+  const route = routes.find(({ id }) => id === routeId);
   const send = form.handleSubmit(async (typed) => {
     setTrouble(undefined);
     if (!(await isReadyFor(actor))) {

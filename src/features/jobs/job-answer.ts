@@ -41,6 +41,8 @@ export const jobAnswer = z.object({
   ),
   identity: z.record(z.string(), z.string()),
   withheld: z.array(z.string()),
-  jobState: z.custom<JobState>((value) => typeof value === 'object' && value !== null && 'steps' in value),
+  jobState: z.custom<JobState>(
+    (value: unknown) => typeof value === 'object' && value !== null && 'steps' in value,
+  ),
 });
 export type JobAnswer = z.infer<typeof jobAnswer>;
