@@ -1,4 +1,4 @@
-import { useRef, useState } from 'react';
+import { useState } from 'react';
 import { useForm, useWatch } from 'react-hook-form';
 import { Button } from '@/components/Button';
 import { ErrorNote } from '@/components/ErrorNote';
@@ -40,7 +40,7 @@ export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
   const [trouble, setTrouble] = useState<string>();
   const [opened, setOpened] = useState<{ id: string; trouble: string }>();
   const routeId = useWatch({ control: form.control, name: 'route' });
-  const pending = useRef<PendingOpening>(undefined);
+  const [pending, setPending] = useState<PendingOpening>();
   const route = routes.find(({ id }) => id === routeId);
   const send = form.handleSubmit(async (typed) => {
     setTrouble(undefined);
@@ -50,9 +50,7 @@ export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
     }
     const asked = new Set(route?.options.map(({ id }) => id));
     const options = Object.fromEntries(Object.entries(typed.options).filter(([id]) => asked.has(id)));
-    const outcome = await openNewJob(actor, { ...typed, options }, photos, pending.current, (kept) => {
-      pending.current = kept;
-    });
+    const outcome = await openNewJob(actor, { ...typed, options }, photos, pending, setPending);
     if (!outcome.ok) setTrouble(outcome.why);
     else if (outcome.trouble === undefined) window.location.assign(`/jobs/${outcome.id}`);
     else setOpened({ id: outcome.id, trouble: outcome.trouble });
