@@ -37,7 +37,15 @@ export async function keepDevice(db: FloorDatabase, device: Device): Promise<voi
 }
 
 /** `id.credential` as the server asks for it, or undefined while the tablet is not enrolled. */
-export async function findCredential(db: FloorDatabase): Promise<string | undefined> {
-  const device = await findDevice(db);
-  return device?.credential === undefined ? undefined : `${device.id}.${device.credential}`;
+export function credentialOf({ id, credential }: Device): string | undefined {
+  return credential === undefined ? undefined : `${id}.${credential}`;
+}
+
+/** Notes that the server no longer knows this credential, unless there is a newer one by now. */
+export async function noteForgotten(db: FloorDatabase, { credential }: Device): Promise<void> {
+  await db.transaction('rw', db.meta, async () => {
+    const present = await findDevice(db);
+    if (present && present.credential === credential)
+      await keepDevice(db, { ...present, mustEnrolAgain: true });
+  });
 }

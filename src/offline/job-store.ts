@@ -161,15 +161,24 @@ async function readRows(db: FloorDatabase, job: string, from: TrailPoint | null)
 
 async function readJob(db: FloorDatabase, job: string, present: Folded | undefined): Promise<Folded> {
   const rows = await readRows(db, job, present?.view.row.have ?? null);
-  if (present && rows.row.revision === present.view.row.revision) return present;
+  if (rows.row.revision === present?.view.row.revision) return present;
   const recorded = rows.entries.map((row) => row.recorded);
   const outbox = rows.pending.map((row) => row.entry);
-  const grown = present && rows.grows ? foldOn(present.view.confirmed, recorded) : undefined;
-  const plans = grown && present ? present.plans : await readPlans(db, rows.row.plan, recorded, outbox);
-  const confirmed = grown ?? foldAll(plans, rows.row.plan, recorded);
+  const grown = rows.grows ? grow(present, recorded) : undefined;
+  const plans = grown?.plans ?? (await readPlans(db, rows.row.plan, recorded, outbox));
+  const confirmed = grown?.confirmed ?? foldAll(plans, rows.row.plan, recorded);
   const state = foldOn(confirmed, outbox) ?? (await foldMoved(db, job, plans, outbox));
   const { row, pending, refused, deviceSeq } = rows;
   return { plans, view: { job, row, state, confirmed, pending, refused, stopped: row.stopped, deviceSeq } };
+}
+
+/** What was folded before, with what is new; undefined where all of it has to be folded again. */
+function grow(
+  present: Folded | undefined,
+  recorded: Recorded[],
+): { plans: Folded['plans']; confirmed: JobState } | undefined {
+  const confirmed = present && foldOn(present.view.confirmed, recorded);
+  return confirmed && { plans: present.plans, confirmed };
 }
 
 /** The fold of more entries onto a state; undefined where one moves the plan, which only a whole fold knows. */

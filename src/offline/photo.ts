@@ -89,9 +89,14 @@ export async function photoUrl({ db }: Surroundings, hash: string): Promise<stri
   return photo && kept && URL.createObjectURL(new Blob([kept.bytes], { type: photo.type }));
 }
 
+/** Absent where the page did not come over HTTPS. */
+function browserStorage(): StorageManager | undefined {
+  return 'storage' in navigator ? navigator.storage : undefined;
+}
+
 /** Is there room for photographs beside the records? In words when not; `low` is false where nobody can tell. */
 export async function roomForPhotos(
-  storage: Pick<StorageManager, 'estimate'> | undefined = navigator.storage,
+  storage: Pick<StorageManager, 'estimate'> | undefined = browserStorage(),
 ): Promise<{ low: boolean; words?: string | undefined }> {
   const { quota, usage } = (await storage?.estimate()) ?? {};
   if (quota === undefined || usage === undefined || quota - usage >= RESERVED_BYTES) return { low: false };
@@ -104,7 +109,7 @@ export async function roomForPhotos(
 
 /** Asks the browser not to clear the records when it is short of space; tells whether it agreed. */
 export async function askToPersist(
-  storage: Pick<StorageManager, 'persist' | 'persisted'> | undefined = navigator.storage,
+  storage: Pick<StorageManager, 'persist' | 'persisted'> | undefined = browserStorage(),
 ): Promise<boolean> {
   if (!storage) return false;
   return (await storage.persisted()) || (await storage.persist());

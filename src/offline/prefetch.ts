@@ -8,7 +8,6 @@ import { NO_PREVIOUS } from '@/domain/trail-chain';
 import { changeJob, ofJob, type JobRow, type WorkshopRow } from './database';
 import { documentHash } from './hashing';
 import { plansNeeded } from './job-store';
-import type { Offline } from './offline';
 import { callServer, type Outcome, type Trouble } from './server-call';
 import type { Surroundings } from './surroundings';
 
@@ -161,20 +160,24 @@ const WRONG_PLAN: Trouble = {
   why: 'The plan that was sent is not the one that the job runs under. It was not taken over. Tell the supervisor.',
 };
 
+interface SyncingSurroundings extends Surroundings {
+  sync: { now(): Promise<Outcome> };
+}
+
 /** Makes one job workable without a network: its plan and its trail to the end. */
-export async function makeAvailableOffline(offline: Offline, job: string): Promise<Outcome> {
+export async function makeAvailableOffline(offline: SyncingSurroundings, job: string): Promise<Outcome> {
   return makeAllAvailable(offline, [job]);
 }
 
 /** Makes the open jobs that a person works on workable without a network. */
-export async function keepOpenJobsOffline(offline: Offline, person: string): Promise<Outcome> {
+export async function keepOpenJobsOffline(offline: SyncingSurroundings, person: string): Promise<Outcome> {
   const listed = await pullJobList(offline);
   if (!listed.ok) return listed;
   const own = await offline.db.jobs.filter(({ people }) => people.includes(person)).primaryKeys();
   return makeAllAvailable(offline, own);
 }
 
-async function makeAllAvailable(offline: Offline, jobs: string[]): Promise<Outcome> {
+async function makeAllAvailable(offline: SyncingSurroundings, jobs: string[]): Promise<Outcome> {
   const { db } = offline;
   if (!(await db.workshop.get('workshop'))) {
     const workshop = await pullWorkshop(offline);

@@ -1,12 +1,5 @@
 import { openOffline } from './offline';
-import {
-  enrolAuthorKey,
-  enrolTablet,
-  readTablet,
-  refreshSignedIn,
-  whoIsWorking,
-  setWorking,
-} from './tablet';
+import { enrolAuthorKey, enrolTablet, readTablet, refreshSignedIn, whoIsWorking, setWorking } from './tablet';
 import type { Outcome } from './server-call';
 
 /**

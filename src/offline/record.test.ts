@@ -30,11 +30,11 @@ describe('recording', () => {
     const { tablet, offline } = await openTablet(server, { job });
     server.isAway = true;
     const [entry] = recorded(await recordEntries(offline, job, [rags], { by: 'tech' }));
-    expect(offline.jobs.get(job)?.state.tallies['rags']).toEqual({ out: 12 });
+    expect(offline.jobs.get(job)?.state.tallies.rags).toEqual({ out: 12 });
     const after = killAndReopen(tablet, offline);
     const view = await after.jobs.open(job);
     expect(view.pending.map(({ id, where }) => [id, where])).toEqual([[entry!.id, 'on this tablet']]);
-    expect(view.state.tallies['rags']).toEqual({ out: 12 });
+    expect(view.state.tallies.rags).toEqual({ out: 12 });
   });
 
   it('writes the envelope that the server is to judge by', async () => {
@@ -118,7 +118,7 @@ describe('recording', () => {
 
   it('says which field cannot be written down', async () => {
     const { offline } = await openTablet(server, { job });
-    const draft: Draft = { ...kit, data: { count: 8, lot: 'x'.repeat(61) } } as Draft;
+    const draft: Draft = { ...kit, data: { count: 8, lot: 'x'.repeat(61) } };
     const outcome = await recordEntries(offline, job, [draft], { by: 'tech' });
     expect(outcome).toMatchObject({ ok: false, code: 'malformed', why: expect.stringContaining('lot') });
   });

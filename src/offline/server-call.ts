@@ -1,6 +1,6 @@
 import * as z from 'zod/mini';
 import type { Surroundings } from './surroundings';
-import { findCredential } from './device';
+import { credentialOf, findDevice, noteForgotten, type Device } from './device';
 
 /** Why something that needs the server did not come about. It can always be tried again. */
 export interface Trouble {
@@ -24,6 +24,8 @@ interface Call<S extends z.ZodMiniType> {
   bytes?: { data: ArrayBuffer; type: string };
   answer: S;
   timeoutMs?: number;
+  /** The session alone counts: for what a tablet asks that the workshop does not know (any more). */
+  without?: 'tablet';
 }
 
 const SECOND = 1000;
@@ -40,11 +42,8 @@ export async function callServer<S extends z.ZodMiniType>(
   s: Surroundings,
   call: Call<S>,
 ): Promise<Answer<z.output<S>>> {
-  const credential = await findCredential(s.db);
-  const headers: Record<string, string> = { accept: 'application/json' };
-  if (credential !== undefined) headers['authorization'] = `Tablet ${credential}`;
-  if (call.body !== undefined) headers['content-type'] = 'application/json';
-  if (call.bytes) headers['content-type'] = call.bytes.type;
+  const device = call.without === 'tablet' ? undefined : await findDevice(s.db);
+  const headers = headersOf(call, device);
   const body = call.bytes?.data ?? (call.body === undefined ? undefined : JSON.stringify(call.body));
   let response: Response;
   let text: string;
@@ -66,7 +65,25 @@ export async function callServer<S extends z.ZodMiniType>(
       offline: true,
     };
   }
-  return readAnswer(response, text, call.answer);
+  const answer = readAnswer(response, text, call.answer);
+  if (answer.ok || answer.code !== 'unknown-tablet' || !device) return answer;
+  await noteForgotten(s.db, device);
+  return { ...ENROL_AGAIN };
+}
+
+const ENROL_AGAIN: Trouble = {
+  ok: false,
+  code: 'enrol-again',
+  why: 'This tablet must be enrolled again. Nothing is lost: sign in on it, enrol it, and everything is sent.',
+};
+
+function headersOf(call: Pick<Call<z.ZodMiniType>, 'body' | 'bytes'>, device: Device | undefined): Headers {
+  const headers = new Headers({ accept: 'application/json' });
+  const credential = device && credentialOf(device);
+  if (credential !== undefined) headers.set('authorization', `Tablet ${credential}`);
+  if (call.body !== undefined) headers.set('content-type', 'application/json');
+  if (call.bytes) headers.set('content-type', call.bytes.type);
+  return headers;
 }
 
 function readAnswer<S extends z.ZodMiniType>(

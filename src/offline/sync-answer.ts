@@ -40,6 +40,8 @@ export const syncAnswer = z.object({
     }),
   ),
   workshop: z.int(),
+  /** The tablet's clock minus the server's. */
+  clockOffsetMs: z.optional(z.int()),
 });
 
 export type SyncAnswer = z.infer<typeof syncAnswer>;

@@ -4,7 +4,7 @@ import { openTablet, recorded, type TestTablet } from '../../tests/support/offli
 import { smallPlan } from '../../tests/support/small-documents';
 import type { Offline } from './offline';
 import { recordEntries, type Draft } from './record';
-import { whereIsRecord, type SyncStatus } from './sync-status';
+import { clockWords, whereIsRecord, type SyncStatus } from './sync-status';
 
 let server: OfflineServer;
 let job: string;
@@ -116,6 +116,17 @@ describe('what it tells', () => {
       lastTriedAt: new Date(tablet.now).toISOString(),
       trouble: { code: 'no-network', words: expect.stringContaining('Nothing is lost') },
     });
+  });
+
+  it('tells of a clock that is more than five minutes off', async () => {
+    server.onAnswer = (path, answer) =>
+      path === '/api/sync' ? { ...(answer as object), clockOffsetMs: 360_000 } : answer;
+    offline.sync.start();
+    const told = until(({ clockOffsetMs }) => clockOffsetMs !== undefined);
+    await offline.sync.now();
+    expect(clockWords((await told).clockOffsetMs)).toContain('6 minutes fast');
+    expect(clockWords(-300_000)).toBeUndefined();
+    expect(clockWords(-301_000)).toContain('5 minutes slow');
   });
 
   it('counts what is refused and what waits', async () => {

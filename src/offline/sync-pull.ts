@@ -26,7 +26,7 @@ export async function applyJobAnswer(
 const GONE = {
   code: 'gone',
   words:
-    'The office does not keep this job for this tablet any more. What was recorded here is kept. Ask the supervisor.',
+    'This job is closed, or no longer open to this tablet. What was recorded here is kept. Ask the supervisor.',
 };
 const OTHER_CONTENT = {
   code: 'other-content',
@@ -163,13 +163,23 @@ async function lastCommon(db: FloorDatabase, rows: readonly EntryRow[]): Promise
 async function putBack(db: FloorDatabase, job: string, after: number, at: string): Promise<void> {
   const lost = await ofJob(db.entries, job, after).toArray();
   await db.setAside.bulkPut(lost.map((row) => ({ hash: row.hash, job, row, setAsideAt: at })));
-  await db.outbox.bulkPut(lost.filter(isByPerson).map(toOutbox));
+  await db.outbox.bulkPut(lost.filter(canBeSent).map(toOutbox));
   await db.entries.bulkDelete(lost.map(({ seq }): [string, number] => [job, seq]));
 }
 
-/** The server makes its own entries anew. */
-function isByPerson({ recorded }: EntryRow): boolean {
-  return !(officeKinds as readonly EntryKind[]).includes(recorded.kind);
+/**
+ * The server makes its own entries anew. A signature made on another tablet has its sealed PIN there, and
+ * sent without it would be refused for good.
+ */
+function canBeSent({ recorded, sealed }: EntryRow): boolean {
+  if (isOneOf(officeKinds, recorded.kind)) return false;
+  return sealed !== undefined || !isOneOf(SIGNED_WITH_PIN, recorded.kind);
+}
+
+const SIGNED_WITH_PIN = ['signed', 'countersigned'] as const satisfies EntryKind[];
+
+function isOneOf(kinds: readonly EntryKind[], kind: EntryKind): boolean {
+  return kinds.includes(kind);
 }
 
 function toOutbox(row: EntryRow): OutboxRow {

@@ -3,6 +3,7 @@
  * up to the server's head. Each step writes what it learned before the next begins, so a run may be cut
  * anywhere: the next one sends the same records again and is told "already recorded".
  */
+import type { JobRow } from './database';
 import { keepDevice, readDevice, type Device } from './device';
 import { sendPhotos } from './photo-queue';
 import { fetchMissingPlans, pullWorkshop } from './prefetch';
@@ -11,24 +12,31 @@ import { instantOf, type Surroundings } from './surroundings';
 import { syncAnswer, type SyncAnswer } from './sync-answer';
 import { applyJobAnswer } from './sync-pull';
 import { applyVerdicts, nextBatch, toWire, type Batch } from './sync-push';
-import type { JobRow } from './database';
+
+/** As many as the server lets a tablet ask for at once. */
+const MAX_JOBS = 100;
 
 /** Sends and brings everything once. */
 export async function runSync(s: Surroundings): Promise<Outcome> {
   const device = await readDevice(s);
   if (device.credential === undefined) return NOT_ENROLLED;
   const tried = new Set<string>();
+  const behind = new Set(await jobsToAskFor(s));
   for (;;) {
-    const [batch, jobs] = await Promise.all([nextBatch(s.db, tried), jobsToAskFor(s)]);
+    const batch = await nextBatch(s.db, tried);
+    for (const { job } of batch.rows) behind.add(job);
+    const jobs = await nextJobs(s, behind);
     const answer = await exchange(s, device, batch, jobs);
-    if (!answer.ok) return noteTrouble(s, device, answer);
+    if (!answer.ok) return answer;
     const at = instantOf(s.now());
     await applyVerdicts(s.db, batch.rows, answer.body.verdicts, at);
-    const { goesOn, isRestored } = await applyJobs(s, jobs, answer.body, at);
+    const { brought, isRestored } = await applyJobs(s, jobs, answer.body, at, behind);
     // What a restored server lacks goes first; whatever waited for it is worth another try.
     if (isRestored) tried.clear();
     else for (const { id } of batch.rows) tried.add(id);
-    if (!batch.more && !goesOn) return afterwards(s, device, answer.body.workshop);
+    const isMoving = brought || batch.rows.length > 0;
+    const isLeft = batch.more || isRestored || behind.size > 0;
+    if (!isMoving || !isLeft) return afterwards(s, device, answer.body);
   }
 }
 
@@ -38,17 +46,16 @@ const NOT_ENROLLED: Trouble = {
   why: 'This tablet is not enrolled yet. What is recorded stays on it until then.',
 };
 
-const ENROL_AGAIN: Trouble = {
-  ok: false,
-  code: 'enrol-again',
-  why: 'This tablet must be enrolled again. Nothing is lost: sign in on it, enrol it, and everything is sent.',
-};
-
 /** Jobs made available offline, and any with a record that still has to arrive. */
-async function jobsToAskFor({ db }: Surroundings): Promise<JobRow[]> {
+async function jobsToAskFor({ db }: Surroundings): Promise<string[]> {
   const waiting = new Set<string>();
   await db.outbox.toCollection().eachPrimaryKey(([job]) => waiting.add(job));
-  return db.jobs.filter((row) => row.availableOffline || waiting.has(row.id)).toArray();
+  return db.jobs.filter((row) => row.availableOffline || waiting.has(row.id)).primaryKeys();
+}
+
+async function nextJobs({ db }: Surroundings, behind: ReadonlySet<string>): Promise<JobRow[]> {
+  const rows = await db.jobs.bulkGet([...behind].slice(0, MAX_JOBS));
+  return rows.flatMap((row) => row ?? []);
 }
 
 function exchange(s: Surroundings, device: Device, batch: Batch, jobs: JobRow[]) {
@@ -65,39 +72,38 @@ function exchange(s: Surroundings, device: Device, batch: Batch, jobs: JobRow[])
   });
 }
 
-interface Applied {
-  /** There is more to fetch, and fetching got further than before. */
-  goesOn: boolean;
-  isRestored: boolean;
-}
-
-async function applyJobs(s: Surroundings, jobs: JobRow[], answer: SyncAnswer, at: string): Promise<Applied> {
-  let goesOn = false;
+/** Takes over what came of each job; those that have come to their end leave `behind`. */
+async function applyJobs(
+  s: Surroundings,
+  jobs: JobRow[],
+  answer: SyncAnswer,
+  at: string,
+  behind: Set<string>,
+): Promise<{ brought: boolean; isRestored: boolean }> {
+  let brought = false;
   let isRestored = false;
-  for (const part of answer.jobs) {
-    const asked = jobs.find(({ id }) => id === part.id);
-    if (!asked) continue;
-    const moved = await applyJobAnswer(s.db, asked, part, at);
-    isRestored ||= moved && part.restored === true;
-    goesOn ||= isRestored || (moved && part.more);
+  const parts = new Map(answer.jobs.map((part) => [part.id, part]));
+  for (const asked of jobs) {
+    const part = parts.get(asked.id);
+    const moved = part !== undefined && (await applyJobAnswer(s.db, asked, part, at));
+    brought ||= moved;
+    const wasRestored = moved && part.restored === true;
+    isRestored ||= wasRestored;
+    // Nothing taken out of a page that was not empty means that the job is stopped.
+    const isStuck = !moved && (part?.entries.length ?? 0) > 0;
+    if (!wasRestored && (isStuck || part?.more !== true)) behind.delete(asked.id);
   }
-  return { goesOn, isRestored };
-}
-
-/** A tablet that the server no longer knows keeps everything and says so. */
-async function noteTrouble(s: Surroundings, device: Device, trouble: Trouble): Promise<Outcome> {
-  if (trouble.code !== 'unknown-tablet') return trouble;
-  await s.db.transaction('rw', s.db.meta, async () => {
-    const present = await readDevice(s);
-    if (present.credential === device.credential)
-      await keepDevice(s.db, { ...present, mustEnrolAgain: true });
-  });
-  return { ...ENROL_AGAIN };
+  return { brought, isRestored };
 }
 
 /** The workshop, missing plans and photographs, once the records are there. */
-async function afterwards(s: Surroundings, device: Device, workshopSeq: number): Promise<Outcome> {
+async function afterwards(
+  s: Surroundings,
+  device: Device,
+  { workshop: workshopSeq, clockOffsetMs }: SyncAnswer,
+): Promise<Outcome> {
   if (device.mustEnrolAgain) await keepDevice(s.db, { ...device, mustEnrolAgain: undefined });
+  if (clockOffsetMs !== undefined) await s.db.meta.put({ key: 'clock', value: clockOffsetMs });
   const workshop = await s.db.workshop.get('workshop');
   if (!workshop || workshop.seq < workshopSeq) {
     const pulled = await pullWorkshop(s);

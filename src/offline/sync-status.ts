@@ -19,6 +19,8 @@ export interface SyncStatus {
   lastTriedAt?: string | undefined;
   nextTryAt?: string | undefined;
   trouble?: { code: string; words: string } | undefined;
+  /** The tablet's clock minus the server's when they last met. */
+  clockOffsetMs?: number | undefined;
   /** All of this in one short line. */
   words: string;
 }
@@ -37,6 +39,7 @@ export async function readSyncStatus({ db }: Surroundings): Promise<Omit<SyncSta
   return db.transaction('r', tables, async () => {
     const device = await findDevice(db);
     const last = (await db.meta.get('sync'))?.value as LastSync | undefined;
+    const clock = await db.meta.get('clock');
     const confirmed = device ? await db.entries.where('device').equals(device.id).count() : 0;
     return {
       onTablet: await count('on this tablet'),
@@ -47,6 +50,7 @@ export async function readSyncStatus({ db }: Surroundings): Promise<Omit<SyncSta
       lastSyncAt: last?.syncedAt,
       lastTriedAt: last?.triedAt,
       trouble: last?.trouble,
+      clockOffsetMs: clock?.value as number | undefined,
     };
   });
 }
@@ -61,6 +65,16 @@ export function statusWords(status: Omit<SyncStatus, 'words'>): string {
   ] as const;
   const told = parts.filter(([count]) => count > 0).map(([count, words]) => `${count} ${words}`);
   return told.length > 0 ? told.join(', ') : 'All sent';
+}
+
+const CLOCK_TOLERANCE_MS = 5 * 60 * 1000;
+
+/** What to tell about a clock that is more than five minutes off; records are kept all the same. */
+export function clockWords(offsetMs: number | undefined): string | undefined {
+  if (offsetMs === undefined || Math.abs(offsetMs) <= CLOCK_TOLERANCE_MS) return undefined;
+  const minutes = Math.round(Math.abs(offsetMs) / 60_000);
+  const how = offsetMs > 0 ? 'fast' : 'slow';
+  return `The clock of this tablet is ${minutes} minutes ${how}. Records are kept and flagged: set the clock.`;
 }
 
 /** Where one record is; a record that is nowhere here was never made on this tablet. */

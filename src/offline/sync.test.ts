@@ -117,6 +117,19 @@ describe('sending', () => {
     expect(byTablet()).toHaveLength(180);
   }, 30_000);
 
+  it('asks for no more jobs at once than the server answers', async () => {
+    const { listJobs, makeAvailableOffline, pullJobList } = await import('./prefetch');
+    for (let n = 0; n < 120; n += 1) server.addJob(smallPlan());
+    must(await pullJobList(offline));
+    await offline.db.jobs.toCollection().modify({ availableOffline: true });
+    must(await makeAvailableOffline(offline, job));
+    const asked = server.requests
+      .filter(({ path }) => path === '/api/sync')
+      .map(({ body }) => (body as { jobs: unknown[] }).jobs.length);
+    expect(Math.max(...asked)).toBe(100);
+    expect((await listJobs(offline)).every(({ have }) => have?.seq === 1)).toBe(true);
+  }, 30_000);
+
   it('lets one run at a time do the work of all who ask', async () => {
     const made = await work(5);
     const before = server.requests.length;
@@ -204,7 +217,7 @@ describe('verdicts', () => {
     must(await offline.sync.now());
     const waiting = await offline.jobs.refresh(job);
     expect(waiting.pending[0]).toMatchObject({ where: 'waiting', reason: 'Too many wrong PINs.' });
-    expect(waiting.state.tallies['rags']).toBeDefined();
+    expect(waiting.state.tallies.rags).toBeDefined();
     isLocked = false;
     must(await offline.sync.now());
     must(await offline.sync.now());
@@ -254,7 +267,7 @@ describe('what the server sends', () => {
     must(await offline.sync.now());
     const view = await offline.jobs.refresh(job);
     expect(view.row.have?.seq).toBe(28);
-    expect(view.state.tallies['rags']).toEqual({ out: 12 });
+    expect(view.state.tallies.rags).toEqual({ out: 12 });
     expect(view.state.deviations).toHaveLength(2);
   });
 
@@ -331,6 +344,22 @@ describe('a server restored from a backup', () => {
     await expectAllArrived(made);
     expect(await offline.db.setAside.count()).toBeGreaterThanOrEqual(5);
     expect((await offline.jobs.refresh(job)).state.deviations).toHaveLength(8);
+  });
+
+  it('is not sent another tablet’s signature without its PIN', async () => {
+    const backup = server.backup();
+    await work(2);
+    must(await offline.sync.now());
+    // As if the last of them were a signature made elsewhere: there is no sealed PIN of it here.
+    const last = (await offline.db.entries.toArray()).at(-1)!;
+    await offline.db.entries.put({
+      ...last,
+      recorded: { ...last.recorded, kind: 'signed' } as typeof last.recorded,
+    });
+    server.restore(backup);
+    must(await offline.sync.now());
+    expect(byTablet().map(({ id }) => id)).not.toContain(last.id);
+    expect((await offline.db.setAside.toArray()).map(({ row }) => row.id)).toContain(last.id);
   });
 
   it('gets photographs back too', async () => {

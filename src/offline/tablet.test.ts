@@ -45,12 +45,25 @@ describe('enrolling', () => {
     expect(await readTablet(offline)).toMatchObject({ name: 'Bay 2', enrolled: true });
   });
 
+  it('takes no key for somebody whose session is not the active one', async () => {
+    const offline = new TestTablet(server).open();
+    server.session = 'tech';
+    must(await enrolTablet(offline, 'Bay 2'));
+    expect(await enrolAuthorKey(offline, 'mate')).toMatchObject({ ok: false, code: 'other-session' });
+    expect(await offline.db.authorKeys.get('mate')).not.toHaveProperty('enrolled');
+  });
+
   it('sends the same key again if the reply was lost', async () => {
     const offline = new TestTablet(server).open();
     server.session = 'tech';
     must(await enrolTablet(offline, 'Bay 2'));
-    server.lostReplies = 1;
+    const answered = server.onAnswer;
+    server.onAnswer = (path, answer) => {
+      if (path === '/api/keys') throw new TypeError('network error');
+      return answer;
+    };
     expect(await enrolAuthorKey(offline, 'tech')).toMatchObject({ ok: false });
+    server.onAnswer = answered;
     must(await enrolAuthorKey(offline, 'tech'));
     const sent = server.requests.filter(({ path }) => path === '/api/keys').map(({ body }) => body);
     expect(sent[0]).toEqual(sent[1]);

@@ -7,7 +7,7 @@ import type { Verdict } from '@/domain/job-state';
 import { newAuthorKey } from './author-key';
 import { changeJob, type AuthorKeyRow, type SignedInRow } from './database';
 import { keepDevice, readDevice, type Device } from './device';
-import { callServer, type Outcome } from './server-call';
+import { callServer, type Outcome, type Trouble } from './server-call';
 import type { Surroundings } from './surroundings';
 
 export interface Tablet {
@@ -47,6 +47,7 @@ async function askToEnrol(s: Surroundings, device: Device, id: string, name: str
     path: '/api/devices',
     body: { id, name },
     answer: enrolled,
+    without: 'tablet',
   });
   if (!answer.ok) return answer;
   const { db } = s;
@@ -61,12 +62,19 @@ async function askToEnrol(s: Surroundings, device: Device, id: string, name: str
   return { ok: true };
 }
 
+const activePerson = z.object({ actor: z.object({ personId: z.string() }) });
 const enrolledKey = z.object({ id: z.string(), workshop: z.int() });
 
-/** Makes a person's key for this tablet and tells the server; does nothing where that is done already. */
+/**
+ * Makes a person's key for this tablet and tells the server; does nothing where that is done already. The
+ * server takes the key as that of whoever's session is active, so that is asked first.
+ */
 export async function enrolAuthorKey(s: Surroundings, person: string): Promise<Outcome> {
   const key = (await s.db.authorKeys.get(person)) ?? (await makeAuthorKey(s, person));
   if (key.enrolled !== undefined) return { ok: true };
+  const active = await callServer(s, { path: '/api/me', answer: activePerson, without: 'tablet' });
+  if (!active.ok) return active;
+  if (active.body.actor.personId !== person) return OTHER_SESSION;
   const answer = await callServer(s, {
     method: 'POST',
     path: '/api/keys',
@@ -77,6 +85,12 @@ export async function enrolAuthorKey(s: Surroundings, person: string): Promise<O
   await s.db.authorKeys.update(person, { enrolled: answer.body.workshop });
   return { ok: true };
 }
+
+const OTHER_SESSION: Trouble = {
+  ok: false,
+  code: 'other-session',
+  why: 'Someone else’s session is the active one in this browser. Sign in again as the person who is to work here.',
+};
 
 /** Kept before it is sent, so that a lost reply leads to the same key being sent again. */
 async function makeAuthorKey(s: Surroundings, person: string): Promise<AuthorKeyRow> {
@@ -115,7 +129,7 @@ const me = z.object({
 
 /** Takes over the server's list of who is signed in here. Any trouble, a 401 included, changes nothing. */
 export async function refreshSignedIn(s: Surroundings): Promise<Outcome> {
-  const answer = await callServer(s, { path: '/api/me', answer: me });
+  const answer = await callServer(s, { path: '/api/me', answer: me, without: 'tablet' });
   if (!answer.ok) return answer;
   const rows = answer.body.sideBySide.map(({ personId, ...rest }) => ({ person: personId, ...rest }));
   await s.db.transaction('rw', s.db.signedIn, async () => {

@@ -154,17 +154,17 @@ export class OfflineServer {
     authorization: string | null,
   ): Promise<[number, unknown]> {
     if (path === '/api/devices') return this.enrol(body as { id: string });
+    if (path === '/api/me') {
+      return this.session === undefined
+        ? refusal(401, 'not-signed-in', 'Nobody is signed in here.')
+        : [200, { actor: { personId: this.session }, sideBySide: [] }];
+    }
     const device = this.deviceOf(authorization);
     if (!device) return refusal(401, 'unknown-tablet', 'This tablet is not known to the workshop.');
     if (path === '/api/keys') return this.addKey(device, (body as { publicKey: string }).publicKey);
     if (path === '/api/workshop') return [200, await this.workshopAnswer()];
     if (path === '/api/floor/jobs') return [200, { jobs: [...this.jobs.values()].map(listed) }];
     if (path === '/api/sync') return this.sync(device, body as SyncBody);
-    if (path === '/api/me') {
-      return this.session === undefined
-        ? refusal(401, 'not-signed-in', 'Nobody is signed in here.')
-        : [200, { actor: null, sideBySide: [] }];
-    }
     const [, , kind, hash = ''] = path.split('/');
     if (kind === 'plans') {
       const plan = this.plans.get(hash);
@@ -324,8 +324,8 @@ export class OfflineServer {
   }
 
   private officeEntry(job: JobRecord, kind: 'opened' | 'refused', data: object): Entry {
-    const number = (job.numbers['office'] ?? 0) + 1;
-    job.numbers['office'] = number;
+    const number = (job.numbers.office ?? 0) + 1;
+    job.numbers.office = number;
     const isOpening = kind === 'opened';
     return {
       ...{ v: 1, id: this.newId(), job: job.id, plan: job.plan, basis: job.rows.length },
