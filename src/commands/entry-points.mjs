@@ -2,7 +2,7 @@ import { fileURLToPath } from 'node:url';
 import { ROOT } from './root.mjs';
 
 /** The commands that a plain Node runs from `dist/server`: NAME.ts here becomes NAME.mjs there. */
-const COMMANDS = ['serve'];
+const COMMANDS = ['serve', 'verify-trail'];
 
 /**
  * An Astro integration that builds the commands together with the pages, and makes the data folder ready for
@@ -14,14 +14,19 @@ const COMMANDS = ['serve'];
  * @returns {import('astro').AstroIntegration}
  */
 export function commandEntryPoints() {
+  let devServer;
   return {
     name: 'witnessmark:commands',
     hooks: {
       'astro:build:setup': ({ target, updateConfig }) => {
         if (target === 'server') updateConfig({ plugins: [emitCommands()] });
       },
-      'astro:server:setup': async ({ server, logger }) => {
-        const { prepareDevelopment } = await server.ssrLoadModule('/src/commands/develop.ts');
+      'astro:server:setup': ({ server }) => {
+        devServer = server;
+      },
+      // Not at the set-up: a check of the types sets a server up too, and must not make a data folder.
+      'astro:server:start': async ({ logger }) => {
+        const { prepareDevelopment } = await devServer.ssrLoadModule('/src/commands/develop.ts');
         logger.info(await prepareDevelopment(process.env, ROOT));
       },
     },
