@@ -28,6 +28,18 @@ export function canonicalJson(value: unknown): string {
   return canonicalize(value) ?? '';
 }
 
+/** The canonical form of an object known to be hashable, and the form without the named fields, at one go. */
+export function canonicalWithout(
+  value: object,
+  fields: ReadonlySet<string>,
+): [whole: string, without: string] {
+  const parts = Object.entries(value)
+    .toSorted(([a], [b]) => (a < b ? -1 : 1))
+    .map(([name, item]) => ({ name, text: `${JSON.stringify(name)}:${canonicalize(item) ?? ''}` }));
+  const join = (kept: { text: string }[]): string => `{${kept.map(({ text }) => text).join(',')}}`;
+  return [join(parts), join(parts.filter(({ name }) => !fields.has(name)))];
+}
+
 /** SHA-256 of a hashable value's canonical form, in lower-case hex. */
 export function hashJson(value: unknown, sha256: Sha256): string {
   return sha256(bytesOf(canonicalJson(value)));

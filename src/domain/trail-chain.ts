@@ -1,27 +1,38 @@
-import { hashJson, type Sha256 } from '@/domain/canonical';
+import { bytesOf, canonicalWithout, hashJson, type Sha256 } from '@/domain/canonical';
 import { officeKinds } from '@/domain/entry';
 import { requireWhole, type TrailBody } from '@/domain/trail-export';
 
 /** The `prev` of a trail's first entry, whose `seq` is 1. */
 export const NO_PREVIOUS = '0'.repeat(64);
 
+/** What the server adds to an entry when it records it. */
+export const SERVER_FIELDS = ['seq', 'recordedAt', 'prev', 'clockOffsetMs', 'pin', 'conflict'] as const;
+const ADDED: ReadonlySet<string> = new Set(SERVER_FIELDS);
+
+/** An entry whose place in the chain holds, with the content hash that its author signed. */
+export type ChainedEntry = TrailBody['entries'][number] & { content: string };
+
 /** Order, links, ids and plans of the job's entries. */
-export function verifyChain({ entries, job, plans }: TrailBody, sha256: Sha256): void {
+export function verifyChain({ entries, job, plans }: TrailBody, sha256: Sha256): ChainedEntry[] {
   requireWhole(entries.length > 0, 'the file', 'It has no entries.');
   const knownPlans = new Set(plans.map((plan) => hashJson(plan, sha256)));
   const ids = new Set<string>();
   let prev = NO_PREVIOUS;
-  entries.forEach(({ recorded, hash }, index) => {
+  return entries.map((entry, index) => {
+    const { recorded, hash } = entry;
     const at = `entry ${index + 1}`;
     const { seq } = recorded;
     requireWhole(seq === index + 1, at, `Number ${seq} is here: an entry is missing, moved or put in.`);
     requireWhole(recorded.job === job.id, at, 'It belongs to another job.');
     requireWhole(recorded.prev === prev, at, 'It does not follow the entry before it.');
-    requireWhole(hashJson(recorded, sha256) === hash, at, 'Its content is not what its hash was made of.');
+    const [whole, content] = canonicalWithout(recorded, ADDED);
+    const isHashed = sha256(bytesOf(whole)) === hash;
+    requireWhole(isHashed, at, 'Its content is not what its hash was made of.');
     requireWhole(!ids.has(recorded.id), at, 'Its id was used before.');
     requireWhole(knownPlans.has(recorded.plan), at, 'The plan that it was made under is not in the file.');
     ids.add(recorded.id);
     prev = hash;
+    return { ...entry, content: sha256(bytesOf(content)) };
   });
 }
 

@@ -1,5 +1,12 @@
 import { bytesOf, canonicalJson, hashJson, type Sha256 } from '@/domain/canonical';
-import { isMadeByServer, verifyChain, verifyCounts, verifyWorkshopEntries } from '@/domain/trail-chain';
+import {
+  type ChainedEntry,
+  isMadeByServer,
+  SERVER_FIELDS,
+  verifyChain,
+  verifyCounts,
+  verifyWorkshopEntries,
+} from '@/domain/trail-chain';
 import {
   BrokenTrailError,
   bodyTextOf,
@@ -17,12 +24,13 @@ import {
  * are passed in, so that the same check runs in a browser, on the server and on the command line.
  */
 
-/** What the server adds to an entry when it records it. */
-const SERVER_FIELDS = ['seq', 'recordedAt', 'prev', 'clockOffsetMs', 'pin', 'conflict'] as const;
-
+/** A field that the server adds to an entry when it records it. */
 export type ServerField = (typeof SERVER_FIELDS)[number];
 
-/** Checks one signature; false for a key or a signature that can not be one, and never an error for them. */
+/**
+ * Checks one signature; false for a key or a signature that can not be one, and never an error for them. A key
+ * comes as the same array each time within one verification, so what is made of it can be kept by it.
+ */
 export type VerifySignature = (
   publicKey: Uint8Array<ArrayBuffer>,
   message: Uint8Array<ArrayBuffer>,
@@ -148,10 +156,10 @@ async function verifyOpened(
     bytesOf(checks.sha256(bytesOf(bodyTextOf(opened.text, whole)))),
     requireBytes(whole.signature, 64, "the export's signature"),
   );
-  verifyChain(body, checks.sha256);
+  const chained = verifyChain(body, checks.sha256);
   const notes = verifyCounts(body);
   verifyWorkshopEntries(body, checks.sha256);
-  const signatures = await verifyAuthors(body, checks);
+  const signatures = await verifyAuthors(chained, body.keys, checks);
   await verifyHeads(body, { id: key, bytes: workshopKey }, checks);
   notes.push(...verifyIdentity(body, checks));
   requireWhole(isSigned, "the export's signature", 'It does not belong to this text and key.');
@@ -162,16 +170,21 @@ async function verifyOpened(
 }
 
 /** Every entry but the server's own is signed by its author's key for its tablet; gives how many were. */
-async function verifyAuthors({ entries, keys }: TrailBody, checks: TrailChecks): Promise<number> {
-  const known = new Map(keys.map((key) => [key.id, key]));
-  for (const key of keys) {
-    const at = `key ${key.id}`;
-    const point = requireBytes(key.publicKey, 65, at);
-    requireWhole(known.get(key.id) === key, at, 'It is there twice.');
-    requireWhole(authorKeyId(point, checks.sha256) === key.id, at, 'Its name is not that of its content.');
+async function verifyAuthors(
+  entries: ChainedEntry[],
+  keys: TrailBody['keys'],
+  { sha256, verifyP256 }: TrailChecks,
+): Promise<number> {
+  const known = new Map<string, { owner: TrailBody['keys'][number]; point: Uint8Array<ArrayBuffer> }>();
+  for (const owner of keys) {
+    const at = `key ${owner.id}`;
+    const point = requireBytes(owner.publicKey, 65, at);
+    requireWhole(!known.has(owner.id), at, 'It is there twice.');
+    requireWhole(authorKeyId(point, sha256) === owner.id, at, 'Its name is not that of its content.');
+    known.set(owner.id, { owner, point });
   }
   let count = 0;
-  for (const { recorded, signature, key: id } of entries) {
+  for (const { recorded, signature, key: id, content } of entries) {
     const at = `entry ${recorded.seq}`;
     if (isMadeByServer(recorded)) {
       requireWhole(signature === null && id === null, at, 'The server made it, and yet it is signed.');
@@ -180,11 +193,9 @@ async function verifyAuthors({ entries, keys }: TrailBody, checks: TrailChecks):
     requireWhole(signature !== null && id !== null, at, "It carries no author's signature.");
     const key = known.get(id);
     requireWhole(key !== undefined, at, 'The key that it is signed with is not in the file.');
-    const isAuthors = key.person === recorded.by && key.device === recorded.device;
+    const isAuthors = key.owner.person === recorded.by && key.owner.device === recorded.device;
     requireWhole(isAuthors, at, 'The key that it is signed with belongs to another person or tablet.');
-    const message = authorMessage(contentHash(contentOf(recorded), checks.sha256));
-    const point = requireBytes(key.publicKey, 65, at);
-    const holds = await checks.verifyP256(point, message, requireBytes(signature, 64, at));
+    const holds = await verifyP256(key.point, authorMessage(content), requireBytes(signature, 64, at));
     requireWhole(holds, at, "Its author's signature does not hold.");
     count += 1;
   }
