@@ -77,6 +77,20 @@ export function expandProgramme(programme: Programme, bolts: readonly string[]):
   );
 }
 
+const expanded = new WeakMap<Programme, Map<string, StageAction[]>>();
+
+/** A programme is asked for its stages at every act, and is never changed once it is made. */
+function expandedOnce(programme: Programme, bolts: readonly string[]): StageAction[] {
+  const byBolts = expanded.get(programme) ?? new Map<string, StageAction[]>();
+  expanded.set(programme, byBolts);
+  const key = bolts.join('\n');
+  const held = byBolts.get(key);
+  if (held !== undefined) return held;
+  const actions = expandProgramme(programme, bolts);
+  byBolts.set(key, actions);
+  return actions;
+}
+
 /**
  * What is to be done next, or null when the programme is finished. After a bolt went over in any cycle: the bolts
  * beside it that hold torque are released, it is replaced, earlier marks are void, and the cap starts again at
@@ -87,7 +101,7 @@ export function nextAction(
   bolts: readonly string[],
   done: readonly TighteningRecord[],
 ): TighteningAction | null {
-  const actions = expandProgramme(programme, bolts);
+  const actions = expandedOnce(programme, bolts);
   const cap: CapState = { passed: new Set(), holding: new Set(), condemned: new Set(), toRelease: new Map() };
   for (const record of done) if (bolts.includes(record.bolt)) applyRecord(cap, record);
   for (const bolt of bolts) {
