@@ -22,7 +22,7 @@ test('the Floor opens after the server has died, and any other page says that th
   for (const address of ['/floor', '/floor/', '/floor?job=1']) {
     await page.goto(address);
     await islandsReady(page);
-    await expect(page.locator('h1, h2').first()).toBeVisible();
+    await expect(page.getByRole('main')).toBeVisible();
   }
 
   await page.goto('/jobs');
