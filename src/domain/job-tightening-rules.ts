@@ -91,6 +91,8 @@ function whyNotStage(
     return no('target-differs', 'The target is not the one of the plan.');
   }
   if (value === undefined) return OK;
+  if (Number(value) < 0)
+    return no('impossible', 'A torque or an angle is not less than nothing.', 'Read it again.');
   const spec = { kind: planned.kind, target: Number(planned.target), tolerance: Number(planned.tolerance) };
   const judged = judgeReading(spec, Number(value));
   const said = outcome === 'done' ? 'ok' : outcome === 'over' ? 'over' : 'under';
@@ -132,12 +134,20 @@ function whyNotTool(step: StepOf<'tighten'>, entry: EntryOf<'tightened'>, worksh
   return fit ? OK : no('tool-unfit', `${tool.name}: ${reasons.join('; ')}.`, 'Choose another tool.');
 }
 
+const dayFormats = new Map<string, Intl.DateTimeFormat>();
+
 /** The calendar day of an instant in the workshop's zone, `YYYY-MM-DD`. */
 export function dayIn(zone: string, at: string): string {
-  return new Intl.DateTimeFormat('en-CA', {
-    timeZone: zone,
-    year: 'numeric',
-    month: '2-digit',
-    day: '2-digit',
-  }).format(new Date(at));
+  let format = dayFormats.get(zone);
+  if (!format) {
+    // Making one takes longer than all else that is asked of an entry.
+    format = new Intl.DateTimeFormat('en-CA', {
+      timeZone: zone,
+      year: 'numeric',
+      month: '2-digit',
+      day: '2-digit',
+    });
+    dayFormats.set(zone, format);
+  }
+  return format.format(new Date(at));
 }

@@ -17,7 +17,7 @@ export type Outcome = { ok: true } | Trouble;
 export type Answer<T> = { ok: true; body: T } | Trouble;
 
 interface Call<S extends z.ZodMiniType> {
-  method?: 'GET' | 'POST' | 'PUT';
+  method?: 'GET' | 'POST' | 'PUT' | 'PATCH';
   path: string;
   /** JSON, or bytes with their type. */
   body?: unknown;

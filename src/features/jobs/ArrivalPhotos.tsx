@@ -31,9 +31,9 @@ export function ArrivalPhotos({ photos, onChange }: ArrivalPhotosProps) {
     setBusy(false);
   };
   return (
-    <fieldset className="part">
-      <legend className="part-title">Arrival photographs</legend>
-      <p className="mb-3 text-soft">
+    <section className="part job-part">
+      <h2 className="part-title">Arrival photographs</h2>
+      <p className="text-soft">
         Each side, damage, the dial with the odometer. Place and camera data are stripped here.
       </p>
       <label className="job-file">
@@ -63,7 +63,7 @@ export function ArrivalPhotos({ photos, onChange }: ArrivalPhotosProps) {
           ))}
         </ul>
       )}
-    </fieldset>
+    </section>
   );
 }
 

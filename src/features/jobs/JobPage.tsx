@@ -12,7 +12,7 @@ import { JobPhotos } from './JobPhotos';
 import { JobProgress } from './JobProgress';
 import { JobSignatures } from './JobSignatures';
 import { jobAnswer, type JobAnswer } from './job-answer';
-import { newQueryClient, useServer } from './use-server';
+import { newQueryClient, useServer } from '@/offline/use-server';
 
 export interface JobPageProps {
   job: string;

@@ -8,7 +8,7 @@ import { dayAndTime } from '@/domain/time-words';
 import { openOffline } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import type { JobAnswer } from './job-answer';
-import { useServer } from './use-server';
+import { useServer } from '@/offline/use-server';
 
 export interface JobPeopleProps {
   job: JobAnswer;

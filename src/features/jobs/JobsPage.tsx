@@ -7,7 +7,7 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { Subnav } from '@/components/Subnav';
 import { dayAndTime, dayWords } from '@/domain/time-words';
 import { jobListAnswer, type JobLine } from './job-answer';
-import { newQueryClient, useServerList } from './use-server';
+import { newQueryClient, useServerList } from '@/offline/use-server';
 
 export interface JobsPageProps {
   zone: string;

@@ -22,8 +22,8 @@ export function VehicleFields({ form, route, routes }: FieldsetProps) {
   const { errors } = form.formState;
   const vin = useWatch({ control: form.control, name: 'vin' });
   return (
-    <fieldset className="part">
-      <legend className="part-title">Vehicle</legend>
+    <section className="part job-part">
+      <h2 className="part-title">Vehicle</h2>
       <SelectField
         label="Route"
         hint="The work and the engine that it is written for"
@@ -88,7 +88,7 @@ export function VehicleFields({ form, route, routes }: FieldsetProps) {
           {...form.register('odometerUnit')}
         />
       </div>
-    </fieldset>
+    </section>
   );
 }
 
@@ -105,8 +105,8 @@ function vinWords(vin: string): string | undefined {
 export function CustomerFields({ form }: FieldsetProps) {
   const { errors } = form.formState;
   return (
-    <fieldset className="part">
-      <legend className="part-title">Customer</legend>
+    <section className="part job-part">
+      <h2 className="part-title">Customer</h2>
       <div className="form-pair">
         <TextField
           label="Name"
@@ -149,7 +149,7 @@ export function CustomerFields({ form }: FieldsetProps) {
         rows={3}
         {...form.register('complaint')}
       />
-    </fieldset>
+    </section>
   );
 }
 
@@ -157,8 +157,8 @@ export function CustomerFields({ form }: FieldsetProps) {
 export function AgreementFields({ form }: FieldsetProps) {
   const { errors } = form.formState;
   return (
-    <fieldset className="part">
-      <legend className="part-title">Agreement</legend>
+    <section className="part job-part">
+      <h2 className="part-title">Agreement</h2>
       <div className="form-pair">
         <TextField
           label="What becomes of the old parts"
@@ -174,18 +174,18 @@ export function AgreementFields({ form }: FieldsetProps) {
         rows={2}
         {...form.register('note')}
       />
-    </fieldset>
+    </section>
   );
 }
 
 /** Who is put on the job; their tablets keep it offline. */
 export function PeopleFields({ form, people }: FieldsetProps) {
   return (
-    <fieldset className="part">
-      <legend className="part-title">Who works on it</legend>
+    <section className="part job-part">
+      <h2 className="part-title">Who works on it</h2>
       {people.map(({ id, name, roles }) => (
         <Checkbox key={id} label={`${name}, ${roles.join(', ')}`} value={id} {...form.register('people')} />
       ))}
-    </fieldset>
+    </section>
   );
 }

@@ -3,7 +3,7 @@ import { useState } from 'react';
 import * as z from 'zod/mini';
 import { ErrorNote } from '@/components/ErrorNote';
 import { NewJobForm } from './NewJobForm';
-import { newQueryClient, useServer } from './use-server';
+import { newQueryClient, useServer } from '@/offline/use-server';
 
 const routesAnswer = z.object({
   routes: z.array(

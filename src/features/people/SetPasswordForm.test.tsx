@@ -26,7 +26,7 @@ describe('the form that sets a password', () => {
     expect(fetched).toHaveBeenCalledOnce();
     const [path, init] = fetched.mock.calls[0]!;
     expect(path).toBe('/api/set-password');
-    expect(JSON.parse(String(init?.body))).toEqual({ token: 'the-token', password: 'three plain words' });
+    expect(JSON.parse(init?.body as string)).toEqual({ token: 'the-token', password: 'three plain words' });
   });
 
   it('asks the server nothing while the two do not agree or are too short', async () => {

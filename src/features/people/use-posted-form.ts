@@ -40,5 +40,13 @@ export function usePostedForm<F extends FieldValues, S extends z.ZodMiniType>({
     const message = errors[name]?.message;
     return typeof message === 'string' ? message : undefined;
   };
-  return { register: form.register, send, trouble, isSubmitting, errorOf, getValues: form.getValues };
+  return {
+    register: form.register,
+    send,
+    trouble,
+    isSubmitting,
+    errorOf,
+    getValues: form.getValues,
+    reset: () => form.reset(),
+  };
 }

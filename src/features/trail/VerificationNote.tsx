@@ -63,7 +63,7 @@ function Found({ outcome, total }: { outcome: Outcome; total: number }) {
       </Verdict>
     );
   }
-  const heads = outcome.heads === 1 ? 'once' : `${outcome.heads} times`;
+  const heads = outcome.heads === 1 ? 'one head' : `${outcome.heads} heads`;
   return (
     <Verdict kind="inside" word={`Unbroken from entry 1 to ${outcome.entries}`} size="small">
       {outcome.signatures} authors&rsquo; signatures hold; signed {heads} by the workshop&rsquo;s key. Checked

@@ -1,7 +1,7 @@
 import { QueryClient, useInfiniteQuery, useQuery } from '@tanstack/react-query';
 import type * as z from 'zod/mini';
-import { openOffline } from '@/offline/offline';
-import { callServer } from '@/offline/server-call';
+import { openOffline } from './offline';
+import { callServer } from './server-call';
 
 /** Why the server's answer is not there, in the server's own words where it gave some. */
 export class NoAnswerError extends Error {

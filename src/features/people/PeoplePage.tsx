@@ -1,0 +1,174 @@
+import { QueryClientProvider, useQueryClient } from '@tanstack/react-query';
+import { useState } from 'react';
+import * as z from 'zod/mini';
+import { Button } from '@/components/Button';
+import { DataTable } from '@/components/DataTable';
+import { ErrorNote } from '@/components/ErrorNote';
+import { openOffline } from '@/offline/offline';
+import { callServer } from '@/offline/server-call';
+import { newQueryClient, useServer } from '@/offline/use-server';
+import { AddPersonForm } from './AddPersonForm';
+import { LinkNote } from './LinkNote';
+import { RolesDialog } from './RolesDialog';
+import { Tablets } from './Tablets';
+
+const person = z.object({
+  id: z.string(),
+  name: z.string(),
+  roles: z.array(z.string()),
+  active: z.boolean(),
+  hasPin: z.boolean(),
+  hasSigned: z.boolean(),
+  hasPassword: z.boolean(),
+  email: z.optional(z.string()),
+});
+const peopleAnswer = z.object({ people: z.array(person) });
+export type PersonRow = z.infer<typeof person>;
+
+const linkAnswer = z.object({ link: z.string(), expiresAt: z.string() });
+
+/** A link by which somebody sets their password; it is shown once. */
+export interface GivenLink {
+  name: string;
+  link: string;
+  expiresAt: string;
+}
+
+/** The people of the workshop and its tablets: added, given roles, let out; never deleted. */
+export function PeoplePage({ zone }: { zone: string }) {
+  const [client] = useState(newQueryClient);
+  return (
+    <QueryClientProvider client={client}>
+      <People zone={zone} />
+    </QueryClientProvider>
+  );
+}
+
+function People({ zone }: { zone: string }) {
+  const { data, error } = useServer('/api/people', peopleAnswer);
+  const client = useQueryClient();
+  const [trouble, setTrouble] = useState<string>();
+  const [link, setLink] = useState<GivenLink>();
+  const [changing, setChanging] = useState<PersonRow>();
+  const change = async (id: string, body: { roles?: string[]; active?: boolean }) => {
+    const path = `/api/people/${id}`;
+    const changed = await callServer(openOffline(), {
+      method: 'PATCH',
+      path,
+      body,
+      answer: z.looseObject({}),
+    });
+    setTrouble(changed.ok ? undefined : changed.why);
+    await client.invalidateQueries();
+  };
+  const giveLink = async ({ id, name }: PersonRow) => {
+    const path = `/api/people/${id}/password-link`;
+    const given = await callServer(openOffline(), { method: 'POST', path, body: {}, answer: linkAnswer });
+    setTrouble(given.ok ? undefined : given.why);
+    if (given.ok) setLink({ name, ...given.body });
+  };
+  const words = trouble ?? error?.message;
+  return (
+    <>
+      <div className="page-head">
+        <h1 className="page-title">People</h1>
+      </div>
+      {words !== undefined && (
+        <ErrorNote happened={words} kept="Everybody is as they were." next="Try it again." />
+      )}
+      {link && <LinkNote link={link} zone={zone} />}
+      <DataTable
+        caption="The people of the workshop"
+        columns={COLUMNS}
+        rows={(data?.people ?? []).map((row) => ({
+          key: row.id,
+          isSoft: !row.active,
+          cells: {
+            name: row.name,
+            roles: row.roles.join(', '),
+            email: row.email ?? '',
+            state: stateWords(row),
+            acts: (
+              <RowActs
+                row={row}
+                onRoles={() => setChanging(row)}
+                onActive={() => void change(row.id, { active: !row.active })}
+                onLink={() => void giveLink(row)}
+              />
+            ),
+          },
+        }))}
+        emptyWords={data ? 'Nobody yet.' : 'Reading the people'}
+      />
+      {changing && (
+        <RolesDialog
+          name={changing.name}
+          roles={changing.roles}
+          onClose={() => setChanging(undefined)}
+          onKeep={(roles) => {
+            setChanging(undefined);
+            void change(changing.id, { roles });
+          }}
+        />
+      )}
+      <section className="part mt-8">
+        <h2 className="part-title">Add a person</h2>
+        <AddPersonForm
+          onAdded={(given) => {
+            setLink(given);
+            void client.invalidateQueries();
+          }}
+        />
+      </section>
+      <Tablets zone={zone} />
+    </>
+  );
+}
+
+const COLUMNS = [
+  { key: 'name', label: 'printed name' },
+  { key: 'roles', label: 'roles' },
+  { key: 'email', label: 'e-mail' },
+  { key: 'state', label: 'state', isWide: true },
+  { key: 'acts', label: '' },
+];
+
+function stateWords(row: PersonRow): string {
+  if (!row.active) return 'deactivated: can’t sign in, stays in the record';
+  const missing = [
+    ...(row.hasPassword ? [] : ['no password yet']),
+    ...(row.hasPin ? [] : ['no signing PIN yet']),
+  ];
+  return missing.length === 0 ? 'active' : `active, ${missing.join(', ')}`;
+}
+
+interface RowActsProps {
+  row: PersonRow;
+  onRoles: () => void;
+  onActive: () => void;
+  onLink: () => void;
+}
+
+function RowActs({ row, onRoles, onActive, onLink }: RowActsProps) {
+  return (
+    <span className="flex flex-wrap justify-end gap-3">
+      {row.active && (
+        <Button look="link" onClick={onRoles} aria-label={`Change the roles of ${row.name}`}>
+          Roles
+        </Button>
+      )}
+      {row.active && (
+        <Button look="link" onClick={onLink} aria-label={`Give ${row.name} a link to set a password`}>
+          Password link
+        </Button>
+      )}
+      <Button
+        look="link"
+        onClick={onActive}
+        aria-label={`${row.active ? 'Deactivate' : 'Let back in'} ${row.name}`}
+      >
+        {row.active ? 'Deactivate' : 'Let back in'}
+      </Button>
+    </span>
+  );
+}

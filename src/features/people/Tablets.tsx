@@ -1,0 +1,48 @@
+import * as z from 'zod/mini';
+import { DataTable } from '@/components/DataTable';
+import { dayAndTime } from '@/domain/time-words';
+import { useServer } from '@/offline/use-server';
+
+const devicesAnswer = z.object({
+  devices: z.array(
+    z.object({
+      id: z.string(),
+      name: z.string(),
+      state: z.string(),
+      enrolledAt: z.string(),
+      lastHeardAt: z.nullable(z.string()),
+    }),
+  ),
+});
+
+/** The tablets and desk browsers that the workshop knows, and when each was last heard. */
+export function Tablets({ zone }: { zone: string }) {
+  const { data } = useServer('/api/devices', devicesAnswer);
+  return (
+    <section className="part mt-8">
+      <h2 className="part-title">Tablets</h2>
+      <DataTable
+        caption="The tablets of the workshop"
+        columns={[
+          { key: 'name', label: 'tablet', isWide: true },
+          { key: 'id', label: 'id', isSoft: true },
+          { key: 'enrolled', label: 'enrolled' },
+          { key: 'heard', label: 'last heard' },
+          { key: 'state', label: 'state' },
+        ]}
+        rows={(data?.devices ?? []).map(({ id, name, state, enrolledAt, lastHeardAt }) => ({
+          key: id,
+          isSoft: state === 'lost',
+          cells: {
+            name,
+            id: <span className="figure">{id.slice(0, 8)}</span>,
+            enrolled: dayAndTime(enrolledAt, zone),
+            heard: lastHeardAt === null ? 'never' : dayAndTime(lastHeardAt, zone),
+            state,
+          },
+        }))}
+        emptyWords={data ? 'No tablet is enrolled.' : 'Reading the tablets'}
+      />
+    </section>
+  );
+}
