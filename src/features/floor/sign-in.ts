@@ -11,8 +11,7 @@ import {
 } from '@/offline/tablet';
 import type { Offline } from '@/offline/offline';
 
-const nothing = z.object({});
-const whoIsActive = z.object({ person: z.object({ id: z.string() }) });
+const whoSignedIn = z.object({ personId: z.string() });
 
 /** Signs a person in at this tablet beside whoever is; the tablet must be enrolled for their key to follow. */
 export async function signIn(
@@ -23,16 +22,15 @@ export async function signIn(
     method: 'POST',
     path: '/api/auth/sign-in',
     body: { email, password },
-    answer: nothing,
+    answer: whoSignedIn,
   });
   if (!answer.ok) return answer;
-  const who = await callServer(offline, { path: '/api/me', answer: whoIsActive });
-  if (!who.ok) return who;
   const refreshed = await refreshSignedIn(offline);
   if (!refreshed.ok) return refreshed;
-  await setWorking(offline, who.body.person.id);
+  const { personId } = answer.body;
+  await setWorking(offline, personId);
   const { enrolled } = await readTablet(offline);
-  return enrolled ? settleIn(offline, who.body.person.id) : { ok: true };
+  return enrolled ? settleIn(offline, personId) : { ok: true };
 }
 
 /** Enrols the tablet under a name and the working person's key on it, then brings what work offline needs. */
