@@ -14,6 +14,8 @@ export interface BoltShapeProps {
   isHeavy?: boolean | undefined;
   /** Degrees asked for, drawn dotted outside the ring; negative turns back. */
   targetAngle?: number | undefined;
+  /** Which way it goes where no angle is asked, as for a torque: a short dotted arc. */
+  turn?: 'tighten' | 'release' | undefined;
   /** Degrees turned, drawn solid. */
   turnedAngle?: number | undefined;
   /** Radius of the arc as a multiple of the ring's. */
@@ -89,24 +91,24 @@ function CondemnedCross({ centre, radius }: { centre: Point; radius: number }) {
   );
 }
 
-function TurnArc({ centre, radius, targetAngle, turnedAngle, arcRatio = 1.34 }: BoltShapeProps) {
+/** How much of an arc says a direction and no angle. */
+const DIRECTION = { tighten: 55, release: -55 };
+
+function TurnArc({ centre, radius, targetAngle, turn, turnedAngle, arcRatio = 1.34 }: BoltShapeProps) {
   const arc = radius * arcRatio;
+  const asked = targetAngle ?? (turn === undefined ? 0 : DIRECTION[turn]);
   const width = Math.max(1.6, radius * 0.085);
   return (
     <>
-      {targetAngle !== undefined && targetAngle !== 0 && (
+      {asked !== 0 && (
         <>
           <path
             className="turn-target"
-            d={arcPath(centre, arc, targetAngle)}
+            d={arcPath(centre, arc, asked)}
             strokeWidth={width}
             strokeDasharray={`${width * 0.1} ${width * 1.9}`}
           />
-          <path
-            className="turn-arrow"
-            d={arrowPath(centre, arc, targetAngle, width * 4)}
-            strokeWidth={width}
-          />
+          <path className="turn-arrow" d={arrowPath(centre, arc, asked, width * 4)} strokeWidth={width} />
         </>
       )}
       {turnedAngle !== undefined && turnedAngle !== 0 && (

@@ -16,10 +16,12 @@ export interface CapBolt {
 export interface CapDrawingProps {
   rod: string;
   bolts: CapBolt[];
-  /** Name of the bolt in hand: drawn heavily, its letter large. */
-  inHand?: string | undefined;
+  /** Names of the bolts in hand: drawn heavily, their letters large. */
+  inHand?: readonly string[] | undefined;
   /** Degrees asked of the bolt in hand; negative is a release. */
   targetAngle?: number | undefined;
+  /** Which way it goes where no angle is asked, as for a torque. */
+  turn?: 'tighten' | 'release' | undefined;
   turnedAngle?: number | undefined;
   /** The paint mark is what is asked for now. */
   isMarkAsked?: boolean | undefined;
@@ -35,9 +37,10 @@ const ARC_RATIO = 1.9;
 
 /** Draws the cap in hand from below with its bolts, the one to turn heavily and the angle as an arc around it. */
 export function CapDrawing(props: CapDrawingProps) {
-  const { rod, bolts, inHand, targetAngle, turnedAngle, isMarkAsked, figure } = props;
+  const { bolts, inHand, targetAngle, turn, turnedAngle, isMarkAsked } = props;
   const titleId = useId();
   const centres = boltCentres(bolts.length);
+  const radius = bolts.length > 2 ? (RING * 2) / bolts.length : RING;
   return (
     <svg
       className="drawing cap-drawing"
@@ -49,31 +52,19 @@ export function CapDrawing(props: CapDrawingProps) {
     >
       <title id={titleId}>{capWords(props)}</title>
       <path className="cap-body" d={capPath(centres[0] ?? WIDTH / 2, centres.at(-1) ?? WIDTH / 2)} />
-      <text
-        className="cap-rod"
-        x={WIDTH / 2}
-        y={MIDDLE + (figure === undefined ? 13 : 2)}
-        textAnchor="middle"
-      >
-        {rod}
-      </text>
-      {figure !== undefined && (
-        <text className="cap-figure" x={WIDTH / 2} y={MIDDLE + 25} textAnchor="middle">
-          {figure}
-        </text>
-      )}
+      <CapWords {...props} />
       {bolts.map((bolt, i) => {
         const x = centres[i] ?? WIDTH / 2;
-        const isInHand = bolt.name === inHand;
+        const isInHand = inHand?.includes(bolt.name) === true;
         return (
           <g key={bolt.name}>
             <BoltShape
               {...bolt}
               centre={{ x, y: MIDDLE }}
-              radius={RING}
+              radius={radius}
               isHeavy={isInHand}
               arcRatio={ARC_RATIO}
-              {...(isInHand ? { targetAngle, turnedAngle, isMarkAsked } : {})}
+              {...(isInHand ? { targetAngle, turn, turnedAngle, isMarkAsked } : {})}
             />
             <text
               className={isInHand ? 'cap-letter is-in-hand' : 'cap-letter'}
@@ -90,6 +81,28 @@ export function CapDrawing(props: CapDrawingProps) {
   );
 }
 
+/** The rod's number, and a figure, between two bolts; the bolts themselves fill a cap with one or many. */
+function CapWords({ rod, bolts, figure }: CapDrawingProps) {
+  if (bolts.length !== 2) return null;
+  return (
+    <>
+      <text
+        className="cap-rod"
+        x={WIDTH / 2}
+        y={MIDDLE + (figure === undefined ? 13 : 2)}
+        textAnchor="middle"
+      >
+        {rod}
+      </text>
+      {figure !== undefined && (
+        <text className="cap-figure" x={WIDTH / 2} y={MIDDLE + 25} textAnchor="middle">
+          {figure}
+        </text>
+      )}
+    </>
+  );
+}
+
 function boltCentres(count: number): number[] {
   const left = 72;
   const right = WIDTH - 72;
@@ -101,6 +114,9 @@ function boltCentres(count: number): number[] {
 function capPath(left: number, right: number): string {
   const waist = 36;
   const boss = 46;
+  if (left === right) {
+    return `M ${left - boss} ${MIDDLE} a ${boss} ${boss} 0 1 1 ${boss * 2} 0 a ${boss} ${boss} 0 1 1 ${-boss * 2} 0 Z`;
+  }
   return [
     `M ${left} ${MIDDLE - boss}`,
     `C ${left + 40} ${MIDDLE - boss}, ${left + 36} ${MIDDLE - waist}, ${left + 62} ${MIDDLE - waist}`,
@@ -114,10 +130,18 @@ function capPath(left: number, right: number): string {
   ].join(' ');
 }
 
-function capWords({ rod, bolts, inHand, targetAngle, turnedAngle, isMarkAsked }: CapDrawingProps): string {
+function capWords({
+  rod,
+  bolts,
+  inHand,
+  targetAngle,
+  turn,
+  turnedAngle,
+  isMarkAsked,
+}: CapDrawingProps): string {
   const each = bolts.map((bolt) =>
-    boltWords(bolt.name === inHand ? { ...bolt, state: bolt.state, targetAngle, turnedAngle } : bolt),
+    boltWords(inHand?.includes(bolt.name) ? { ...bolt, targetAngle, turn, turnedAngle } : bolt),
   );
-  const hand = inHand === undefined ? [] : [`${isMarkAsked ? 'mark' : 'in hand'} ${inHand}`];
+  const hand = inHand === undefined ? [] : [`${isMarkAsked ? 'mark' : 'in hand'} ${inHand.join(' and ')}`];
   return [`Cap of rod ${rod} from below`, ...hand, ...each].join('. ');
 }

@@ -112,7 +112,7 @@ function RodPlot({
   const to = marks.high === undefined ? 100 : placeOn(span, marks.high);
   return (
     <svg className="clearance-plot" aria-hidden="true">
-      <rect className="scale-band" x={`${from}%`} y="0" width={`${to - from}%`} height="100%" />
+      <rect className="scale-band" x={`${from}%`} y="-1" width={`${to - from}%`} height="103%" />
       <line className="line-thin" x1="0" x2="100%" y1="50%" y2="50%" />
       {marks.target !== undefined && (
         <line

@@ -14,7 +14,7 @@ export interface LoudActionProps {
 export function LoudAction({ name, words, figure, unit, step }: LoudActionProps) {
   return (
     <div className="loud">
-      <p className="loud-row">
+      <h1 className="loud-row">
         <span className="loud-name">{name} </span>
         <span className="loud-what">
           <span className="loud-words">{words} </span>
@@ -25,7 +25,7 @@ export function LoudAction({ name, words, figure, unit, step }: LoudActionProps)
             </span>
           )}
         </span>
-      </p>
+      </h1>
       {step !== undefined && <p className="loud-step">{step}</p>}
     </div>
   );

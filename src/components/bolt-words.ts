@@ -7,11 +7,13 @@ export function boltWords(bolt: {
   cycles: number;
   cyclesDone: number;
   targetAngle?: number | undefined;
+  turn?: 'tighten' | 'release' | undefined;
   turnedAngle?: number | undefined;
 }): string {
   const words = [`Bolt ${bolt.name}`, stateWords(bolt)];
   if (bolt.targetAngle !== undefined && bolt.targetAngle > 0) words.push(`${bolt.targetAngle}° asked`);
-  if (bolt.targetAngle !== undefined && bolt.targetAngle < 0) words.push('release asked');
+  if (bolt.turn === 'release' || (bolt.targetAngle ?? 0) < 0) words.push('release asked');
+  if (bolt.turn === 'tighten' && bolt.targetAngle === undefined) words.push('tightening asked');
   if (bolt.turnedAngle !== undefined && bolt.turnedAngle !== 0) words.push(`${bolt.turnedAngle}° turned`);
   return words.join(', ');
 }

@@ -55,7 +55,7 @@ describe('CapDrawing', () => {
     render(
       <CapDrawing
         rod="4"
-        inHand="4B"
+        inHand={['4B']}
         targetAngle={110}
         bolts={[
           { name: '4A', letter: 'A', ...running },
@@ -74,7 +74,7 @@ describe('CapDrawing', () => {
     const { container } = render(
       <CapDrawing
         rod="4"
-        inHand="4B"
+        inHand={['4B']}
         bolts={[
           { name: '4A', letter: 'A', ...running },
           { name: '4B', letter: 'B', ...running },
@@ -85,6 +85,16 @@ describe('CapDrawing', () => {
       Number(head.getAttribute('stroke-width')),
     );
     expect(b).toBeGreaterThan(a!);
+  });
+});
+
+describe('a bolt that is tightened to a torque', () => {
+  it('shows and says the way it goes, and no angle', () => {
+    const { container } = render(
+      <CapDrawing rod="4" inHand={['4A']} turn="tighten" bolts={[{ name: '4A', letter: 'A', ...running }]} />,
+    );
+    expect(container.querySelectorAll('.turn-arrow')).toHaveLength(1);
+    expect(screen.getByRole('img')).toHaveAccessibleName(/Bolt 4A, cycle 2 of 3, tightening asked$/);
   });
 });
 
