@@ -141,7 +141,9 @@ export function createJobStore(db: FloorDatabase): JobStore {
   };
 }
 
-/** Everything of a job, read at one moment. */
+type JobRows = Awaited<ReturnType<typeof readRows>>;
+
+/** Everything of a job, read at one moment; of the confirmed entries only those after `from`, if it still holds. */
 async function readRows(db: FloorDatabase, job: string, from: TrailPoint | null) {
   return db.transaction('r', [db.jobs, db.entries, db.outbox, db.refused, db.counters], async () => {
     const row = await db.jobs.get(job);
@@ -162,23 +164,44 @@ async function readRows(db: FloorDatabase, job: string, from: TrailPoint | null)
 async function readJob(db: FloorDatabase, job: string, present: Folded | undefined): Promise<Folded> {
   const rows = await readRows(db, job, present?.view.row.have ?? null);
   if (rows.row.revision === present?.view.row.revision) return present;
-  const recorded = rows.entries.map((row) => row.recorded);
-  const outbox = rows.pending.map((row) => row.entry);
-  const grown = rows.grows ? grow(present, recorded) : undefined;
-  const plans = grown?.plans ?? (await readPlans(db, rows.row.plan, recorded, outbox));
-  const confirmed = grown?.confirmed ?? foldAll(plans, rows.row.plan, recorded);
-  const state = foldOn(confirmed, outbox) ?? (await foldMoved(db, job, plans, outbox));
-  const { row, pending, refused, deviceSeq } = rows;
-  return { plans, view: { job, row, state, confirmed, pending, refused, stopped: row.stopped, deviceSeq } };
+  const grown = present && rows.grows ? grow(present, rows) : undefined;
+  if (grown) return toFolded(rows, grown);
+  const whole = rows.grows ? await readRows(db, job, null) : rows;
+  return toFolded(whole, await foldWhole(db, whole));
 }
 
-/** What was folded before, with what is new; undefined where all of it has to be folded again. */
-function grow(
-  present: Folded | undefined,
-  recorded: Recorded[],
-): { plans: Folded['plans']; confirmed: JobState } | undefined {
-  const confirmed = present && foldOn(present.view.confirmed, recorded);
-  return confirmed && { plans: present.plans, confirmed };
+function toFolded({ row, pending, refused, deviceSeq }: JobRows, { plans, confirmed, state }: Fold): Folded {
+  const { id: job, stopped } = row;
+  return { plans, view: { job, row, state, confirmed, pending, refused, stopped, deviceSeq } };
+}
+
+interface Fold {
+  plans: Folded['plans'];
+  confirmed: JobState;
+  state: JobState;
+}
+
+/** What was folded before, with what is new; undefined where the plan moved and all of it is folded again. */
+function grow({ plans, view }: Folded, rows: JobRows): Fold | undefined {
+  const confirmed = foldOn(view.confirmed, recordedIn(rows));
+  const state = confirmed && foldOn(confirmed, madeIn(rows));
+  return state && { plans, confirmed, state };
+}
+
+async function foldWhole(db: FloorDatabase, rows: JobRows): Promise<Fold> {
+  const recorded = recordedIn(rows);
+  const made = madeIn(rows);
+  const plans = await readPlans(db, rows.row.plan, [...recorded, ...made]);
+  const confirmed = foldAll(plans, rows.row.plan, recorded);
+  return { plans, confirmed, state: foldOn(confirmed, made) ?? replay(plans, [...recorded, ...made]) };
+}
+
+function recordedIn(rows: JobRows): Recorded[] {
+  return rows.entries.map((row) => row.recorded);
+}
+
+function madeIn(rows: JobRows): Entry[] {
+  return rows.pending.map((row) => row.entry);
 }
 
 /** The fold of more entries onto a state; undefined where one moves the plan, which only a whole fold knows. */
@@ -198,24 +221,13 @@ function foldAll(
   return emptyJob(plan);
 }
 
-async function foldMoved(
-  db: FloorDatabase,
-  job: string,
-  plans: ReadonlyMap<string, Plan>,
-  outbox: Entry[],
-): Promise<JobState> {
-  const confirmed = await ofJob(db.entries, job).toArray();
-  return replay(plans, [...confirmed.map((row) => row.recorded), ...outbox]);
-}
-
 /** The plans that the entries were made under or moved to; all of them must be here. */
 async function readPlans(
   db: FloorDatabase,
   planHash: string,
-  recorded: Recorded[],
-  outbox: Entry[],
+  entries: readonly Entry[],
 ): Promise<Map<string, Plan>> {
-  const wanted = plansNeeded(planHash, [...recorded, ...outbox]);
+  const wanted = plansNeeded(planHash, entries);
   const rows = await db.plans.bulkGet(wanted);
   const plans = new Map<string, Plan>();
   for (const row of rows) if (row) plans.set(row.hash, row.plan);

@@ -70,17 +70,21 @@ export async function recordEntries(
   drafts: readonly Draft[],
   { by, photos = [], now = offline.now() }: RecordOptions,
 ): Promise<RecordOutcome> {
-  const refusal = await refuseAuthor(offline, drafts, by, now);
+  const refusal =
+    (await refuseAuthor(offline, drafts, by, now)) ?? (await refuseUnknownPlan(offline, drafts));
   if (refusal) return refusal;
   let view = offline.jobs.get(job) ?? (await offline.jobs.open(job));
   for (;;) {
     const ground = await readGround(offline, by);
     if (!ground) return noWorkshop();
-    if (view.stopped) return { ok: false, code: view.stopped.code, why: view.stopped.words, index: 0 };
-    const drawn = drawUp(offline, view, drafts, { by, now, ...ground });
-    if (!drawn.ok) return drawn;
-    const orphan = refusePhotos(view.state, drawn.entries, photos);
-    if (orphan) return orphan;
+    const drawn = drawUp(offline, view, drafts, { by, now, photos, ...ground });
+    if (!drawn.ok) {
+      // Another tab or a pull may have changed the job since: only what is on the disk now refuses.
+      const fresh = await offline.jobs.refresh(job);
+      if (fresh === view) return drawn;
+      view = fresh;
+      continue;
+    }
     const signed = await signAll(offline, drawn.entries, drafts, ground);
     const rows = await writeAll(offline, view, signed, ground.key, { photos, keptAt: instantOf(now) });
     if (rows) {
@@ -112,6 +116,22 @@ async function refuseAuthor(
   return verdict.ok ? undefined : { ...verdict, index: 0 };
 }
 
+/** After a move to a plan that isn't here the job could not be shown any more. */
+async function refuseUnknownPlan(s: Surroundings, drafts: readonly Draft[]): Promise<Refusal | undefined> {
+  for (const [index, draft] of drafts.entries()) {
+    if (draft.kind !== 'plan-moved' || (await s.db.plans.get(draft.data.to))) continue;
+    const why = 'The plan that the job is to move to is not on this tablet yet.';
+    return {
+      ok: false,
+      code: 'plan-not-here',
+      why,
+      unlock: 'Connect it to the network for a moment.',
+      index,
+    };
+  }
+  return undefined;
+}
+
 async function readGround(s: Surroundings, by: string): Promise<Ground | undefined> {
   const [device, workshop, key] = await Promise.all([
     readDevice(s),
@@ -136,8 +156,9 @@ function drawUp(
   s: Surroundings,
   view: JobView,
   drafts: readonly Draft[],
-  { by, now, device, workshop }: Ground & { by: string; now: number },
+  { by, now, photos, device, workshop }: Ground & { by: string; now: number; photos: PreparedPhoto[] },
 ): { ok: true; entries: Entry[] } | Refusal {
+  if (view.stopped) return { ok: false, code: view.stopped.code, why: view.stopped.words, index: 0 };
   const author = authorOf(workshop, by);
   if (!author) {
     const why = 'The workshop does not list this person as one of its people.';
@@ -151,7 +172,7 @@ function drawUp(
         v: 1,
         id: s.newId(),
         job: view.job,
-        plan: view.row.plan,
+        plan: planInForce(view),
         basis: view.row.have?.seq ?? 0,
         workshop: workshop.seq,
         kind: draft.kind,
@@ -172,7 +193,12 @@ function drawUp(
     state = applyEntry(state, parsed.entry);
     entries.push(parsed.entry);
   }
-  return { ok: true, entries };
+  return refusePhotos(view.state, entries, photos) ?? { ok: true, entries };
+}
+
+/** The outbox may hold the move to another plan. */
+function planInForce({ row, pending }: JobView): string {
+  return pending.reduce((plan, { entry }) => (entry.kind === 'plan-moved' ? entry.data.to : plan), row.plan);
 }
 
 function authorOf(workshop: WorkshopRow, by: string): Entry['author'] | undefined {

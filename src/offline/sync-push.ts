@@ -13,7 +13,8 @@ export interface Batch {
 
 /** The next records to send: each job's in order, none that was tried in this run or has arrived already. */
 export async function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): Promise<Batch> {
-  const jobs = await db.jobs.toCollection().primaryKeys();
+  const jobs = new Set<string>();
+  await db.outbox.toCollection().eachPrimaryKey(([job]) => jobs.add(job));
   const rows: OutboxRow[] = [];
   let bytes = 0;
   for (const job of jobs) {

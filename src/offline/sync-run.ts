@@ -12,6 +12,7 @@ import { instantOf, type Surroundings } from './surroundings';
 import { syncAnswer, type SyncAnswer } from './sync-answer';
 import { applyJobAnswer } from './sync-pull';
 import { applyVerdicts, nextBatch, toWire, type Batch } from './sync-push';
+import { extendSessionsHourly } from './tablet';
 
 /** As many as the server lets a tablet ask for at once. */
 const MAX_JOBS = 100;
@@ -109,6 +110,7 @@ async function afterwards(
     const pulled = await pullWorkshop(s);
     if (!pulled.ok) return pulled;
   }
+  await extendSessionsHourly(s);
   const plans = await fetchMissingPlans(s);
   return plans.ok ? sendPhotos(s) : plans;
 }

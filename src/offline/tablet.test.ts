@@ -104,6 +104,38 @@ describe('people side by side', () => {
     expect(await canMakeEntries(offline, 'tech')).toMatchObject({ code: 'not-signed-in' });
   });
 
+  it('have their sessions lengthened by a sync now and then, and never ended', async () => {
+    const { tablet, offline } = await openTablet(server, { people: ['tech', 'mate'] });
+    const until = '2026-08-01T00:00:00.000Z';
+    server.sideBySide = [{ personId: 'tech', name: 'T. Nician', roles: ['technician'], sessionUntil: until }];
+    must(await offline.sync.now());
+    expect((await listSignedIn(offline)).map(({ person, sessionUntil }) => [person, sessionUntil])).toEqual([
+      ['mate', expect.stringContaining('2026-06-02')],
+      ['tech', until],
+    ]);
+    const asked = () => server.requests.filter(({ path }) => path === '/api/me').length;
+    const before = asked();
+    must(await offline.sync.now());
+    expect(asked()).toBe(before);
+    tablet.now += 3_600_000;
+    must(await offline.sync.now());
+    expect(asked()).toBe(before + 1);
+  });
+
+  it('keep a sign-in that was made while the server’s list was on its way', async () => {
+    const { offline } = await openTablet(server);
+    server.session = 'tech';
+    const { fetch } = offline;
+    offline.fetch = async (path, init) => {
+      const answer = await fetch(path, init);
+      const sessionUntil = '2026-08-01T00:00:00.000Z';
+      await rememberSignIn(offline, { person: 'mate', name: 'M. Ate', roles: ['technician'], sessionUntil });
+      return answer;
+    };
+    must(await refreshSignedIn(offline));
+    expect((await listSignedIn(offline)).map(({ person }) => person)).toEqual(['mate', 'tech']);
+  });
+
   it('are not working here any more once they signed out', async () => {
     const { tablet, offline } = await openTablet(server);
     await setWorking(offline, 'tech');

@@ -129,14 +129,38 @@ const me = z.object({
 
 /** Takes over the server's list of who is signed in here. Any trouble, a 401 included, changes nothing. */
 export async function refreshSignedIn(s: Surroundings): Promise<Outcome> {
+  const before = await s.db.signedIn.toArray();
   const answer = await callServer(s, { path: '/api/me', answer: me, without: 'tablet' });
   if (!answer.ok) return answer;
   const rows = answer.body.sideBySide.map(({ personId, ...rest }) => ({ person: personId, ...rest }));
   await s.db.transaction('rw', s.db.signedIn, async () => {
+    // Whoever signed in or out while the answer was on its way is right, not the answer.
+    if (JSON.stringify(await s.db.signedIn.toArray()) !== JSON.stringify(before)) return;
     await s.db.signedIn.clear();
     await s.db.signedIn.bulkPut(rows);
   });
   return { ok: true };
+}
+
+const HOUR = 60 * 60 * 1000;
+
+/**
+ * Sessions slide while they are used: the tablet learns of it now and then. It only ever lengthens them,
+ * because nobody is to be signed out in the middle of a cap, and trouble about it matters to nobody.
+ */
+export async function extendSessionsHourly(s: Surroundings): Promise<void> {
+  const { meta, signedIn } = s.db;
+  const last = (await meta.get('signedInAt'))?.value as number | undefined;
+  if ((last !== undefined && s.now() - last < HOUR) || (await signedIn.count()) === 0) return;
+  const answer = await callServer(s, { path: '/api/me', answer: me, without: 'tablet' });
+  if (!answer.ok) return;
+  await s.db.transaction('rw', signedIn, meta, async () => {
+    for (const { personId, sessionUntil } of answer.body.sideBySide) {
+      const row = await signedIn.get(personId);
+      if (row && row.sessionUntil < sessionUntil) await signedIn.put({ ...row, sessionUntil });
+    }
+    await meta.put({ key: 'signedInAt', value: s.now() });
+  });
 }
 
 /** Everybody who is signed in at this tablet, and whether their key is known to the workshop. */

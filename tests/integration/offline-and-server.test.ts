@@ -242,7 +242,8 @@ describe('a tablet and the server', () => {
       tablet.lostReplies = 1;
       expect(await tablet.offline.sync.now()).toMatchObject({ ok: false });
       must(await tablet.offline.sync.now());
-      await tablet.offline.jobs.refresh(job);
+      const heard = await tablet.offline.jobs.refresh(job);
+      expect(heard.pending.map(({ reason }) => reason)).toEqual([]);
       tablet.isAway = true;
     }
     tablet.isAway = false;

@@ -65,6 +65,7 @@ export class OfflineServer {
   clock = Date.parse('2026-06-02T08:00:00.000Z');
   /** Who is signed in at the browser that asks. */
   session: string | undefined;
+  sideBySide: { personId: string; name: string; roles: string[]; sessionUntil: string }[] = [];
   /** The server is not reached at all. */
   isAway = false;
   /** So many replies are lost after the work was done. */
@@ -108,6 +109,16 @@ export class OfflineServer {
       key: 'office',
     });
     return job.id;
+  }
+
+  /** The office moves a job to another plan. */
+  movePlan(jobId: string, plan: Plan): void {
+    const job = this.jobs.get(jobId)!;
+    const to = contentHash(plan, sha256);
+    this.plans.set(to, plan);
+    const data = { to, reason: 'a better way', kept: [], voided: [] };
+    this.append(job, { entry: this.officeEntry(job, 'plan-moved', data), signature: null, key: null });
+    job.plan = to;
   }
 
   /** The entries of a job as they were made, in the order of the trail. */
@@ -157,7 +168,7 @@ export class OfflineServer {
     if (path === '/api/me') {
       return this.session === undefined
         ? refusal(401, 'not-signed-in', 'Nobody is signed in here.')
-        : [200, { actor: { personId: this.session }, sideBySide: [] }];
+        : [200, { actor: { personId: this.session }, sideBySide: this.sideBySide }];
     }
     const device = this.deviceOf(authorization);
     if (!device) return refusal(401, 'unknown-tablet', 'This tablet is not known to the workshop.');
@@ -323,10 +334,10 @@ export class OfflineServer {
     return row;
   }
 
-  private officeEntry(job: JobRecord, kind: 'opened' | 'refused', data: object): Entry {
+  private officeEntry(job: JobRecord, kind: 'opened' | 'plan-moved' | 'refused', data: object): Entry {
     const number = (job.numbers.office ?? 0) + 1;
     job.numbers.office = number;
-    const isOpening = kind === 'opened';
+    const isOpening = kind !== 'refused';
     return {
       ...{ v: 1, id: this.newId(), job: job.id, plan: job.plan, basis: job.rows.length },
       ...{ workshop: this.workshop.seq, kind, by: isOpening ? 'sup' : 'workshop' },

@@ -1,6 +1,8 @@
 /* Tablets for tests: a real database each (closed and opened again at will), a stepped clock, known chance. */
 import { webcrypto } from 'node:crypto';
+import { expect } from 'vitest';
 import type { Entry } from '@/domain/entry';
+import { applyEntry, emptyJob } from '@/domain/job';
 import { openFloorDatabase } from '@/offline/database';
 import { sha256OfBytes } from '@/offline/hashing';
 import { closeOffline, openOffline, type Offline } from '@/offline/offline';
@@ -117,6 +119,11 @@ export function photographed({ hash, bytes, type }: PreparedPhoto): Draft {
   };
 }
 
+/** A remark: what anybody can record at any time. */
+export function remark(words: string): Draft {
+  return { kind: 'deviation-raised', data: { class: 'C', words, blocks: false } };
+}
+
 /** Records drafts one after the other, five seconds apart; each must be taken. */
 export async function recordAll(
   { tablet, offline }: { tablet: TestTablet; offline: Offline },
@@ -132,6 +139,39 @@ export async function recordAll(
     entries.push(...recorded(outcome));
   }
   return entries;
+}
+
+/** Records so many remarks, numbered from one given. */
+export function recordRemarks(
+  at: { tablet: TestTablet; offline: Offline },
+  job: string,
+  { from = 1, count, by = 'tech' }: { from?: number; count: number; by?: string },
+): Promise<Entry[]> {
+  const drafts = Array.from({ length: count }, (_, n) => remark(`no. ${from + n}`));
+  return recordAll(at, job, drafts, by);
+}
+
+/** The ids of what the server holds of a job that did not come from the office. */
+export function idsFromTablets(server: OfflineServer, job: string): string[] {
+  return server
+    .entriesOf(job)
+    .filter(({ device }) => device !== 'office')
+    .map(({ id }) => id);
+}
+
+/** What must hold after all went through: one chain here, the same as the server's, and nothing left over. */
+export async function expectAllArrived(
+  { server, offline }: { server: OfflineServer; offline: Offline },
+  job: string,
+  made: readonly { id: string }[],
+): Promise<void> {
+  expect(idsFromTablets(server, job)).toEqual(made.map(({ id }) => id));
+  const rows = await offline.db.entries.orderBy(':id').toArray();
+  expect(rows.map(({ hash }) => hash)).toEqual(server.jobs.get(job)!.rows.map(({ hash }) => hash));
+  expect(await offline.db.outbox.count()).toBe(0);
+  const view = await offline.jobs.refresh(job);
+  expect(view.row.have).toEqual({ seq: rows.length, hash: rows.at(-1)!.hash });
+  expect(view.state).toEqual(rows.map((row) => row.recorded).reduce(applyEntry, emptyJob(smallPlan())));
 }
 
 /** The entries of a record that must have been taken. */
