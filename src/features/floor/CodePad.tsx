@@ -16,7 +16,7 @@ export function CodePad({ label, value, onChange }: CodePadProps) {
   const id = useId();
   const type = (text: string) => onChange(text.toUpperCase().replace(/\s+/g, ' ').slice(0, MAX_LENGTH));
   return (
-    <div role="group" aria-labelledby={`${id}-label`} className="w-full max-w-4xl">
+    <div role="group" aria-labelledby={`${id}-label`} className="w-full">
       <label id={`${id}-label`} htmlFor={id} className="form-label">
         {label}
       </label>
@@ -29,7 +29,7 @@ export function CodePad({ label, value, onChange }: CodePadProps) {
         value={value}
         onChange={(event) => type(event.target.value)}
       />
-      <div className="grid grid-cols-[repeat(auto-fill,minmax(4.5rem,1fr))] gap-3 pt-4">
+      <div className="grid grid-cols-[repeat(auto-fill,minmax(4.5rem,1fr))] gap-3 pt-3">
         {KEYS.map((key) => (
           <button key={key} type="button" className="pad-key" onClick={() => type(value + key)}>
             {key}

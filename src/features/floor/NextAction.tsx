@@ -26,9 +26,13 @@ export function NextAction({ step, note }: { step: PlanStep; note?: string | und
   );
 }
 
-/** "rod 5" where the next rod has the same to be done, else the title. */
+const LONGEST_LABEL = 46;
+
+/** "rod 5" where the next rod has the same to be done, else the title as far as there is room. */
 function shortTitle(next: PlanStep, step: PlanStep): string {
   if (next.kind === step.kind && next.rod !== undefined && next.rod !== step.rod) return `rod ${next.rod}`;
-  const { title } = next;
-  return title.length <= 34 ? `${title.charAt(0).toLowerCase()}${title.slice(1)}` : 'go on';
+  const title = next.rod === step.rod ? next.title.replace(/^Rod \d+: /, '') : next.title;
+  return title.length <= LONGEST_LABEL
+    ? `${title.charAt(0).toLowerCase()}${title.slice(1)}`
+    : 'the step after this';
 }

@@ -25,15 +25,20 @@ export interface StepFrameProps {
   /** The second quiet button; the first is always "Problem". */
   quiet?: ReactNode;
   main: ReactNode;
-  /** What comes after, if it is not simply the next step. */
-  then?: string | undefined;
+  /** What comes after, if it is not simply the next step; `null` leaves the line out. */
+  then?: string | null | undefined;
+  /** The heading is loud and leaves room beside "Take back". */
+  isLoud?: boolean | undefined;
+  /** The screen shows what was just recorded, so that no line says it again. */
+  isResult?: boolean | undefined;
   /** Small words at the foot, such as the tool in hand. */
   foot?: ReactNode;
   children?: ReactNode;
 }
 
 /** One step on the Floor: what was done before it small, the step large, what comes after it small. */
-export function StepFrame({ step, heading, side, quiet, main, then, foot, children }: StepFrameProps) {
+export function StepFrame(props: StepFrameProps) {
+  const { step, heading, side, quiet, main, then, isLoud = false, isResult = false, foot, children } = props;
   const run = useRun();
   const isPortrait = useIsPortrait();
   const isRodStep = step.rod !== undefined || step.kind === 'turn';
@@ -41,7 +46,7 @@ export function StepFrame({ step, heading, side, quiet, main, then, foot, childr
     isPortrait && !isRodStep ? undefined : (
       <EngineBelow {...engineView(run.state, step, run.workshop.zone)} />
     );
-  const next = then ?? nextWords(run, step);
+  const next = then === undefined ? nextWords(run, step) : (then ?? undefined);
   return (
     <FloorFrame
       {...run.cells}
@@ -51,13 +56,13 @@ export function StepFrame({ step, heading, side, quiet, main, then, foot, childr
       quiet={
         <>
           <QuietButton label="Problem" onPress={() => run.openSheet('problem')} />
-          {quiet}
+          {quiet ?? <QuietButton label="Steps" onPress={() => run.openSheet('steps')} />}
         </>
       }
       main={main}
     >
       <div className="flex min-h-full flex-col">
-        <LastAct run={run} />
+        {!isResult && <LastAct run={run} isLoud={isLoud} />}
         <Refusal run={run} />
         <div data-prompt>{heading ?? <StepHeading step={step} />}</div>
         {children}
@@ -80,6 +85,15 @@ export function StepHeading({ step }: { step: PlanStep }) {
     <div className="grid gap-4 pb-4">
       <h1 className="floor-step">{step.title}</h1>
       <StepCautions step={step} />
+      <StepDetails step={step} />
+    </div>
+  );
+}
+
+/** How a step is done, a line a sentence, and why. */
+export function StepDetails({ step }: { step: PlanStep }) {
+  return (
+    <>
       {step.how.length > 0 && (
         <ul className="grid max-w-[62ch] gap-1.5 text-lg">
           {step.how.map((line) => (
@@ -91,7 +105,7 @@ export function StepHeading({ step }: { step: PlanStep }) {
         </ul>
       )}
       {step.why !== undefined && <p className="max-w-[62ch] text-lg text-soft">{step.why}</p>}
-    </div>
+    </>
   );
 }
 
@@ -115,11 +129,11 @@ const CAUTION_LEVELS = {
   NOTICE: 'notice',
 } as const;
 
-function LastAct({ run }: { run: Run }) {
+function LastAct({ run, isLoud }: { run: Run; isLoud: boolean }) {
   const acts = lastAct(run.state);
   if (acts.length === 0) return null;
   return (
-    <div className="floor-head pb-4">
+    <div className={isLoud ? 'floor-head pb-4' : 'floor-head pb-3 [&>.quiet-button]:mb-0'}>
       <p className="floor-done">{lastActWords(run, acts)}</p>
       <QuietButton shape="wide" label="Take back" onPress={() => run.openSheet('take back')} />
     </div>

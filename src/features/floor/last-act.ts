@@ -64,13 +64,13 @@ function isBoltAct(kind: EntryKind): boolean {
   return kind === 'tightened' || kind === 'released';
 }
 
-/** "Done 10:42: bolt 4A turned 110°, on this tablet". */
+/** "Done 10:42, on this tablet: bolt 4A turned 110°". */
 export function lastActWords(run: Run, acts: Kept[]): string {
   const [newest] = acts;
   if (!newest) return '';
   const { plan } = run.state;
   const place = run.whereIs(newest.id);
-  return `Done ${clockTime(newest.at, run.workshop.zone)}: ${actWords(acts, plan)}, ${place}`;
+  return `Done ${clockTime(newest.at, run.workshop.zone)}, ${place}: ${actWords(acts, plan)}`;
 }
 
 /** The act in words; several bolts of one touch are told together. */

@@ -26,6 +26,7 @@ export function ProblemSheet({ step, onClose }: ProblemSheetProps) {
         {step?.kind === 'gauge' && <MeasureAgain step={step} onClose={onClose} />}
         <div className="grid gap-3 @container sm:grid-cols-2 [&_.quiet-button]:justify-start [&_.quiet-button]:text-xl">
           <QuietButton shape="wide" label="Raise a deviation" onPress={open('deviation')} />
+          <QuietButton shape="wide" label="Take back the last act" onPress={open('take back')} />
           {step && step.kind !== 'hold' && (
             <QuietButton
               shape="wide"

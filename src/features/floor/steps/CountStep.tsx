@@ -18,6 +18,16 @@ export function CountStep({ step }: { step: StepOf<'count'> }) {
   return (
     <StepFrame
       step={step}
+      side={
+        <Keypad
+          label={`${step.what}, ${step.side === 'out' ? 'going out' : 'come back'}`}
+          unit="counted"
+          kind="integer"
+          maxLength={3}
+          value={count}
+          onChange={setCount}
+        />
+      }
       main={
         <RecordAction
           label={count === '' ? 'Keep the count' : `Keep ${count} ${step.what}`}
@@ -26,14 +36,9 @@ export function CountStep({ step }: { step: StepOf<'count'> }) {
         />
       }
     >
-      <Keypad
-        label={`${step.what}, ${step.side === 'out' ? 'going out' : 'come back'}`}
-        unit="counted"
-        kind="integer"
-        maxLength={3}
-        value={count}
-        onChange={setCount}
-      />
+      {step.side === 'in' && (
+        <p className="text-xl">Count them yourself: what went out is shown only after your count is kept.</p>
+      )}
     </StepFrame>
   );
 }
@@ -43,7 +48,7 @@ function CountKept({ step, count }: { step: StepOf<'count'>; count: number }) {
   const tally = state.tallies[step.tally];
   const isOff = isBlocked(state, step.id);
   return (
-    <StepFrame step={step} main={<NextAction step={step} />}>
+    <StepFrame step={step} isResult main={<NextAction step={step} />}>
       <div className="flex flex-wrap items-end gap-10">
         <p>
           <span className="form-label block">{step.what}</span>

@@ -84,7 +84,17 @@ function DriveHalf({ step, checks, unit, label, from, draft }: DriveHalfProps) {
   return (
     <StepFrame
       step={step}
-      side={null}
+      side={
+        isOnPad ? (
+          <Keypad
+            label={from === undefined ? 'Odometer before' : 'Odometer after'}
+            unit={unit}
+            kind="integer"
+            value={odometer}
+            onChange={setOdometer}
+          />
+        ) : null
+      }
       heading={
         <h1 className="floor-step pb-3">
           {from === undefined ? `${step.title}: before` : `${step.title}: after`}
@@ -101,38 +111,29 @@ function DriveHalf({ step, checks, unit, label, from, draft }: DriveHalfProps) {
       }
     >
       {isOnPad ? (
-        <div className="flex flex-wrap gap-x-12 gap-y-4">
-          <Keypad
-            label={from === undefined ? 'Odometer before' : 'Odometer after'}
-            unit={unit}
-            kind="integer"
-            value={odometer}
-            onChange={setOdometer}
-          />
-          <div className="grid max-w-lg flex-1 content-start gap-3 text-lg">
-            <p>
-              To drive:{' '}
-              <span className="figure font-semibold">
-                {step.distance} {step.distanceUnit}
-              </span>
-              {from !== undefined && (
-                <>
-                  . It stood at{' '}
-                  <span className="figure font-semibold">
-                    {from} {unit}
-                  </span>
-                  .
-                </>
-              )}
-            </p>
-            <p className="font-bold">The action says that all of this is in order:</p>
-            <ul className="grid gap-1.5">
-              {checks.map(({ id, ask }) => (
-                <li key={id}>– {ask}</li>
-              ))}
-            </ul>
-            <p className="text-soft">Something is not? Touch “Checks”.</p>
-          </div>
+        <div className="grid max-w-2xl content-start gap-3 text-lg">
+          <p>
+            To drive:{' '}
+            <span className="figure font-semibold">
+              {step.distance} {step.distanceUnit}
+            </span>
+            {from !== undefined && (
+              <>
+                . It stood at{' '}
+                <span className="figure font-semibold">
+                  {from} {unit}
+                </span>
+                .
+              </>
+            )}
+          </p>
+          <p className="font-bold">The action says that all of this is in order:</p>
+          <ul className="grid gap-1.5">
+            {checks.map(({ id, ask }) => (
+              <li key={id}>– {ask}</li>
+            ))}
+          </ul>
+          <p className="text-soft">Something is not? Touch “Checks”.</p>
         </div>
       ) : (
         <CheckAnswers label="Checks" checks={checks} answers={answers} onChange={setAnswers} />

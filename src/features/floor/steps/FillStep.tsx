@@ -22,7 +22,11 @@ export function FillStep({ step }: { step: StepOf<'fill'> }) {
   return (
     <StepFrame
       step={step}
-      side={isAskingLot ? null : undefined}
+      side={
+        isAskingLot ? null : (
+          <Keypad label={`${title}, poured in`} unit={unit} value={quantity} onChange={setQuantity} />
+        )
+      }
       quiet={
         <QuietButton
           label={isAskingLot ? 'Quantity' : lot === '' ? 'Lot' : `Lot ${lot}`}
@@ -46,25 +50,22 @@ export function FillStep({ step }: { step: StepOf<'fill'> }) {
       {isAskingLot ? (
         <LotEntry part={title} known={known} value={lot} onChange={setLot} />
       ) : (
-        <div className="flex flex-wrap gap-10">
-          <Keypad label={`${title}, poured in`} unit={unit} value={quantity} onChange={setQuantity} />
-          {fluid && (
-            <div className="grid content-start gap-4">
-              <div>
-                <p className="form-label">by the engine sheet</p>
-                <p className="figure text-4xl font-semibold">
-                  {fluid.quantity} {fluid.unit}
-                </p>
-                <p className="text-lg text-soft">{fluid.specification}</p>
-              </div>
-              <QuietButton
-                shape="wide"
-                label={`${fluid.quantity} ${fluid.unit}, as the sheet says`}
-                onPress={() => setQuantity(fluid.quantity)}
-              />
+        fluid && (
+          <div className="grid content-start gap-4">
+            <div>
+              <p className="form-label">by the engine sheet</p>
+              <p className="figure text-4xl font-semibold">
+                {fluid.quantity} {fluid.unit}
+              </p>
+              <p className="text-lg text-soft">{fluid.specification}</p>
             </div>
-          )}
-        </div>
+            <QuietButton
+              shape="wide"
+              label={`${fluid.quantity} ${fluid.unit}, as the sheet says`}
+              onPress={() => setQuantity(fluid.quantity)}
+            />
+          </div>
+        )
       )}
     </StepFrame>
   );

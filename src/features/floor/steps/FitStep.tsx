@@ -11,10 +11,12 @@ export function FitStep({ step }: { step: StepOf<'fit'> }) {
   const { state } = useRun();
   const known = knownLots(state, step.part);
   const [lot, setLot] = useState(known.length === 1 ? (known[0] ?? '') : '');
+  const isTyping = step.lot && known.length === 0;
   return (
     <StepFrame
       step={step}
-      side={step.lot && known.length === 0 ? null : undefined}
+      side={isTyping ? null : undefined}
+      then={isTyping ? null : undefined}
       main={
         <RecordAction
           label="Confirmed"
@@ -25,9 +27,11 @@ export function FitStep({ step }: { step: StepOf<'fit'> }) {
         />
       }
     >
-      <p className="pb-4 text-2xl">
-        <span className="figure text-5xl font-semibold">{step.count}</span> × {step.part}
-      </p>
+      {(step.count > 1 || !isTyping) && (
+        <p className="pb-3 text-2xl">
+          <span className="figure text-4xl font-semibold">{step.count}</span> × {step.part}
+        </p>
+      )}
       {step.lot && <LotEntry part={step.part} known={known} value={lot} onChange={setLot} />}
     </StepFrame>
   );

@@ -40,7 +40,8 @@ export function GaugeKept({ step, rod, kept, onRear, onReadAgain }: GaugeKeptPro
           </div>
         </div>
       }
-      then={undefined}
+      isResult
+      then={null}
       foot={
         deviations.length > 0 ? (
           <p className="font-bold text-outside">

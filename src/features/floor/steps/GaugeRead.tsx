@@ -40,18 +40,30 @@ export function GaugeRead({ step, rod, end, lots, onOtherThread, onKept }: Gauge
     <StepFrame
       step={step}
       side={
-        <BandPicker
-          label="Touch the band you read on the card"
-          bands={bands.map(({ width: widthMm, clearance }, index) => ({
-            id: String(index),
-            widthMm: Number(widthMm),
-            clearance,
-          }))}
-          picked={band}
-          onPick={pick}
-          onWider={() => setOffCard('wider')}
-          onNarrower={() => setOffCard('narrower')}
-        />
+        width === undefined ? (
+          <div className={bands.length > 8 ? '[&_.band]:min-h-18 [&_.bands-grid]:gap-y-3' : undefined}>
+            <BandPicker
+              label="Touch the band you read on the card"
+              bands={bands.map(({ width: widthMm, clearance }, index) => ({
+                id: String(index),
+                widthMm: Number(widthMm),
+                clearance,
+              }))}
+              picked={band}
+              onPick={pick}
+              onWider={() => setOffCard('wider')}
+              onNarrower={() => setOffCard('narrower')}
+            />
+          </div>
+        ) : (
+          <Keypad
+            label={`Crushed width, rod ${step.rod} ${end}`}
+            unit="mm"
+            value={width}
+            onChange={setWidth}
+            error={typed?.error}
+          />
+        )
       }
       heading={
         <div className="pb-4">
@@ -90,13 +102,9 @@ export function GaugeRead({ step, rod, end, lots, onOtherThread, onKept }: Gauge
       {offCard !== undefined && width === undefined ? (
         <OffCard side={offCard} />
       ) : width !== undefined ? (
-        <Keypad
-          label={`Crushed width, rod ${step.rod} ${end}`}
-          unit="mm"
-          value={width}
-          onChange={setWidth}
-          error={typed?.error}
-        />
+        <p className="text-xl">
+          Measure the width where the thread is widest. The card turns it into the clearance.
+        </p>
       ) : (
         <p className="reading">
           <span className="form-label">{value ? 'read, not kept yet' : 'nothing read yet'}</span>

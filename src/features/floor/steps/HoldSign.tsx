@@ -98,7 +98,18 @@ export function HoldSign({ step, signer, covers, onBack }: HoldSignProps) {
   return (
     <StepFrame
       step={step}
-      side={null}
+      isResult
+      then={null}
+      side={
+        <PinPad
+          label={stage === 'pin again' ? `PIN of ${signer.name}, once more` : `PIN of ${signer.name}`}
+          value={pin}
+          onChange={setPin}
+          onEnter={() => pin.length >= SHORTEST_PIN && enterPin()}
+          hint={run.isOnline ? 'checked at once' : 'no network: entered twice, checked later'}
+          error={error}
+        />
+      }
       heading={<h1 className="floor-step pb-3">{step.title}</h1>}
       quiet={<QuietButton label="Back" onPress={back} />}
       main={
@@ -111,24 +122,14 @@ export function HoldSign({ step, signer, covers, onBack }: HoldSignProps) {
         />
       }
     >
-      <div className="flex flex-wrap gap-x-14 gap-y-6">
-        <PinPad
-          label={stage === 'pin again' ? `PIN of ${signer.name}, once more` : `PIN of ${signer.name}`}
-          value={pin}
-          onChange={setPin}
-          onEnter={() => pin.length >= SHORTEST_PIN && enterPin()}
-          hint={run.isOnline ? 'checked at once' : 'no network: entered twice, checked later'}
-          error={error}
-        />
-        <figure className="max-w-md flex-1">
-          <figcaption className="form-label">You sign</figcaption>
-          <blockquote className="pt-1 text-2xl leading-snug">“{meaning}”</blockquote>
-          <p className="pt-4 text-lg text-soft">
-            {signer.name}, {signer.roles.join(', ')}; {presence ?? 'at the vehicle'}. It covers {covers.count}{' '}
-            entries as they stand now; if they change, the hold point opens again.
-          </p>
-        </figure>
-      </div>
+      <figure className="max-w-2xl">
+        <figcaption className="form-label">You sign</figcaption>
+        <blockquote className="pt-1 text-3xl leading-snug">“{meaning}”</blockquote>
+        <p className="pt-4 text-lg text-soft">
+          {signer.name}, {signer.roles.join(', ')}; {presence ?? 'at the vehicle'}. It covers {covers.count}{' '}
+          entries as they stand now; if they change, the hold point opens again.
+        </p>
+      </figure>
     </StepFrame>
   );
 }
@@ -193,7 +194,18 @@ function OwnCount({
   return (
     <StepFrame
       step={step}
-      side={null}
+      isResult
+      then={null}
+      side={
+        <Keypad
+          label={step.counts?.what ?? 'counted'}
+          unit="counted"
+          kind="integer"
+          maxLength={3}
+          value={count}
+          onChange={onCount}
+        />
+      }
       heading={<h1 className="floor-step pb-3">{signer.name}: how many did you count?</h1>}
       quiet={<QuietButton label="Back" onPress={back} />}
       main={
@@ -204,14 +216,9 @@ function OwnCount({
         />
       }
     >
-      <Keypad
-        label={step.counts?.what ?? 'counted'}
-        unit="counted"
-        kind="integer"
-        maxLength={3}
-        value={count}
-        onChange={onCount}
-      />
+      <p className="max-w-2xl text-xl">
+        Look at each head and count. The number is yours: the record is not shown here.
+      </p>
     </StepFrame>
   );
 }

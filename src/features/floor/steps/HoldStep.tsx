@@ -60,12 +60,8 @@ export function HoldStep({ step }: { step: HoldPlan }) {
       }
       main={
         <MainAction
-          label="Hand the tablet to the signer"
-          next={
-            authorsUnder(run.state, step).includes(run.person.id)
-              ? 'with my word: this is my work'
-              : undefined
-          }
+          label="Hand it to the signer"
+          next={authorsUnder(run.state, step).includes(run.person.id) ? 'this is my work' : undefined}
           isBusy={run.isBusy}
           onPress={() => void handOver()}
         />

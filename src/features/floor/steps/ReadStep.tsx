@@ -28,6 +28,7 @@ export function ReadStep({ step }: { step: StepOf<'read'> }) {
   return (
     <StepFrame
       step={step}
+      side={<Keypad label={limit.title} unit={limit.unit} value={value} onChange={setValue} />}
       quiet={
         <QuietButton
           label={tool ? 'Another tool' : 'Tool in hand'}
@@ -54,10 +55,7 @@ export function ReadStep({ step }: { step: StepOf<'read'> }) {
         />
       }
     >
-      <div className="flex flex-wrap gap-x-12 gap-y-6">
-        <Keypad label={limit.title} unit={limit.unit} value={value} onChange={setValue} />
-        <LimitBand limit={limit} />
-      </div>
+      <LimitBand limit={limit} />
     </StepFrame>
   );
 }
@@ -79,6 +77,7 @@ function ReadKept({
   return (
     <StepFrame
       step={step}
+      isResult
       heading={<h1 className="floor-step pb-4">{step.title}</h1>}
       foot={
         isOpen ? (

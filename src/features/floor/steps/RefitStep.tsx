@@ -13,10 +13,12 @@ export function RefitStep({ step }: { step: StepOf<'refit'> }) {
   const [lot, setLot] = useState(known.length === 1 ? (known[0] ?? '') : '');
   const removed = state.open.find(({ item }) => item === step.item);
   const count = step.count ?? removed?.count;
+  const isTyping = step.part !== undefined && known.length === 0;
   return (
     <StepFrame
       step={step}
-      side={step.part !== undefined && known.length === 0 ? null : undefined}
+      side={isTyping ? null : undefined}
+      then={isTyping ? null : undefined}
       main={
         <RecordAction
           label="Refitted"
@@ -35,7 +37,7 @@ export function RefitStep({ step }: { step: StepOf<'refit'> }) {
         {count !== undefined && (
           <div>
             <p className="form-label">pieces</p>
-            <p className="figure text-6xl font-semibold">{count}</p>
+            <p className="figure text-5xl font-semibold">{count}</p>
           </div>
         )}
         {removed?.into !== undefined && (

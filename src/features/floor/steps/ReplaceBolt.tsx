@@ -25,6 +25,7 @@ export function ReplaceBolt({ step, bolt, isWorn }: ReplaceBoltProps) {
   return (
     <StepFrame
       step={step}
+      isLoud
       heading={
         <LoudAction
           name={bolt.length <= 3 ? bolt : ''}

@@ -1,33 +1,31 @@
 import { CapDrawing } from '@/components/CapDrawing';
 import { ProgrammeStrip, type PassState } from '@/components/ProgrammeStrip';
 import type { PlanStage, StepOf } from '@/domain/plan';
-import type { TighteningAction } from '@/domain/tightening';
 import { boltsLeftToRight } from '../engine-view';
 import { amountWords, boltName } from '../done-words';
 import { useRun } from '../run-context';
+import type { TightenTouch } from '../tighten-touch';
 
 /** A quarter turn, drawn where a bolt is let off. */
 const RELEASE_ANGLE = -90;
 
 /** The cap in hand from below and its programme; a joint that is no cap has its programme alone. */
-export function TightenDrawings({ step, action }: { step: StepOf<'tighten'>; action: TighteningAction }) {
+export function TightenDrawings({ step, touch }: DrawingProps) {
   return (
     <div className="flex flex-wrap items-center gap-x-10 gap-y-4 pt-4">
-      {step.rod !== undefined && <CapInHand step={step} rod={step.rod} action={action} />}
-      <Programme step={step} action={action} />
+      {step.rod !== undefined && <CapInHand step={step} rod={step.rod} touch={touch} />}
+      <Programme step={step} touch={touch} />
     </div>
   );
 }
 
-function CapInHand({
-  step,
-  rod,
-  action,
-}: {
+interface DrawingProps {
   step: StepOf<'tighten'>;
-  rod: number;
-  action: TighteningAction;
-}) {
+  touch: TightenTouch;
+}
+
+function CapInHand({ step, rod, touch }: DrawingProps & { rod: number }) {
+  const [action] = touch.actions;
   const { state } = useRun();
   const cycles = state.plan.programmes[step.programme]?.cycles.length ?? 0;
   const spec = action.kind === 'stage' ? action.spec : undefined;
@@ -35,7 +33,7 @@ function CapInHand({
   return (
     <CapDrawing
       rod={String(rod)}
-      inHand={action.bolt}
+      inHand={touch.actions.map(({ bolt }) => bolt)}
       targetAngle={spec?.kind === 'angle' ? spec.target : isRelease ? RELEASE_ANGLE : undefined}
       isMarkAsked={spec?.kind === 'mark'}
       bolts={boltsLeftToRight(state, rod).map((name) => {
@@ -52,7 +50,8 @@ function CapInHand({
   );
 }
 
-function Programme({ step, action }: { step: StepOf<'tighten'>; action: TighteningAction }) {
+function Programme({ step, touch }: DrawingProps) {
+  const [action] = touch.actions;
   const { state } = useRun();
   const programme = state.plan.programmes[step.programme];
   if (!programme) return null;

@@ -67,6 +67,7 @@ function TightenAction({ step, touch }: { step: TightenStepPlan; touch: TightenT
   return (
     <StepFrame
       step={step}
+      isLoud
       heading={<ActionHeading step={step} touch={touch} run={run} />}
       then={thenWords(run, step, touch)}
       foot={tool ? <p>{toolWords(tool)}</p> : undefined}
@@ -86,7 +87,7 @@ function TightenAction({ step, touch }: { step: TightenStepPlan; touch: TightenT
         )
       }
     >
-      <TightenDrawings step={step} action={action} />
+      {showsCautions(step, touch) ? null : <TightenDrawings step={step} touch={touch} />}
     </StepFrame>
   );
 }
@@ -107,6 +108,11 @@ function SecondQuiet({
   return <QuietButton label="Steps" onPress={() => run.openSheet('steps')} />;
 }
 
+/** Cautions stand at the head of the programme; from the second touch on the drawings take their room. */
+function showsCautions(step: TightenStepPlan, { actions: [action] }: TightenTouch): boolean {
+  return step.cautions.length > 0 && action.kind === 'stage' && action.cycle === 0 && action.stage === 0;
+}
+
 /** Which bolt and how much, equally loud; the name of a joint that is no cap is a heading. */
 function ActionHeading({ step, touch, run }: { step: TightenStepPlan; touch: TightenTouch; run: Run }) {
   const [action] = touch.actions;
@@ -125,7 +131,11 @@ function ActionHeading({ step, touch, run }: { step: TightenStepPlan; touch: Tig
           step={placeWords(run.state, step, action)}
         />
       </div>
-      {action.kind === 'stage' && action.cycle === 0 && action.stage === 0 && <StepCautions step={step} />}
+      {showsCautions(step, touch) && (
+        <div className="grid gap-3 pt-3">
+          <StepCautions step={step} />
+        </div>
+      )}
     </div>
   );
 }

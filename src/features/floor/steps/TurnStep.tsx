@@ -1,10 +1,10 @@
 import { CrankDial } from '@/components/CrankDial';
 import type { StepOf } from '@/domain/plan';
 import { RecordAction } from '../RecordAction';
-import { StepFrame } from '../StepFrame';
+import { StepCautions, StepDetails, StepFrame } from '../StepFrame';
 import { useRun } from '../run-context';
 
-const DIAL_PX = 260;
+const DIAL_PX = 210;
 
 /** Turns the crank by hand, in its running direction only, to where the next rods can be reached. */
 export function TurnStep({ step }: { step: StepOf<'turn'> }) {
@@ -14,6 +14,37 @@ export function TurnStep({ step }: { step: StepOf<'turn'> }) {
   return (
     <StepFrame
       step={step}
+      heading={
+        <div className="grid gap-5">
+          <h1 className="floor-step">{step.title}</h1>
+          <div className="flex flex-wrap items-center gap-x-10 gap-y-4">
+            <CrankDial angle={state.crankAngle} targetAngle={toAngle} size={DIAL_PX} />
+            <div className="grid gap-3">
+              {toAngle !== undefined && (
+                <p>
+                  <span className="form-label block">turn to</span>
+                  <span className="figure text-7xl font-semibold">{toAngle}°</span>
+                </p>
+              )}
+              {by !== undefined && (
+                <p className="text-xl">
+                  {by === 0 ? (
+                    'It stands there already.'
+                  ) : (
+                    <>
+                      That is <span className="figure font-semibold">{by}°</span> on from here.
+                    </>
+                  )}
+                </p>
+              )}
+              <p className="text-xl">{state.plan.engine.rotation}, never back</p>
+              {rods.length > 0 && <p className="text-xl">Brings rod {rods.join(' and ')} to the bottom.</p>}
+            </div>
+          </div>
+          <StepCautions step={step} />
+          <StepDetails step={step} />
+        </div>
+      }
       main={
         <RecordAction
           label={toAngle === undefined ? turnsLabel(fullTurns ?? 1) : `Turned to ${toAngle}°`}
@@ -29,32 +60,7 @@ export function TurnStep({ step }: { step: StepOf<'turn'> }) {
           ]}
         />
       }
-    >
-      <div className="flex flex-wrap items-center gap-x-10 gap-y-4">
-        <CrankDial angle={state.crankAngle} targetAngle={toAngle} size={DIAL_PX} />
-        <div className="grid gap-3">
-          {toAngle !== undefined && (
-            <p>
-              <span className="form-label block">turn to</span>
-              <span className="figure text-7xl font-semibold">{toAngle}°</span>
-            </p>
-          )}
-          {by !== undefined && (
-            <p className="text-xl">
-              {by === 0 ? (
-                'It stands there already.'
-              ) : (
-                <>
-                  That is <span className="figure font-semibold">{by}°</span> on from here.
-                </>
-              )}
-            </p>
-          )}
-          <p className="text-xl">{state.plan.engine.rotation}, never back</p>
-          {rods.length > 0 && <p className="text-xl">Brings rod {rods.join(' and ')} to the bottom.</p>}
-        </div>
-      </div>
-    </StepFrame>
+    />
   );
 }
 

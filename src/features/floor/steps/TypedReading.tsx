@@ -38,6 +38,14 @@ export function TypedReading({ step, action, tool, onClose }: TypedReadingProps)
   return (
     <StepFrame
       step={step}
+      side={
+        <Keypad
+          label={isAngle ? 'Angle turned in this pass' : 'Torque reached'}
+          unit={unit}
+          value={value}
+          onChange={setValue}
+        />
+      }
       heading={
         <h1 className="floor-step pb-2">
           {action.bolt}: {isAngle ? 'angle' : 'torque'} read
@@ -67,26 +75,18 @@ export function TypedReading({ step, action, tool, onClose }: TypedReadingProps)
         )
       }
     >
-      <div className="flex flex-wrap gap-10">
-        <Keypad
-          label={isAngle ? 'Angle turned in this pass' : 'Torque reached'}
-          unit={unit}
-          value={value}
-          onChange={setValue}
-        />
-        <div className="max-w-md flex-1 pt-6">
-          {judged === 'over' && (
-            <Verdict kind="outside" word="Too far">
-              The bolt is scrap. Its partner is let off, a new bolt goes in, and the cap starts again at its
-              first cycle.
-            </Verdict>
-          )}
-          {judged === 'under' && (
-            <Verdict kind="unsure" word="Short">
-              Go on to {amountWords(target, unit)} in the same direction, never back. Touch when it is there.
-            </Verdict>
-          )}
-        </div>
+      <div className="max-w-xl pt-4">
+        {judged === 'over' && (
+          <Verdict kind="outside" word="Too far">
+            The bolt is scrap. Its partner is let off, a new bolt goes in, and the cap starts again at its
+            first cycle.
+          </Verdict>
+        )}
+        {judged === 'under' && (
+          <Verdict kind="unsure" word="Short">
+            Go on to {amountWords(target, unit)} in the same direction, never back. Touch when it is there.
+          </Verdict>
+        )}
       </div>
     </StepFrame>
   );

@@ -34,6 +34,7 @@ export function WasItTurned({ step, touch }: { step: StepOf<'tighten'>; touch: T
   return (
     <StepFrame
       step={step}
+      isLoud
       heading={
         <div className={names.length > 1 ? '[&_.loud-name]:text-7xl [&_.loud-figure]:text-7xl' : undefined}>
           <LoudAction

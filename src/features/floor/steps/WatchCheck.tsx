@@ -54,6 +54,7 @@ function WatchReading({ step, check, left }: WatchCheckProps) {
   return (
     <StepFrame
       step={step}
+      side={<Keypad label={limit.title} unit={limit.unit} value={value} onChange={setValue} />}
       heading={<CheckHeading words={limit.title} left={left} />}
       main={
         <RecordAction
@@ -74,12 +75,9 @@ function WatchReading({ step, check, left }: WatchCheckProps) {
         />
       }
     >
-      <div className="flex flex-wrap gap-x-12 gap-y-4">
-        <Keypad label={limit.title} unit={limit.unit} value={value} onChange={setValue} />
-        <div className="grid content-start gap-4">
-          <LimitBand limit={limit} />
-          {check.stop === true && <StopWords />}
-        </div>
+      <div className="grid content-start gap-4">
+        <LimitBand limit={limit} />
+        {check.stop === true && <StopWords />}
       </div>
     </StepFrame>
   );
