@@ -130,8 +130,8 @@ function RodPlot({
             className="scale-limit"
             x1={`${placeOn(span, limit)}%`}
             x2={`${placeOn(span, limit)}%`}
-            y1="0"
-            y2="100%"
+            y1="-1"
+            y2="103%"
           />
         ),
       )}
