@@ -16,7 +16,7 @@ export function LimitBand({ limit, value }: { limit: PlanLimit; value?: string |
   const at = (number: number) =>
     Math.min(WIDTH - 12, Math.max(12, FROM + ((number - span.from) / (span.to - span.from)) * (TO - FROM)));
   return (
-    <figure className="w-96 max-w-full">
+    <figure className="w-full max-w-2xl">
       <svg className="drawing w-full" viewBox={`0 0 ${WIDTH} 92`} role="img" aria-labelledby={id}>
         <title id={id}>{`Allowed: ${low ?? 'no lower limit'} to ${high ?? 'no upper limit'} ${unit}`}</title>
         <rect
@@ -40,10 +40,16 @@ export function LimitBand({ limit, value }: { limit: PlanLimit; value?: string |
           {high ?? ''}
         </text>
       </svg>
-      <figcaption className="text-lg text-soft">
-        {low ?? '–'} to {high ?? '–'} {unit}
+      <figcaption className="pt-1 text-2xl font-semibold">
+        {limitWords(limit)}
         {target === undefined ? '' : `, target ${target}`}
       </figcaption>
     </figure>
   );
+}
+
+/** What is allowed, in words. */
+export function limitWords({ low, high, unit }: PlanLimit): string {
+  if (low !== undefined && high !== undefined) return `allowed: ${low} to ${high} ${unit}`;
+  return low === undefined ? `allowed: ${high ?? ''} ${unit} at most` : `allowed: ${low} ${unit} at least`;
 }

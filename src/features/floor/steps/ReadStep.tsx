@@ -7,7 +7,7 @@ import { lastOf } from '@/domain/job-kept';
 import { judgeLimit } from '@/domain/job-limit';
 import { isBlocked } from '@/domain/job-deviation';
 import type { PlanLimit, StepOf } from '@/domain/plan';
-import { LimitBand } from '../LimitBand';
+import { LimitBand, limitWords } from '../LimitBand';
 import { NextAction } from '../NextAction';
 import { RecordAction } from '../RecordAction';
 import { StepFrame } from '../StepFrame';
@@ -101,11 +101,4 @@ function ReadKept({
       </div>
     </StepFrame>
   );
-}
-
-function limitWords({ low, high, unit }: PlanLimit): string {
-  if (low !== undefined && high !== undefined) return `allowed is ${low} to ${high} ${unit}`;
-  return low === undefined
-    ? `allowed is ${high ?? ''} ${unit} at most`
-    : `allowed is ${low} ${unit} at least`;
 }
