@@ -7,7 +7,7 @@ import { findStep, type Plan, type PlanStep, type StepOf } from '@/domain/plan';
 import { authorKeyId, contentHash, contentOf } from '@/domain/trail';
 import { sha256Hex } from '@/server/crypto';
 import { sealingSuite } from '@/server/sealing';
-import { evidenceDigest } from '@/server/signing';
+import { evidenceDigest } from '@/domain/job-evidence';
 import type { EntryVerdict } from '@/server/sync-body';
 import { type Kit, nextScripted, type ScriptedEntry, scriptedSignature } from './scripted-work';
 
@@ -176,7 +176,10 @@ export class ScriptedTablet {
     const evidence = evidenceFor(state, step.id);
     const upTo: Record<string, number> = {};
     for (const { device, deviceSeq } of evidence) upTo[device] = Math.max(upTo[device] ?? 0, deviceSeq);
-    const digest = evidenceDigest(evidence.map(({ id }) => hashes.get(id) ?? ''));
+    const digest = evidenceDigest(
+      evidence.map(({ id }) => hashes.get(id) ?? ''),
+      sha256Hex,
+    );
     return { upTo, count: evidence.length, digest };
   }
 

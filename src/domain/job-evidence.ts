@@ -1,3 +1,4 @@
+import { bytesOf, type Sha256 } from './canonical';
 import type { JobState, Kept, Signature } from './job-state';
 import { findStep, type StepOf } from './plan';
 
@@ -20,6 +21,11 @@ export function evidenceFor(
   return [...evidence.values()]
     .filter((kept) => kept.by !== 'workshop')
     .map(({ id, device, deviceSeq }) => ({ id, device, deviceSeq }));
+}
+
+/** SHA-256 over the sorted content hashes of the evidence, each on a line of its own. */
+export function evidenceDigest(contentHashes: readonly string[], sha256: Sha256): string {
+  return sha256(bytesOf([...contentHashes].sort().join('\n')));
 }
 
 /** Entries that may point at another: corrections, take-backs, revocations, dispositions. */

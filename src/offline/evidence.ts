@@ -1,5 +1,6 @@
 import { evidenceFor } from '@/domain/job';
-import { sha256OfText } from './hashing';
+import { evidenceDigest } from '@/domain/job-evidence';
+import { sha256OfBytes } from './hashing';
 import type { JobView } from './job-store';
 import type { Surroundings } from './surroundings';
 
@@ -35,5 +36,5 @@ export async function coverEntries(
       throw new Error('An entry of the evidence is no longer on this tablet. Reload the page.');
     return hash;
   });
-  return { upTo, count: evidence.length, digest: sha256OfText(digested.sort().join('\n')) };
+  return { upTo, count: evidence.length, digest: evidenceDigest(digested, sha256OfBytes) };
 }

@@ -1,18 +1,13 @@
 /* The domain's hashes with the browser's SHA-256: a synchronous one, because folding and writing can't wait. */
 import { sha256 } from '@noble/hashes/sha2.js';
 import { bytesToHex } from '@noble/hashes/utils.js';
-import { bytesOf, hashJson } from '@/domain/canonical';
+import { hashJson } from '@/domain/canonical';
 import type { Entry, Recorded } from '@/domain/entry';
 import { chainHash, contentHash, contentOf } from '@/domain/trail';
 
 /** Hex SHA-256 of bytes. */
 export function sha256OfBytes(bytes: Uint8Array): string {
   return bytesToHex(sha256(bytes));
-}
-
-/** Hex SHA-256 of a text's UTF-8 form. */
-export function sha256OfText(text: string): string {
-  return sha256OfBytes(bytesOf(text));
 }
 
 /** Hex SHA-256 of a document's canonical form; throws a RangeError for what may not be hashed. */

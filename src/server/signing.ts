@@ -1,5 +1,6 @@
 import type { Entry, EntryOf } from '@/domain/entry';
 import { evidenceFor } from '@/domain/job';
+import { evidenceDigest } from '@/domain/job-evidence';
 import { findStep } from '@/domain/plan';
 import { stamp } from './clock';
 import type { App } from './compose';
@@ -42,13 +43,9 @@ export async function whyNotCovered(
   }
   const hashes = await contentHashes(batch, fold.job);
   const covered = evidence.flatMap(({ id }) => hashes.get(id) ?? []);
-  if (covered.length === covers.count && evidenceDigest(covered) === covers.digest) return undefined;
+  if (covered.length === covers.count && evidenceDigest(covered, sha256Hex) === covers.digest)
+    return undefined;
   return 'The evidence changed since you saw it: something that you saw was refused or is not the same. Look at it again and sign again.';
-}
-
-/** The digest of a hold point's evidence: SHA-256 over the sorted content hashes, a line each. */
-export function evidenceDigest(contentHashes: readonly string[]): string {
-  return sha256Hex([...contentHashes].sort().join('\n'));
 }
 
 async function contentHashes(batch: Batch, job: string): Promise<ReadonlyMap<string, string>> {

@@ -18,7 +18,7 @@ import {
 import { smallPlan } from '../support/small-documents';
 import { Journal } from '../support/journal';
 import { coverageOf } from '@/offline/evidence';
-import { contentHashOf, sha256OfText } from '@/offline/hashing';
+import { contentHashOf, sha256OfBytes } from '@/offline/hashing';
 import type { Offline } from '@/offline/offline';
 import { recordEntries, type Draft } from '@/offline/record';
 import { forgetSignIn } from '@/offline/tablet';
@@ -93,7 +93,7 @@ describe('coverage', () => {
     expect(before).toEqual({
       upTo: { [view.pending[0]!.entry.device]: Math.max(...evidence.map(({ deviceSeq }) => deviceSeq)) },
       count: hashes.length,
-      digest: sha256OfText(hashes.join('\n')),
+      digest: sha256OfBytes(new TextEncoder().encode(hashes.join('\n'))),
     });
     expect(hashes.length).toBeGreaterThan(20);
     server.isAway = false;
