@@ -7,7 +7,7 @@ import { DeskFrame } from './DeskFrame';
 import { FloorFrame } from './FloorFrame';
 import { LookPanel } from './LookPanel';
 import { SignatureStamp } from './SignatureStamp';
-import { syncWords } from './SyncWords';
+import { syncWords } from './sync-words';
 import { clockText } from './TimerFace';
 import { Verdict } from './Verdict';
 import { WipeCover } from './WipeCover';

@@ -3,7 +3,7 @@ import { EmptyState } from '@/components/EmptyState';
 import { FloorFrame } from '@/components/FloorFrame';
 import { Notice } from '@/components/Notice';
 import { QuietButton } from '@/components/QuietButton';
-import { syncWords } from '@/components/SyncWords';
+import { syncWords } from '@/components/sync-words';
 import type { JobRow } from '@/offline/database';
 import { makeAvailableOffline } from '@/offline/prefetch';
 import type { Outcome } from '@/offline/server-call';

@@ -1,5 +1,5 @@
 import { useMemo } from 'react';
-import { syncWords } from '@/components/SyncWords';
+import { syncWords } from '@/components/sync-words';
 import { coverageOf } from '@/offline/evidence';
 import type { JobView } from '@/offline/job-store';
 import { photoUrl } from '@/offline/photo';

@@ -26,14 +26,3 @@ export function syncWords({ onTablet, isOnline, lastSent, refused = 0 }: SyncWor
     };
   return { label: 'All sent', note: lastSent === undefined ? 'nothing waits' : `last ${lastSent}` };
 }
-
-/** The same words as a piece of a page. */
-export function SyncWords(props: SyncWordsProps) {
-  const { label, note } = syncWords(props);
-  return (
-    <p className="sync-words" role="status">
-      <b>{label}</b>
-      <span>{note}</span>
-    </p>
-  );
-}
