@@ -8,6 +8,7 @@ import { dayAndTime } from '@/domain/time-words';
 import { openOffline } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import type { JobAnswer } from './job-answer';
+import { peopleAnswer } from './new-job-choices';
 import { useServer } from '@/offline/use-server';
 
 export interface JobPeopleProps {
@@ -46,14 +47,8 @@ export function JobPeople({ job, zone, canAssign }: JobPeopleProps) {
   );
 }
 
-const workshopAnswer = z.object({
-  people: z.array(
-    z.object({ id: z.string(), name: z.string(), roles: z.array(z.string()), active: z.boolean() }),
-  ),
-});
-
 function Assignment({ job, onDone }: { job: JobAnswer; onDone: () => void }) {
-  const { data, error } = useServer('/api/workshop', workshopAnswer);
+  const { data, error } = useServer('/api/workshop', peopleAnswer);
   const [chosen, setChosen] = useState(job.people.map(({ id }) => id));
   const [trouble, setTrouble] = useState<string>();
   const client = useQueryClient();

@@ -6,7 +6,7 @@ import { TextArea } from '@/components/TextArea';
 import { TextField } from '@/components/TextField';
 import { checkVin } from '@/domain/vin';
 import type { NewJobFields } from './new-job';
-import type { PersonChoice, RouteChoice } from './NewJobPage';
+import type { PersonChoice, RouteChoice } from './new-job-choices';
 
 interface FieldsetProps {
   form: UseFormReturn<NewJobFields>;

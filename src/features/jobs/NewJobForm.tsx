@@ -6,7 +6,7 @@ import { Notice } from '@/components/Notice';
 import { ArrivalPhotos } from './ArrivalPhotos';
 import { AgreementFields, CustomerFields, PeopleFields, VehicleFields } from './NewJobFieldsets';
 import { isReadyFor, openNewJob, type ArrivalPhoto, type NewJobFields, type PendingOpening } from './new-job';
-import type { PersonChoice, RouteChoice } from './NewJobPage';
+import type { PersonChoice, RouteChoice } from './new-job-choices';
 
 export interface NewJobFormProps {
   actor: string;

@@ -3,7 +3,7 @@ import { Button } from '@/components/Button';
 import { Checkbox } from '@/components/Checkbox';
 import { TextField } from '@/components/TextField';
 import { FormTrouble } from './FormTrouble';
-import type { GivenLink } from './PeoplePage';
+import type { GivenLink } from './people-answer';
 import { ROLE_CHOICES } from './roles';
 import { usePostedForm } from './use-posted-form';
 

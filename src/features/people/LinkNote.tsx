@@ -1,6 +1,6 @@
 import { Notice } from '@/components/Notice';
 import { dayAndTime } from '@/domain/time-words';
-import type { GivenLink } from './PeoplePage';
+import type { GivenLink } from './people-answer';
 
 /** The one-time link, shown once: whoever has it sets the password. */
 export function LinkNote({ link, zone }: { link: GivenLink; zone: string }) {

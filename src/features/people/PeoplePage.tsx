@@ -11,28 +11,7 @@ import { AddPersonForm } from './AddPersonForm';
 import { LinkNote } from './LinkNote';
 import { RolesDialog } from './RolesDialog';
 import { Tablets } from './Tablets';
-
-const person = z.object({
-  id: z.string(),
-  name: z.string(),
-  roles: z.array(z.string()),
-  active: z.boolean(),
-  hasPin: z.boolean(),
-  hasSigned: z.boolean(),
-  hasPassword: z.boolean(),
-  email: z.optional(z.string()),
-});
-const peopleAnswer = z.object({ people: z.array(person) });
-export type PersonRow = z.infer<typeof person>;
-
-const linkAnswer = z.object({ link: z.string(), expiresAt: z.string() });
-
-/** A link by which somebody sets their password; it is shown once. */
-export interface GivenLink {
-  name: string;
-  link: string;
-  expiresAt: string;
-}
+import { linkAnswer, peopleAnswer, type GivenLink, type PersonRow } from './people-answer';
 
 /** The people of the workshop and its tablets: added, given roles, let out; never deleted. */
 export function PeoplePage({ zone }: { zone: string }) {
