@@ -207,7 +207,7 @@ export class Journal {
         break;
       }
       case 'gauge':
-        this.gauge(stepId, '0.048', '0.048', options);
+        this.gauge(stepId, this.targetOf(step.limit), this.targetOf(step.limit), options);
         break;
       case 'tighten':
         this.tighten(stepId, options);
@@ -277,6 +277,11 @@ export class Journal {
       { deviation, disposition: 'accept as is', reason },
       { by: 'sup' },
     );
+  }
+
+  /** What the sheet aims at. */
+  private targetOf(limit: string): string {
+    return this.plan.limits[limit]?.target ?? '0.048';
   }
 
   /** Both ends of a rod read from the card. */
