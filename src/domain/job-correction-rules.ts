@@ -1,4 +1,4 @@
-import type { EntryKind, EntryOf } from './entry';
+import type { EntryData, EntryKind, EntryOf } from './entry';
 import { activeEntries, findKept, stepOfEntry } from './job-kept';
 import type { JobState, Kept, Verdict, Workshop } from './job-state';
 
@@ -33,6 +33,18 @@ function whyNotWhose(kept: Kept, by: string, workshop: Workshop): Verdict {
     : no('not-author', `${kept.name} recorded this.`, 'They correct it, or a supervisor does.');
 }
 
+/** Figures that their form lets in and that nothing can have; also a correction may not bring them in. */
+export function whyImpossible(kind: EntryKind, data: object): Verdict {
+  if (kind === 'gauged') {
+    const { clearance, uncertainty } = data as EntryData<'gauged'>;
+    if (!(Number(clearance) > 0)) return no('impossible', 'A clearance is more than nothing.');
+    if (Number(uncertainty) < 0) return no('impossible', 'An uncertainty is not less than nothing.');
+  }
+  if (kind === 'tightened' && Number((data as EntryData<'tightened'>).value ?? '0') < 0)
+    return no('impossible', 'A torque or an angle is not less than nothing.', 'Read it again.');
+  return { ok: true };
+}
+
 /** A value may be superseded, with a reason, by data of the same kind. */
 export function whyNotCorrected(
   state: JobState,
@@ -47,6 +59,8 @@ export function whyNotCorrected(
   if (kept.takenBack !== undefined) return no('taken-back', 'This was taken back already.');
   if (!isDataOf(kept.kind, entry.data.data))
     return no('malformed', 'The correction does not have the form of what it corrects.');
+  const possible = whyImpossible(kept.kind, entry.data.data);
+  if (!possible.ok) return possible;
   return whyNotWhose(kept, entry.by, workshop);
 }
 

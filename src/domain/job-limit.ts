@@ -14,7 +14,8 @@ export interface LimitJudgement {
 export function judgeLimit(limit: PlanLimit, value: string, uncertainty: string): LimitJudgement {
   if (limit.low === undefined && limit.high === undefined) return { verdict: 'no limit known', place: null };
   const reading = Number(value);
-  const u = Number(uncertainty);
+  // Less than none means nothing; what was recorded so all the same is judged by its size.
+  const u = Math.abs(Number(uncertainty));
   const isOpen = limit.low === undefined || limit.high === undefined;
   // A far side that no reading can reach stands in for a missing one.
   const low = limit.low === undefined ? Math.min(reading, Number(limit.high)) - 2 * u - 1 : Number(limit.low);

@@ -5,7 +5,7 @@
 import { entryData, type Entry, type EntryKind, type EntryOf } from './entry';
 import * as z from 'zod/mini';
 import { whyNotTighten } from './job-tightening-rules';
-import { whyNotCorrected, whyNotRevoked, whyNotTakenBack } from './job-correction-rules';
+import { whyImpossible, whyNotCorrected, whyNotRevoked, whyNotTakenBack } from './job-correction-rules';
 import { whyNotSigned } from './job-signing-rules';
 import { whyNot } from './job-order';
 import type { JobState, Verdict, Workshop } from './job-state';
@@ -217,8 +217,7 @@ function whyNotGauged(state: JobState, step: PlanStep, entry: EntryOf<'gauged'>)
       'Read again, or measure again.',
     );
   }
-  if (!(Number(entry.data.clearance) > 0)) return no('impossible', 'A clearance is more than nothing.');
-  return OK;
+  return whyImpossible('gauged', entry.data);
 }
 
 function whyNotChosen(state: JobState, step: PlanStep, entry: EntryOf<'chose-shells'>): Verdict {

@@ -1,4 +1,5 @@
 import type { Entry, EntryOf } from './entry';
+import { whyImpossible } from './job-correction-rules';
 import { nextTightening, startsAgain, tighteningsLeft } from './job-tightening';
 import type { JobState, Verdict, Workshop } from './job-state';
 import type { PlanStage, StepOf } from './plan';
@@ -56,10 +57,8 @@ export function whyNotTighten(
 function whyNotReplaced(state: JobState, step: StepOf<'tighten'>, bolt: string): Verdict {
   const next = nextTightening(state, step);
   if (next?.kind === 'replace' && next.bolt === bolt) return OK;
-  const isWorn = tighteningsLeft(state, step, bolt) < cyclesOf(state, step);
-  return isWorn && step.bolts.includes(bolt) && startsAgain(state, step)
-    ? OK
-    : no('order', `Bolt ${bolt} is not waiting to be replaced.`);
+  const isWorn = step.bolts.includes(bolt) && tighteningsLeft(state, step, bolt) < cyclesOf(state, step);
+  return isWorn && startsAgain(state, step) ? OK : no('order', `Bolt ${bolt} is not waiting to be replaced.`);
 }
 
 function cyclesOf(state: JobState, step: StepOf<'tighten'>): number {
@@ -91,8 +90,8 @@ function whyNotStage(
     return no('target-differs', 'The target is not the one of the plan.');
   }
   if (value === undefined) return OK;
-  if (Number(value) < 0)
-    return no('impossible', 'A torque or an angle is not less than nothing.', 'Read it again.');
+  const possible = whyImpossible(entry.kind, entry.data);
+  if (!possible.ok) return possible;
   const spec = { kind: planned.kind, target: Number(planned.target), tolerance: Number(planned.tolerance) };
   const judged = judgeReading(spec, Number(value));
   const said = outcome === 'done' ? 'ok' : outcome === 'over' ? 'over' : 'under';
@@ -136,7 +135,7 @@ function whyNotTool(step: StepOf<'tighten'>, entry: EntryOf<'tightened'>, worksh
 
 const dayFormats = new Map<string, Intl.DateTimeFormat>();
 
-/** The calendar day of an instant in the workshop's zone, `YYYY-MM-DD`. */
+/** The calendar day of an instant in the workshop's zone, `YYYY-MM-DD`, also where a clock is ages off. */
 export function dayIn(zone: string, at: string): string {
   let format = dayFormats.get(zone);
   if (!format) {
@@ -149,5 +148,8 @@ export function dayIn(zone: string, at: string): string {
     });
     dayFormats.set(zone, format);
   }
-  return format.format(new Date(at));
+  const day = format.format(new Date(at));
+  const yearDigits = day.indexOf('-');
+  if (yearDigits === 4) return day;
+  return yearDigits > 4 ? '9999-12-31' : day.padStart('YYYY-MM-DD'.length, '0');
 }

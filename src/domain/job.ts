@@ -112,7 +112,8 @@ function noteAuthor(state: JobState, kept: Kept): JobState {
 }
 
 function addAuthors(state: JobState, step: string, who: string[]): JobState {
-  const present = state.authors[step] ?? [];
+  // A step that the plan doesn't have may have any name, also one that every object knows.
+  const present = Object.hasOwn(state.authors, step) ? (state.authors[step] ?? []) : [];
   const added = who.filter((person) => !present.includes(person));
   if (added.length === 0) return state;
   return { ...state, authors: { ...state.authors, [step]: [...present, ...added] } };
