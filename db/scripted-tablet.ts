@@ -86,6 +86,7 @@ export interface RecordOptions {
 }
 
 const BATCH = 200;
+const SLOW_MS = 30_000;
 
 export class ScriptedTablet {
   readonly device: string;
@@ -192,6 +193,8 @@ export class ScriptedTablet {
       step?: string;
       entries?: number;
       signs?: boolean;
+      /** How much slower than brisk everything but the touches at the wrench goes. */
+      pace?: number;
       between?: (step: PlanStep) => Promise<void> | void;
     } = {},
   ): Promise<number> {
@@ -206,7 +209,8 @@ export class ScriptedTablet {
       await until.between?.(blocked);
       const next = nextScripted(this.held(job).state, blocked, { ...kit, workshop: this.workshop });
       if (next !== undefined) {
-        await this.record(job, next, { by: people[next.part], afterMs: next.afterMs });
+        const afterMs = next.afterMs < SLOW_MS ? next.afterMs : next.afterMs * (until.pace ?? 1);
+        await this.record(job, next, { by: people[next.part], afterMs });
       } else if (blocked.kind === 'hold' && until.signs !== false) {
         await this.sign(job, blocked.id, { by: people.supervisor, afterMs: 4 * 60_000 });
         // A route may say that work waits for the server's word on this one.

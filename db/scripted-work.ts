@@ -30,8 +30,8 @@ export interface Kit {
     bytes: number;
     type: 'image/jpeg' | 'image/webp' | 'image/png';
   };
-  /** A crushed width of the gauging thread, mm, for one end of one rod; the target's unless given. */
-  width?: (rod: number, end: 'front' | 'rear') => number | undefined;
+  /** A clearance, mm, for one end of one rod at its nth measurement (from 0); the target's unless given. */
+  clearance?: ((rod: number, end: 'front' | 'rear', nth: number) => number | undefined) | undefined;
 }
 
 const SECOND = 1000;
@@ -43,21 +43,20 @@ export function nextScripted(state: JobState, step: PlanStep, kit: Kit): Scripte
     (one) => one.step === step.id && one.blocks && one.disposed === undefined,
   );
   if (deviation !== undefined) {
-    const customerAgreed = { when: 'the same day', how: 'by telephone' };
-    return {
-      kind: 'deviation-disposed',
-      part: 'supervisor',
-      afterMs: 6 * MINUTE,
-      data: {
-        deviation: deviation.id,
-        disposition: 'accept as is',
-        reason: 'Looked at together; it moves freely.',
-        customerAgreed,
-      },
-    };
+    const data = { deviation: deviation.id, ...dispositionFor(deviation.rule) };
+    return { kind: 'deviation-disposed', data, part: 'supervisor', afterMs: 6 * MINUTE };
   }
   const made = onStep(state, step, kit);
   return made === undefined ? undefined : { ...made, step: step.id };
+}
+
+/** What a supervisor would decide: a clearance is brought right, anything else was looked at together. */
+function dispositionFor(rule: string | undefined): Omit<EntryData<'deviation-disposed'>, 'deviation'> {
+  if (rule === 'clearance-outside') {
+    return { disposition: 'rework', reason: 'One grade thicker in the lower half, then measured again.' };
+  }
+  const customerAgreed = { when: 'the same day', how: 'by telephone' };
+  return { disposition: 'accept as is', reason: 'Looked at together: in order as it is.', customerAgreed };
 }
 
 function onStep(state: JobState, step: PlanStep, kit: Kit): ScriptedEntry | undefined {
@@ -80,7 +79,7 @@ function onStep(state: JobState, step: PlanStep, kit: Kit): ScriptedEntry | unde
     case 'turn':
       return { kind: 'turned', data: turnedData(step), part, afterMs: 80 * SECOND };
     case 'choose-shells':
-      return { kind: 'chose-shells', data: chosenData(state.plan), part, afterMs: 60 * SECOND };
+      return { kind: 'chose-shells', data: chosenData(state, step), part, afterMs: 60 * SECOND };
     case 'gauge':
       return gauged(state, step, kit);
     case 'tighten':
@@ -178,10 +177,12 @@ function turnedData(step: StepOf<'turn'>): EntryData<'turned'> {
   return step.toAngle === undefined ? { fullTurns: step.fullTurns ?? 1 } : { toAngle: step.toAngle };
 }
 
-function chosenData(plan: Plan): EntryData<'chose-shells'> {
-  const grade = plan.engine.shells.standard;
-  const lot = lotOf(`shells ${grade}`);
-  return { upper: { grade, lot }, lower: { grade, lot } };
+function chosenData(state: JobState, step: StepOf<'choose-shells'>): EntryData<'chose-shells'> {
+  const { standard, grades } = state.plan.engine.shells;
+  const isSecond = (state.rods[step.rod ?? 0]?.voidReadings.length ?? 0) > 0;
+  const thicker = grades.find(({ wall }) => Number(wall) > 0)?.grade ?? standard;
+  const shell = (grade: string) => ({ grade, lot: lotOf(`shells ${grade}`) });
+  return { upper: shell(standard), lower: shell(isSecond ? thicker : standard) };
 }
 
 function fittedData(step: StepOf<'fit'>): EntryData<'fitted'> {
@@ -210,8 +211,9 @@ function gauged(state: JobState, step: StepOf<'gauge'>, kit: Kit): ScriptedEntry
   const end = state.rods[rod]?.front === undefined ? 'front' : 'rear';
   const { card } = state.plan.engine;
   const bands = card.bands.map((band) => ({ width: Number(band.width), clearance: Number(band.clearance) }));
-  const width =
-    kit.width?.(rod, end) ?? targetWidth(bands, Number(state.plan.limits[step.limit]?.target ?? '0.05'));
+  const nth = Math.floor((state.rods[rod]?.voidReadings.length ?? 0) / 2);
+  const target = Number(state.plan.limits[step.limit]?.target ?? '0.05');
+  const width = widthFor(bands, kit.clearance?.(rod, end, nth) ?? target);
   const reading = clearanceFromCard(bands, width);
   const lot = lotOf(card.thread);
   return {
@@ -232,12 +234,14 @@ function gauged(state: JobState, step: StepOf<'gauge'>, kit: Kit): ScriptedEntry
   };
 }
 
-function targetWidth(bands: readonly { width: number; clearance: number }[], target: number): number {
-  const nearest = [...bands].sort(
-    (a, b) => Math.abs(a.clearance - target) - Math.abs(b.clearance - target),
-  )[0];
-  if (nearest === undefined) throw new RangeError('A card has bands.');
-  return nearest.width;
+/** The crushed width at which the card reads this clearance, to a hundredth of a millimetre. */
+function widthFor(bands: readonly { width: number; clearance: number }[], clearance: number): number {
+  const rising = [...bands].sort((a, b) => a.clearance - b.clearance);
+  const above = rising.find((band) => band.clearance >= clearance) ?? rising.at(-1);
+  const below = rising.findLast((band) => band.clearance <= clearance) ?? rising[0];
+  if (above === undefined || below === undefined) throw new RangeError('A card has bands.');
+  const part = above === below ? 0 : (clearance - below.clearance) / (above.clearance - below.clearance);
+  return Math.round((below.width + part * (above.width - below.width)) * 100) / 100;
 }
 
 function tightened(state: JobState, step: StepOf<'tighten'>, kit: Kit): ScriptedEntry | undefined {

@@ -7,7 +7,9 @@ import { hashNewPassword, storePassword } from '@/server/passwords';
 import { addFirstOwner, addPerson, hasPeople } from '@/server/people';
 import { hashNewPin, storePin } from '@/server/pins';
 import { addTool, type NewTool, recordCalibration } from '@/server/tools';
+import { releaseShippedIfNone } from '@/server/released-documents';
 import { setWorkshop } from '@/server/workshop';
+import { DEMO_DAYS, seedClock, seedDemoJobs } from './seed-jobs';
 
 /*
  * The demo workshop. Every name, address and serial number in it is invented. Its passwords are known to
@@ -87,9 +89,18 @@ const TOOLS: readonly DemoTool[] = [
   ]),
 ];
 
-/** Fills an empty data folder with the demo's people and tools, whole or not at all; says whether it did. */
+/** Fills an empty data folder with the demo: its people, tools and documents, and then its jobs; says whether it did. */
 export async function seedDemo(app: App): Promise<boolean> {
   if (await hasPeople(app.db)) return false;
+  const nowMs = app.clock.now().getTime();
+  const clock = seedClock(nowMs - DEMO_DAYS * DAY);
+  if (!(await seedWorkshop(app, { ...app, clock }))) return false;
+  await seedDemoJobs(app, clock, nowMs, demoSignIns);
+  return true;
+}
+
+/** People, tools and documents, whole or not at all; made in the `past`, because the demo's jobs were too. */
+async function seedWorkshop(app: App, past: App): Promise<boolean> {
   const people = await Promise.all(
     demoSignIns.map(async (person) => ({
       ...person,
@@ -100,17 +111,18 @@ export async function seedDemo(app: App): Promise<boolean> {
   return app.db.transaction().execute(async (trx) => {
     const [first, ...others] = people;
     if (first === undefined || (await hasPeople(trx))) return false;
-    const owner = await addFirstOwner(trx, first, app);
-    await setWorkshop(trx, owner, WORKSHOP, app);
+    const owner = await addFirstOwner(trx, first, past);
+    await setWorkshop(trx, owner, WORKSHOP, past);
     for (const person of others) {
-      const id = await addPerson(trx, owner, person, app);
+      const id = await addPerson(trx, owner, person, past);
       const actor: Actor = { personId: id, name: person.name, roles: person.roles, sessionId: undefined };
-      await storePassword(trx, id, person.passwordHash, app);
-      await storePin(trx, actor, person.pinHash, app);
+      await storePassword(trx, id, person.passwordHash, past);
+      await storePin(trx, actor, person.pinHash, past);
     }
-    await storePassword(trx, owner.personId, first.passwordHash, app);
-    await storePin(trx, owner, first.pinHash, app);
-    for (const demoTool of TOOLS) await addDemoTool(trx, owner, demoTool, app);
+    await storePassword(trx, owner.personId, first.passwordHash, past);
+    await storePin(trx, owner, first.pinHash, past);
+    for (const demoTool of TOOLS) await addDemoTool(trx, owner, demoTool, { app, past });
+    await releaseShippedIfNone(trx, owner, past);
     return true;
   });
 }
@@ -119,9 +131,9 @@ async function addDemoTool(
   trx: Trx,
   owner: Actor,
   { tool, dueInDays, readings }: DemoTool,
-  app: App,
+  { app, past }: { app: App; past: App },
 ): Promise<void> {
-  const added = await addTool(trx, owner, { cycleLimit: null, ...tool, dueOn: null }, app);
+  const added = await addTool(trx, owner, { cycleLimit: null, ...tool, dueOn: null }, past);
   const unit = tool.unit ?? '';
   await recordCalibration(
     trx,
@@ -133,7 +145,7 @@ async function addDemoTool(
       certificate: `LY-${tool.serial}`,
       readings: readings.map(([set, reference]) => ({ set, reference, unit })),
     },
-    app,
+    past,
   );
 }
 
