@@ -43,7 +43,7 @@ export interface JobFold {
 
 const KEPT_IN_MEMORY = 64;
 /** How many entries a stored state may be behind; the rest is folded when it is next wanted. */
-const STORED_EVERY = 200;
+const STORED_EVERY = 400;
 
 const memories = new WeakMap<Db, Map<string, JobFold>>();
 
@@ -74,7 +74,7 @@ export async function findFold(db: Db, jobId: string, reader: Db = db): Promise<
   const remembered = memoryOf(db).get(jobId);
   if (remembered?.hash === (head?.hash ?? NO_PREVIOUS)) return remembered;
   const start = await startFrom(reader, jobId, job.plan_hash, remembered);
-  const fold = await foldOn(reader, start);
+  const fold = { ...(await foldOn(reader, start)), planHash: job.plan_hash };
   if (!reader.isTransaction) rememberFolds(db, [fold]);
   return fold;
 }
@@ -84,6 +84,19 @@ export async function getFold(db: Db, jobId: string, reader: Db = db): Promise<J
   const fold = await findFold(db, jobId, reader);
   if (fold === undefined) throw notFound('This job');
   return fold;
+}
+
+/** Whether a job ever ran under a plan. */
+export async function hadPlan(reader: Db, fold: JobFold, planHash: string): Promise<boolean> {
+  if (fold.planHash === planHash || fold.plans.has(planHash)) return true;
+  const row = await reader
+    .selectFrom('job_entry')
+    .select('seq')
+    .where('job_id', '=', fold.job)
+    .where((eb) => eb(eb.fn('json_extract', ['body', eb.val('$.plan')]), '=', planHash))
+    .limit(1)
+    .executeTakeFirst();
+  return row !== undefined;
 }
 
 /** A job before its first entry. */
@@ -146,8 +159,11 @@ export async function storeFolds(trx: Trx, folds: Iterable<JobFold>): Promise<vo
       .executeTakeFirst();
     if (stored !== undefined && fold.seq - stored.seq < STORED_EVERY) continue;
     if (stored === undefined && fold.seq < STORED_EVERY) continue;
-    const { plan: _plan, ...state } = fold.state;
-    const row = { seq: fold.seq, head_hash: fold.hash, state: JSON.stringify(state) };
+    const row = {
+      seq: fold.seq,
+      head_hash: fold.hash,
+      state: JSON.stringify({ ...fold.state, plan: undefined }),
+    };
     await trx
       .insertInto('job_fold')
       .values({ job_id: fold.job, ...row })
@@ -241,10 +257,7 @@ async function readHeard(reader: Db, jobId: string): Promise<ReadonlyMap<string,
     .groupBy('device_id')
     .execute();
   const heard = new Map<string, Heard>(
-    recorded.map((row) => [
-      row.device_id ?? SERVER_DEVICE,
-      { ...UNHEARD, number: Number(row.number), seq: Number(row.seq) },
-    ]),
+    recorded.map((row) => [row.device_id ?? SERVER_DEVICE, { ...UNHEARD, number: row.number, seq: row.seq }]),
   );
   const refused = await reader
     .selectFrom('refused_entry')

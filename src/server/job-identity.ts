@@ -21,7 +21,7 @@ export const IDENTITY_FIELDS = [
 
 export type IdentityField = (typeof IDENTITY_FIELDS)[number];
 
-export type Identity = { [F in IdentityField]?: { value: string; salt: string } | undefined };
+export type Identity = Partial<Record<IdentityField, { value: string; salt: string } | undefined>>;
 
 const REQUIRED = ['registration', 'customerName', 'customerEmail'] as const satisfies IdentityField[];
 

@@ -11,6 +11,7 @@ import { AppError } from './errors';
 import { beginFold, rememberFolds } from './job-fold';
 import { type Identity, requireCommitted, storeIdentity } from './job-identity';
 import { compileReleased, getPlan } from './plans';
+import type { CanonicalField } from './recorded-text';
 import { readReleased } from './released-documents';
 import { beginBatch, type Batch, flush, record } from './sync-batch';
 import { type ReadItem, readItem } from './sync-read';
@@ -51,7 +52,7 @@ export async function openJob(
   requireRole(actor, 'supervisor', 'owner');
   const { identity, people, ...sent } = opening;
   const item = readItem(sent, 0);
-  const entry = requireOpened(item, actor);
+  const { entry, fields } = requireOpened(item, actor);
   const { result, fold } = await app.db.transaction().execute(async (trx) => {
     const known = await findOpened(trx, item, entry);
     if (known !== undefined) return { result: { ...known, isNew: false }, fold: undefined };
@@ -74,7 +75,7 @@ export async function openJob(
     record(
       batch,
       begun,
-      { entry, contentHash, signature: sent.signature, key: sent.key },
+      { entry, fields, contentHash, signature: sent.signature, key: sent.key },
       { clockOffsetMs: 0 },
     );
     await flush(batch);
@@ -94,24 +95,37 @@ async function openingBatch(
   history: Awaited<ReturnType<typeof readWorkshopHistory>>,
 ): Promise<Batch> {
   const receivedAt = app.clock.now().toISOString();
-  return beginBatch({ app, trx, history, receivedAt, clockOffsetMs: 0, pins: new Map(), device: undefined }, [
-    item,
-  ]);
+  return beginBatch(
+    {
+      app,
+      trx,
+      history,
+      receivedAt,
+      clockOffsetMs: 0,
+      pins: new Map(),
+      proofs: new Map(),
+      device: undefined,
+    },
+    [item],
+  );
 }
 
-function requireOpened(item: ReadItem, actor: Actor): EntryOf<'opened'> {
+function requireOpened(
+  item: ReadItem,
+  actor: Actor,
+): { entry: EntryOf<'opened'>; fields: readonly CanonicalField[] } {
   const { read } = item;
   if (!read.ok) {
     const why = read.newer ? 'it is of a newer kind than the server knows' : read.why;
     throw wrong('entry', `The job could not be opened: ${why}.`);
   }
-  const { entry } = read;
+  const { entry, fields } = read;
   if (entry.kind !== 'opened') throw wrong('entry.kind', 'A job begins with an entry of the kind "opened".');
   if (entry.by !== actor.personId) throw wrong('entry.by', 'A job is opened by the person who is signed in.');
   if (entry.basis !== 0)
     throw wrong('entry.basis', 'The first entry of a job has no entry before it: basis is 0.');
   if (entry.deviceSeq !== 1) throw wrong('entry.deviceSeq', 'The first entry of a job has the number 1.');
-  return entry;
+  return { entry, fields };
 }
 
 /** The same opening sent again, after an answer that was lost, is answered again. */

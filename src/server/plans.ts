@@ -2,11 +2,11 @@ import { compilePlan } from '@/domain/compile-plan';
 import { hashJson } from '@/domain/canonical';
 import type { Plan } from '@/domain/plan';
 import { type Actor, requireRole } from './actor';
-import { type Clock, stamp } from './clock';
+import { type Clock, type Ids, stamp } from './clock';
 import { canonicalJson, sha256Hex } from './crypto';
 import type { Db, Trx } from './database';
 import { AppError, notFound } from './errors';
-import { readReleased, type ReleasedSet } from './released-documents';
+import { readReleased, releaseShippedIfNone, type ReleasedSet } from './released-documents';
 
 /** A route that a job can be opened with, and what has to be asked for it. */
 export interface RouteChoice {
@@ -65,11 +65,12 @@ export async function preparePlan(
   trx: Trx,
   actor: Actor,
   wanted: { route: string; options: Record<string, string> },
-  clock: Clock,
+  making: { clock: Clock; ids: Ids },
 ): Promise<{ hash: string; plan: Plan }> {
   requireRole(actor, 'supervisor', 'owner');
+  await releaseShippedIfNone(trx, actor, making);
   const plan = compileReleased(await readReleased(trx), wanted);
-  return { hash: await storePlan(trx, plan, clock), plan };
+  return { hash: await storePlan(trx, plan, making.clock), plan };
 }
 
 /** Compiles a route with the revisions that are released now. */

@@ -66,6 +66,16 @@ export function sortOut(documents: readonly Released<WorkshopDocument>[]): Relea
   return { engines, procedures, routes };
 }
 
+/** A workshop that has no documents of its own yet takes the shipped ones, so that every plan names what is kept. */
+export async function releaseShippedIfNone(
+  trx: Trx,
+  actor: Actor,
+  making: { clock: Clock; ids: Ids },
+): Promise<void> {
+  const any = await trx.selectFrom('document_revision').select('id').limit(1).executeTakeFirst();
+  if (any === undefined) await releaseDocuments(trx, actor, shippedDocuments(), making);
+}
+
 /** Takes documents into the workshop as released revisions; those it has already are left alone. */
 export async function releaseDocuments(
   trx: Trx,

@@ -3,10 +3,11 @@ import type { JobState } from '@/domain/job-state';
 import type { NewJobEntryRow, RefusedEntryTable } from '@db/tables';
 import type { Insertable } from 'kysely';
 import type { App } from './compose';
-import { canonicalJson, sha256Hex } from './crypto';
-import type { Trx } from './database';
+import { sha256Hex } from './crypto';
+import type { Db, Trx } from './database';
 import type { Device } from './devices';
 import { findFold, foldNext, type JobFold, noteRefusal, SERVER_DEVICE, UNHEARD } from './job-fold';
+import { type CanonicalField, canonicalFields, canonicalText, canonicalTextWith } from './recorded-text';
 import type { EntryVerdict } from './sync-body';
 import type { ReadItem } from './sync-read';
 import type { WorkshopHistory } from './workshop-history';
@@ -53,6 +54,7 @@ export interface TabletView {
 /** An entry whose author and place in its tablet's order are proved. */
 export interface ProvedItem extends ReadItem {
   entry: Entry;
+  fields: readonly CanonicalField[];
   signature: string;
   key: KeyRow;
   /** The number was used before by another entry: this tablet was copied or restored. */
@@ -72,6 +74,8 @@ export interface Batch {
   /** Jobs that this push added to. */
   changed: Set<string>;
   keys: ReadonlyMap<string, KeyRow>;
+  /** Whether each entry's signature holds, by its place in the push, as far as it was checked beforehand. */
+  proofs: ReadonlyMap<number, boolean>;
   recorded: Map<string, Known>;
   refused: Map<string, KnownRefusal[]>;
   /** What tablets saw, by job, tablet and basis, where that is not what the server sees. */
@@ -88,7 +92,10 @@ export interface Batch {
 
 /** Gathers what the entries of a push are judged by. */
 export async function beginBatch(
-  parts: Pick<Batch, 'app' | 'trx' | 'history' | 'device' | 'receivedAt' | 'clockOffsetMs' | 'pins'>,
+  parts: Pick<
+    Batch,
+    'app' | 'trx' | 'history' | 'device' | 'receivedAt' | 'clockOffsetMs' | 'pins' | 'proofs'
+  >,
   items: readonly ReadItem[],
 ): Promise<Batch> {
   const { trx } = parts;
@@ -121,12 +128,17 @@ export async function foldOf(batch: Batch, jobId: string): Promise<JobFold | und
 export function record(
   batch: Batch,
   fold: JobFold,
-  item: { entry: Entry; contentHash: string; signature: string | null; key: string | null },
+  item: {
+    entry: Entry;
+    fields: readonly CanonicalField[];
+    contentHash: string;
+    signature: string | null;
+    key: string | null;
+  },
   extra: Pick<RecordedFields, 'pin' | 'conflict'> & { clockOffsetMs: number },
 ): Recorded {
   const { entry } = item;
-  const recorded: Recorded = {
-    ...entry,
+  const added: RecordedFields = {
     seq: fold.seq + 1,
     recordedAt: batch.receivedAt,
     prev: fold.hash,
@@ -134,7 +146,8 @@ export function record(
     ...(extra.pin === undefined ? {} : { pin: extra.pin }),
     ...(extra.conflict === undefined ? {} : { conflict: extra.conflict }),
   };
-  const body = canonicalJson(recorded);
+  const recorded: Recorded = { ...entry, ...added };
+  const body = canonicalTextWith(item.fields, added);
   const hash = sha256Hex(body);
   const isServers = entry.device === SERVER_DEVICE;
   // First what may fail: nothing of an entry is kept unless all of it is.
@@ -184,8 +197,14 @@ export function recordByServer(batch: Batch, fold: JobFold, made: ServersOwn): R
     at: batch.receivedAt,
     data: made.data,
   } as Entry;
-  const contentHash = sha256Hex(canonicalJson(entry));
-  return record(batch, fold, { entry, contentHash, signature: null, key: null }, { clockOffsetMs: 0 });
+  const fields = canonicalFields(entry);
+  const contentHash = sha256Hex(canonicalText(fields));
+  return record(
+    batch,
+    fold,
+    { entry, fields, contentHash, signature: null, key: null },
+    { clockOffsetMs: 0 },
+  );
 }
 
 export interface Refusal {
@@ -209,7 +228,7 @@ export async function refuse(batch: Batch, item: ReadItem, refusal: Refusal): Pr
     device_id: refusal.device ?? null,
     device_seq: number,
     content_hash: item.contentHash,
-    body: item.text,
+    body: item.text(),
     code,
     message: reason,
     at: batch.receivedAt,
@@ -258,9 +277,10 @@ export async function flush(batch: Batch): Promise<void> {
   batch.toolUses.clear();
 }
 
-async function readKeys(trx: Trx, ids: readonly string[]): Promise<ReadonlyMap<string, KeyRow>> {
+/** The author keys with these ids. */
+export async function readKeys(db: Db, ids: readonly string[]): Promise<ReadonlyMap<string, KeyRow>> {
   if (ids.length === 0) return new Map();
-  const rows = await trx
+  const rows = await db
     .selectFrom('author_key')
     .select([
       'id',

@@ -1,6 +1,7 @@
-import { canonicalJson } from '@/domain/canonical';
+import { assertHashable } from '@/domain/canonical';
 import { type Entry, parseEntry } from '@/domain/entry';
 import { sha256Hex } from './crypto';
+import { type CanonicalField, canonicalFields, canonicalText } from './recorded-text';
 import { type Carried, carriedSchema } from './sync-body';
 
 /** One pushed entry as far as it could be read; never thrown away, whatever it is. */
@@ -13,10 +14,13 @@ export interface ReadItem {
   deviceSeq: number | null;
   by: string | null;
   contentHash: string;
-  /** What came, as text, without the sealed PIN. */
-  text: string;
+  /** What came, as text, without the sealed PIN; written only if it is to be kept. */
+  text: () => string;
   carried: Carried | undefined;
-  read: { ok: true; entry: Entry } | { ok: false; newer: true } | { ok: false; newer: false; why: string };
+  read:
+    | { ok: true; entry: Entry; fields: readonly CanonicalField[] }
+    | { ok: false; newer: true }
+    | { ok: false; newer: false; why: string };
 }
 
 const UUID = /^[0-9a-f]{8}-[0-9a-f]{4}-[1-8][0-9a-f]{3}-[89ab][0-9a-f]{3}-[0-9a-f]{12}$/;
@@ -33,10 +37,10 @@ export function readItem(input: unknown, index: number): ReadItem {
     device: uuidOf(known.device),
     deviceSeq: Number.isSafeInteger(known.deviceSeq) ? (known.deviceSeq as number) : null,
     by: typeof known.by === 'string' && /^[\w-]{1,60}$/.test(known.by) ? known.by : null,
-    text: keepText(input),
+    text: () => keepText(input),
   };
   const canonical = canonicalOf(raw);
-  const contentHash = sha256Hex(canonical.ok ? canonical.text : base.text);
+  const contentHash = sha256Hex(canonical.ok ? canonical.text : base.text());
   const carriedData = carried.success ? carried.data : undefined;
   const parsed = parseEntry(raw);
   if (parsed.ok) {
@@ -47,7 +51,8 @@ export function readItem(input: unknown, index: number): ReadItem {
       : canonical.why;
     const read =
       why === undefined
-        ? ({ ok: true, entry: parsed.entry } as const)
+        ? // What came is what was parsed to the letter: the schemas are strict and change nothing.
+          ({ ok: true, entry: raw as Entry, fields: canonical.ok ? canonical.fields : [] } as const)
         : ({ ok: false, newer: false, why } as const);
     return { ...base, contentHash, carried: carriedData, read };
   }
@@ -67,13 +72,15 @@ function whyNoSuchTime({ at }: Entry): string | undefined {
   return Number.isNaN(Date.parse(at)) ? `at: there is no such time as ${at}` : undefined;
 }
 
-type Canonical = { ok: true; text: string } | { ok: false; why: string };
+type Canonical = { ok: true; text: string; fields: readonly CanonicalField[] } | { ok: false; why: string };
 
 /** The text that is hashed; what may not be hashed has none. */
 function canonicalOf(raw: unknown): Canonical {
-  if (raw === undefined) return { ok: false, why: 'entry: missing' };
+  if (!isRecord(raw)) return { ok: false, why: 'entry: missing' };
   try {
-    return { ok: true, text: canonicalJson(raw) };
+    assertHashable(raw);
+    const fields = canonicalFields(raw);
+    return { ok: true, text: canonicalText(fields), fields };
   } catch (error) {
     if (error instanceof RangeError) return { ok: false, why: `entry: ${error.message}` };
     throw error;
@@ -82,7 +89,7 @@ function canonicalOf(raw: unknown): Canonical {
 
 /** What came, so that it can be shown and read again; deeper nesting than any writer takes is kept by its end. */
 function keepText(input: unknown): string {
-  const { sealed: _sealed, ...kept } = isRecord(input) ? input : { entry: input };
+  const kept = isRecord(input) ? { ...input, sealed: undefined } : { entry: input };
   try {
     return JSON.stringify(kept);
   } catch (error) {
@@ -111,7 +118,7 @@ function flatten(value: unknown): string {
       ]);
       open.push('}', ...items.reverse(), '{');
     } else {
-      parts.push(JSON.stringify(next.value) ?? 'null');
+      parts.push(next.value === undefined ? 'null' : JSON.stringify(next.value));
     }
   }
   return parts.join('');

@@ -3,7 +3,7 @@ import { mayRecord } from '@/domain/job';
 import type { Verdict, Workshop } from '@/domain/job-state';
 import { isSignedBy } from './author-signature';
 import { MINUTE } from './clock';
-import { isBehind, type JobFold, SERVER_DEVICE, UNHEARD } from './job-fold';
+import { hadPlan, isBehind, type JobFold, SERVER_DEVICE, UNHEARD } from './job-fold';
 import { whyNotCovered, whyWaitForEvidence } from './signing';
 import { type Batch, foldOf, type KeyRow, type ProvedItem, record, refuse } from './sync-batch';
 import type { EntryVerdict } from './sync-body';
@@ -37,7 +37,7 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
       device: ownDevice,
     });
   }
-  const { entry } = item.read;
+  const { entry, fields } = item.read;
   if (batch.recorded.has(entry.id) || batch.refused.has(entry.id)) {
     const reason =
       'Another record came under the same id before. Both are kept; record it again if it is missing.';
@@ -72,6 +72,7 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
   return judgeProved(batch, fold, {
     ...item,
     entry,
+    fields,
     signature,
     key,
     isNumberReused: entry.deviceSeq <= heard,
@@ -110,7 +111,9 @@ function proveAuthor(batch: Batch, item: ReadItem, entry: Entry): Proof {
       reason: 'It is signed with the key of another person or another tablet.',
     };
   }
-  if (!isSignedBy(key.publicKey, item.contentHash, carried.signature)) {
+  const isSigned =
+    batch.proofs.get(item.index) ?? isSignedBy(key.publicKey, item.contentHash, carried.signature);
+  if (!isSigned) {
     return {
       ok: false,
       code: 'signature-wrong',
@@ -123,8 +126,11 @@ function proveAuthor(batch: Batch, item: ReadItem, entry: Entry): Proof {
 async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promise<EntryVerdict | NeedsPin> {
   const { entry } = item;
   const refuseIt = (code: string, reason: string) => setAside(batch, item, code, reason);
-  if (entry.plan !== fold.planHash && !fold.plans.has(entry.plan)) {
+  if (!(await hadPlan(batch.trx, fold, entry.plan))) {
     return refuseIt('plan-unknown', 'It was made under a plan that this job never had.');
+  }
+  if (entry.kind === 'plan-moved' && !(await isPlanKept(batch, entry.data.to))) {
+    return refuseIt('plan-unknown', 'The plan that the job is to move to is not known.');
   }
   const wait = whyWaitForEvidence(fold, entry);
   if (wait !== undefined) return waiting(item, 'evidence-missing', wait);
@@ -155,12 +161,12 @@ function keep(
   item: ProvedItem,
   extra: Pick<Parameters<typeof record>[3], 'pin' | 'conflict'>,
 ): EntryVerdict {
-  const { entry, contentHash, signature, key } = item;
+  const { entry, fields, contentHash, signature, key } = item;
   const { clockOffsetMs } = batch;
   const recorded = record(
     batch,
     fold,
-    { entry, contentHash, signature, key: key.id },
+    { entry, fields, contentHash, signature, key: key.id },
     { ...extra, clockOffsetMs },
   );
   noteAct(batch, entry);
@@ -177,6 +183,11 @@ function keep(
   };
 }
 
+async function isPlanKept(batch: Batch, hash: string): Promise<boolean> {
+  const row = await batch.trx.selectFrom('plan').select('hash').where('hash', '=', hash).executeTakeFirst();
+  return row !== undefined;
+}
+
 async function setAside(batch: Batch, item: ProvedItem, code: string, reason: string): Promise<EntryVerdict> {
   const verdict = await refuse(batch, item, { code, reason, device: item.entry.device });
   if (isOneOf(UNFORESEEN, code)) noteAct(batch, item.entry);
@@ -187,15 +198,20 @@ async function setAside(batch: Batch, item: ProvedItem, code: string, reason: st
 interface Times {
   known: number;
   held: number;
-  /** When it was made by the server's clock. */
-  at: string;
 }
 
 function timesOf(batch: Batch, entry: Entry): Times {
+  const { seq } = batch.history;
+  // What was made by the newest the workshop has is judged by that, whenever it was made.
+  if (entry.workshop >= seq) return { known: seq, held: seq };
+  const at = serverTime(batch, entry);
+  return { known: entry.workshop, held: Math.max(entry.workshop, batch.history.seqAt(at)) };
+}
+
+/** When an entry was made by the server's clock. */
+function serverTime(batch: Batch, entry: Entry): string {
   const made = Math.min(Date.parse(entry.at) - batch.clockOffsetMs, Date.parse(batch.receivedAt));
-  const at = new Date(made).toISOString();
-  const known = Math.min(entry.workshop, batch.history.seq);
-  return { known, held: Math.max(known, batch.history.seqAt(at)), at };
+  return new Date(made).toISOString();
 }
 
 /** Was it in order on its own tablet, by what that tablet knew? */
@@ -231,7 +247,7 @@ function serverVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Tim
   const isClockOff = Math.abs(batch.clockOffsetMs) > CLOCK_TOLERANCE_MS && entry.kind === 'tightened';
   // Judged in order a moment ago, and here everything is the same.
   if (isSameView && !isClockOff) return { ok: true };
-  return mayRecord(fold.state, isClockOff ? { ...entry, at: times.at } : entry, workshop);
+  return mayRecord(fold.state, isClockOff ? { ...entry, at: serverTime(batch, entry) } : entry, workshop);
 }
 
 function isSameWorkshop(batch: Batch, times: Times, held: Workshop): boolean {

@@ -1,12 +1,22 @@
+import type { Entry } from '@/domain/entry';
+import { proveSignature } from './author-signature';
 import { stamp } from './clock';
 import type { App } from './compose';
-import type { Trx } from './database';
+import type { Db, Trx } from './database';
 import { type Device, noteHeardFrom } from './devices';
 import { AppError } from './errors';
-import { type JobFold, rememberFolds, storeFolds } from './job-fold';
+import { findFold, type JobFold, rememberFolds, storeFolds } from './job-fold';
 import { closeStates } from './job-rows';
 import { signHeadAfter, tryPin } from './signing';
-import { type Batch, beginBatch, flush, foldOf, type PinResult, recordByServer } from './sync-batch';
+import {
+  type Batch,
+  beginBatch,
+  flush,
+  foldOf,
+  type PinResult,
+  readKeys,
+  recordByServer,
+} from './sync-batch';
 import type { EntryVerdict, SyncBody } from './sync-body';
 import { pullJobs, type PulledJob } from './sync-pull';
 import { type ReadItem, readItem } from './sync-read';
@@ -41,9 +51,10 @@ export async function syncTablet(app: App, device: Device, body: SyncBody): Prom
   const items = body.entries.map(readItem);
   const verdicts = new Map<number, EntryVerdict>();
   const pins = new Map<string, PinResult>();
+  const proofs = await proveSignatures(app.db, items);
   let pulled: { jobs: PulledJob[]; workshop: number } | undefined;
   while (pulled === undefined) {
-    const round = await oneRound(app, device, { body, items, verdicts, pins, clockOffsetMs });
+    const round = await oneRound(app, device, { body, items, verdicts, pins, proofs, clockOffsetMs });
     if ('needsPin' in round) pins.set(round.needsPin.contentHash, await tryPin(app, round.needsPin));
     else pulled = round;
   }
@@ -61,14 +72,29 @@ interface Round {
   /** Verdicts of earlier rounds, which are final; this round adds its own once it is committed. */
   verdicts: Map<number, EntryVerdict>;
   pins: ReadonlyMap<string, PinResult>;
+  proofs: ReadonlyMap<number, boolean>;
   clockOffsetMs: number;
+}
+
+/** Checks signatures side by side and before anything is locked: it is the longest part of a push. */
+async function proveSignatures(db: Db, items: readonly ReadItem[]): Promise<ReadonlyMap<number, boolean>> {
+  const ids = [...new Set(items.flatMap(({ carried }) => carried?.key ?? []))];
+  const keys = await readKeys(db, ids);
+  const proofs = await Promise.all(
+    items.map(async ({ index, carried, contentHash }) => {
+      const key = carried === undefined ? undefined : keys.get(carried.key);
+      if (carried === undefined || key === undefined) return undefined;
+      return [index, await proveSignature(key.publicKey, contentHash, carried.signature)] as const;
+    }),
+  );
+  return new Map(proofs.filter((proof) => proof !== undefined));
 }
 
 /** One transaction: as far as the next PIN that has to be tried, or to the end. */
 async function oneRound(
   app: App,
   device: Device,
-  { body, items, verdicts, pins, clockOffsetMs }: Round,
+  { body, items, verdicts, pins, proofs, clockOffsetMs }: Round,
 ): Promise<NeedsPin | { jobs: PulledJob[]; workshop: number }> {
   const { found, folds, result } = await app.db.transaction().execute(async (trx) => {
     // A write first, so that the transaction holds the write lock from its beginning.
@@ -76,7 +102,10 @@ async function oneRound(
     const history = await readWorkshopHistory(app.db, trx);
     const rest = items.filter(({ index }) => !verdicts.has(index));
     const receivedAt = stamp(app.clock);
-    const batch = await beginBatch({ app, trx, history, device, receivedAt, clockOffsetMs, pins }, rest);
+    const batch = await beginBatch(
+      { app, trx, history, device, receivedAt, clockOffsetMs, pins, proofs },
+      rest,
+    );
     if (verdicts.size === 0) await noteRestores(batch, body);
     const judged = await judgeAll(batch, rest);
     await flush(batch);
@@ -152,8 +181,18 @@ async function judgeSafely(batch: Batch, item: ReadItem): Promise<EntryVerdict |
   if (!('needsPin' in verdict) && verdict.verdict === 'recorded' && item.read.ok) {
     const fold = await foldOf(batch, item.read.entry.job);
     if (fold !== undefined) await signHeadAfter(batch, fold, item.read.entry);
+    await followPlan(batch, item.read.entry);
   }
   return verdict;
+}
+
+/** A job that moved to another plan is folded anew, each entry under the plan that was in force when it came. */
+async function followPlan(batch: Batch, entry: Entry): Promise<void> {
+  if (entry.kind !== 'plan-moved') return;
+  await flush(batch);
+  await batch.trx.updateTable('job').set({ plan_hash: entry.data.to }).where('id', '=', entry.job).execute();
+  batch.folds.set(entry.job, await findFold(batch.app.db, entry.job, batch.trx));
+  batch.views.clear();
 }
 
 function isDatabaseError(error: unknown): boolean {

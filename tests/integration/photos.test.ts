@@ -2,9 +2,12 @@ import { createHash, randomBytes } from 'node:crypto';
 import { readdirSync, rmSync } from 'node:fs';
 import path from 'node:path';
 import sharp from 'sharp';
-import { beforeEach, describe, expect, it } from 'vitest';
+import { beforeEach, describe, expect, it, vi } from 'vitest';
 import { GET as getPhoto, PUT as putPhoto } from '@/pages/api/photos/[hash]';
 import { ask, enrolTestTablet, openShop, type Shop, type TestTablet } from '../support/tablet';
+
+// A whole workshop and its jobs are made for each of these; a busy machine takes its time.
+vi.setConfig({ testTimeout: 30_000, hookTimeout: 30_000 });
 
 let shop: Shop;
 let tablet: TestTablet;

@@ -1,4 +1,4 @@
-import { beforeEach, describe, expect, it } from 'vitest';
+import { beforeEach, describe, expect, it, vi } from 'vitest';
 import { MINUTE } from '@/server/clock';
 import { addPerson, setActive } from '@/server/people';
 import type { Entry } from '@/domain/entry';
@@ -14,6 +14,9 @@ import {
   trailOf,
   workshopOf,
 } from '../support/tablet';
+
+// A whole workshop and its jobs are made for each of these; a busy machine takes its time.
+vi.setConfig({ testTimeout: 30_000, hookTimeout: 30_000 });
 
 let shop: Shop;
 let tablet: TestTablet;

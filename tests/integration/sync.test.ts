@@ -1,4 +1,4 @@
-import { beforeEach, describe, expect, it } from 'vitest';
+import { beforeEach, describe, expect, it, vi } from 'vitest';
 import { POST as postSync } from '@/pages/api/sync/index';
 import type { Entry } from '@/domain/entry';
 import { revokeKey } from '@/server/author-keys';
@@ -19,6 +19,9 @@ import {
   trailOf,
 } from '../support/tablet';
 
+// A whole workshop and its jobs are made for each of these; a busy machine takes its time.
+vi.setConfig({ testTimeout: 30_000, hookTimeout: 30_000 });
+
 let shop: Shop;
 let tablet: TestTablet;
 let job: OpenedJob;
@@ -33,7 +36,7 @@ beforeEach(async () => {
 const remark = (words: string) =>
   ({ kind: 'deviation-raised', data: { class: 'C', words, blocks: false } }) satisfies Partial<ScriptedEntry>;
 
-const onStep = <K extends ScriptedEntry['kind']>(kind: K, step: string, data: object) =>
+const onStep = (kind: ScriptedEntry['kind'], step: string, data: object) =>
   ({ kind, step, data }) as Omit<ScriptedEntry, 'part' | 'afterMs'>;
 
 const raise = (words: string, options: { force?: boolean; change?: (entry: Entry) => Entry } = {}) =>

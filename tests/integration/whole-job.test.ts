@@ -1,5 +1,8 @@
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { enrolTestTablet, openShop, openTestJob, setClocks, trailOf } from '../support/tablet';
+
+// A whole workshop and its jobs are made for each of these; a busy machine takes its time.
+vi.setConfig({ testTimeout: 30_000, hookTimeout: 30_000 });
 
 describe('a whole job on one tablet', () => {
   it('is recorded in order, every entry once, and ends handed over', async () => {

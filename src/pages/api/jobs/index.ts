@@ -25,6 +25,7 @@ export const POST = endpoint(
     body: openingBody,
     answer: z.strictObject({ id: z.string(), number: z.string() }),
     status: 201,
+    statusAgain: 200,
   },
   async ({ app, actor, body }) => {
     const { isNew, ...job } = await openJob(app, actor, body);

@@ -18,7 +18,7 @@ export const POST = endpoint(
   },
   async ({ app, actor, body }) =>
     app.db.transaction().execute(async (trx) => {
-      const { hash, plan } = await preparePlan(trx, actor, body, app.clock);
+      const { hash, plan } = await preparePlan(trx, actor, body, app);
       return { number: await nextJobNumber(trx, app), plan: hash, planBody: { ...plan } };
     }),
 );
