@@ -4,8 +4,8 @@
  */
 import type { EntryData } from './entry';
 import { remark } from './job-deviation';
-import type { BoltState, JobState, Kept } from './job-state';
-import type { BoltSet, PlanStage, StepOf } from './plan';
+import type { BoltState, JobState, Kept, StepState } from './job-state';
+import type { BoltSet, Plan, PlanStage, StepOf } from './plan';
 import {
   nextAction,
   recordStage,
@@ -40,24 +40,40 @@ function stageInNumbers(stage: PlanStage): Stage {
 
 /** The records of a step that still count towards its programme. */
 export function tighteningRecords(state: JobState, step: TightenStep): TighteningRecord[] {
-  return recordsOf(
-    state,
-    step,
-    (kept) => kept.voided === undefined && kept.takenBack !== 'touched by mistake, not done',
-  );
+  return recordsOf(state, step).counted;
 }
 
 /** Everything that was really done to the bolts, also where the measurement it served is void. */
 function physicalRecords(state: JobState, step: TightenStep): TighteningRecord[] {
-  return recordsOf(state, step, (kept) => kept.takenBack !== 'touched by mistake, not done');
+  return recordsOf(state, step).physical;
 }
 
-function recordsOf(state: JobState, step: TightenStep, counts: (kept: Kept) => boolean): TighteningRecord[] {
+interface StepRecords {
+  programme: Programme;
+  counted: TighteningRecord[];
+  physical: TighteningRecord[];
+}
+
+const NO_RECORDS = { counted: [], physical: [] };
+
+/** A state is never changed in place, so what a step's entries amount to is worked out once. */
+const workedOut = new WeakMap<StepState, StepRecords>();
+
+function recordsOf(state: JobState, step: TightenStep): Pick<StepRecords, 'counted' | 'physical'> {
   const programme = programmeOf(state, step);
-  if (!programme) return [];
-  return (state.steps[step.id]?.entries ?? []).flatMap((kept) =>
-    counts(kept) ? toRecords(programme, kept) : [],
-  );
+  const own = state.steps[step.id];
+  if (!programme || !own) return NO_RECORDS;
+  const held = workedOut.get(own);
+  if (held?.programme === programme) return held;
+  const done = own.entries.filter((kept) => kept.takenBack !== 'touched by mistake, not done');
+  const physical = done.flatMap((kept) => toRecords(programme, kept));
+  const isAll = done.every((kept) => kept.voided === undefined);
+  const counted = isAll
+    ? physical
+    : done.flatMap((kept) => (kept.voided === undefined ? toRecords(programme, kept) : []));
+  const records = { programme, counted, physical };
+  workedOut.set(own, records);
+  return records;
 }
 
 function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
@@ -68,7 +84,9 @@ function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
       if (!programme.cycles[data.cycle]?.[data.stage]) return [];
       // Done, but wrong: what was turned can't be trusted, so the bolt counts as gone over.
       const outcome = kept.takenBack === 'done, but wrong' ? 'over' : data.outcome;
-      const reading = data.value === undefined ? undefined : Number(data.value);
+      // Less than nothing can't have been read; what was recorded so all the same counts as confirmed.
+      const isRead = data.value !== undefined && Number(data.value) >= 0;
+      const reading = isRead ? Number(data.value) : undefined;
       return [recordStage(programme, data, { outcome, ...(reading === undefined ? {} : { reading }) })];
     }
     case 'released': {
@@ -95,10 +113,18 @@ function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
   }
 }
 
+const nextActions = new WeakMap<TighteningRecord[], { step: TightenStep; action: TighteningAction | null }>();
+
 /** What is to be done next on the bolts of the step, or null when its programme is finished. */
 export function nextTightening(state: JobState, step: TightenStep): TighteningAction | null {
   const programme = programmeOf(state, step);
-  return programme ? nextAction(programme, step.bolts, tighteningRecords(state, step)) : null;
+  if (!programme) return null;
+  const records = tighteningRecords(state, step);
+  const held = nextActions.get(records);
+  if (held?.step === step) return held.action;
+  const action = nextAction(programme, step.bolts, records);
+  if (records !== NO_RECORDS.counted) nextActions.set(records, { step, action });
+  return action;
 }
 
 /** Is every stage of the programme done on every bolt? */
@@ -120,6 +146,18 @@ export function tighteningsLeft(state: JobState, step: TightenStep, bolt: string
   return limit - (state.bolts[bolt]?.used[step.set] ?? 0);
 }
 
+const tightenStepsOf = new WeakMap<Plan, TightenStep[]>();
+
+/** The tightening steps of a plan, in its order. */
+function tightenSteps(plan: Plan): TightenStep[] {
+  let steps = tightenStepsOf.get(plan);
+  if (!steps) {
+    steps = plan.steps.filter((step): step is TightenStep => step.kind === 'tighten');
+    tightenStepsOf.set(plan, steps);
+  }
+  return steps;
+}
+
 /** What the step's records, and those of the other fits with the same set, make of each cap bolt. */
 export function settleBolts(state: JobState, step: TightenStep): JobState {
   const { set } = step;
@@ -134,10 +172,7 @@ export function settleBolts(state: JobState, step: TightenStep): JobState {
 
 function settleBolt(state: JobState, step: TightenStep, set: BoltSet, present: BoltState): BoltState {
   const { bolt } = present;
-  const fits = state.plan.steps.filter(
-    (other): other is TightenStep =>
-      other.kind === 'tighten' && other.set === set && other.bolts.includes(bolt),
-  );
+  const fits = tightenSteps(state.plan).filter((other) => other.set === set && other.bolts.includes(bolt));
   const all = fits.flatMap((fit) => physicalRecords(state, fit));
   const own = tighteningRecords(state, step);
   const next = nextTightening(state, step);
@@ -230,7 +265,7 @@ export function checkPace(state: JobState, kept: Kept): JobState {
 
 /** This step and the tightening steps just before it in the plan; a minute never reaches further back. */
 function recentTightenSteps(state: JobState, kept: Kept): string[] {
-  const all = state.plan.steps.filter((step) => step.kind === 'tighten').map(({ id }) => id);
+  const all = tightenSteps(state.plan).map(({ id }) => id);
   const here = all.indexOf(kept.step ?? '');
   return all.slice(Math.max(0, here - 3), here + 1);
 }
