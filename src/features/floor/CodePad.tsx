@@ -1,7 +1,7 @@
 import { useId } from 'react';
 import { Sign } from '@/components/Sign';
 
-const KEYS = [...'1234567890', ...'ABCDEFGHIJKLMNOPQRSTUVWXYZ', '-', '/'];
+const KEYS = Array.from('1234567890ABCDEFGHIJKLMNOPQRSTUVWXYZ-/');
 const MAX_LENGTH = 24;
 
 export interface CodePadProps {

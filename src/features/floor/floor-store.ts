@@ -44,18 +44,18 @@ export interface FloorState {
   refusal?: { why: string; unlock?: string | undefined } | undefined;
   afterwards?: { when: string; reason: string } | undefined;
   /** Reads again what the tablet holds. */
-  reload(): Promise<void>;
-  openJob(job: string): Promise<void>;
-  leaveJob(): void;
-  record(drafts: Draft[], options?: RecordOptions): Promise<boolean>;
-  goTo(step: string): void;
-  goOn(from: PlanStep): void;
-  showAction(action: string): void;
-  settleAction(): void;
-  noteAway(): void;
-  noteTouch(): void;
-  setHelpers(helpers: string[]): void;
-  setAfterwards(afterwards: { when: string; reason: string } | undefined): void;
+  reload: () => Promise<void>;
+  openJob: (job: string) => Promise<void>;
+  leaveJob: () => void;
+  record: (drafts: Draft[], options?: RecordOptions) => Promise<boolean>;
+  goTo: (step: string) => void;
+  goOn: (from: PlanStep) => void;
+  showAction: (action: string) => void;
+  settleAction: () => void;
+  noteAway: () => void;
+  noteTouch: () => void;
+  setHelpers: (helpers: string[]) => void;
+  setAfterwards: (afterwards: { when: string; reason: string } | undefined) => void;
 }
 
 export type FloorStore = StoreApi<FloorState>;

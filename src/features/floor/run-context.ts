@@ -65,23 +65,23 @@ export interface Run {
   /** When and why something is written down later than it was done. */
   afterwards?: { when: string; reason: string } | undefined;
   cells: { job: TopCell; phase: TopCell; sync: TopCell; person: TopCell };
-  now(): number;
-  whereIs(entryId: string): Whereabouts;
+  now: () => number;
+  whereIs: (entryId: string) => Whereabouts;
   /** Durable before it resolves; false when it was refused, and then `refusal` says why. */
-  record(drafts: Draft[], options?: RecordOptions): Promise<boolean>;
-  goTo(stepId: string): void;
+  record: (drafts: Draft[], options?: RecordOptions) => Promise<boolean>;
+  goTo: (stepId: string) => void;
   /** Leaves the present step for the next that can be done. */
-  goOn(from: PlanStep): void;
-  openSheet(name: SheetName): void;
+  goOn: (from: PlanStep) => void;
+  openSheet: (name: SheetName) => void;
   /** Tells which action is on the screen now. */
-  showAction(action: string): void;
+  showAction: (action: string) => void;
   /** The technician answered what became of the action. */
-  settleAction(): void;
-  coverage(holdStepId: string): Promise<Coverage>;
-  photoUrl(hash: string): Promise<string | undefined>;
+  settleAction: () => void;
+  coverage: (holdStepId: string) => Promise<Coverage>;
+  photoUrl: (hash: string) => Promise<string | undefined>;
   /** Whether a person can sign on this tablet. */
-  canSign(person: string): Promise<Verdict>;
-  syncNow(): Promise<void>;
+  canSign: (person: string) => Promise<Verdict>;
+  syncNow: () => Promise<void>;
 }
 
 export const RunContext = createContext<Run | null>(null);

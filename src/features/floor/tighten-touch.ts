@@ -35,7 +35,7 @@ export function nextTouch(state: JobState, step: TightenStep): TightenTouch | nu
   const actions: TightenTouch['actions'] = [first];
   const key = `${step.id} ${actionKey(first)} ${tighteningRecords(state, step).length}`;
   if (!isShared(programme, first)) return { actions, key };
-  const records = tighteningRecords(state, step);
+  const records = [...tighteningRecords(state, step)];
   for (;;) {
     records.push(recordOf(programme, actions.at(-1) ?? first));
     const next = nextAction(programme, step.bolts, records);
@@ -65,7 +65,7 @@ export function touchDrafts(
   return touch.actions.flatMap((action): Draft[] => {
     const entry = entryForAction(state, step, action);
     if (!entry) return [];
-    if (entry.kind !== 'tightened') return [{ ...entry, step: step.id } as Draft];
+    if (entry.kind !== 'tightened') return [{ ...entry, step: step.id }];
     return [
       {
         kind: 'tightened',

@@ -21,7 +21,7 @@ export const HAND_KINDS: Record<Hand, string[]> = {
 };
 
 /** What a pass asks of a tool. */
-export function useFor(hand: Hand, criticalClass: CriticalClass, torqueNm?: number): ToolUse {
+export function wantedFor(hand: Hand, criticalClass: CriticalClass, torqueNm?: number): ToolUse {
   const [kind = hand] = HAND_KINDS[hand];
   return { kind, criticalClass, ...(torqueNm === undefined ? {} : { value: torqueNm, unit: 'N·m' }) };
 }

@@ -67,7 +67,7 @@ export function DispositionForm({ deviation, onDone }: { deviation: Deviation; o
             label: value,
           }))}
           value={agreed}
-          onChoose={(value) => setAgreed(value as typeof agreed)}
+          onChoose={(value) => setAgreed(value)}
         />
       )}
       <NoteField label="Reason" value={reason} onChange={setReason} />

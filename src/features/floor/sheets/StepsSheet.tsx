@@ -80,7 +80,7 @@ function StepLine({ step, isCurrent, onPick }: { step: PlanStep; isCurrent: bool
   const ref = useRef<HTMLLIElement>(null);
   const { sign, words, why } = standing(state, step);
   useEffect(() => {
-    if (isCurrent) ref.current?.scrollIntoView?.({ block: 'center' });
+    if (isCurrent) ref.current?.scrollIntoView({ block: 'center' });
   }, [isCurrent]);
   return (
     <li ref={ref} aria-current={isCurrent ? 'step' : undefined}>

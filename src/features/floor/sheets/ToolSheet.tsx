@@ -5,7 +5,7 @@ import { nextTightening } from '@/domain/job';
 import type { PlanStep } from '@/domain/plan';
 import { useRun } from '../run-context';
 import { dayWords } from '../time-words';
-import { offerTools, useFor, type Hand, type ToolOffer } from '../tool-choice';
+import { offerTools, wantedFor, type Hand, type ToolOffer } from '../tool-choice';
 import { Sheet } from './Sheet';
 import { SheetRefusal } from './SheetRefusal';
 
@@ -27,7 +27,7 @@ export function ToolSheet({ hand, step, onClose }: ToolSheetProps) {
   const offers = offerTools(
     run.workshop,
     hand,
-    useFor(hand, step?.class ?? 'A', torqueWanted(run.state, step)),
+    wantedFor(hand, step?.class ?? 'A', torqueWanted(run.state, step)),
     run.now(),
   );
   const [chosen, choose] = useState<string | undefined>(() => onlyFit(offers));

@@ -28,6 +28,7 @@ function CapInHand({ step, rod, touch }: DrawingProps & { rod: number }) {
   const [action] = touch.actions;
   const { state } = useRun();
   const cycles = state.plan.programmes[step.programme]?.cycles.length ?? 0;
+  const isBegun = state.steps[step.id]?.status !== 'open';
   const spec = action.kind === 'stage' ? action.spec : undefined;
   const isRelease = action.kind === 'release' || spec?.kind === 'release';
   return (
@@ -43,7 +44,7 @@ function CapInHand({ step, rod, touch }: DrawingProps & { rod: number }) {
           letter: name.slice(String(rod).length),
           state: bolt?.condemned !== undefined ? 'condemned' : bolt?.marked ? 'marked' : 'running',
           cycles,
-          cyclesDone: Math.min(bolt?.cyclesDone ?? 0, cycles),
+          cyclesDone: isBegun ? Math.min(bolt?.cyclesDone ?? 0, cycles) : 0,
         };
       })}
     />

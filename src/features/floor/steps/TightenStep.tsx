@@ -19,7 +19,7 @@ import {
   wornBolt,
   type TightenTouch,
 } from '../tighten-touch';
-import { fitToolInHand, toolWords, useFor, type Hand } from '../tool-choice';
+import { fitToolInHand, toolWords, wantedFor, type Hand } from '../tool-choice';
 import { ReplaceBolt } from './ReplaceBolt';
 import { TightenDrawings } from './TightenDrawings';
 import { TypedReading } from './TypedReading';
@@ -205,5 +205,5 @@ export function handFor({ actions: [action] }: TightenTouch): Hand | undefined {
 /** What the touch asks of its tool. */
 export function toolUse(step: TightenStepPlan, { actions: [action] }: TightenTouch, hand: Hand) {
   const torque = action.kind === 'stage' && action.spec.kind === 'torque' ? action.spec.target : undefined;
-  return useFor(hand, step.class, torque);
+  return wantedFor(hand, step.class, torque);
 }

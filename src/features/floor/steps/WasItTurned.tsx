@@ -5,7 +5,7 @@ import type { StepOf } from '@/domain/plan';
 import { useRun } from '../run-context';
 import { StepFrame } from '../StepFrame';
 import { placeWords, stageAmount, touchDrafts, type TightenTouch } from '../tighten-touch';
-import { fitToolInHand, useFor } from '../tool-choice';
+import { fitToolInHand, wantedFor } from '../tool-choice';
 
 /** On coming back: what became of the action that stood on the screen. */
 export function WasItTurned({ step, touch }: { step: StepOf<'tighten'>; touch: TightenTouch }) {
@@ -22,7 +22,7 @@ export function WasItTurned({ step, touch }: { step: StepOf<'tighten'>; touch: T
         : 'was it tightened?';
   const hand = spec?.kind === 'angle' ? 'angle' : 'torque';
   const torque = spec?.kind === 'torque' ? spec.target : undefined;
-  const tool = fitToolInHand(run.state, run.workshop, hand, useFor(hand, step.class, torque), run.now());
+  const tool = fitToolInHand(run.state, run.workshop, hand, wantedFor(hand, step.class, torque), run.now());
   const unsure = {
     kind: 'started-again' as const,
     step: step.id,

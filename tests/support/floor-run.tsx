@@ -1,14 +1,13 @@
 /* A run for tests: the real rules and the real fold on a journal, without storage, signatures or a network. */
 import { useState, type ReactNode } from 'react';
-import type { EntryData, EntryKind } from '@/domain/entry';
 import { mayRecord } from '@/domain/job';
 import type { PlanStep } from '@/domain/plan';
 import type { WorkshopRow } from '@/offline/database';
 import type { Draft } from '@/offline/record';
-import { Journal } from '../../../tests/support/journal';
-import { currentStep, following, NOWHERE, staysAfter, type FloorPlace } from './current-step';
-import { RunContext, type Run, type SheetName, type Worker } from './run-context';
-import { StepScreen } from './steps/StepScreen';
+import { currentStep, following, NOWHERE, staysAfter, type FloorPlace } from '@/features/floor/current-step';
+import { RunContext, type Run, type SheetName, type Worker } from '@/features/floor/run-context';
+import { StepScreen } from '@/features/floor/steps/StepScreen';
+import type { Journal } from './journal';
 
 export interface FixtureOptions {
   journal: Journal;
@@ -106,7 +105,7 @@ function foldAll(journal: Journal, drafts: Draft[], by: string) {
   const before = { state: journal.state, entries: [...journal.entries] };
   for (const draft of drafts) {
     const options = { by, with: draft.with ?? [], ...(draft.step === undefined ? {} : { step: draft.step }) };
-    const entry = journal.draft(draft.kind, draft.data as EntryData<EntryKind>, {
+    const entry = journal.draft(draft.kind, draft.data, {
       ...options,
       afterMs: drafts[0] === draft ? 1000 : 0,
     });
