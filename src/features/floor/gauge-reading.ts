@@ -8,6 +8,12 @@ import type { ScaleReading } from '@/components/ClearanceScale';
 export type End = 'front' | 'rear';
 export type GaugeStepPlan = StepOf<'gauge'>;
 
+/** The thread in use and the card of its packet, by lot. */
+export interface ThreadLots {
+  thread: string;
+  card: string;
+}
+
 /** What was read off the card, before it is kept. */
 export interface CardValue {
   by: 'band' | 'width';

@@ -7,10 +7,16 @@ import type { RodState } from '@/domain/job-state';
 import type { StepOf } from '@/domain/plan';
 import { RecordAction } from '../RecordAction';
 import { StepFrame } from '../StepFrame';
-import { valueOfBand, valueOfWidth, whichReading, type CardValue, type End } from '../gauge-reading';
+import {
+  valueOfBand,
+  valueOfWidth,
+  whichReading,
+  type CardValue,
+  type End,
+  type ThreadLots,
+} from '../gauge-reading';
 import { decimalText, isNumber } from '../numbers';
 import { useRun } from '../run-context';
-import type { ThreadLots } from './GaugeStep';
 
 interface GaugeReadProps {
   step: StepOf<'gauge'>;

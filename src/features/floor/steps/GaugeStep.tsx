@@ -5,15 +5,10 @@ import { LotEntry } from '../LotEntry';
 import { MainAction } from '@/components/MainAction';
 import { StepFrame } from '../StepFrame';
 import { dataOf } from '../done-words';
-import { endToRead, type End } from '../gauge-reading';
+import { endToRead, type End, type ThreadLots } from '../gauge-reading';
 import { useRun, type Run } from '../run-context';
 import { GaugeKept } from './GaugeKept';
 import { GaugeRead } from './GaugeRead';
-
-export interface ThreadLots {
-  thread: string;
-  card: string;
-}
 
 /** The oil clearance of one rod: front, then rear, each read off the card and judged after it is kept. */
 export function GaugeStep({ step }: { step: StepOf<'gauge'> }) {
