@@ -7,6 +7,9 @@ import { PASSWORD_MAX, PASSWORD_MIN } from './auth';
  * to be NFC.
  */
 
+/** Control characters, line ends, half characters, and marks that turn the order of what follows around. */
+const UNREADABLE = /[\p{Cc}\p{Surrogate}\u2028\u2029\u202a-\u202e\u2066-\u2069]/u;
+
 /** A line of text as a person types it. */
 export function line(max: number) {
   return z
@@ -14,7 +17,8 @@ export function line(max: number) {
     .normalize('NFC')
     .trim()
     .min(1, 'may not be empty')
-    .max(max, `may have ${max} characters at most`);
+    .max(max, `may have ${max} characters at most`)
+    .refine((text) => !UNREADABLE.test(text), 'has a character in it that cannot be read in a line');
 }
 
 export const uuid = z

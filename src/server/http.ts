@@ -50,6 +50,10 @@ export interface EndpointSpec<W extends Who, B, Q, A extends z.ZodType> {
   answer: A;
   /** The status of a good answer; 200 unless stated. */
   status?: number;
+  /** The status of a good answer to what was sent before, where it is another one. */
+  statusAgain?: number;
+  /** What a good answer may be where it is not JSON. */
+  answerTypes?: readonly string[];
   /** The largest JSON body, where it is not the usual limit. */
   maxBytes?: number;
 }
@@ -206,7 +210,12 @@ export function parseOrThrow<S extends z.ZodType>(schema: S, value: unknown): z.
   }
   const field = path.join('.');
   const where = field === '' ? 'The body' : field;
-  throw new AppError('invalid-field', `${where}: ${issue?.message ?? 'not valid'}.`, {
-    field: field === '' ? 'body' : field,
-  });
+  const why = isThere(value, issue?.path ?? []) ? (issue?.message ?? 'not valid') : 'is needed';
+  throw new AppError('invalid-field', `${where}: ${why}.`, { field: field === '' ? 'body' : field });
+}
+
+function isThere(value: unknown, path: readonly PropertyKey[]): boolean {
+  return (
+    path.reduce<unknown>((found, key) => (found as Record<PropertyKey, unknown>)[key], value) !== undefined
+  );
 }

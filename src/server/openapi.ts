@@ -32,7 +32,7 @@ export function openApiDocument(publicUrl: string): Record<string, unknown> {
 }
 
 function describe(operation: Operation): Record<string, unknown> {
-  const { who, status = 200 } = operation;
+  const { who, status = 200, statusAgain } = operation;
   const roles = typeof who === 'object' ? ` For: ${who.join(', ')}.` : '';
   const parameters = [...pathParameters(operation.path), ...queryParameters(operation.query)];
   return {
@@ -44,10 +44,10 @@ function describe(operation: Operation): Record<string, unknown> {
       : { requestBody: { required: true, content: bodyContent(operation.body) } }),
     security: security(who),
     responses: {
-      [status]: {
-        description: 'Done',
-        content: { 'application/json': { schema: toJsonSchema(operation.answer, 'output') } },
-      },
+      [status]: { description: 'Done', content: answerContent(operation) },
+      ...(statusAgain === undefined
+        ? {}
+        : { [statusAgain]: { description: 'Done before', content: answerContent(operation) } }),
       default: {
         description: 'Not done',
         content: { 'application/json': { schema: { $ref: '#/components/schemas/Error' } } },
@@ -87,9 +87,17 @@ function queryParameters(query: z.ZodType | undefined) {
 
 function bodyContent(body: NonNullable<Operation['body']>): Record<string, unknown> {
   if (!('raw' in body)) return { 'application/json': { schema: toJsonSchema(body, 'input') } };
-  return Object.fromEntries(
-    body.types.map((type) => [type, { schema: { type: 'string', format: 'binary' } }]),
-  );
+  return bytesContent(body.types);
+}
+
+function answerContent({ answer, answerTypes }: Operation): Record<string, unknown> {
+  if (answerTypes !== undefined) return bytesContent(answerTypes);
+  return { 'application/json': { schema: toJsonSchema(answer, 'output') } };
+}
+
+/** Bytes as they are: in OpenAPI 3.1 a content type says all there is to say of them. */
+function bytesContent(types: readonly string[]): Record<string, unknown> {
+  return Object.fromEntries(types.map((type) => [type, {}]));
 }
 
 function toJsonSchema(schema: z.ZodType, io: 'input' | 'output'): Record<string, unknown> {

@@ -13,6 +13,8 @@ export const PUT = endpoint(
     who: 'session or tablet',
     body: { raw: true, types: PHOTO_TYPES, maxBytes: PHOTO_LIMIT_BYTES },
     answer: z.strictObject({ hash: z.string() }),
+    status: 201,
+    statusAgain: 200,
   },
   async ({ app, device, params, body }) => {
     const hash = requireHash(params.hash);
@@ -29,6 +31,7 @@ export const GET = endpoint(
     who: 'session or tablet',
     query: z.strictObject({ size: z.enum(['full', 'thumb']).default('full') }),
     answer: z.unknown(),
+    answerTypes: PHOTO_TYPES,
   },
   async ({ app, params, query }) => {
     const { bytes, type } = await getPhoto(app, requireHash(params.hash), query.size);
