@@ -16,7 +16,12 @@ export function clockSeconds(at: string | number, zone: string): string {
 
 /** Day and time of an instant in the workshop's zone, as "6 Oct, 10:42". */
 export function dayAndTime(at: string | number, zone: string): string {
-  return `${format(at, zone, { day: 'numeric', month: 'short' })}, ${clockTime(at, zone)}`;
+  return `${shortDay(at, zone)}, ${clockTime(at, zone)}`;
+}
+
+/** The day of an instant in the workshop's zone without its year, as "6 Oct". */
+export function shortDay(at: string | number, zone: string): string {
+  return format(at, zone, { day: 'numeric', month: 'short' });
 }
 
 /** The day of an instant in the workshop's zone, as "Tue 6 Oct 2026". */

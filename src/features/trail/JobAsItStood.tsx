@@ -1,22 +1,25 @@
+import { memo } from 'react';
 import { EngineBelow } from '@/components/EngineBelow';
 import { SignatureStamp } from '@/components/SignatureStamp';
-import type { Recorded } from '@/domain/entry';
 import { engineView } from '@/domain/engine-view';
-import type { JobState, Signature } from '@/domain/job-state';
+import type { JobState } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
-import { dayAndTime } from '@/domain/time-words';
+import { signatureView } from '@/domain/signature-view';
+import { EntryFacts } from './EntryFacts';
+import type { ReadTrail } from './read-trail';
 
 export interface JobAsItStoodProps {
   state: JobState;
-  seq: number;
   /** The entry looked at. */
-  recorded: Recorded | undefined;
+  entry: ReadTrail['entries'][number];
   zone: string;
 }
 
 /** What the record said of the engine, the open things and the signatures once this entry was in it. */
-export function JobAsItStood({ state, seq, recorded, zone }: JobAsItStoodProps) {
-  const step = recorded?.step === undefined ? undefined : findStep(state.plan, recorded.step);
+export const JobAsItStood = memo(function JobAsItStood({ state, entry, zone }: JobAsItStoodProps) {
+  const { recorded, hash } = entry;
+  const { seq } = recorded;
+  const step = recorded.step === undefined ? undefined : findStep(state.plan, recorded.step);
   const open = state.deviations.filter(({ disposed }) => !disposed);
   return (
     <section className="trail-state" aria-label={`The job as it stood at entry ${seq}`}>
@@ -24,52 +27,30 @@ export function JobAsItStood({ state, seq, recorded, zone }: JobAsItStoodProps) 
       <div className="trail-state-both">
         <EngineBelow {...engineView(state, step, zone)} />
         <div className="trail-state-words">
-          {state.signatures.map((signature) => (
-            <Stamp key={signature.entry} signature={signature} zone={zone} />
-          ))}
-          {recorded?.kind === 'signed' && (
-            <Independence state={state} by={recorded.by} step={recorded.step} />
-          )}
+          {/* The newest signature is the one that the work stands on: it comes first. */}
+          {[...state.signatures].reverse().map((signature, i) => {
+            const { words, covers, ...stamp } = signatureView(signature, zone);
+            return (
+              <SignatureStamp key={signature.entry} {...stamp} {...(i === 0 ? { words, covers } : {})} />
+            );
+          })}
+          {recorded.kind === 'signed' && <Independence state={state} by={recorded.by} step={recorded.step} />}
           <OpenThings
             title="Open deviations"
-            things={open.map(({ id, words }) => ({ key: id, words }))}
+            things={open.map(({ words }) => words)}
             none="No deviation open."
           />
           <OpenThings
             title="Taken off or put in, still open"
-            things={state.open.map(({ item, name, count }) => ({
-              key: item,
-              words: count === undefined ? name : `${name}, ${count}`,
-            }))}
+            things={state.open.map(({ name, count }) => (count === undefined ? name : `${name} (${count})`))}
             none="Nothing open."
           />
+          <EntryFacts recorded={recorded} hash={hash} />
         </div>
       </div>
     </section>
   );
-}
-
-function Stamp({ signature, zone }: { signature: Signature; zone: string }) {
-  const { name, at, meaning, covered, checkedAt, reopened, notIndependent, count } = signature;
-  const state =
-    reopened === undefined
-      ? checkedAt === undefined
-        ? 'to be checked'
-        : 'signed'
-      : reopened.startsWith('revoked')
-        ? 'revoked'
-        : 'open again';
-  return (
-    <SignatureStamp
-      state={state}
-      name={name}
-      time={dayAndTime(at, zone)}
-      words={count === undefined ? meaning : meaning.replaceAll('{count}', String(count))}
-      covers={`${covered} entries`}
-      isNotIndependent={notIndependent !== undefined}
-    />
-  );
-}
+});
 
 /** Says of a signer what the record knows: whether they had a hand in the work. */
 function Independence({ state, by, step }: { state: JobState; by: string; step: string | undefined }) {
@@ -81,27 +62,17 @@ function Independence({ state, by, step }: { state: JobState; by: string; step: 
   );
 }
 
-function OpenThings({
-  title,
-  things,
-  none,
-}: {
+interface OpenThingsProps {
   title: string;
-  things: { key: string; words: string }[];
+  things: string[];
   none: string;
-}) {
+}
+
+function OpenThings({ title, things, none }: OpenThingsProps) {
   return (
     <div>
       <h3 className="form-label">{title}</h3>
-      {things.length === 0 ? (
-        <p>{none}</p>
-      ) : (
-        <ul className="trail-open">
-          {things.map(({ key, words }) => (
-            <li key={key}>{words}</li>
-          ))}
-        </ul>
-      )}
+      <p>{things.length === 0 ? none : things.join(', ')}</p>
     </div>
   );
 }

@@ -1,10 +1,12 @@
-import { useEffect, useRef, type KeyboardEvent } from 'react';
+import { memo, useCallback, useEffect, useRef, type KeyboardEvent } from 'react';
 import type { TrailLine } from './trail-lines';
 
 export interface LedgerProps {
   lines: TrailLine[];
   position: number;
   onPick: (seq: number) => void;
+  /** So many entries on or back; the trail's ends stop it. */
+  onWalk: (entries: number) => void;
 }
 
 const STEPS: Record<string, number> = {
@@ -16,36 +18,36 @@ const STEPS: Record<string, number> = {
   End: 1e9,
 };
 
-/** Every entry, a line each, its hash at the end; arrow keys walk it. */
-export function Ledger({ lines, position, onPick }: LedgerProps) {
+/** Every entry, a line each, its hash at the end; a touch picks one, arrow keys walk them. */
+export const Ledger = memo(function Ledger({ lines, position, onPick, onWalk }: LedgerProps) {
   const box = useRef<HTMLDivElement>(null);
   useEffect(() => {
     const row = box.current?.querySelector('tr[aria-current]');
     row?.scrollIntoView({ block: 'nearest' });
+    // Whoever walks with the keys keeps the focus on the line that is shown.
+    if (box.current?.contains(document.activeElement) === true)
+      row?.querySelector('button')?.focus({ preventScroll: true });
   }, [position]);
-  const walk = (event: KeyboardEvent) => {
-    const step = STEPS[event.key];
-    if (step === undefined) return;
-    event.preventDefault();
-    onPick(Math.min(lines.length, Math.max(1, position + step)));
-  };
+  const walk = useCallback(
+    (event: KeyboardEvent) => {
+      const step = STEPS[event.key];
+      if (step === undefined || event.altKey || event.ctrlKey || event.metaKey) return;
+      event.preventDefault();
+      onWalk(step);
+    },
+    [onWalk],
+  );
   return (
-    // The box scrolls, so it takes the keyboard; the lines in it are buttons for the pointer and for touch.
-    // eslint-disable-next-line jsx-a11y/no-noninteractive-element-interactions -- arrow keys walk the ledger
-    <div
-      ref={box}
-      className="trail-ledger"
-      role="group"
-      aria-label="Entries"
-      // eslint-disable-next-line jsx-a11y/no-noninteractive-tabindex -- a box that scrolls must take the keyboard
-      tabIndex={0}
-      onKeyDown={walk}
-    >
+    <div ref={box} className="trail-ledger">
       <table className="data-table">
-        <caption className="unseen">The entries of this job in order</caption>
+        <caption className="unseen">
+          The entries of this job in order. Arrow keys walk from entry to entry.
+        </caption>
         <thead>
           <tr>
-            <th scope="col">no.</th>
+            <th scope="col" data-align="right">
+              no.
+            </th>
             <th scope="col">tablet clock</th>
             <th scope="col">recorded</th>
             <th scope="col">who</th>
@@ -58,21 +60,30 @@ export function Ledger({ lines, position, onPick }: LedgerProps) {
         </thead>
         <tbody>
           {lines.map((line) => (
-            <Line key={line.seq} line={line} isCurrent={line.seq === position} onPick={onPick} />
+            <Line
+              key={line.seq}
+              line={line}
+              standing={line.seq === position ? 'current' : line.seq < position ? 'past' : 'later'}
+              onPick={onPick}
+              onKeyDown={walk}
+            />
           ))}
         </tbody>
       </table>
     </div>
   );
-}
+});
 
 interface LineProps {
   line: TrailLine;
-  isCurrent: boolean;
+  /** To the entry that is shown. */
+  standing: 'past' | 'current' | 'later';
   onPick: (seq: number) => void;
+  onKeyDown: (event: KeyboardEvent) => void;
 }
 
-function Line({ line, isCurrent, onPick }: LineProps) {
+const Line = memo(function Line({ line, standing, onPick, onKeyDown }: LineProps) {
+  const isCurrent = standing === 'current';
   return (
     <>
       {line.day !== undefined && (
@@ -85,38 +96,46 @@ function Line({ line, isCurrent, onPick }: LineProps) {
       <tr
         aria-current={isCurrent || undefined}
         className="trail-line"
-        data-superseded={line.superseded !== undefined || undefined}
+        data-later={standing === 'later' || undefined}
       >
-        <td className="figure">
+        <td data-figure data-align="right">
           <button
             type="button"
             className="trail-pick"
+            // One stop for the Tab key; from there the arrow keys walk.
+            tabIndex={isCurrent ? 0 : -1}
             onClick={() => onPick(line.seq)}
+            onKeyDown={onKeyDown}
             aria-label={`Entry ${line.seq}`}
           >
             {line.seq}
           </button>
         </td>
-        <td className="figure">
+        <td data-figure>
           {line.tabletClock}
           {line.isClockOff && <span className="trail-flag">clock off</span>}
         </td>
-        <td className="figure">{line.recorded}</td>
-        <td>
+        <td data-figure data-soft>
+          {line.recordedDay !== undefined && <span className="trail-recorded-day">{line.recordedDay} </span>}
+          {line.recorded}
+        </td>
+        <td className="trail-who">
           {line.who}
           {line.withWhom.length > 0 && <span className="trail-with">with {line.withWhom.join(', ')}</span>}
         </td>
         <td data-wide>
-          {line.what}
+          <span data-superseded={line.superseded !== undefined || undefined}>{line.what}</span>
           {line.pinChecked !== undefined && <span className="trail-with">PIN checked {line.pinChecked}</span>}
           {line.superseded !== undefined && <span className="trail-flag">{line.superseded}</span>}
           {line.conflict !== undefined && <span className="trail-flag">conflict: {line.conflict}</span>}
         </td>
-        <td className="trail-soft">{line.tablet}</td>
-        <td className="figure trail-soft" title={line.hash}>
+        <td data-figure data-soft>
+          {line.tablet}
+        </td>
+        <td data-figure data-soft>
           {line.hash.slice(0, 4)}…
         </td>
       </tr>
     </>
   );
-}
+});

@@ -1,11 +1,11 @@
-import { useDeferredValue, useMemo, useState } from 'react';
+import { useCallback, useDeferredValue, useMemo, useState } from 'react';
 import { TrailStrip } from '@/components/TrailStrip';
-import { replay } from '@/domain/job';
 import { dayOf } from '@/domain/time-words';
 import { JobAsItStood } from './JobAsItStood';
 import { Ledger } from './Ledger';
 import { VerificationNote } from './VerificationNote';
 import type { ReadTrail } from './read-trail';
+import { statesAlong } from './states-along';
 import { linesOf, phasesOf } from './trail-lines';
 
 export interface TrailViewProps {
@@ -20,17 +20,21 @@ export function TrailView({ job, trail, zone }: TrailViewProps) {
   const [position, setPosition] = useState(total);
   const lines = useMemo(() => linesOf(trail, zone), [trail, zone]);
   const phases = useMemo(() => phasesOf(trail), [trail]);
-  const upTo = useDeferredValue(position);
-  const state = useMemo(
+  const signatures = useMemo(
     () =>
-      replay(
-        trail.plans,
-        trail.entries.map(({ recorded }) => recorded),
-        { upTo },
-      ),
-    [trail, upTo],
+      lines
+        .filter(({ isSignature }) => isSignature)
+        .map(({ seq, what, who }) => ({ at: seq, words: `${who}: ${what}` })),
+    [lines],
   );
-  const line = lines[position - 1];
+  const stateAt = useMemo(() => statesAlong(trail), [trail]);
+  const walk = useCallback(
+    (entries: number) => setPosition((from) => Math.min(total, Math.max(1, from + entries))),
+    [total],
+  );
+  // The strip follows the finger at once; ledger and engine come after it.
+  const shown = useDeferredValue(position);
+  const entry = trail.entries[shown - 1];
   const at = trail.entries[position - 1]?.recorded.at;
   return (
     <div className="trail-page">
@@ -39,9 +43,11 @@ export function TrailView({ job, trail, zone }: TrailViewProps) {
           <span className="figure">
             entry {position} of {total}
           </span>
-          <span className="trail-when">
-            {at !== undefined && `${dayOf(at, zone)}, ${line?.tabletClock ?? ''}`}
-          </span>
+          {at !== undefined && (
+            <span className="trail-when">
+              {dayOf(at, zone)}, <span className="figure">{lines[position - 1]?.tabletClock}</span>
+            </span>
+          )}
         </h1>
         <VerificationNote job={job} trail={trail} />
       </header>
@@ -49,14 +55,12 @@ export function TrailView({ job, trail, zone }: TrailViewProps) {
         total={total}
         position={position}
         phases={phases}
-        signatures={lines
-          .filter(({ isSignature }) => isSignature)
-          .map(({ seq, what, who }) => ({ at: seq, words: `${who}: ${what}` }))}
+        signatures={signatures}
         onScrub={setPosition}
       />
       <div className="trail-both">
-        <Ledger lines={lines} position={position} onPick={setPosition} />
-        <JobAsItStood state={state} seq={upTo} recorded={trail.entries[upTo - 1]?.recorded} zone={zone} />
+        <Ledger lines={lines} position={shown} onPick={setPosition} onWalk={walk} />
+        {entry && <JobAsItStood state={stateAt(shown)} entry={entry} zone={zone} />}
       </div>
     </div>
   );

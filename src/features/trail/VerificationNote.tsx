@@ -26,22 +26,31 @@ export function VerificationNote({ job, trail }: VerificationNoteProps) {
   return (
     <div className="trail-verdict" role="status">
       <Found outcome={outcome} total={trail.entries.length} />
-      <details className="trail-yourself">
-        <summary>Check it yourself</summary>
-        <p>
-          <a href={`/api/jobs/${job}/export`} download>
-            Save the trail as a file
-          </a>
-          , and check it on a machine of your own: <code>npm run verify-trail -- FILE</code>. Compare the key
-          with the one that the workshop gave you, and the newest hash with a head that left the workshop
-          earlier; without them the check can&rsquo;t tell a whole trail from one that was made anew.
-        </p>
-        {typeof outcome === 'object' && outcome.ok && (
+      <div className="trail-verdict-more">
+        <MoreFound outcome={outcome} />
+        <details className="trail-yourself">
+          <summary>Check it yourself</summary>
           <p>
-            Workshop&rsquo;s key: <code className="trail-key">{outcome.key}</code>
+            <a href={`/api/jobs/${job}/export`} download>
+              Save the trail as a file
+            </a>
+            , and check it on a machine of your own: <code>npm run verify-trail -- FILE</code>. Compare the
+            key with the one that the workshop gave you, and the newest hash with a head that left the
+            workshop earlier; without them the check can&rsquo;t tell a whole trail from one that was made
+            anew.
           </p>
-        )}
-      </details>
+          {typeof outcome === 'object' && outcome.ok && (
+            <>
+              <p>
+                Workshop&rsquo;s key: <code>{outcome.key}</code>
+              </p>
+              {outcome.notes.map((note) => (
+                <p key={note}>{note}</p>
+              ))}
+            </>
+          )}
+        </details>
+      </div>
     </div>
   );
 }
@@ -63,11 +72,23 @@ function Found({ outcome, total }: { outcome: Outcome; total: number }) {
       </Verdict>
     );
   }
-  const heads = outcome.heads === 1 ? 'one head' : `${outcome.heads} heads`;
+  const { entries, heads } = outcome;
   return (
-    <Verdict kind="inside" word={`Unbroken from entry 1 to ${outcome.entries}`} size="small">
-      {outcome.signatures} authors&rsquo; signatures hold; signed {heads} by the workshop&rsquo;s key. Checked
-      just now by this browser, entry by entry.
-    </Verdict>
+    <Verdict kind="inside" word={`Unbroken from entry 1 to ${entries} · ${headWords(heads)}`} size="small" />
   );
+}
+
+function MoreFound({ outcome }: { outcome: Outcome }) {
+  if (typeof outcome !== 'object' || !outcome.ok) return null;
+  return (
+    <p className="trail-verdict-note">
+      {outcome.signatures} authors&rsquo; signatures hold. Checked just now by this browser, entry by entry.
+    </p>
+  );
+}
+
+/** Heads are signed as hold points are, so that a trail can't be cut back behind one unseen. */
+function headWords(heads: number): string {
+  if (heads === 0) return 'no head is signed yet';
+  return `signed ${heads === 1 ? 'once' : `${heads} times`} by the workshop’s key`;
 }

@@ -1,6 +1,6 @@
 import { wordsOf } from '@/domain/entry-words';
 import { findStep, type Plan } from '@/domain/plan';
-import { clockSeconds, dayOf } from '@/domain/time-words';
+import { clockSeconds, clockTime, dayOf, shortDay } from '@/domain/time-words';
 import type { ReadTrail } from './read-trail';
 
 /** One entry as the ledger shows it. */
@@ -12,9 +12,12 @@ export interface TrailLine {
   tabletClock: string;
   /** The server's clock at receipt. */
   recorded: string;
+  /** The server's day, given where it is another than the tablet's. */
+  recordedDay?: string | undefined;
   isClockOff: boolean;
   who: string;
   withWhom: string[];
+  /** Short, as "2"; tablets are numbered in the order in which they come in the job. */
   tablet: string;
   what: string;
   isSignature: boolean;
@@ -50,7 +53,7 @@ export function linesOf({ entries, plans }: ReadTrail, zone: string): TrailLine[
       id: recorded.id,
       ...(isNewDay ? { day } : {}),
       tabletClock: clockSeconds(recorded.at, zone),
-      recorded: clockSeconds(recorded.recordedAt, zone),
+      ...recordedWords(recorded.recordedAt, day, zone),
       isClockOff: Math.abs(recorded.clockOffsetMs) > CLOCK_TOLERANCE_MS,
       who: recorded.author.name,
       withWhom: recorded.with.map((id) => names.get(id) ?? id),
@@ -65,14 +68,18 @@ export function linesOf({ entries, plans }: ReadTrail, zone: string): TrailLine[
   });
 }
 
-/** Tablets by number in the order in which they come; the id's start tells them apart for ever. */
+function recordedWords(
+  recordedAt: string,
+  tabletDay: string,
+  zone: string,
+): Pick<TrailLine, 'recorded' | 'recordedDay'> {
+  if (dayOf(recordedAt, zone) === tabletDay) return { recorded: clockSeconds(recordedAt, zone) };
+  return { recorded: clockTime(recordedAt, zone), recordedDay: shortDay(recordedAt, zone) };
+}
+
 function tabletNames(devices: string[]): Map<string, string> {
-  const names = new Map<string, string>();
-  for (const device of devices) {
-    if (!names.has(device))
-      names.set(device, device === 'server' ? 'server' : `${names.size + 1} (${device.slice(0, 8)})`);
-  }
-  return names;
+  const tablets = [...new Set(devices)].filter((device) => device !== 'server');
+  return new Map(tablets.map((device, i) => [device, String(i + 1)]));
 }
 
 function supersededBy(entries: ReadTrail['entries']): Map<string, string> {
@@ -85,16 +92,18 @@ function supersededBy(entries: ReadTrail['entries']): Map<string, string> {
   return words;
 }
 
-/** Where each phase begins and ends, by the steps that its entries stand on. */
+/** Where each phase begins and ends, by the steps that its entries stand on; what stands on none goes with the one before. */
 export function phasesOf({ entries, plans }: ReadTrail): TrailPhase[] {
   const phases: TrailPhase[] = [];
   for (const { recorded } of entries) {
     const name = phaseOf(plans.get(recorded.plan), recorded.step);
     const last = phases.at(-1);
     if (last && (name === undefined || name === last.name)) last.to = recorded.seq;
-    else phases.push({ name: name ?? 'opening', from: recorded.seq, to: recorded.seq });
+    else if (name !== undefined) phases.push({ name, from: last ? recorded.seq : 1, to: recorded.seq });
   }
-  return phases;
+  return phases.length > 0 || entries.length === 0
+    ? phases
+    : [{ name: 'opening', from: 1, to: entries.length }];
 }
 
 function phaseOf(plan: Plan | undefined, stepId: string | undefined): string | undefined {
