@@ -15,7 +15,8 @@ export interface DeskFrameProps {
   sublinks?: DeskLink[] | undefined;
   /** What the sublinks belong to, as "Job 0147". */
   sublabel?: string | undefined;
-  person?: { name: string; roles: string } | undefined;
+  /** Who is signed in; the name leads to their own page, where they also sign out. */
+  person?: { name: string; roles: string; href: string; isCurrent?: boolean | undefined } | undefined;
   /** At the far right, such as the sign-out button. */
   corner?: ReactNode;
   /** No gap around the page, for screens that rule themselves to the edge. */
@@ -54,10 +55,15 @@ export function DeskFrame({
             </nav>
           )}
           {person !== undefined && (
-            <p className="desk-person">
+            <a
+              className="desk-person"
+              href={person.href}
+              aria-current={person.isCurrent === true ? 'page' : undefined}
+              aria-label={`${person.name}, ${person.roles}: your PIN, password and signing out`}
+            >
               <b>{person.name}</b>
               <span>{person.roles}</span>
-            </p>
+            </a>
           )}
           {corner}
         </div>

@@ -37,8 +37,9 @@ export function ArrivalPhotos({ photos, onChange }: ArrivalPhotosProps) {
         Each side, damage, the dial with the odometer. Place and camera data are stripped here.
       </p>
       <label className="job-file">
-        <span>{isBusy ? 'Reading the pictures' : 'Add photographs'}</span>
+        {isBusy ? 'Reading the pictures' : 'Add photographs'}
         <input
+          className="unseen"
           type="file"
           accept="image/*"
           multiple

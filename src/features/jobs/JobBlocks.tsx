@@ -2,6 +2,7 @@ import { nextSteps, whyNot } from '@/domain/job';
 import { openBlockers } from '@/domain/job-order';
 import type { JobState } from '@/domain/job-state';
 import { dayAndTime } from '@/domain/time-words';
+import { holdPointName } from './hold-point-name';
 
 export interface JobBlocksProps {
   state: JobState;
@@ -14,7 +15,7 @@ export function JobBlocks({ state, zone, waiting }: JobBlocksProps) {
   const things = [
     ...waiting.map(({ step, title }) => ({
       key: step,
-      what: `Signature due: ${title}`,
+      what: `Signature due: ${holdPointName(title)}`,
       note: 'at the vehicle, on the Floor',
     })),
     ...openBlockers(state).map((deviation) => ({

@@ -3,9 +3,9 @@ import { Field } from '@/components/Field';
 import { dayAndTime, dayWords } from '@/domain/time-words';
 import type { JobAnswer } from './job-answer';
 
-const IDENTITY: [field: string, label: string][] = [
-  ['registration', 'Registration'],
-  ['vin', 'VIN'],
+const IDENTITY: [field: string, label: string, isFigure?: true][] = [
+  ['registration', 'Registration', true],
+  ['vin', 'VIN', true],
   ['customerName', 'Customer'],
   ['customerEmail', 'E-mail'],
   ['customerPhone', 'Telephone'],
@@ -14,42 +14,51 @@ const IDENTITY: [field: string, label: string][] = [
 ];
 
 /** What is known of the vehicle, the customer and the agreement, as far as this person may see it. */
-export function JobFacts({ job, zone }: { job: JobAnswer; zone: string }) {
+export function JobFacts({ job }: { job: JobAnswer }) {
   const { odometer } = job.jobState;
   return (
-    <section className="part">
+    <section className="part job-facts">
       <h2 className="part-title">Vehicle and agreement</h2>
       <dl className="fields">
-        <Field label="Engine">{job.engine}</Field>
+        {IDENTITY.map(([field, label, isFigure]) => identityField(job, field, label, isFigure))}
         {odometer && (
           <Field label="Odometer at arrival" isFigure>
             {odometer.value} {odometer.unit}
           </Field>
         )}
-        {IDENTITY.map(([field, label]) => identityField(job, field, label))}
         {job.optionWords.map(({ ask, answer }) => (
           <Field key={ask} label={ask}>
             {answer}
           </Field>
         ))}
         <Field label="Old parts">{job.oldParts ?? 'not agreed'}</Field>
-        {job.promisedOn !== undefined && (
-          <Field label="Promised">{dayWords(job.promisedOn.slice(0, 10))}</Field>
-        )}
-        <Field label="Opened">
-          {job.openedBy.name}, {dayAndTime(job.openedAt, zone)}
-        </Field>
         {job.note !== undefined && <Field label="Note">{job.note}</Field>}
       </dl>
     </section>
   );
 }
 
-function identityField(job: JobAnswer, field: string, label: string): ReactNode {
+/** The few facts that are looked for first, in a line under the heading. */
+export function JobHeadFacts({ job, zone }: { job: JobAnswer; zone: string }) {
+  return (
+    <dl className="fields job-head-facts">
+      <Field label="Engine">{job.engine}</Field>
+      <Field label="Promised">
+        {job.promisedOn === undefined ? 'not promised' : dayWords(job.promisedOn.slice(0, 10))}
+      </Field>
+      <Field label="Opened">
+        {dayAndTime(job.openedAt, zone)}, {job.openedBy.name}
+      </Field>
+      <Field label="Last entry">{job.lastAt === undefined ? 'none' : dayAndTime(job.lastAt, zone)}</Field>
+    </dl>
+  );
+}
+
+function identityField(job: JobAnswer, field: string, label: string, isFigure: true | undefined): ReactNode {
   const value = job.identity[field];
   if (value === undefined && !job.withheld.includes(field)) return null;
   return (
-    <Field key={field} label={label}>
+    <Field key={field} label={label} isFigure={isFigure === true && value !== undefined}>
       {value ?? 'kept from this role'}
     </Field>
   );

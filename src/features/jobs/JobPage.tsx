@@ -6,7 +6,8 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { engineView } from '@/domain/engine-view';
 import { JobBlocks } from './JobBlocks';
 import { JobClearances } from './JobClearances';
-import { JobFacts } from './JobFacts';
+import { JobFacts, JobHeadFacts } from './JobFacts';
+import { JobNext } from './JobNext';
 import { JobPeople } from './JobPeople';
 import { JobPhotos } from './JobPhotos';
 import { JobProgress } from './JobProgress';
@@ -70,27 +71,29 @@ function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & {
           )}
         </div>
       </div>
+      <JobHeadFacts job={answer} zone={zone} />
+      <JobProgress
+        progress={answer.progress}
+        phase={answer.phase}
+        at={answer.at}
+        hasNext={answer.next !== undefined}
+      />
       <div className="job-columns">
-        <div className="job-column">
-          <JobProgress
-            progress={answer.progress}
-            phase={answer.phase}
-            at={answer.at}
-            next={answer.next?.title}
-          />
-          <JobBlocks state={jobState} zone={zone} waiting={answer.waiting} />
-          <JobClearances state={jobState} />
-          <JobSignatures state={jobState} zone={zone} />
-          <JobPhotos photos={jobState.photos} zone={zone} />
-        </div>
-        <div className="job-column">
+        <div className="job-engine">
           <section className="part">
             <h2 className="part-title">The engine from below</h2>
             <EngineBelow {...engineView(jobState, next, zone)} />
           </section>
-          <JobPeople job={answer} zone={zone} canAssign={canAssign} />
-          <JobFacts job={answer} zone={zone} />
+          <JobClearances state={jobState} />
         </div>
+        <div className="job-state">
+          <JobBlocks state={jobState} zone={zone} waiting={answer.waiting} />
+          <JobNext state={jobState} />
+          <JobPeople job={answer} zone={zone} canAssign={canAssign} />
+          <JobSignatures state={jobState} zone={zone} />
+          <JobPhotos state={jobState} zone={zone} />
+        </div>
+        <JobFacts job={answer} />
       </div>
     </>
   );

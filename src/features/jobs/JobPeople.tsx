@@ -4,9 +4,11 @@ import * as z from 'zod/mini';
 import { Button } from '@/components/Button';
 import { Checkbox } from '@/components/Checkbox';
 import { ErrorNote } from '@/components/ErrorNote';
+import { Field } from '@/components/Field';
 import { dayAndTime } from '@/domain/time-words';
 import { openOffline } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
+import { atWork } from './at-work';
 import type { JobAnswer } from './job-answer';
 import { peopleAnswer } from './new-job-choices';
 import { useServer } from '@/offline/use-server';
@@ -20,27 +22,32 @@ export interface JobPeopleProps {
 /** Who is on the job, who works on it now, and who had a hand in it. */
 export function JobPeople({ job, zone, canAssign }: JobPeopleProps) {
   const [isEditing, setEditing] = useState(false);
+  const working = atWork(job);
   const hands = Object.values(job.jobState.people);
   return (
     <section className="part">
       <h2 className="part-title">Who works on it</h2>
-      <p>
-        {job.working ? (
-          <>
-            <b>{job.working.name}</b> since {dayAndTime(job.working.since, zone)}
-          </>
-        ) : (
-          'Nobody yet.'
-        )}
-      </p>
-      <p className="mt-2">
-        On the job: {job.people.length === 0 ? 'nobody' : job.people.map(({ name }) => name).join(', ')}
-      </p>
-      {hands.length > 0 && <p className="mt-2">Had a hand in it: {hands.join(', ')}</p>}
+      <dl className="fields">
+        <Field label="At work">
+          {working ? (
+            <>
+              <b>{working.name}</b> since {dayAndTime(working.since, zone)}
+            </>
+          ) : (
+            'nobody'
+          )}
+        </Field>
+        <Field label="On the job">
+          {job.people.length === 0 ? 'nobody' : job.people.map(({ name }) => name).join(', ')}
+        </Field>
+        {hands.length > 0 && <Field label="In the record">{hands.join(', ')}</Field>}
+      </dl>
       {canAssign && !isEditing && (
-        <Button look="quiet" onClick={() => setEditing(true)}>
-          Change who is on it
-        </Button>
+        <div className="form-actions">
+          <Button look="quiet" onClick={() => setEditing(true)}>
+            Change who is on it
+          </Button>
+        </div>
       )}
       {isEditing && <Assignment job={job} onDone={() => setEditing(false)} />}
     </section>
@@ -72,7 +79,13 @@ function Assignment({ job, onDone }: { job: JobAnswer; onDone: () => void }) {
   const words = trouble ?? error?.message;
   return (
     <div className="form mt-3">
-      {words !== undefined && <ErrorNote happened={words} kept="Nobody was changed." next="Try again." />}
+      {words !== undefined && (
+        <ErrorNote
+          happened={words}
+          kept="Nobody was changed; your choice is still here."
+          next="Try it again."
+        />
+      )}
       {people?.map(({ id, name, roles }) => (
         <Checkbox
           key={id}

@@ -1,13 +1,15 @@
-import type { Photo } from '@/domain/job-state';
+import { photosOf } from '@/domain/job-photos';
+import type { JobState } from '@/domain/job-state';
 import { dayAndTime } from '@/domain/time-words';
 
 /** The contact sheet of a job. */
-export function JobPhotos({ photos, zone }: { photos: Photo[]; zone: string }) {
+export function JobPhotos({ state, zone }: { state: JobState; zone: string }) {
+  const photos = photosOf(state);
   return (
     <section className="part">
       <h2 className="part-title">Photographs</h2>
       {photos.length === 0 ? (
-        <p>None yet.</p>
+        <p className="text-soft">None yet.</p>
       ) : (
         <ul className="job-photos">
           {photos.map(({ entry, hash, subject, at, from }) => (
@@ -20,11 +22,11 @@ export function JobPhotos({ photos, zone }: { photos: Photo[]; zone: string }) {
                   height={120}
                   loading="lazy"
                 />
-                <span>{subject}</span>
+                <span aria-hidden="true">{subject}</span>
               </a>
-              <span className="text-soft">
+              <p className="text-soft">
                 {dayAndTime(at, zone)}, {from}
-              </span>
+              </p>
             </li>
           ))}
         </ul>

@@ -6,33 +6,31 @@ export interface JobProgressProps {
   phase: string;
   /** The phase in which the next step lies. */
   at: string | undefined;
-  next: string | undefined;
+  /** Is there a step that can be done now? */
+  hasNext: boolean;
 }
 
-/** How far each phase is, and what comes next. */
-export function JobProgress({ progress, phase, at, next }: JobProgressProps) {
+/** How far each phase is. */
+export function JobProgress({ progress, phase, at, hasNext }: JobProgressProps) {
   const phases = progress.map((one) => ({
     name: one.name,
     state: stateOf(one, at),
     note: `${one.done} of ${one.total}${one.blocked > 0 ? `, ${one.blocked} blocked` : ''}`,
   }));
+  const words = standingWords(phase, hasNext);
   return (
-    <section className="part">
-      <h2 className="part-title">Progress</h2>
+    <section className="job-progress" aria-label="Progress">
       <ProgressRail label="Phases" phases={phases} />
-      <p className="mt-3">
-        {phase === 'running' && next !== undefined && (
-          <>
-            Next: <b>{next}</b>
-          </>
-        )}
-        {phase === 'running' && next === undefined && 'Nothing can be done just now: see what blocks it.'}
-        {phase === 'parked' && 'Parked, made safe. It is resumed on the Floor.'}
-        {phase === 'handed over' && 'Handed over.'}
-        {phase === 'ended unfinished' && 'Ended unfinished. The engine is not to be run.'}
-      </p>
+      {words !== undefined && <p className="job-standing">{words}</p>}
     </section>
   );
+}
+
+function standingWords(phase: string, hasNext: boolean): string | undefined {
+  if (phase === 'running') return hasNext ? undefined : 'Nothing can be done just now: see what blocks it.';
+  if (phase === 'parked') return 'Parked, made safe. It is resumed on the Floor.';
+  if (phase === 'handed over') return 'Handed over.';
+  return phase === 'ended unfinished' ? 'Ended unfinished. The engine is not to be run.' : undefined;
 }
 
 function stateOf(

@@ -1,6 +1,6 @@
 import { SignatureStamp } from '@/components/SignatureStamp';
 import type { JobState } from '@/domain/job-state';
-import { dayAndTime } from '@/domain/time-words';
+import { signatureView } from '@/domain/signature-view';
 
 /** The hold points that were signed, as ink on the card. */
 export function JobSignatures({ state, zone }: { state: JobState; zone: string }) {
@@ -9,21 +9,9 @@ export function JobSignatures({ state, zone }: { state: JobState; zone: string }
     <section className="part">
       <h2 className="part-title">Signed</h2>
       <div className="job-stamps">
-        {state.signatures.map(
-          ({ entry, name, at, meaning, count, covered, checkedAt, reopened, notIndependent }) => (
-            <SignatureStamp
-              key={entry}
-              state={
-                reopened === undefined ? (checkedAt === undefined ? 'to be checked' : 'signed') : 'open again'
-              }
-              name={name}
-              time={dayAndTime(at, zone)}
-              words={count === undefined ? meaning : meaning.replaceAll('{count}', String(count))}
-              covers={`${covered} entries`}
-              isNotIndependent={notIndependent !== undefined}
-            />
-          ),
-        )}
+        {state.signatures.map((signature) => (
+          <SignatureStamp key={signature.entry} {...signatureView(signature, zone)} />
+        ))}
       </div>
     </section>
   );

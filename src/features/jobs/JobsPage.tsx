@@ -1,11 +1,13 @@
 import { QueryClientProvider } from '@tanstack/react-query';
-import { useState } from 'react';
+import { useState, type ReactNode } from 'react';
 import { Button } from '@/components/Button';
 import { ButtonLink } from '@/components/ButtonLink';
-import { DataTable } from '@/components/DataTable';
+import { DataTable, type DataColumn } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
 import { Subnav } from '@/components/Subnav';
 import { dayAndTime, dayWords } from '@/domain/time-words';
+import { atWork } from './at-work';
+import { holdPointName } from './hold-point-name';
 import { jobListAnswer, type JobLine } from './job-answer';
 import { newQueryClient, useServerList } from '@/offline/use-server';
 
@@ -27,15 +29,14 @@ export function JobsPage(props: JobsPageProps) {
   );
 }
 
-const COLUMNS = [
+const COLUMNS: DataColumn[] = [
   { key: 'number', label: 'job' },
   { key: 'vehicle', label: 'vehicle' },
-  { key: 'engine', label: 'engine' },
   { key: 'at', label: 'where it stands', isWide: true },
   { key: 'done', label: 'steps', isFigure: true },
   { key: 'waits', label: 'waits for' },
   { key: 'working', label: 'at work' },
-  { key: 'promised', label: 'promised' },
+  { key: 'promised', label: 'promised', align: 'right' },
 ];
 
 function JobList({ zone, canOpen, isOver }: JobsPageProps) {
@@ -85,33 +86,66 @@ function JobList({ zone, canOpen, isOver }: JobsPageProps) {
   );
 }
 
-function cellsOf(job: JobLine, zone: string): Record<string, React.ReactNode> {
+function cellsOf(job: JobLine, zone: string): Record<string, ReactNode> {
+  const working = atWork(job);
   return {
     number: (
-      <a href={`/jobs/${job.id}`} className="figure">
+      <a href={`/jobs/${job.id}`} className="job-link figure">
         {job.number}
       </a>
     ),
-    vehicle: job.registration ?? 'erased',
-    engine: job.engine,
-    at: whereItStands(job),
-    done: `${job.done}/${job.total}`,
-    waits: waitsFor(job),
-    working: job.working ? `${job.working.name}, ${dayAndTime(job.working.since, zone)}` : '',
+    vehicle: (
+      <>
+        {job.registration ?? 'erased'}
+        <span className="cell-note">{job.engine}</span>
+      </>
+    ),
+    at: <WhereItStands job={job} />,
+    done: <StepsDone done={job.done} total={job.total} />,
+    waits: <WaitsFor job={job} />,
+    working: working && (
+      <>
+        {working.name}
+        <span className="cell-note">since {dayAndTime(working.since, zone)}</span>
+      </>
+    ),
     promised: job.promisedOn === undefined ? '' : dayWords(job.promisedOn.slice(0, 10)),
   };
 }
 
-function whereItStands(job: JobLine): string {
+function WhereItStands({ job }: { job: JobLine }) {
   if (job.phase === 'handed over' || job.phase === 'ended unfinished') return job.phase;
   const phase = job.phase === 'parked' ? 'parked, made safe' : (job.at ?? '');
-  return job.next ? `${phase}: ${job.next.title}` : phase;
+  return (
+    <>
+      {phase}
+      {job.next && <span className="cell-note">{job.next.title}</span>}
+    </>
+  );
 }
 
-function waitsFor(job: JobLine): React.ReactNode {
+/** The figure, over a line that is as far along as the job. */
+function StepsDone({ done, total }: { done: number; total: number }) {
+  const share = total === 0 ? 0 : Math.round((done / total) * 1000) / 10;
+  return (
+    <>
+      {done}/{total}
+      <svg className="job-share" aria-hidden="true">
+        <line className="job-share-all" x1="0" x2="100%" y1="50%" y2="50%" />
+        <line className="job-share-done" x1="0" x2={`${share}%`} y1="50%" y2="50%" />
+      </svg>
+    </>
+  );
+}
+
+function WaitsFor({ job }: { job: JobLine }) {
   const waits = [
-    ...job.waiting.map(({ title }) => `signature: ${title}`),
+    ...job.waiting.map(({ title }) => `signature: ${holdPointName(title)}`),
     ...(job.blocks > 0 ? [`${job.blocks} ${job.blocks === 1 ? 'deviation' : 'deviations'}`] : []),
   ];
-  return waits.length === 0 ? '' : <b>{waits.join(', ')}</b>;
+  return waits.map((words) => (
+    <b key={words} className="block">
+      {words}
+    </b>
+  ));
 }

@@ -4,6 +4,7 @@ import { DateField } from '@/components/DateField';
 import { SelectField } from '@/components/SelectField';
 import { TextArea } from '@/components/TextArea';
 import { TextField } from '@/components/TextField';
+import { dayOf } from '@/domain/time-words';
 import { checkVin } from '@/domain/vin';
 import type { NewJobFields } from './new-job';
 import type { PersonChoice, RouteChoice } from './new-job-choices';
@@ -32,16 +33,20 @@ export function VehicleFields({ form, route, routes }: FieldsetProps) {
         error={errors.route?.message}
         {...form.register('route', { required: 'Choose the route.' })}
       />
-      {route?.options.map((option) => (
-        <SelectField
-          key={option.id}
-          label={option.ask}
-          emptyLabel="Choose"
-          options={option.choices.map(({ id, label }) => ({ value: id, label }))}
-          error={errors.options?.[option.id]?.message}
-          {...form.register(`options.${option.id}`, { required: 'Look at the vehicle and choose.' })}
-        />
-      ))}
+      {route !== undefined && route.options.length > 0 && (
+        <div className="form-pair">
+          {route.options.map((option) => (
+            <SelectField
+              key={option.id}
+              label={option.ask}
+              emptyLabel="Choose"
+              options={option.choices.map(({ id, label }) => ({ value: id, label }))}
+              error={errors.options?.[option.id]?.message}
+              {...form.register(`options.${option.id}`, { required: 'Look at the vehicle and choose.' })}
+            />
+          ))}
+        </div>
+      )}
       <div className="form-pair">
         <TextField
           label="Registration"
@@ -68,7 +73,7 @@ export function VehicleFields({ form, route, routes }: FieldsetProps) {
           })}
         />
       </div>
-      <div className="form-pair">
+      <div className="job-odometer">
         <TextField
           label="Odometer"
           isFigure
@@ -156,16 +161,23 @@ export function CustomerFields({ form }: FieldsetProps) {
 /** What becomes of the old parts, when it is promised, and what else the workshop should know. */
 export function AgreementFields({ form }: FieldsetProps) {
   const { errors } = form.formState;
+  // The browser shows a date as its own language has it; the words beside it can't be misread.
+  const promisedOn = useWatch({ control: form.control, name: 'promisedOn' });
   return (
     <section className="part job-part">
       <h2 className="part-title">Agreement</h2>
-      <div className="form-pair">
-        <TextField
-          label="What becomes of the old parts"
-          error={errors.oldParts?.message}
-          {...form.register('oldParts', { required: NEEDED })}
+      <TextField
+        label="What becomes of the old parts"
+        error={errors.oldParts?.message}
+        {...form.register('oldParts', { required: NEEDED })}
+      />
+      <div className="job-date">
+        <DateField
+          label="Promised for"
+          isOptional
+          hint={promisedOn === '' ? undefined : dayOf(`${promisedOn}T12:00:00Z`, 'UTC')}
+          {...form.register('promisedOn')}
         />
-        <DateField label="Promised for" isOptional {...form.register('promisedOn')} />
       </div>
       <TextArea
         label="Note"
@@ -183,9 +195,11 @@ export function PeopleFields({ form, people }: FieldsetProps) {
   return (
     <section className="part job-part">
       <h2 className="part-title">Who works on it</h2>
-      {people.map(({ id, name, roles }) => (
-        <Checkbox key={id} label={`${name}, ${roles.join(', ')}`} value={id} {...form.register('people')} />
-      ))}
+      <div className="job-choices">
+        {people.map(({ id, name, roles }) => (
+          <Checkbox key={id} label={`${name}, ${roles.join(', ')}`} value={id} {...form.register('people')} />
+        ))}
+      </div>
     </section>
   );
 }

@@ -12,6 +12,8 @@ export interface NewJobFormProps {
   actor: string;
   routes: RouteChoice[];
   people: PersonChoice[];
+  /** Where to go once the job is open; the browser goes there unless told otherwise. */
+  goTo?: ((path: string) => void) | undefined;
 }
 
 const EMPTY: NewJobFields = {
@@ -33,7 +35,7 @@ const EMPTY: NewJobFields = {
 };
 
 /** The form of a new job. What was typed stays until the job is open. */
-export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
+export function NewJobForm({ actor, routes, people, goTo = goThere }: NewJobFormProps) {
   const [only] = routes.length === 1 ? routes : [];
   const form = useForm<NewJobFields>({ defaultValues: { ...EMPTY, route: only?.id ?? '' } });
   const [photos, setPhotos] = useState<ArrivalPhoto[]>([]);
@@ -52,7 +54,7 @@ export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
     const options = Object.fromEntries(Object.entries(typed.options).filter(([id]) => asked.has(id)));
     const outcome = await openNewJob(actor, { ...typed, options }, photos, pending, setPending);
     if (!outcome.ok) setTrouble(outcome.why);
-    else if (outcome.trouble === undefined) window.location.assign(`/jobs/${outcome.id}`);
+    else if (outcome.trouble === undefined) goTo(`/jobs/${outcome.id}`);
     else setOpened({ id: outcome.id, trouble: outcome.trouble });
   });
   if (opened) {
@@ -67,7 +69,7 @@ export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
   }
   const parts = { form, route, routes, people };
   return (
-    <form className="form job-form" noValidate onSubmit={(event) => void send(event)}>
+    <form className="job-form" method="post" noValidate onSubmit={(event) => void send(event)}>
       {trouble !== undefined && (
         <ErrorNote
           happened={trouble}
@@ -75,11 +77,15 @@ export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
           next="Mend it and send it again."
         />
       )}
-      <VehicleFields {...parts} />
-      <ArrivalPhotos photos={photos} onChange={setPhotos} />
-      <CustomerFields {...parts} />
-      <AgreementFields {...parts} />
-      <PeopleFields {...parts} />
+      <div className="job-form-side">
+        <VehicleFields {...parts} />
+        <ArrivalPhotos photos={photos} onChange={setPhotos} />
+        <PeopleFields {...parts} />
+      </div>
+      <div className="job-form-side">
+        <CustomerFields {...parts} />
+        <AgreementFields {...parts} />
+      </div>
       <div className="form-actions">
         <Button type="submit" look="main" isBusy={form.formState.isSubmitting}>
           Open the job
@@ -87,4 +93,8 @@ export function NewJobForm({ actor, routes, people }: NewJobFormProps) {
       </div>
     </form>
   );
+}
+
+function goThere(path: string): void {
+  window.location.assign(path);
 }

@@ -4,6 +4,7 @@ import * as z from 'zod/mini';
 import { Button } from '@/components/Button';
 import { DataTable } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
+import { LookPanel } from '@/components/LookPanel';
 import { Notice } from '@/components/Notice';
 import { dayAndTime } from '@/domain/time-words';
 import { openOffline } from '@/offline/offline';
@@ -26,6 +27,7 @@ const pinAnswer = z.object({
     z.object({ at: z.string(), outcome: z.string(), purpose: z.string(), tablet: z.nullable(z.string()) }),
   ),
 });
+type PinAnswer = z.infer<typeof pinAnswer>;
 
 /** One's own page: signing PIN and how it was tried, password, and signing out. */
 export function MyPage(props: MyPageProps) {
@@ -39,6 +41,8 @@ export function MyPage(props: MyPageProps) {
 
 function Mine({ person, name, zone }: MyPageProps) {
   const [trouble, setTrouble] = useState<string>();
+  const pin = useServer('/api/pins', pinAnswer);
+  const client = useQueryClient();
   const signOut = async () => {
     const path = '/api/auth/sign-out';
     const out = await callServer(openOffline(), {
@@ -61,18 +65,33 @@ function Mine({ person, name, zone }: MyPageProps) {
       {trouble !== undefined && (
         <ErrorNote happened={trouble} kept="You are still signed in." next="Try it again." />
       )}
-      <MyPin zone={zone} />
-      <section className="part mt-8">
-        <h2 className="part-title">Password</h2>
-        <ChangePasswordForm />
-      </section>
+      <div className="my-columns">
+        <div>
+          <MyPin pin={pin} zone={zone} onSet={() => void client.invalidateQueries()} />
+          <section className="part">
+            <h2 className="part-title">Password</h2>
+            <ChangePasswordForm />
+          </section>
+        </div>
+        <div>
+          <PinTries tries={pin.data?.attempts ?? []} zone={zone} />
+          <section className="part">
+            <h2 className="part-title">How this device shows it</h2>
+            <LookPanel />
+          </section>
+        </div>
+      </div>
     </>
   );
 }
 
-function MyPin({ zone }: { zone: string }) {
-  const { data, error } = useServer('/api/pins', pinAnswer);
-  const client = useQueryClient();
+interface MyPinProps {
+  pin: { data: PinAnswer | undefined; error: Error | null };
+  zone: string;
+  onSet: () => void;
+}
+
+function MyPin({ pin: { data, error }, zone, onSet }: MyPinProps) {
   return (
     <section className="part">
       <h2 className="part-title">Signing PIN</h2>
@@ -93,8 +112,16 @@ function MyPin({ zone }: { zone: string }) {
           <p>It was typed wrong too often. If it wasn’t you, tell the owner.</p>
         </Notice>
       )}
-      <PinForm hasPin={data?.hasPin === true} onSet={() => void client.invalidateQueries()} />
-      <h3 className="form-label mt-6">How it was tried of late</h3>
+      <PinForm hasPin={data?.hasPin === true} onSet={onSet} />
+    </section>
+  );
+}
+
+/** Every try of the PIN of late, so that its owner sees one that was not theirs. */
+function PinTries({ tries, zone }: { tries: PinAnswer['attempts']; zone: string }) {
+  return (
+    <section className="part">
+      <h2 className="part-title">How your PIN was tried of late</h2>
       <DataTable
         caption="How your PIN was tried"
         columns={[
@@ -103,9 +130,9 @@ function MyPin({ zone }: { zone: string }) {
           { key: 'purpose', label: 'for', isWide: true },
           { key: 'tablet', label: 'tablet', isSoft: true },
         ]}
-        rows={(data?.attempts ?? []).map(({ at, outcome, purpose, tablet }, i) => ({
+        rows={tries.map(({ at, outcome, purpose, tablet }, i) => ({
           key: `${at} ${i}`,
-          cells: { at: dayAndTime(at, zone), outcome, purpose, tablet: tablet?.slice(0, 8) ?? '' },
+          cells: { at: dayAndTime(at, zone), outcome, purpose, tablet: tablet ?? 'none' },
         }))}
         emptyWords="It was not tried yet."
       />
