@@ -1,0 +1,198 @@
+import { render, screen, within } from '@testing-library/react';
+import userEvent from '@testing-library/user-event';
+import { describe, expect, it } from 'vitest';
+import { progressOf } from '@/domain/job-progress';
+import { nextSteps } from '@/domain/job';
+import { answerDesk, refused, type DeskAnswer } from '../../../tests/support/desk-server';
+import { Journal } from '../../../tests/support/journal';
+import { smallPlan } from '../../../tests/support/small-documents';
+import { JobPage } from './JobPage';
+import type { JobAnswer } from './job-answer';
+
+const people = [
+  { id: 'tech', name: 'T. Nician', roles: ['technician'], active: true },
+  { id: 'mate', name: 'M. Ate', roles: ['technician'], active: true },
+  { id: 'gone', name: 'G. One', roles: ['technician'], active: false },
+  { id: 'audit', name: 'A. Uditor', roles: ['auditor'], active: true },
+];
+
+function answerOf(journal: Journal, over: Partial<JobAnswer> = {}): JobAnswer {
+  const { state } = journal;
+  const [next] = nextSteps(state);
+  const progress = progressOf(state);
+  return {
+    id: 'job-1',
+    number: '0147',
+    label: 'Testwell T4',
+    engine: 'Testwell T4',
+    registration: 'TW71 ABC',
+    state: 'open',
+    phase: state.phase,
+    openedAt: state.openedAt ?? '',
+    people: [{ id: 'tech', name: 'T. Nician' }],
+    done: 0,
+    total: 0,
+    at: state.plan.phases.find(({ id }) => id === next?.phase)?.name,
+    next: next && { step: next.id, title: next.title },
+    waiting: nextSteps(state).flatMap((step) =>
+      step.kind === 'hold' ? [{ step: step.id, holdPoint: step.holdPoint, title: step.title }] : [],
+    ),
+    blocks: 0,
+    working: state.working && { name: state.working.name, since: state.working.since },
+    lastAt: state.lastAt,
+    openedBy: { id: 'sup', name: 'S. Visor' },
+    optionWords: [],
+    progress,
+    identity: { registration: 'TW71 ABC' },
+    withheld: ['customerName'],
+    jobState: state,
+    ...over,
+  };
+}
+
+async function show(answer: JobAnswer, more: Record<string, DeskAnswer> = {}, canAssign = true) {
+  const server = answerDesk({
+    'GET /api/jobs/job-1': { body: answer },
+    'GET /api/workshop': { body: { people } },
+    ...more,
+  });
+  render(<JobPage job="job-1" zone="Europe/Lisbon" canAssign={canAssign} canRun canReadTrail />);
+  await screen.findByRole('heading', { level: 1 });
+  return server;
+}
+
+function part(title: string) {
+  return within(screen.getByRole('heading', { name: title }).closest('section')!);
+}
+
+describe('the page of a job', () => {
+  it('says of each phase how far it is, and which one is now', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.turn-to@stop2');
+    await show(answerOf(journal));
+    const phases = within(screen.getByRole('list', { name: 'Phases' })).getAllByRole('listitem');
+    const progress = progressOf(journal.state);
+    expect(phases).toHaveLength(progress.length);
+    for (const [i, { name, done, total }] of progress.entries())
+      expect(phases[i]).toHaveTextContent(`${name}${done} of ${total}`);
+    expect(phases.filter((phase) => phase.getAttribute('aria-current') === 'step')).toHaveLength(1);
+  });
+
+  it('says of a new job that nothing blocks it, what comes first, and that nobody is at work', async () => {
+    const journal = new Journal(smallPlan());
+    await show(answerOf(journal));
+    expect(screen.getByText('Nothing blocks it.')).toBeVisible();
+    const [first] = part('What comes next').getAllByRole('listitem');
+    expect(first).toHaveTextContent(nextSteps(journal.state)[0]!.title);
+    expect(part('Who works on it').getByText('nobody')).toBeVisible();
+  });
+
+  it('says which signature is due, and where it is given', async () => {
+    const plan = smallPlan();
+    const hold = plan.steps.find(({ kind }) => kind === 'hold')!;
+    const journal = new Journal(plan).performUntil(hold.id);
+    await show(answerOf(journal));
+    expect(part('What blocks it').getByText(/^Signature due: /)).not.toHaveTextContent('Hold point');
+    expect(part('What blocks it').getByText('at the vehicle, on the Floor')).toBeVisible();
+  });
+
+  it('says of an open deviation its class, its words, who raised it and when', async () => {
+    const journal = new Journal(smallPlan());
+    journal.record('deviation-raised', { class: 'A', words: 'a crack in the cap', blocks: true });
+    await show(answerOf(journal));
+    const blocks = part('What blocks it');
+    expect(blocks.getByText('Deviation, class A: a crack in the cap')).toBeVisible();
+    expect(blocks.getByText('T. Nician, 2 Jun, 09:00')).toBeVisible();
+  });
+
+  it('has the signatures as stamps, and says of one whose PIN is unchecked what to do', async () => {
+    const plan = smallPlan();
+    const hold = plan.steps.find(({ kind }) => kind === 'hold')!;
+    const journal = new Journal(plan).performUntil(hold.id);
+    journal.sign(hold.id, { checked: false });
+    await show(answerOf(journal));
+    expect(part('Signed').getByText('SIGNED, TO BE CHECKED')).toBeVisible();
+    expect(part('Signed').getByText('S. Visor')).toBeVisible();
+    expect(part('What blocks it').getByText('bring the tablet to the network')).toBeVisible();
+  });
+
+  it('shows the photographs of the record, and not one that was taken back', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.turn-to@stop2');
+    const photo = journal.entries.find(({ kind }) => kind === 'photographed')!;
+    await show(answerOf(journal));
+    const subject = photo.kind === 'photographed' ? photo.data.subject : '';
+    expect(screen.getByRole('img', { name: subject })).toHaveAttribute(
+      'src',
+      `/api/photos/${'b'.repeat(64)}?size=thumb`,
+    );
+  });
+
+  it('shows no photograph that was taken back', async () => {
+    const journal = new Journal(smallPlan());
+    const photo = journal.record('photographed', {
+      photo: 'c'.repeat(64),
+      bytes: 10,
+      type: 'image/jpeg',
+      from: 'camera here',
+      subject: 'a thumb',
+    });
+    journal.record('taken-back', { of: photo.id, which: 'touched by mistake, not done', reason: 'blurred' });
+    await show(answerOf(journal));
+    expect(screen.queryByRole('img', { name: 'a thumb' })).not.toBeInTheDocument();
+    expect(part('Photographs').getByText('None yet.')).toBeVisible();
+  });
+
+  it('says what is kept from this role, and leaves out what nobody gave', async () => {
+    await show(answerOf(new Journal(smallPlan())));
+    const facts = part('Vehicle and agreement');
+    expect(facts.getByText('Customer').nextSibling).toHaveTextContent('kept from this role');
+    expect(facts.queryByText('Telephone')).not.toBeInTheDocument();
+  });
+
+  it('says that the engine of a job ended unfinished is not to be run', async () => {
+    await show(answerOf(new Journal(smallPlan()), { phase: 'ended unfinished', state: 'ended' }));
+    expect(screen.getByText('Ended unfinished. The engine is not to be run.')).toBeVisible();
+  });
+
+  it('says what the server said when the job does not come', async () => {
+    answerDesk({ 'GET /api/jobs/job-1': refused(404, 'No such job.') });
+    render(<JobPage job="job-1" zone="Europe/Lisbon" canAssign canRun canReadTrail />);
+    const note = await screen.findByRole('alert', undefined, { timeout: 5000 });
+    expect(note).toHaveTextContent('No such job.The job is as it was.');
+  });
+});
+
+describe('who is on a job', () => {
+  const journal = new Journal(smallPlan());
+
+  it('can be changed among technicians and supervisors who are at work', async () => {
+    const { requests } = await show(answerOf(journal), {
+      'POST /api/jobs/job-1/people': { body: { ok: true } },
+    });
+    await userEvent.click(screen.getByRole('button', { name: 'Change who is on it' }));
+    await userEvent.click(await screen.findByLabelText('M. Ate, technician'));
+    expect(screen.getByLabelText('T. Nician, technician')).toBeChecked();
+    expect(screen.queryByLabelText(/G\. One|A\. Uditor/)).not.toBeInTheDocument();
+    await userEvent.click(screen.getByRole('button', { name: 'Keep' }));
+    expect(await screen.findByRole('button', { name: 'Change who is on it' })).toBeVisible();
+    const sent = requests.find(({ method }) => method === 'POST');
+    expect(sent?.body).toEqual({ people: ['tech', 'mate'] });
+  });
+
+  it('stays as chosen on the screen when the server refuses, with its words', async () => {
+    await show(answerOf(journal), {
+      'POST /api/jobs/job-1/people': refused(400, 'The workshop has no such person at work.'),
+    });
+    await userEvent.click(screen.getByRole('button', { name: 'Change who is on it' }));
+    await userEvent.click(await screen.findByLabelText('M. Ate, technician'));
+    await userEvent.click(screen.getByRole('button', { name: 'Keep' }));
+    const note = await screen.findByRole('alert');
+    expect(note).toHaveTextContent('The workshop has no such person at work.');
+    expect(note).toHaveTextContent('Nobody was changed');
+    expect(screen.getByLabelText('M. Ate, technician')).toBeChecked();
+  });
+
+  it('is not for everybody to change', async () => {
+    await show(answerOf(journal), {}, false);
+    expect(screen.queryByRole('button', { name: 'Change who is on it' })).not.toBeInTheDocument();
+  });
+});
