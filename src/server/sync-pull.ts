@@ -77,7 +77,7 @@ async function pullJob(
 }
 
 /** A tablet holds open jobs, and those in which it has a part; closed ones of others are not for it. */
-async function maySee(db: Db, device: Device, id: string): Promise<boolean> {
+export async function maySee(db: Db, device: Device, id: string): Promise<boolean> {
   const job = await db.selectFrom('job').select('state').where('id', '=', id).executeTakeFirst();
   if (job === undefined) return false;
   if (job.state === 'open' || job.state === 'parked') return true;

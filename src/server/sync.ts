@@ -18,7 +18,7 @@ import {
   recordByServer,
 } from './sync-batch';
 import type { EntryVerdict, SyncBody } from './sync-body';
-import { pullJobs, type PulledJob } from './sync-pull';
+import { maySee, pullJobs, type PulledJob } from './sync-pull';
 import { type ReadItem, readItem } from './sync-read';
 import { judgeItem, type NeedsPin } from './sync-verdict';
 import { readWorkshopHistory } from './workshop-history';
@@ -215,6 +215,8 @@ async function noteRestores(batch: Batch, body: SyncBody): Promise<void> {
     if (have === null) continue;
     const fold = await foldOf(batch, id);
     if (fold === undefined || (await holds(batch.trx, id, have))) continue;
+    // A job that the tablet may not see tells it nothing, and keeps no trace of its asking.
+    if (batch.device === undefined || !(await maySee(batch.trx, batch.device, id))) continue;
     const reason = `A tablet holds entry ${have.seq} (${have.hash.slice(0, 16)}) that the server does not hold.`;
     if (!isNoted(fold, reason)) {
       const data = { after: fold.seq, reason };
