@@ -3,7 +3,7 @@ import { hmac } from '@noble/hashes/hmac.js';
 import { sha256 } from '@noble/hashes/sha2.js';
 import { bytesToHex } from '@noble/hashes/utils.js';
 import * as z from 'zod/mini';
-import { identityCommitment } from '@/domain/trail';
+import { identityCommitment } from '@/domain/trail-hash';
 import { openOffline, type Offline } from '@/offline/offline';
 import { signOpening, type SignedOpening } from '@/offline/opening';
 import type { PreparedPhoto } from '@/offline/photo';
