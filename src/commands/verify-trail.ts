@@ -1,4 +1,4 @@
-import { readFileSync } from 'node:fs';
+import { readFileSync, statSync } from 'node:fs';
 import path from 'node:path';
 import { parseArgs } from 'node:util';
 import { type TrailVerdict, verifyTrail } from '@/domain/trail';
@@ -14,6 +14,9 @@ const WHOLE = 0;
 const BROKEN = 1;
 const NOT_A_TRAIL = 2;
 
+/** A job of a hundred thousand entries is well below this; a longer text is more than one string can hold. */
+const LARGEST_BYTES = 400_000_000;
+
 const USAGE = `Use it like this: npm run verify-trail -- FILE [--head HASH] [--key FINGERPRINT]
   FILE   an exported trail, as it was given to you
   --head the hash of a signed head that you have from elsewhere, such as a printed Pack
@@ -25,12 +28,21 @@ export async function main(args: string[], cwd: string): Promise<number> {
   if ('why' in asked) return say(NOT_A_TRAIL, `${asked.why}\n${USAGE}`);
   let bytes: Uint8Array;
   try {
-    bytes = readFileSync(path.resolve(cwd, asked.file));
+    bytes = readBounded(path.resolve(cwd, asked.file));
   } catch (error) {
     return say(NOT_A_TRAIL, `${asked.file} could not be read: ${wordsOf(error)}.`);
   }
   const { head, key } = asked;
   return report(asked.file, await verifyTrail(bytes, { ...nodeChecks(), head, key }));
+}
+
+/** A device never ends, and a file this large is no trail: neither is read at all. */
+function readBounded(file: string): Uint8Array {
+  const found = statSync(file);
+  if (found.isDirectory()) throw new Error('it is a folder');
+  if (!found.isFile()) throw new Error('it is no file');
+  if (found.size > LARGEST_BYTES) throw new Error('it is larger than any trail');
+  return readFileSync(file);
 }
 
 type Asked = { file: string; head: string | undefined; key: string | undefined } | { why: string };
@@ -74,7 +86,6 @@ function say(code: number, words: string): number {
 function wordsOf(error: unknown): string {
   const code = error instanceof Error && 'code' in error ? error.code : undefined;
   if (code === 'ENOENT') return 'there is no such file';
-  if (code === 'EISDIR') return 'it is a folder';
   if (code === 'EACCES') return 'this account may not read it';
   return error instanceof Error ? error.message : String(error);
 }
