@@ -17,6 +17,7 @@ export default defineConfig({
     browserName: 'chromium',
     viewport: { width: 1180, height: 820 },
     hasTouch: true,
+    actionTimeout: 20_000,
     locale: 'en-GB',
     timezoneId: 'Europe/London',
     trace: 'retain-on-failure',

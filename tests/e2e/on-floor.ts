@@ -1,0 +1,31 @@
+import { expect, type Page } from '@playwright/test';
+import sharp from 'sharp';
+
+/** Opens a job from the Floor's first screen. */
+export async function openOnFloor(page: Page, number: string): Promise<void> {
+  const row = page.getByRole('listitem').filter({ hasText: `Job ${number}` });
+  await expect(row).toContainText('works offline');
+  await row.getByRole('button', { name: new RegExp(`^Job ${number}`) }).tap();
+}
+
+/** Sends what is on the tablet and waits until the server has all of it; says how much that is. */
+export async function sendAll(page: Page): Promise<number> {
+  await page.getByRole('button', { name: /where the records are/ }).tap();
+  const sheet = page.getByRole('dialog');
+  await expect(async () => {
+    await sheet.getByRole('button', { name: 'Send now' }).tap();
+    await expect(sheet.getByRole('status').first()).toContainText(/All sent/i, { timeout: 2000 });
+  }).toPass();
+  const told = await sheet.getByText(/made on this tablet are with the server/).innerText();
+  await sheet.getByRole('button', { name: /close/i }).tap();
+  await expect(sheet).toHaveCount(0);
+  return Number(/\d+/.exec(told)?.[0]);
+}
+
+/** A picture like no other: the camera's place is taken by a plain ground of its own colour. */
+export function picture(nth: number): Promise<Buffer> {
+  const background = { r: (nth * 67) % 256, g: (nth * 29) % 256, b: 90 };
+  return sharp({ create: { width: 640, height: 480, channels: 3, background } })
+    .jpeg()
+    .toBuffer();
+}
