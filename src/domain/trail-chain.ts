@@ -1,12 +1,11 @@
 import { bytesOf, canonicalWithout, hashJson, type Sha256 } from '@/domain/canonical';
 import { officeKinds } from '@/domain/entry';
 import { requireWhole, type TrailBody } from '@/domain/trail-export';
+import { SERVER_FIELDS } from '@/domain/trail-hash';
 
 /** The `prev` of a trail's first entry, whose `seq` is 1. */
 export const NO_PREVIOUS = '0'.repeat(64);
 
-/** What the server adds to an entry when it records it. */
-export const SERVER_FIELDS = ['seq', 'recordedAt', 'prev', 'clockOffsetMs', 'pin', 'conflict'] as const;
 const ADDED: ReadonlySet<string> = new Set(SERVER_FIELDS);
 
 /** An entry whose place in the chain holds, with the content hash that its author signed. */

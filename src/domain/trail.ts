@@ -1,8 +1,7 @@
-import { bytesOf, canonicalJson, hashJson, type Sha256 } from '@/domain/canonical';
+import { bytesOf, type Sha256 } from '@/domain/canonical';
 import {
   type ChainedEntry,
   isMadeByServer,
-  SERVER_FIELDS,
   verifyChain,
   verifyCounts,
   verifyWorkshopEntries,
@@ -14,18 +13,26 @@ import {
   requireBytes,
   requireExport,
   requireWhole,
-  type SignedHead,
   type TrailBody,
 } from '@/domain/trail-export';
+import { authorKeyId, authorMessage, headMessage, identityCommitment, type HmacSha256 } from './trail-hash';
+
+export {
+  authorKeyId,
+  authorMessage,
+  chainHash,
+  contentHash,
+  contentOf,
+  exportMessage,
+  headMessage,
+  identityCommitment,
+} from './trail-hash';
 
 /*
  * What always holds of a trail: each entry's hash covers the hash before it, every entry that a person made is
  * signed by that person's key for that tablet, and one export has one text. Hashing and checking of signatures
  * are passed in, so that the same check runs in a browser, on the server and on the command line.
  */
-
-/** A field that the server adds to an entry when it records it. */
-export type ServerField = (typeof SERVER_FIELDS)[number];
 
 /**
  * Checks one signature; false for a key or a signature that can not be one, and never an error for them. A key
@@ -45,7 +52,7 @@ export interface TrailChecks {
   key?: string | undefined;
   sha256: Sha256;
   /** HMAC-SHA-256 as lower-case hex. */
-  hmacSha256: (key: Uint8Array, message: Uint8Array) => string;
+  hmacSha256: HmacSha256;
   verifyEd25519: VerifySignature;
   /** ECDSA P-256 with SHA-256; the key a raw uncompressed point, the signature r and s of 32 bytes each. */
   verifyP256: VerifySignature;
@@ -66,58 +73,6 @@ export type TrailVerdict =
     }
   | { ok: false; brokenAt: string; why: string }
   | { ok: false; notATrail: true; why: string };
-
-/** The content hash of an entry as its author made it: hex SHA-256 of its canonical form. */
-export function contentHash(entry: object, sha256: Sha256): string {
-  return hashJson(entry, sha256);
-}
-
-/** The chain hash of an entry as the server recorded it; it is the `prev` of the next one. */
-export function chainHash(recorded: object, sha256: Sha256): string {
-  return hashJson(recorded, sha256);
-}
-
-/** What the author made: a recorded entry without the fields that the server added. */
-export function contentOf<T extends object>(recorded: T): Omit<T, ServerField> {
-  const isServers = (name: string): boolean => (SERVER_FIELDS as readonly string[]).includes(name);
-  const kept = Object.entries(recorded).filter(([name]) => !isServers(name));
-  return Object.fromEntries(kept) as Omit<T, ServerField>;
-}
-
-/** The short name of an author's key: the first 16 hex characters of SHA-256 of its 65-byte point. */
-export function authorKeyId(publicKey: Uint8Array, sha256: Sha256): string {
-  return sha256(publicKey).slice(0, 16);
-}
-
-/** What an author's key signs: the ASCII bytes of the entry's content hash. */
-export function authorMessage(content: string): Uint8Array<ArrayBuffer> {
-  return bytesOf(content);
-}
-
-/** What the workshop's key signs for a head: the canonical form of the head without its signature. */
-export function headMessage({
-  trail,
-  seq,
-  hash,
-  at,
-  key,
-}: Omit<SignedHead, 'signature'>): Uint8Array<ArrayBuffer> {
-  return bytesOf(canonicalJson({ trail, seq, hash, at, key }));
-}
-
-/** What the workshop's key signs for an export: the ASCII bytes of the hex SHA-256 of the body's form. */
-export function exportMessage(body: object, sha256: Sha256): Uint8Array<ArrayBuffer> {
-  return bytesOf(hashJson(body, sha256));
-}
-
-/** What the trail keeps of a value that identifies somebody: HMAC-SHA-256 of its composed text under its salt. */
-export function identityCommitment(
-  { value, salt }: { value: string; salt: string },
-  hmacSha256: TrailChecks['hmacSha256'],
-): string {
-  const key = Uint8Array.from(salt.match(/../g) ?? [], (pair) => Number.parseInt(pair, 16));
-  return hmacSha256(key, bytesOf(value.normalize('NFC')));
-}
 
 /**
  * Verifies an exported trail, its text or better its bytes: that not a byte differs from the form it was signed

@@ -3,7 +3,7 @@
  * signed with its author's key as it is made, so that authorship needs no session later.
  */
 import { toBase64url } from '@/domain/base64url';
-import { authorKeyId, authorMessage } from '@/domain/trail';
+import { authorKeyId, authorMessage } from '@/domain/trail-hash';
 import type { AuthorKeyRow } from './database';
 import { sha256OfBytes } from './hashing';
 

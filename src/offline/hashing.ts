@@ -3,7 +3,7 @@ import { sha256 } from '@noble/hashes/sha2.js';
 import { bytesToHex } from '@noble/hashes/utils.js';
 import { hashJson } from '@/domain/canonical';
 import type { Entry, Recorded } from '@/domain/entry';
-import { chainHash, contentHash, contentOf } from '@/domain/trail';
+import { chainHash, contentHash, contentOf } from '@/domain/trail-hash';
 
 /** Hex SHA-256 of bytes. */
 export function sha256OfBytes(bytes: Uint8Array): string {

@@ -4,7 +4,7 @@ import type { AddressInfo } from 'node:net';
 import SqliteDatabase from 'better-sqlite3';
 import { assertHashable, bytesOf, canonicalWithout } from '@/domain/canonical';
 import type { Entry } from '@/domain/entry';
-import { SERVER_FIELDS } from '@/domain/trail-chain';
+import { SERVER_FIELDS } from '@/domain/trail-hash';
 import { sha256Hex } from '@/server/crypto';
 
 /*

@@ -4,7 +4,7 @@ import { replay } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
 import type { Plan } from '@/domain/plan';
 import { verifyTrail } from '@/domain/trail';
-import { SERVER_FIELDS } from '@/domain/trail-chain';
+import { SERVER_FIELDS } from '@/domain/trail-hash';
 import { sha256Hex } from '@/server/crypto';
 import { nodeChecks } from '@/server/trail-checks';
 import { startApp } from '../support/app';
