@@ -171,6 +171,8 @@ export interface JobState {
   open: OpenItem[];
   tallies: Record<string, { out: number; in?: number | undefined }>;
   tools: Partial<Record<'torque' | 'angle' | 'measuring', ToolInHand>>;
+  /** Every tool taken for the job, the newest first: a wrench for each range lies on the trolley. */
+  toolsTaken: (ToolInHand & { use: 'torque' | 'angle' | 'measuring' })[];
   /** Lots known from the kit check, by part, for picking from later. */
   lots: Record<string, string[]>;
   deviations: Deviation[];

@@ -48,6 +48,7 @@ export function emptyJob(plan: Plan): JobState {
     open: [],
     tallies: {},
     tools: {},
+    toolsTaken: [],
     lots: {},
     deviations: [],
     signatures: [],
@@ -165,7 +166,13 @@ function applyToJob(state: JobState, entry: Entry, kept: Kept): JobState | undef
     }
     case 'tool-taken': {
       const { use, tool } = entry.data;
-      return { ...state, tools: { ...state.tools, [use]: { ...tool, at: entry.at } } };
+      const held = { ...tool, at: entry.at };
+      const others = state.toolsTaken.filter((taken) => taken.id !== tool.id || taken.use !== use);
+      return {
+        ...state,
+        tools: { ...state.tools, [use]: held },
+        toolsTaken: [{ ...held, use }, ...others],
+      };
     }
     case 'deviation-raised': {
       const { class: criticalClass, words, blocks, rod } = entry.data;

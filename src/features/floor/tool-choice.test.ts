@@ -24,6 +24,23 @@ describe('the tool in hand', () => {
     expect(fits(200)).toBeUndefined();
   });
 
+  it('is the wrench of the right range once each was taken for the job', () => {
+    const big = { ...torqueTool, id: 'w2', name: 'Big wrench', serial: 'TW-2' };
+    const workshop = buildWorkshop();
+    const [small] = workshop.tools;
+    const tools = [
+      ...workshop.tools,
+      { ...small!, id: 'w2', name: 'Big wrench', rangeLow: '60', rangeHigh: '300' },
+    ];
+    const journal = new Journal(smallPlan(), { ...workshop, tools });
+    journal.record('tool-taken', { use: 'torque', tool: torqueTool });
+    journal.record('tool-taken', { use: 'torque', tool: big });
+    const fits = (torque: number) =>
+      fitToolInHand(journal.state, journal.workshop, 'torque', wantedFor('torque', 'A', torque), now)?.id;
+    expect(fits(25)).toBe('w1');
+    expect(fits(200)).toBe('w2');
+  });
+
   it('is named with its due date in words', () => {
     expect(toolWords(angleTool)).toBe('Angle gauge, due 31 Dec 2026');
   });

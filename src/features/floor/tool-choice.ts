@@ -38,7 +38,10 @@ export function offerTools(workshop: Workshop, hand: Hand, use: ToolUse, now: nu
     .sort((a, b) => Number(b.isFit) - Number(a.isFit));
 }
 
-/** The tool in hand if it may be used for this, else undefined. */
+/**
+ * The tool in hand if it may be used for this, else the newest of those taken for this job that may: low and
+ * high passes have a wrench each, and which one is asked once.
+ */
 export function fitToolInHand(
   state: JobState,
   workshop: Workshop,
@@ -47,10 +50,11 @@ export function fitToolInHand(
   now: number,
 ): ToolInHand | undefined {
   const held = state.tools[hand];
-  if (!held) return undefined;
-  return offerTools(workshop, hand, use, now).find(({ tool, isFit }) => tool.id === held.id && isFit)
-    ? held
-    : undefined;
+  const taken = state.toolsTaken.filter((tool) => tool.use === hand && tool.id !== held?.id);
+  const fit = new Set(
+    offerTools(workshop, hand, use, now).flatMap(({ tool, isFit }) => (isFit ? [tool.id] : [])),
+  );
+  return [...(held ? [held] : []), ...taken].find(({ id }) => fit.has(id));
 }
 
 /** "Angle gauge T-07, due 14 Mar 2027". */
