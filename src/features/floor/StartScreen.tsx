@@ -44,6 +44,7 @@ export function StartScreen() {
       }}
     >
       <div className="mx-auto grid max-w-5xl gap-8 pb-6">
+        {!needsSignIn && !needsName && <h1 className="unseen">The Floor</h1>}
         {trouble !== undefined && <Notice tone="stop" title={trouble} isAlert />}
         {needsSignIn && (
           <SignInForm
