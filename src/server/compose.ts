@@ -5,6 +5,7 @@ import { migrate } from '@db/migrate';
 import { type Auth, makeAuth } from './auth';
 import { type Clock, type Ids, randomIds, stamp, systemClock } from './clock';
 import { type Db, openDatabase } from './database';
+import { forgetStoredFolds } from './job-fold';
 import { type Keys, openKeys } from './keys';
 import { readSettings, type Settings } from './settings';
 
@@ -38,6 +39,7 @@ export async function openApp(settings: AppSettings, options: OpenOptions = {}):
   const db = openDatabase(path.join(settings.dataDir, 'witnessmark.db'));
   try {
     await migrate(db);
+    await forgetStoredFolds(db);
   } catch (error) {
     await db.destroy();
     throw error;

@@ -172,6 +172,11 @@ export async function storeFolds(trx: Trx, folds: Iterable<JobFold>): Promise<vo
   }
 }
 
+/** Forgets what is stored: a program that starts may have other rules than the one that folded it. */
+export async function forgetStoredFolds(db: Db): Promise<void> {
+  await db.deleteFrom('job_fold').execute();
+}
+
 /** Every entry of a job in order, as it was recorded. */
 export async function listRecorded(
   reader: Db,

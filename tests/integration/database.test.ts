@@ -2,6 +2,7 @@ import { getMigrations } from 'better-auth/db/migration';
 import { sql } from 'kysely';
 import { describe, expect, it } from 'vitest';
 import { authOptions } from '@/server/auth';
+import { closeApp, openApp } from '@/server/compose';
 import { openTestApp } from '../support/database';
 
 describe('the tables', () => {
@@ -54,5 +55,18 @@ describe('the tables', () => {
       'user',
       'verification',
     ]);
+  });
+});
+
+describe('folded states that are stored', () => {
+  it('are forgotten when the program starts, because its rules may be others than those that folded them', async () => {
+    const app = await openTestApp();
+    await sql`pragma foreign_keys = off`.execute(app.db);
+    const row = { job_id: 'j', seq: 400, head_hash: 'h', state: '{}' };
+    await app.db.insertInto('job_fold').values(row).execute();
+    const again = await openApp(app.settings, app);
+    const left = await again.db.selectFrom('job_fold').select('job_id').execute();
+    await closeApp(again);
+    expect(left).toEqual([]);
   });
 });
