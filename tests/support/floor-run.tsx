@@ -1,5 +1,6 @@
 /* A run for tests: the real rules and the real fold on a journal, without storage, signatures or a network. */
 import { useState, type ReactNode } from 'react';
+import { vi } from 'vitest';
 import { mayRecord } from '@/domain/job';
 import type { PlanStep } from '@/domain/plan';
 import type { WorkshopRow } from '@/offline/database';
@@ -8,6 +9,25 @@ import { currentStep, following, NOWHERE, staysAfter, type FloorPlace } from '@/
 import { RunContext, type Run, type SheetName, type Worker } from '@/features/floor/run-context';
 import { StepScreen } from '@/features/floor/steps/StepScreen';
 import type { Journal } from './journal';
+// The screens that the page loads later are here at once, so that no test waits for the disk.
+import '@/features/floor/steps/ChooseShellsStep';
+import '@/features/floor/steps/CountStep';
+import '@/features/floor/steps/DriveStep';
+import '@/features/floor/steps/FillStep';
+import '@/features/floor/steps/FitStep';
+import '@/features/floor/steps/GaugeStep';
+import '@/features/floor/steps/HandOverStep';
+import '@/features/floor/steps/HoldStep';
+import '@/features/floor/steps/InspectStep';
+import '@/features/floor/steps/MakeSafeStep';
+import '@/features/floor/steps/PhotographStep';
+import '@/features/floor/steps/ReadStep';
+import '@/features/floor/steps/ResumeStep';
+import '@/features/floor/steps/WatchStep';
+import '@/features/floor/steps/WitnessStep';
+
+// A whole journal is folded before the first screen; a busy machine takes its time.
+vi.setConfig({ testTimeout: 30_000 });
 
 export interface FixtureOptions {
   journal: Journal;

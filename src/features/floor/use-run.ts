@@ -35,7 +35,8 @@ export function useRunOf({ view, workshop, person, step, isOnline, openSheet }: 
     isBusy: state.isRecording || state.isSettling,
     refusal: state.refusal,
     refused: view.refused,
-    flash: state.flash,
+    // Only for the moment after a record: a screen that comes later must not flash for it again.
+    flash: state.isSettling ? state.flash : 0,
     askAbout: state.isAway ? state.place.action : undefined,
     afterwards: state.afterwards,
     cells: topCells({

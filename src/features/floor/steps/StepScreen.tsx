@@ -4,25 +4,25 @@ import type { PlanStep } from '@/domain/plan';
 import { StepFrame } from '../StepFrame';
 import { useRun } from '../run-context';
 import { BarredStep } from './BarredStep';
-import { CountStep } from './CountStep';
 import { DoneStep } from './DoneStep';
 import { DoStep } from './DoStep';
-import { FillStep } from './FillStep';
-import { FitStep } from './FitStep';
-import { InspectStep } from './InspectStep';
-import { PhotographStep } from './PhotographStep';
 import { PlaceStep } from './PlaceStep';
-import { ReadStep } from './ReadStep';
 import { RefitStep } from './RefitStep';
 import { RemoveStep } from './RemoveStep';
 import { TightenStep } from './TightenStep';
 import { TurnStep } from './TurnStep';
 
 /*
- * The screens of the rarer kinds come after the first action could be recorded; the service worker holds them,
- * so that they come without a network too.
+ * Screens that the first action seldom needs come when they are asked for, or once nothing more urgent is to be
+ * done; the service worker holds them all, so that they come without a network too.
  */
 const loaders = {
+  count: () => import('./CountStep'),
+  fill: () => import('./FillStep'),
+  fit: () => import('./FitStep'),
+  inspect: () => import('./InspectStep'),
+  photograph: () => import('./PhotographStep'),
+  read: () => import('./ReadStep'),
   chooseShells: () => import('./ChooseShellsStep'),
   gauge: () => import('./GaugeStep'),
   hold: () => import('./HoldStep'),
@@ -33,6 +33,12 @@ const loaders = {
   resume: () => import('./ResumeStep'),
   handOver: () => import('./HandOverStep'),
 };
+const CountStep = lazy(() => loaders.count().then((m) => ({ default: m.CountStep })));
+const FillStep = lazy(() => loaders.fill().then((m) => ({ default: m.FillStep })));
+const FitStep = lazy(() => loaders.fit().then((m) => ({ default: m.FitStep })));
+const InspectStep = lazy(() => loaders.inspect().then((m) => ({ default: m.InspectStep })));
+const PhotographStep = lazy(() => loaders.photograph().then((m) => ({ default: m.PhotographStep })));
+const ReadStep = lazy(() => loaders.read().then((m) => ({ default: m.ReadStep })));
 const ChooseShellsStep = lazy(() => loaders.chooseShells().then((m) => ({ default: m.ChooseShellsStep })));
 const GaugeStep = lazy(() => loaders.gauge().then((m) => ({ default: m.GaugeStep })));
 const HoldStep = lazy(() => loaders.hold().then((m) => ({ default: m.HoldStep })));
