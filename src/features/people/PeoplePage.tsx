@@ -2,7 +2,7 @@ import { QueryClientProvider, useQueryClient } from '@tanstack/react-query';
 import { useState } from 'react';
 import * as z from 'zod/mini';
 import { Button } from '@/components/Button';
-import { DataTable } from '@/components/DataTable';
+import { DataTable, type DataColumn } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
 import { openOffline } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
@@ -104,12 +104,12 @@ function People({ zone }: { zone: string }) {
   );
 }
 
-const COLUMNS = [
+const COLUMNS: DataColumn[] = [
   { key: 'name', label: 'printed name' },
   { key: 'roles', label: 'roles' },
   { key: 'email', label: 'e-mail' },
   { key: 'state', label: 'state', isWide: true },
-  { key: 'acts', label: '' },
+  { key: 'acts', label: 'change', align: 'right' },
 ];
 
 function stateWords(row: PersonRow): string {

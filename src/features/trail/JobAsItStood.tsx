@@ -22,7 +22,12 @@ export const JobAsItStood = memo(function JobAsItStood({ state, entry, zone }: J
   const step = recorded.step === undefined ? undefined : findStep(state.plan, recorded.step);
   const open = state.deviations.filter(({ disposed }) => !disposed);
   return (
-    <section className="trail-state" aria-label={`The job as it stood at entry ${seq}`}>
+    <section
+      className="trail-state"
+      aria-label={`The job as it stood at entry ${seq}`}
+      // eslint-disable-next-line jsx-a11y/no-noninteractive-tabindex -- a box that scrolls must take the keyboard
+      tabIndex={0}
+    >
       <h2 className="trail-state-title">The job as it stood at entry {seq}</h2>
       <div className="trail-state-both">
         <EngineBelow {...engineView(state, step, zone)} />

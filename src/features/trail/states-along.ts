@@ -1,21 +1,30 @@
-import { replay } from '@/domain/job';
+import { applyEntry, replay } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
 import type { ReadTrail } from './read-trail';
 
-/** So many states are kept: walking to and fro asks for the same few again. */
-const KEPT = 200;
+/** A state is kept at every so many entries, so that no other is farther than that from one. */
+const STRIDE = 20;
 
-/** Gives the job as it stood at any entry, and remembers the states that were asked for last. */
+/** Gives the job as it stood at any entry, quickly however long the trail is. */
 export function statesAlong({ plans, entries }: ReadTrail): (upTo: number) => JobState {
   const recorded = entries.map((entry) => entry.recorded);
-  const kept = new Map<number, JobState>();
-  return (upTo) => {
-    const known = kept.get(upTo);
-    if (known !== undefined) return known;
-    const state = replay(plans, recorded, { upTo });
-    const [oldest] = kept.keys();
-    if (kept.size >= KEPT && oldest !== undefined) kept.delete(oldest);
-    kept.set(upTo, state);
+  const milestones = new Map<number, JobState>();
+
+  function stateAt(upTo: number): JobState {
+    const from = Math.floor((upTo - 1) / STRIDE) * STRIDE;
+    const between = recorded.slice(from, upTo);
+    // Moving to another plan is the replay's own affair.
+    const isMoved = between.some(({ kind }) => kind === 'plan-moved');
+    return from <= 0 || isMoved
+      ? replay(plans, recorded, { upTo })
+      : between.reduce(applyEntry, milestoneAt(from));
+  }
+
+  function milestoneAt(upTo: number): JobState {
+    const state = milestones.get(upTo) ?? stateAt(upTo);
+    milestones.set(upTo, state);
     return state;
-  };
+  }
+
+  return stateAt;
 }
