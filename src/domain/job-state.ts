@@ -132,18 +132,6 @@ export interface Signature {
   reopened?: string | undefined;
 }
 
-export interface Photo {
-  entry: string;
-  hash: string;
-  bytes: number;
-  type: string;
-  subject: string;
-  step?: string | undefined;
-  from: string;
-  at: string;
-  identity: boolean;
-}
-
 export interface ToolInHand {
   id: string;
   name: string;
@@ -185,7 +173,6 @@ export interface JobState {
     by: string;
     countersignedBy?: string | undefined;
   }[];
-  photos: Photo[];
   /** Who had a hand in each step, helpers and correctors included. */
   authors: Record<string, string[]>;
   people: Record<string, string>;

@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { angleTool, buildWorkshop, Journal, torqueTool } from '../../tests/support/journal';
 import { smallPlan } from '../../tests/support/small-documents';
 import { nextSteps, progressOf, replay } from './job';
+import { photosOf } from './job-photos';
 import { markCount } from './job-signing-rules';
 
 const begin = () => new Journal(smallPlan());
@@ -21,6 +22,13 @@ describe('a whole job', () => {
     const journal = begin().performUntil(null);
     const again = replay(new Map([['a'.repeat(64), journal.plan]]), journal.entries);
     expect(again).toEqual(journal.state);
+  });
+
+  it('has its photographs in the order in which they were taken, without those taken back', () => {
+    const journal = begin().perform('strip.arrival');
+    expect(photosOf(journal.state)).toMatchObject([{ subject: 'arrival', from: 'camera here' }]);
+    journal.record('taken-back', { of: journal.entries.at(-1)!.id, which: 'touched by mistake, not done' });
+    expect(photosOf(journal.state)).toEqual([]);
   });
 
   it('can be replayed up to any recorded entry', () => {

@@ -9,6 +9,7 @@ import { reopenSignatures } from './job-evidence';
 import { settleSteps } from './job-settle';
 import { keep, patchEntry, stepOfEntry } from './job-kept';
 import type { JobState, Kept, RodState, StepState } from './job-state';
+import { writable } from './job-tables';
 import { checkPace } from './job-tightening';
 import { findStep, rodsOf, type Plan, type PlanStep } from './plan';
 
@@ -53,7 +54,6 @@ export function emptyJob(plan: Plan): JobState {
     deviations: [],
     signatures: [],
     countersigns: [],
-    photos: [],
     authors: {},
     people: {},
     remarks: [],
@@ -117,16 +117,17 @@ function addAuthors(state: JobState, step: string, who: string[]): JobState {
   const present = Object.hasOwn(state.authors, step) ? (state.authors[step] ?? []) : [];
   const added = who.filter((person) => !present.includes(person));
   if (added.length === 0) return state;
-  return { ...state, authors: { ...state.authors, [step]: [...present, ...added] } };
+  const authors = writable(state, state.authors);
+  authors[step] = [...present, ...added];
+  return { ...state, authors };
 }
 
 function keepOn(state: JobState, step: PlanStep | undefined, kept: Kept): JobState {
   if (!step) return { ...state, unstepped: [...state.unstepped, kept] };
   const present = state.steps[step.id] ?? { status: 'open', entries: [] };
-  return {
-    ...state,
-    steps: { ...state.steps, [step.id]: { ...present, entries: [...present.entries, kept] } },
-  };
+  const steps = writable(state, state.steps);
+  steps[step.id] = { ...present, entries: [...present.entries, kept] };
+  return { ...state, steps };
 }
 
 /** What the kind of entry changes beside its own step, and then the step itself. */

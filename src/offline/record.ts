@@ -4,6 +4,7 @@
  * job is still as it was when the rules were asked. Otherwise all of it begins again from the new state.
  */
 import { parseEntry, type Entry, type EntryData, type EntryKind } from '@/domain/entry';
+import { photosOf } from '@/domain/job-photos';
 import { applyEntry, mayRecord } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
 import { signContent } from './author-key';
@@ -220,7 +221,7 @@ function malformed(parsed: { newer: boolean; field?: string; why?: string }, ind
 function refusePhotos(state: JobState, entries: Entry[], photos: PreparedPhoto[]): Refusal | undefined {
   const named = entries.flatMap((entry) => (entry.kind === 'photographed' ? [entry.data.photo] : []));
   const given = new Set(photos.map(({ hash }) => hash));
-  const known = new Set(state.photos.map(({ hash }) => hash));
+  const known = new Set(photosOf(state).map(({ hash }) => hash));
   const missing = named.find((hash) => !given.has(hash) && !known.has(hash));
   const unnamed = photos.find(({ hash }) => !named.includes(hash));
   if (missing === undefined && unnamed === undefined) return undefined;

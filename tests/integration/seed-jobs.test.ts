@@ -1,3 +1,4 @@
+import { photosOf } from '@/domain/job-photos';
 import { describe, expect, it } from 'vitest';
 import { seedDemo } from '@db/seed';
 import { nextSteps } from '@/domain/job';
@@ -48,7 +49,9 @@ describe('the demo’s jobs', () => {
       const { text } = await exportTrail(app, actor!, id);
       expect(await verifyTrail(text, nodeChecks())).toMatchObject({ ok: true });
     }
-    for (const { hash } of finished?.photos ?? []) {
+    const photos = photosOf(finished!);
+    expect(photos.length).toBeGreaterThan(3);
+    for (const { hash } of photos) {
       expect((await getPhoto(app, hash, 'full')).type).toBe('image/jpeg');
     }
     const times = await db.selectFrom('workshop_entry').select('at').orderBy('seq').execute();
