@@ -70,10 +70,11 @@ export class FloorDriver {
     private readonly picture: (nth: number) => Promise<Buffer>,
   ) {}
 
-  /** What stands on the screen now. */
+  /** What stands on the screen once it takes touches. */
   async look(): Promise<Look> {
-    const look = await this.page.evaluate(readScreen, {});
-    if (look === null) throw new Error('A screen can always be looked at.');
+    const ready = await this.page.waitForFunction(readScreen, { mustBeReady: true });
+    const look = await ready.jsonValue();
+    if (look === null) throw new Error('A screen that takes touches shows something.');
     return look;
   }
 
@@ -171,9 +172,8 @@ export class FloorDriver {
   async moved(before: Look): Promise<void> {
     await this.page.waitForFunction(readScreen, { before });
     await this.passTime(PACE_MS);
-    const ready = await this.page.waitForFunction(readScreen, { mustBeReady: true });
-    const look = await ready.jsonValue();
-    if (look !== null && look.refusal !== '') throw new Error(`Not recorded: ${look.refusal}`);
+    const { refusal } = await this.look();
+    if (refusal !== '') throw new Error(`Not recorded: ${refusal}`);
   }
 
   private button(name: string): Locator {

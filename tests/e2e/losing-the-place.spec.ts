@@ -4,10 +4,11 @@ import path from 'node:path';
 import { type BrowserContext, chromium, type Page } from '@playwright/test';
 import { expect, islandsReady, test } from '../support/e2e';
 import { demoPerson, signInOnFloor } from '../support/e2e-people';
+import { picture } from '../support/e2e-picture';
 import { seedJob, type SeededJob } from '../support/e2e-seed';
 import { readTrail } from '../support/e2e-trail';
 import { FloorDriver } from './floor-driver';
-import { openOnFloor, picture, sendAll } from './on-floor';
+import { openOnFloor, sendAll } from './on-floor';
 
 const ines = demoPerson('ines');
 

@@ -1,5 +1,4 @@
 import { expect, type Page } from '@playwright/test';
-import sharp from 'sharp';
 
 /** Opens a job from the Floor's first screen. */
 export async function openOnFloor(page: Page, number: string): Promise<void> {
@@ -20,12 +19,4 @@ export async function sendAll(page: Page): Promise<number> {
   await sheet.getByRole('button', { name: /close/i }).tap();
   await expect(sheet).toHaveCount(0);
   return Number(/\d+/.exec(told)?.[0]);
-}
-
-/** A picture like no other: the camera's place is taken by a plain ground of its own colour. */
-export function picture(nth: number): Promise<Buffer> {
-  const background = { r: (nth * 67) % 256, g: (nth * 29) % 256, b: 90 };
-  return sharp({ create: { width: 640, height: 480, channels: 3, background } })
-    .jpeg()
-    .toBuffer();
 }

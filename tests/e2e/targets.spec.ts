@@ -1,9 +1,10 @@
 import type { Page } from '@playwright/test';
 import { expect, islandsReady, test } from '../support/e2e';
 import { demoPerson, signInOnFloor } from '../support/e2e-people';
+import { picture } from '../support/e2e-picture';
 import { seedJob } from '../support/e2e-seed';
 import { FloorDriver } from './floor-driver';
-import { openOnFloor, picture } from './on-floor';
+import { openOnFloor } from './on-floor';
 
 /*
  * A gloved finger finds every target of the screens that are used most: none is smaller than 72 px either way,

@@ -5,9 +5,10 @@ import path from 'node:path';
 import type { Page } from '@playwright/test';
 import { expect, islandsReady, test, workerReady } from '../support/e2e';
 import { demoPerson, signInAtDesk, signInOnFloor } from '../support/e2e-people';
+import { picture } from '../support/e2e-picture';
 import { countRefused, isSignedByAuthor, readTrail, type TrailRow } from '../support/e2e-trail';
 import { FloorDriver, type Look } from './floor-driver';
-import { openOnFloor, picture, sendAll } from './on-floor';
+import { openOnFloor, sendAll } from './on-floor';
 
 /*
  * A whole job on one tablet that has a network only for what can't be done without one.

@@ -5,9 +5,11 @@ import type { Entry } from '@/domain/entry';
 import type { Workshop } from '@/domain/job-state';
 import type { Plan } from '@/domain/plan';
 import { type PushAnswer, type ScriptedPerson, ScriptedTablet } from '@db/scripted-tablet';
+import type { Kit } from '@db/scripted-work';
 import type { DemoSignIn } from '@db/seed';
 import type { RunningApp } from './app';
 import { demoPerson } from './e2e-people';
+import { picture } from './e2e-picture';
 
 /*
  * Jobs that stand where a test begins, made through the program's own addresses by a tablet without a screen:
@@ -43,8 +45,11 @@ export async function seedJob(app: RunningApp, options: SeedOptions = {}): Promi
   const job = await open(tablet, supervisor, people);
   const step = typeof until === 'function' ? until(job.plan) : until;
   if (step !== undefined) {
-    await tablet.perform(job.id, { technician: worker, supervisor }, kitOf(tablet), { step });
+    const photographs = await takePhotographs(job.plan);
+    const kit = kitOf(tablet, photographs);
+    await tablet.perform(job.id, { technician: worker, supervisor }, kit, { step });
     await sendAsOfNow(tablet);
+    await keepPhotographs(worker.api, photographs);
   }
   await Promise.all([supervisor.api.dispose(), worker.api.dispose()]);
   return job;
@@ -146,12 +151,38 @@ async function sendAsOfNow(tablet: ScriptedTablet): Promise<void> {
   if (trouble !== undefined) throw new Error(`The seeded work was not taken: ${JSON.stringify(trouble)}`);
 }
 
-function kitOf({ workshop }: ScriptedTablet) {
-  const photo = (subject: string) => ({
-    hash: createHash('sha256').update(subject).digest('hex'),
-    bytes: 48_000,
-    type: 'image/jpeg' as const,
-  });
+interface Photograph {
+  hash: string;
+  bytes: Buffer;
+}
+
+/** A picture for every photograph that the plan asks for, by its subject. */
+async function takePhotographs({ steps }: Plan): Promise<Map<string, Photograph>> {
+  const subjects = steps.flatMap((step) => (step.kind === 'photograph' ? [step.subject] : []));
+  const taken = await Promise.all(
+    subjects.map(async (subject, nth) => {
+      const bytes = await picture(nth);
+      return [subject, { bytes, hash: createHash('sha256').update(bytes).digest('hex') }] as const;
+    }),
+  );
+  return new Map(taken);
+}
+
+/** The bytes follow the record, as they do from a tablet. */
+async function keepPhotographs(api: APIRequestContext, photographs: Map<string, Photograph>): Promise<void> {
+  for (const { hash, bytes } of photographs.values()) {
+    await bodyOf(
+      await api.put(`/api/photos/${hash}`, { data: bytes, headers: { 'content-type': 'image/jpeg' } }),
+    );
+  }
+}
+
+function kitOf({ workshop }: ScriptedTablet, photographs: Map<string, Photograph>): Kit {
+  const photo = (subject: string) => {
+    const taken = photographs.get(subject);
+    if (taken === undefined) throw new RangeError(`Nobody took a picture of: ${subject}.`);
+    return { hash: taken.hash, bytes: taken.bytes.byteLength, type: 'image/jpeg' as const };
+  };
   return { workshop, today: new Date().toISOString().slice(0, 10), photo };
 }
 
