@@ -65,7 +65,7 @@ function Mine({ person, name, zone }: MyPageProps) {
       {trouble !== undefined && (
         <ErrorNote happened={trouble} kept="You are still signed in." next="Try it again." />
       )}
-      <div className="my-columns">
+      <div className="desk-columns">
         <div>
           <MyPin pin={pin} zone={zone} onSet={() => void client.invalidateQueries()} />
           <section className="part">

@@ -90,16 +90,18 @@ function People({ zone }: { zone: string }) {
           }}
         />
       )}
-      <section className="part mt-8">
-        <h2 className="part-title">Add a person</h2>
-        <AddPersonForm
-          onAdded={(given) => {
-            setLink(given);
-            void client.invalidateQueries();
-          }}
-        />
-      </section>
-      <Tablets zone={zone} />
+      <div className="desk-columns mt-8">
+        <section className="part">
+          <h2 className="part-title">Add a person</h2>
+          <AddPersonForm
+            onAdded={(given) => {
+              setLink(given);
+              void client.invalidateQueries();
+            }}
+          />
+        </section>
+        <Tablets zone={zone} />
+      </div>
     </>
   );
 }
@@ -130,7 +132,7 @@ interface RowActsProps {
 
 function RowActs({ row, onRoles, onActive, onLink }: RowActsProps) {
   return (
-    <span className="flex flex-wrap justify-end gap-3">
+    <span className="cell-acts">
       {row.active && (
         <Button look="link" onClick={onRoles} aria-label={`Change the roles of ${row.name}`}>
           Roles

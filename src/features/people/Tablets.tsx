@@ -19,7 +19,7 @@ const devicesAnswer = z.object({
 export function Tablets({ zone }: { zone: string }) {
   const { data } = useServer('/api/devices', devicesAnswer);
   return (
-    <section className="part mt-8">
+    <section className="part">
       <h2 className="part-title">Tablets</h2>
       <DataTable
         caption="The tablets of the workshop"

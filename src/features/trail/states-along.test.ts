@@ -23,7 +23,7 @@ describe('the states along a trail', () => {
       step: undefined,
       data: { to, reason: 'a better way', kept: [], voided: [] },
     };
-    const plans = new Map([...trail.plans, [to, { ...smallPlan(), note: 'moved' }]]);
+    const plans = new Map([...trail.plans, [to, smallPlan('none')]]);
     const entries = trail.entries.map((entry, i) => (i === 29 ? { ...entry, recorded: moved } : entry));
     const stateAt = statesAlong({ ...trail, plans, entries });
     for (const upTo of [29, 30, 45, 60])
