@@ -1,5 +1,6 @@
 import type { Entry, EntryData, EntryKind, Recorded } from './entry';
 import type { JobState, Kept, StepState } from './job-state';
+import { writable } from './job-tables';
 
 /** Kinds that say something about another entry; they never make a step done. */
 const aboutOthers = new Set<EntryKind>([
@@ -63,7 +64,9 @@ export function patchEntry(state: JobState, id: string, patch: Partial<Kept>): J
   const step = state.steps[stepId];
   if (!step) return state;
   const entries = step.entries.map((kept) => (kept.id === id ? { ...kept, ...patch } : kept));
-  return { ...state, steps: { ...state.steps, [stepId]: { ...step, entries } } };
+  const steps = writable(state, state.steps);
+  steps[stepId] = { ...step, entries };
+  return { ...state, steps };
 }
 
 /** The step that an entry of this id stands on. */

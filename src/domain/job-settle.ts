@@ -9,6 +9,7 @@ import { isPassed } from './job-evidence';
 import { activeEntries, lastOf } from './job-kept';
 import { judgeLimit } from './job-limit';
 import type { JobState, Kept, StepState, StepStatus } from './job-state';
+import { writable } from './job-tables';
 import { isProgrammeDone, settleBolts } from './job-tightening';
 import { findStep, type Plan, type PlanItem, type PlanStep, type StepOf } from './plan';
 
@@ -28,10 +29,16 @@ function settleStep(state: JobState, step: PlanStep): JobState {
   const after = statusOf(next, step);
   if (after !== before) {
     const present = next.steps[step.id];
-    if (present) next = { ...next, steps: { ...next.steps, [step.id]: { ...present, status: after } } };
+    if (present) next = withStatus(next, step.id, { ...present, status: after });
   }
   next = settleEffects(next, step, before, after);
   return settleItems(next, step);
+}
+
+function withStatus(state: JobState, stepId: string, step: StepState): JobState {
+  const steps = writable(state, state.steps);
+  steps[stepId] = step;
+  return { ...state, steps };
 }
 
 /** What each kind of step changes beside its status. */
@@ -367,9 +374,7 @@ function settleClosing(state: JobState, item: PlanItem): JobState {
   const present = state.steps[item.closes];
   if (!closing || !present) return state;
   const status = statusOf(state, closing);
-  return status === present.status
-    ? state
-    : { ...state, steps: { ...state.steps, [closing.id]: { ...present, status } } };
+  return status === present.status ? state : withStatus(state, closing.id, { ...present, status });
 }
 
 function isClosedByNotApplicable(state: JobState, step: PlanStep): boolean {

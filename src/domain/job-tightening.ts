@@ -248,9 +248,13 @@ export function checkPace(state: JobState, kept: Kept): JobState {
   const since = Date.parse(kept.at) - PACE_SECONDS * 1000;
   const instants = new Set<string>();
   for (const step of recentTightenSteps(state, kept)) {
-    for (const entry of state.steps[step]?.entries ?? []) {
-      if (entry.kind === 'tightened' && entry.device === kept.device && Date.parse(entry.at) > since)
-        instants.add(entry.at);
+    const entries = state.steps[step]?.entries ?? [];
+    // A tablet's own acts come in order, so the first that is too old ends the search.
+    for (let i = entries.length - 1; i >= 0; i -= 1) {
+      const entry = entries[i];
+      if (entry?.kind !== 'tightened' || entry.device !== kept.device) continue;
+      if (Date.parse(entry.at) <= since) break;
+      instants.add(entry.at);
     }
   }
   const asked = state.remarks.findLast((one) => one.code === 'pace');

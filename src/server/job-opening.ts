@@ -104,6 +104,7 @@ async function openingBatch(
       clockOffsetMs: 0,
       pins: new Map(),
       proofs: new Map(),
+      isCareful: true,
       device: undefined,
     },
     [item],

@@ -1,14 +1,23 @@
 import type { Entry, EntryData, Recorded, RecordedFields } from '@/domain/entry';
 import type { JobState } from '@/domain/job-state';
+import { beginFolding, endFolding } from '@/domain/job-tables';
 import type { NewJobEntryRow, RefusedEntryTable } from '@db/tables';
 import type { Insertable } from 'kysely';
 import type { App } from './compose';
 import { sha256Hex } from './crypto';
-import type { Db, Trx } from './database';
+import type { Trx } from './database';
 import type { Device } from './devices';
 import { findFold, foldNext, type JobFold, noteRefusal, SERVER_DEVICE, UNHEARD } from './job-fold';
 import { type CanonicalField, canonicalFields, canonicalText, canonicalTextWith } from './recorded-text';
 import type { EntryVerdict } from './sync-body';
+import {
+  type KeyRow,
+  type Known,
+  type KnownRefusal,
+  readKeys,
+  readRecorded,
+  readRefused,
+} from './sync-known';
 import type { ReadItem } from './sync-read';
 import type { WorkshopHistory } from './workshop-history';
 
@@ -16,27 +25,6 @@ import type { WorkshopHistory } from './workshop-history';
  * One push in one transaction. Entries are judged against states held here, and their rows are written
  * together; nothing of it is remembered anywhere else before the transaction is committed.
  */
-
-/** An entry that is already final: recorded with this content, or refused with it. */
-export interface Known {
-  contentHash: string;
-  seq: number;
-  hash: string;
-}
-
-export interface KnownRefusal {
-  contentHash: string | null;
-  code: string;
-  reason: string;
-}
-
-export interface KeyRow {
-  id: string;
-  person: string;
-  device: string;
-  publicKey: string;
-  revokedAt: string | null;
-}
 
 /** What came of trying the PIN that was sealed to an entry. */
 export type PinResult =
@@ -78,6 +66,8 @@ export interface Batch {
   proofs: ReadonlyMap<number, boolean>;
   recorded: Map<string, Known>;
   refused: Map<string, KnownRefusal[]>;
+  /** Each state is copied before it is changed, so that an entry that trips a rule up leaves nothing behind. */
+  isCareful: boolean;
   /** What tablets saw, by job, tablet and basis, where that is not what the server sees. */
   views: Map<string, TabletView>;
   /** What each tablet did in each job within this push, recorded or refused after it had gone on from it. */
@@ -94,7 +84,7 @@ export interface Batch {
 export async function beginBatch(
   parts: Pick<
     Batch,
-    'app' | 'trx' | 'history' | 'device' | 'receivedAt' | 'clockOffsetMs' | 'pins' | 'proofs'
+    'app' | 'trx' | 'history' | 'device' | 'receivedAt' | 'clockOffsetMs' | 'pins' | 'proofs' | 'isCareful'
   >,
   items: readonly ReadItem[],
 ): Promise<Batch> {
@@ -119,9 +109,18 @@ export async function beginBatch(
 /** The job as it stands within this push. */
 export async function foldOf(batch: Batch, jobId: string): Promise<JobFold | undefined> {
   if (batch.folds.has(jobId)) return batch.folds.get(jobId);
-  const fold = await findFold(batch.app.db, jobId, batch.trx);
+  const found = await findFold(batch.app.db, jobId, batch.trx);
+  const fold = found && (batch.isCareful ? found : { ...found, state: beginFolding(found.state) });
   batch.folds.set(jobId, fold);
   return fold;
+}
+
+/** The jobs that this push added to, as they stand after it. */
+export function changedFolds(batch: Batch): JobFold[] {
+  return [...batch.changed].flatMap((job) => {
+    const fold = batch.folds.get(job);
+    return fold === undefined ? [] : [{ ...fold, state: endFolding(fold.state) }];
+  });
 }
 
 /** Appends an entry to its job's trail. */
@@ -275,48 +274,6 @@ export async function flush(batch: Batch): Promise<void> {
       .execute();
   }
   batch.toolUses.clear();
-}
-
-/** The author keys with these ids. */
-export async function readKeys(db: Db, ids: readonly string[]): Promise<ReadonlyMap<string, KeyRow>> {
-  if (ids.length === 0) return new Map();
-  const rows = await db
-    .selectFrom('author_key')
-    .select([
-      'id',
-      'person_id as person',
-      'device_id as device',
-      'public_key as publicKey',
-      'revoked_at as revokedAt',
-    ])
-    .where('id', 'in', ids)
-    .execute();
-  return new Map(rows.map((row) => [row.id, row]));
-}
-
-async function readRecorded(trx: Trx, ids: readonly string[]): Promise<Map<string, Known>> {
-  if (ids.length === 0) return new Map();
-  const rows = await trx
-    .selectFrom('job_entry')
-    .select(['id', 'content_hash as contentHash', 'seq', 'hash'])
-    .where('id', 'in', ids)
-    .execute();
-  return new Map(rows.map(({ id, ...known }) => [id, known]));
-}
-
-async function readRefused(trx: Trx, ids: readonly string[]): Promise<Map<string, KnownRefusal[]>> {
-  if (ids.length === 0) return new Map();
-  const rows = await trx
-    .selectFrom('refused_entry')
-    .select(['entry_id', 'content_hash as contentHash', 'code', 'message as reason'])
-    .where('entry_id', 'in', ids)
-    .orderBy('at')
-    .execute();
-  const refused = new Map<string, KnownRefusal[]>();
-  for (const { entry_id, ...known } of rows) {
-    if (entry_id !== null) refused.set(entry_id, [...(refused.get(entry_id) ?? []), known]);
-  }
-  return refused;
 }
 
 function unique(values: readonly string[]): string[] {

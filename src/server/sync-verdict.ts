@@ -1,11 +1,11 @@
 import { type Entry, judgementKinds, officeKinds } from '@/domain/entry';
 import { mayRecord } from '@/domain/job';
-import type { Verdict, Workshop } from '@/domain/job-state';
-import { isSignedBy } from './author-signature';
+import type { Verdict } from '@/domain/job-state';
 import { MINUTE } from './clock';
 import { hadPlan, isBehind, type JobFold, SERVER_DEVICE, UNHEARD } from './job-fold';
 import { whyNotCovered, whyWaitForEvidence } from './signing';
-import { type Batch, foldOf, type KeyRow, type ProvedItem, record, refuse } from './sync-batch';
+import { type Batch, foldOf, type ProvedItem, record, refuse } from './sync-batch';
+import { isRevoked, isTrueToWorkshop, proveAuthor } from './sync-author';
 import type { EntryVerdict } from './sync-body';
 import type { ReadItem } from './sync-read';
 import { noteAct, tabletView, UNFORESEEN } from './tablet-view';
@@ -91,38 +91,6 @@ function finalVerdict(batch: Batch, item: ReadItem): EntryVerdict | undefined {
   return { id: item.id, verdict: 'refused', code: refused.code, reason: refused.reason };
 }
 
-type Proof = { ok: true; signature: string; key: KeyRow } | { ok: false; code: string; reason: string };
-
-/** Authorship is proved by the person's key for that tablet; no session is needed, and none would do. */
-function proveAuthor(batch: Batch, item: ReadItem, entry: Entry): Proof {
-  const { carried } = item;
-  const key = carried === undefined ? undefined : batch.keys.get(carried.key);
-  if (carried === undefined || key === undefined) {
-    return {
-      ok: false,
-      code: 'key-unknown',
-      reason: 'It is signed with a key that the workshop does not know.',
-    };
-  }
-  if (key.device !== entry.device || key.person !== entry.by) {
-    return {
-      ok: false,
-      code: 'key-foreign',
-      reason: 'It is signed with the key of another person or another tablet.',
-    };
-  }
-  const isSigned =
-    batch.proofs.get(item.index) ?? isSignedBy(key.publicKey, item.contentHash, carried.signature);
-  if (!isSigned) {
-    return {
-      ok: false,
-      code: 'signature-wrong',
-      reason: "The author's signature does not fit what is written.",
-    };
-  }
-  return { ok: true, signature: carried.signature, key };
-}
-
 async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promise<EntryVerdict | NeedsPin> {
   const { entry } = item;
   const refuseIt = (code: string, reason: string) => setAside(batch, item, code, reason);
@@ -134,7 +102,7 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
   }
   const wait = whyWaitForEvidence(fold, entry);
   if (wait !== undefined) return waiting(item, 'evidence-missing', wait);
-  const times = timesOf(batch, entry);
+  const times = timesOf(batch, item);
   const own = await ownVerdict(batch, fold, item, times);
   if (!own.ok) return refuseIt(own.code, own.why);
   const here = serverVerdict(batch, fold, item, times);
@@ -200,10 +168,13 @@ interface Times {
   held: number;
 }
 
-function timesOf(batch: Batch, entry: Entry): Times {
+function timesOf(batch: Batch, { entry, key }: ProvedItem): Times {
   const { seq } = batch.history;
   // What was made by the newest the workshop has is judged by that, whenever it was made.
   if (entry.workshop >= seq) return { known: seq, held: seq };
+  const times = { known: entry.workshop, held: seq };
+  // Nothing that an entry is judged by has changed since, so it need not be asked when it was made.
+  if (key.revokedAt === null && isSameWorkshop(batch, times)) return { ...times, held: entry.workshop };
   const at = serverTime(batch, entry);
   return { known: entry.workshop, held: Math.max(entry.workshop, batch.history.seqAt(at)) };
 }
@@ -243,40 +214,18 @@ function serverVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Tim
   if (isRevoked(batch, item.key, times.held))
     return no('key-revoked', "The author's key was revoked meanwhile.");
   const workshop = batch.history.at(times.held);
-  const isSameView = !isBehind(fold, entry.device, entry.basis) && isSameWorkshop(batch, times, workshop);
+  const isSameView = !isBehind(fold, entry.device, entry.basis) && isSameWorkshop(batch, times);
   const isClockOff = Math.abs(batch.clockOffsetMs) > CLOCK_TOLERANCE_MS && entry.kind === 'tightened';
   // Judged in order a moment ago, and here everything is the same.
   if (isSameView && !isClockOff) return { ok: true };
   return mayRecord(fold.state, isClockOff ? { ...entry, at: serverTime(batch, entry) } : entry, workshop);
 }
 
-function isSameWorkshop(batch: Batch, times: Times, held: Workshop): boolean {
+function isSameWorkshop(batch: Batch, times: Times): boolean {
   if (times.known === times.held) return true;
   const known = batch.history.at(times.known);
+  const held = batch.history.at(times.held);
   return known.people === held.people && known.tools === held.tools && known.zone === held.zone;
-}
-
-/** Entries made before a key was revoked are still taken, however late they come. */
-function isRevoked(batch: Batch, key: KeyRow, workshopSeq: number): boolean {
-  return key.revokedAt !== null && workshopSeq >= batch.history.seqAt(key.revokedAt);
-}
-
-/** An entry carries the printed name, the roles and the tool's plate as used; they must be the workshop's. */
-function isTrueToWorkshop(entry: Entry, workshop: Workshop): boolean {
-  const person = workshop.people.find(({ id }) => id === entry.by);
-  if (person === undefined) return true;
-  const { name, roles } = entry.author;
-  if (person.name !== name || !isSameSet(person.roles, roles)) return false;
-  if (entry.kind === 'signed' && (entry.data.name !== name || !isSameSet(entry.data.roles, roles)))
-    return false;
-  const used = 'tool' in entry.data ? entry.data.tool : undefined;
-  if (used === undefined) return true;
-  const tool = workshop.tools.find(({ id }) => id === used.id);
-  return tool === undefined || (tool.serial === used.serial && tool.dueOn === used.dueOn);
-}
-
-function isSameSet(some: readonly string[], others: readonly string[]): boolean {
-  return some.length === others.length && some.every((one) => others.includes(one));
 }
 
 type PinVerdict =

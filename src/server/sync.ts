@@ -11,14 +11,15 @@ import { signHeadAfter, tryPin } from './signing';
 import {
   type Batch,
   beginBatch,
+  changedFolds,
   flush,
   foldOf,
   type PinResult,
-  readKeys,
   recordByServer,
 } from './sync-batch';
 import type { EntryVerdict, SyncBody } from './sync-body';
 import { maySee, pullJobs, type PulledJob } from './sync-pull';
+import { readKeys } from './sync-known';
 import { type ReadItem, readItem } from './sync-read';
 import { judgeItem, type NeedsPin } from './sync-verdict';
 import { readWorkshopHistory } from './workshop-history';
@@ -52,11 +53,18 @@ export async function syncTablet(app: App, device: Device, body: SyncBody): Prom
   const verdicts = new Map<number, EntryVerdict>();
   const pins = new Map<string, PinResult>();
   const proofs = await proveSignatures(app.db, items);
-  let pulled: { jobs: PulledJob[]; workshop: number } | undefined;
+  let pulled: Pulled | undefined;
+  let isCareful = false;
   while (pulled === undefined) {
-    const round = await oneRound(app, device, { body, items, verdicts, pins, proofs, clockOffsetMs });
-    if ('needsPin' in round) pins.set(round.needsPin.contentHash, await tryPin(app, round.needsPin));
-    else pulled = round;
+    try {
+      const round = { body, items, verdicts, pins, proofs, clockOffsetMs, isCareful };
+      const ended = await oneRound(app, device, round);
+      if ('needsPin' in ended) pins.set(ended.needsPin.contentHash, await tryPin(app, ended.needsPin));
+      else pulled = ended;
+    } catch (error) {
+      if (!(error instanceof TrippedError)) throw error;
+      isCareful = true;
+    }
   }
   return {
     at: received.toISOString(),
@@ -64,6 +72,16 @@ export async function syncTablet(app: App, device: Device, body: SyncBody): Prom
     ...pulled,
     clockOffsetMs,
   };
+}
+
+interface Pulled {
+  jobs: PulledJob[];
+  workshop: number;
+}
+
+/** An entry tripped a rule up while states were changed in place: nothing is kept, and all is judged again. */
+class TrippedError extends Error {
+  override name = 'TrippedError';
 }
 
 interface Round {
@@ -74,6 +92,7 @@ interface Round {
   pins: ReadonlyMap<string, PinResult>;
   proofs: ReadonlyMap<number, boolean>;
   clockOffsetMs: number;
+  isCareful: boolean;
 }
 
 /** Checks signatures side by side and before anything is locked: it is the longest part of a push. */
@@ -94,22 +113,19 @@ async function proveSignatures(db: Db, items: readonly ReadItem[]): Promise<Read
 async function oneRound(
   app: App,
   device: Device,
-  { body, items, verdicts, pins, proofs, clockOffsetMs }: Round,
-): Promise<NeedsPin | { jobs: PulledJob[]; workshop: number }> {
+  { body, items, verdicts, ...judgedBy }: Round,
+): Promise<NeedsPin | Pulled> {
   const { found, folds, result } = await app.db.transaction().execute(async (trx) => {
     // A write first, so that the transaction holds the write lock from its beginning.
     await noteHeardFrom(trx, device.id, app.clock);
     const history = await readWorkshopHistory(app.db, trx);
     const rest = items.filter(({ index }) => !verdicts.has(index));
     const receivedAt = stamp(app.clock);
-    const batch = await beginBatch(
-      { app, trx, history, device, receivedAt, clockOffsetMs, pins, proofs },
-      rest,
-    );
+    const batch = await beginBatch({ app, trx, history, device, receivedAt, ...judgedBy }, rest);
     if (verdicts.size === 0) await noteRestores(batch, body);
     const judged = await judgeAll(batch, rest);
     await flush(batch);
-    const changed = [...batch.changed].flatMap((job) => batch.folds.get(job) ?? []);
+    const changed = changedFolds(batch);
     await closeStates(trx, changed);
     await storeFolds(trx, changed);
     return {
@@ -123,11 +139,7 @@ async function oneRound(
   return result;
 }
 
-async function pull(
-  trx: Trx,
-  device: Device,
-  body: SyncBody,
-): Promise<{ jobs: PulledJob[]; workshop: number }> {
+async function pull(trx: Trx, device: Device, body: SyncBody): Promise<Pulled> {
   const jobs = await pullJobs(trx, device, body.jobs);
   const last = await trx
     .selectFrom('workshop_entry')
@@ -175,6 +187,7 @@ async function judgeSafely(batch: Batch, item: ReadItem): Promise<EntryVerdict |
     verdict = await judgeItem(batch, item);
   } catch (error) {
     if (isDatabaseError(error)) throw error;
+    if (!batch.isCareful) throw new TrippedError('An entry could not be judged', { cause: error });
     batch.app.log.error({ err: error, entry: item.id, job: item.job }, 'An entry could not be judged');
     return unexpected(item.id);
   }
