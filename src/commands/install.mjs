@@ -1,5 +1,5 @@
 import { spawnSync } from 'node:child_process';
-import { existsSync, readFileSync } from 'node:fs';
+import { existsSync, lstatSync, readFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import path from 'node:path';
 import { CommandError, duration, say } from './console.mjs';
@@ -8,6 +8,7 @@ import { ROOT } from './root.mjs';
 /** Installs what the lock file names, unless it is all there already. */
 export async function installIfStale() {
   if (!isInstalled()) {
+    refuseLinkedFolder();
     say('installing packages: 2 to 4 minutes, once. The longest part is compiling the database driver,');
     say('which needs python3, make and a C++ compiler on machines that no ready-made driver exists for.');
     const started = performance.now();
@@ -22,6 +23,15 @@ export async function installIfStale() {
       'The database driver does not load. Install python3, make and a C++ compiler, delete node_modules, and try again.',
     );
   }
+}
+
+/** Installing empties the folder first; through a link that would be another checkout's folder. */
+function refuseLinkedFolder() {
+  const folder = path.join(ROOT, 'node_modules');
+  if (lstatSync(folder, { throwIfNoEntry: false })?.isSymbolicLink() !== true) return;
+  throw new CommandError(
+    'node_modules is a link to a folder that does not fit the lock file. Nothing was installed: remove the link, and try again.',
+  );
 }
 
 /**
