@@ -96,7 +96,7 @@ function cellsOf(job: JobLine, zone: string): Record<string, ReactNode> {
     ),
     vehicle: (
       <>
-        {job.registration ?? 'erased'}
+        <span className="whitespace-nowrap">{job.registration ?? 'erased'}</span>
         <span className="cell-note">{job.engine}</span>
       </>
     ),
