@@ -1,8 +1,12 @@
 /// <reference types="astro/client" />
 
-declare namespace App {
-  interface Locals {
-    /** Who is signed in, found out by the middleware; undefined if nobody is. */
-    actor: import('@/server/actor').Actor | undefined;
+import type { Actor } from '@/server/actor';
+
+declare global {
+  namespace App {
+    interface Locals {
+      /** Who is signed in, found out by the middleware; undefined if nobody is. */
+      actor: Actor | undefined;
+    }
   }
 }
