@@ -17,6 +17,14 @@ export function openOffline(surroundings: Surroundings = browserSurroundings()):
   };
 }
 
+let ofThisPage: Offline | undefined;
+
+/** The records as this page holds them, opened at the first use: a desk page asks from many places. */
+export function offlineOfThisPage(): Offline {
+  ofThisPage ??= openOffline();
+  return ofThisPage;
+}
+
 /** Stops sending and closes the records, so that nothing of this page touches them again. */
 export function closeOffline(offline: Offline): void {
   offline.sync.stop();

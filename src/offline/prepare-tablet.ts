@@ -1,4 +1,4 @@
-import { openOffline } from './offline';
+import { offlineOfThisPage } from './offline';
 import { enrolAuthorKey, enrolTablet, readTablet, refreshSignedIn, whoIsWorking, setWorking } from './tablet';
 import type { Outcome } from './server-call';
 
@@ -7,7 +7,7 @@ import type { Outcome } from './server-call';
  * their own key on it, so that they can record and sign with no network later.
  */
 export async function prepareTablet(person: { id: string; name: string }): Promise<Outcome> {
-  const offline = openOffline();
+  const offline = offlineOfThisPage();
   const listed = await refreshSignedIn(offline);
   if (!listed.ok) return listed;
   if (!(await readTablet(offline)).enrolled) {

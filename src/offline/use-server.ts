@@ -1,6 +1,6 @@
 import { QueryClient, useInfiniteQuery, useQuery } from '@tanstack/react-query';
 import type * as z from 'zod/mini';
-import { openOffline } from './offline';
+import { offlineOfThisPage } from './offline';
 import { callServer } from './server-call';
 
 /** Why the server's answer is not there, in the server's own words where it gave some. */
@@ -17,7 +17,7 @@ export class NoAnswerError extends Error {
 
 /** Asks the server and gives its answer, or throws why there is none. */
 export async function askServer<S extends z.ZodMiniType>(path: string, answer: S): Promise<z.output<S>> {
-  const asked = await callServer(openOffline(), { path, answer });
+  const asked = await callServer(offlineOfThisPage(), { path, answer });
   if (asked.ok) return asked.body;
   throw new NoAnswerError(asked.code, asked.why);
 }

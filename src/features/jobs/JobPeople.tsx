@@ -6,7 +6,7 @@ import { Checkbox } from '@/components/Checkbox';
 import { ErrorNote } from '@/components/ErrorNote';
 import { Field } from '@/components/Field';
 import { dayAndTime } from '@/domain/time-words';
-import { openOffline } from '@/offline/offline';
+import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import { atWork } from './at-work';
 import type { JobAnswer } from './job-answer';
@@ -60,7 +60,7 @@ function Assignment({ job, onDone }: { job: JobAnswer; onDone: () => void }) {
   const [trouble, setTrouble] = useState<string>();
   const client = useQueryClient();
   const save = async () => {
-    const saved = await callServer(openOffline(), {
+    const saved = await callServer(offlineOfThisPage(), {
       method: 'POST',
       path: `/api/jobs/${job.id}/people`,
       body: { people: chosen },

@@ -4,7 +4,7 @@ import { sha256 } from '@noble/hashes/sha2.js';
 import { bytesToHex } from '@noble/hashes/utils.js';
 import * as z from 'zod/mini';
 import { identityCommitment } from '@/domain/trail-hash';
-import { openOffline, type Offline } from '@/offline/offline';
+import { offlineOfThisPage, type Offline } from '@/offline/offline';
 import { signOpening, type SignedOpening } from '@/offline/opening';
 import type { PreparedPhoto } from '@/offline/photo';
 import { makeAvailableOffline, pullJobList, pullWorkshop } from '@/offline/prefetch';
@@ -74,7 +74,7 @@ export async function openNewJob(
   pending: PendingOpening | undefined,
   keep: (pending: PendingOpening) => void,
 ): Promise<OpenOutcome> {
-  const offline = openOffline();
+  const offline = offlineOfThisPage();
   const asked = JSON.stringify(fields);
   const ready = pending?.asked === asked ? pending : await signAnew(offline, actor, fields, asked);
   if ('why' in ready) return { ok: false, why: ready.why };
@@ -168,7 +168,7 @@ async function keepArrivalPhotos(
 
 /** Is this browser ready to sign for the person? Their own key is on it after a sign-in here. */
 export async function isReadyFor(actor: string): Promise<boolean> {
-  const offline = openOffline();
+  const offline = offlineOfThisPage();
   if ((await whoIsWorking(offline)) === null) return false;
   return (await offline.db.authorKeys.get(actor)) !== undefined;
 }

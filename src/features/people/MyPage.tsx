@@ -7,7 +7,7 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { LookPanel } from '@/components/LookPanel';
 import { Notice } from '@/components/Notice';
 import { dayAndTime } from '@/domain/time-words';
-import { openOffline } from '@/offline/offline';
+import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import { newQueryClient, useServer } from '@/offline/use-server';
 import { ChangePasswordForm } from './ChangePasswordForm';
@@ -45,7 +45,7 @@ function Mine({ person, name, zone }: MyPageProps) {
   const client = useQueryClient();
   const signOut = async () => {
     const path = '/api/auth/sign-out';
-    const out = await callServer(openOffline(), {
+    const out = await callServer(offlineOfThisPage(), {
       method: 'POST',
       path,
       body: { person },

@@ -4,7 +4,7 @@ import * as z from 'zod/mini';
 import { Button } from '@/components/Button';
 import { DataTable, type DataColumn } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
-import { openOffline } from '@/offline/offline';
+import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import { newQueryClient, useServer } from '@/offline/use-server';
 import { AddPersonForm } from './AddPersonForm';
@@ -31,7 +31,7 @@ function People({ zone }: { zone: string }) {
   const [changing, setChanging] = useState<PersonRow>();
   const change = async (id: string, body: { roles?: string[]; active?: boolean }) => {
     const path = `/api/people/${id}`;
-    const changed = await callServer(openOffline(), {
+    const changed = await callServer(offlineOfThisPage(), {
       method: 'PATCH',
       path,
       body,
@@ -42,7 +42,12 @@ function People({ zone }: { zone: string }) {
   };
   const giveLink = async ({ id, name }: PersonRow) => {
     const path = `/api/people/${id}/password-link`;
-    const given = await callServer(openOffline(), { method: 'POST', path, body: {}, answer: linkAnswer });
+    const given = await callServer(offlineOfThisPage(), {
+      method: 'POST',
+      path,
+      body: {},
+      answer: linkAnswer,
+    });
     setTrouble(given.ok ? undefined : given.why);
     if (given.ok) setLink({ name, ...given.body });
   };
