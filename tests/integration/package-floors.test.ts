@@ -14,7 +14,6 @@ const FLOORS: Readonly<Record<string, string>> = {
   'better-sqlite3': '12.11.1',
   canonicalize: '4.0.0',
   esbuild: '0.27.7',
-  'file-type': '21.3.4',
   kysely: '0.28.19',
   pino: '10.4.0',
   react: '19.3.1',
