@@ -268,7 +268,9 @@ function kindOf({ heading, main, sheet }: Look): string {
 function readScreen({ before, mustBeReady = false }: { before?: Look; mustBeReady?: boolean }): Look | null {
   const text = (element: Element | null | undefined) =>
     (element?.textContent ?? '').replaceAll(/\s+/g, ' ').trim();
-  const main = [...document.querySelectorAll('footer button')].at(-1);
+  // A screen whose code is still coming shows its quiet buttons first; they are never the main action.
+  const isMain = (button: Element) => button.closest('.floor-quiet') === null;
+  const main = [...document.querySelectorAll('footer button')].filter(isMain).at(-1);
   const named = (attribute: string) => text(document.getElementById(main?.getAttribute(attribute) ?? ''));
   const isBusy = main?.getAttribute('aria-busy') === 'true';
   const sheet = document.querySelector('dialog[open]');
