@@ -1,6 +1,6 @@
 import { QuietButton } from '@/components/QuietButton';
 import type { JobRow } from '@/offline/database';
-import { dayWords } from './time-words';
+import { dayWords } from '@/domain/time-words';
 
 export interface JobRowsProps {
   jobs: JobRow[];

@@ -7,7 +7,7 @@ import { findSignature } from '@/domain/job-evidence';
 import { whyNot } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
 import { isOpen } from './current-step';
-import { engineView } from './engine-view';
+import { engineView } from '@/domain/engine-view';
 import { useRun } from './run-context';
 
 /** Nothing can be done on the job now: it has ended, or everything waits for something, and for what. */

@@ -14,7 +14,7 @@ import { JobRows } from './JobRows';
 import { bringWork, finishEnrolment, nameTablet, signIn } from './sign-in';
 import { SignInForm } from './SignInForm';
 import { TabletForm } from './TabletForm';
-import { clockTime } from './time-words';
+import { clockTime } from '@/domain/time-words';
 import { useIsOnline } from './use-is-online';
 import { useUpdate } from './use-update';
 

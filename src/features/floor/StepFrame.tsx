@@ -8,7 +8,7 @@ import { isBlocked } from '@/domain/job-deviation';
 import { uncheckedSignatures } from '@/domain/job-evidence';
 import type { PlanStep } from '@/domain/plan';
 import { comingAfter } from './current-step';
-import { engineView } from './engine-view';
+import { engineView } from '@/domain/engine-view';
 import { lastAct, lastActWords } from './last-act';
 import { useRun, type Run } from './run-context';
 import { useIsPortrait } from './use-is-portrait';

@@ -8,7 +8,7 @@ import { dataOf, doneWords } from './done-words';
 import { useRun } from './run-context';
 import { needsPin } from './shift';
 import { SheetRefusal } from './sheets/SheetRefusal';
-import { dayAndTime } from './time-words';
+import { dayAndTime } from '@/domain/time-words';
 
 const SHORTEST_PIN = 4;
 

@@ -3,7 +3,7 @@ import type { JobState, Kept } from '@/domain/job-state';
 import type { EntryKind } from '@/domain/entry';
 import { doneWords } from './done-words';
 import type { Run } from './run-context';
-import { clockTime } from './time-words';
+import { clockTime } from '@/domain/time-words';
 
 /** Kinds that are said, signed or arranged: they are revoked or corrected, never taken back as an act. */
 const NOT_AN_ACT = new Set<EntryKind>([

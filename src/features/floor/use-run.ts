@@ -9,7 +9,7 @@ import type { PlanStep } from '@/domain/plan';
 import { useFloor, useFloorStore } from './floor-context';
 import type { FloorState } from './floor-store';
 import type { Run, SheetName, TopCell, Worker } from './run-context';
-import { clockTime } from './time-words';
+import { clockTime } from '@/domain/time-words';
 
 interface Parts {
   view: JobView;

@@ -6,7 +6,7 @@ import { findStep } from '@/domain/plan';
 import { barsWords } from '../bars-words';
 import { openWitnessPoints } from '../current-step';
 import { useRun } from '../run-context';
-import { dayAndTime } from '../time-words';
+import { dayAndTime } from '@/domain/time-words';
 import { DispositionForm } from './DispositionForm';
 import { Sheet } from './Sheet';
 

@@ -6,7 +6,7 @@ import { wordsOf } from '@/domain/entry-words';
 import type { RefusedRow } from '@/offline/database';
 import type { SyncStatus } from '@/offline/sync-status';
 import { useRun } from '../run-context';
-import { dayAndTime } from '../time-words';
+import { dayAndTime } from '@/domain/time-words';
 import { Sheet } from './Sheet';
 
 const WIPE_SECONDS = 10;

@@ -2,7 +2,7 @@ import { QuietButton } from '@/components/QuietButton';
 import type { Draft } from '@/offline/record';
 import { actWords, lastAct } from '../last-act';
 import { useRun } from '../run-context';
-import { clockTime } from '../time-words';
+import { clockTime } from '@/domain/time-words';
 import { Sheet } from './Sheet';
 import { SheetRefusal } from './SheetRefusal';
 

@@ -4,7 +4,7 @@ import { MainAction } from '@/components/MainAction';
 import { nextTightening } from '@/domain/job';
 import type { PlanStep } from '@/domain/plan';
 import { useRun } from '../run-context';
-import { dayWords } from '../time-words';
+import { dayWords } from '@/domain/time-words';
 import { offerTools, wantedFor, type Hand, type ToolOffer } from '../tool-choice';
 import { Sheet } from './Sheet';
 import { SheetRefusal } from './SheetRefusal';

@@ -10,7 +10,7 @@ import { shellLots } from '../known-lots';
 import { LotEntry } from '../LotEntry';
 import { RecordAction } from '../RecordAction';
 import { StepFrame } from '../StepFrame';
-import { clearanceLimit } from '../engine-view';
+import { clearanceLimit } from '@/domain/engine-view';
 import { useRun } from '../run-context';
 
 type Half = 'upper' | 'lower';

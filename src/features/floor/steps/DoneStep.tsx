@@ -5,7 +5,7 @@ import { doneWords } from '../done-words';
 import { NextAction } from '../NextAction';
 import { StepFrame } from '../StepFrame';
 import { useRun } from '../run-context';
-import { dayAndTime } from '../time-words';
+import { dayAndTime } from '@/domain/time-words';
 
 /** A step that is done or set aside, as it was recorded. */
 export function DoneStep({ step }: { step: PlanStep }) {

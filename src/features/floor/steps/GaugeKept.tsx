@@ -10,7 +10,7 @@ import { NextAction } from '../NextAction';
 import { StepFrame } from '../StepFrame';
 import { limitOnScale, onScale, taperWords, targetWords, type End } from '../gauge-reading';
 import { useRun } from '../run-context';
-import { clockTime } from '../time-words';
+import { clockTime } from '@/domain/time-words';
 
 interface GaugeKeptProps {
   step: StepOf<'gauge'>;

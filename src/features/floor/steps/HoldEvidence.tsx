@@ -8,7 +8,7 @@ import type { JobState } from '@/domain/job-state';
 import { findStep, rodsOf, type StepOf } from '@/domain/plan';
 import { authorsUnder } from '@/domain/job-signing-rules';
 import { dataOf } from '../done-words';
-import { clearanceLimit } from '../engine-view';
+import { clearanceLimit } from '@/domain/engine-view';
 import { limitOnScale, onScale } from '../gauge-reading';
 import { useRun } from '../run-context';
 

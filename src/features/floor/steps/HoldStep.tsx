@@ -10,7 +10,7 @@ import type { Coverage } from '@/offline/evidence';
 import { NextAction } from '../NextAction';
 import { StepFrame } from '../StepFrame';
 import { useRun } from '../run-context';
-import { dayAndTime } from '../time-words';
+import { dayAndTime } from '@/domain/time-words';
 import { HoldEvidence } from './HoldEvidence';
 import { HoldSign } from './HoldSign';
 import { SignerChoice, type Signer } from './SignerChoice';

@@ -1,7 +1,7 @@
 import { CapDrawing } from '@/components/CapDrawing';
 import { ProgrammeStrip, type PassState } from '@/components/ProgrammeStrip';
 import type { PlanStage, StepOf } from '@/domain/plan';
-import { boltsLeftToRight } from '../engine-view';
+import { boltsLeftToRight } from '@/domain/engine-view';
 import { amountWords, boltName } from '../done-words';
 import { useRun } from '../run-context';
 import type { TightenTouch } from '../tighten-touch';
