@@ -38,6 +38,7 @@ describe('verifyTrail on a whole trail', () => {
       ...{ ok: true, entries: 40, signatures: 36, heads: 2, key: fingerprint },
       ...{ keyCompared: false, headCompared: false },
       notes: ['complaint: erased.', 'Key not compared.', 'Head not compared.'],
+      body,
     });
   });
 

@@ -70,6 +70,8 @@ export type TrailVerdict =
       keyCompared: boolean;
       headCompared: boolean;
       notes: string[];
+      /** What was verified, so that nobody shows or replays another reading of the file. */
+      body: TrailBody;
     }
   | { ok: false; brokenAt: string; why: string }
   | { ok: false; notATrail: true; why: string };
@@ -121,7 +123,7 @@ async function verifyOpened(
   notes.push(...compare(body, key, checks));
   const { length: entries } = body.entries;
   const compared = { keyCompared: checks.key !== undefined, headCompared: checks.head !== undefined };
-  return { ok: true, entries, signatures, heads: body.heads.length, key, ...compared, notes };
+  return { ok: true, entries, signatures, heads: body.heads.length, key, ...compared, notes, body };
 }
 
 /** Every entry but the server's own is signed by its author's key for its tablet; gives how many were. */
@@ -138,7 +140,8 @@ async function verifyAuthors(
     requireWhole(authorKeyId(point, sha256) === owner.id, at, 'Its name is not that of its content.');
     known.set(owner.id, { owner, point });
   }
-  let count = 0;
+  // Signatures are checked side by side: they are most of the work, and a checker may use several threads.
+  const proofs: { at: string; holds: boolean | Promise<boolean> }[] = [];
   for (const { recorded, signature, key: id, content } of entries) {
     const at = `entry ${recorded.seq}`;
     if (isMadeByServer(recorded)) {
@@ -150,11 +153,13 @@ async function verifyAuthors(
     requireWhole(key !== undefined, at, 'The key that it is signed with is not in the file.');
     const isAuthors = key.owner.person === recorded.by && key.owner.device === recorded.device;
     requireWhole(isAuthors, at, 'The key that it is signed with belongs to another person or tablet.');
-    const holds = await verifyP256(key.point, authorMessage(content), requireBytes(signature, 64, at));
-    requireWhole(holds, at, "Its author's signature does not hold.");
-    count += 1;
+    const bytes = requireBytes(signature, 64, at);
+    proofs.push({ at, holds: verifyP256(key.point, authorMessage(content), bytes) });
   }
-  return count;
+  const held = await Promise.all(proofs.map(({ holds }) => holds));
+  const broken = proofs.find((_, index) => held[index] !== true);
+  requireWhole(broken === undefined, broken?.at ?? '', "Its author's signature does not hold.");
+  return proofs.length;
 }
 
 /** Each signed head names an entry that is there with that hash, and is signed by the workshop's key. */

@@ -84,11 +84,11 @@ async function onCopy(
   measure: (pushes: Pushes) => Promise<number>,
 ): Promise<number> {
   await cp(pushes.dataDir, dataDir, { recursive: true });
+  // The demo's own jobs have entries too.
+  const before = countEntries(dataDir);
   const took = await measure({ ...pushes, dataDir });
-  const database = new SqliteDatabase(databaseIn(dataDir), { readonly: true });
-  const kept = database.prepare('select count(*) from job_entry').pluck().get();
-  database.close();
-  if (kept !== ENTRIES + JOBS) throw new Error(`${String(kept)} entries were kept.`);
+  const kept = countEntries(dataDir) - before;
+  if (kept !== ENTRIES) throw new Error(`${kept} entries were kept.`);
   await rm(dataDir, { recursive: true });
   return took;
 }
@@ -132,6 +132,13 @@ async function push(url: string, body: (sentAt: string) => string, authorization
   const { verdicts } = (await response.json()) as PushAnswer;
   const odd = verdicts.find(({ verdict, code }) => verdict !== 'recorded' || code !== undefined);
   if (odd !== undefined) throw new Error(`An entry got another verdict: ${JSON.stringify(odd)}`);
+}
+
+function countEntries(dataDir: string): number {
+  const database = new SqliteDatabase(databaseIn(dataDir), { readonly: true });
+  const count = database.prepare<[], number>('select count(*) from job_entry').pluck().get() ?? 0;
+  database.close();
+  return count;
 }
 
 function databaseIn(dataDir: string): string {
