@@ -141,7 +141,7 @@ async function verifyAuthors(
     known.set(owner.id, { owner, point });
   }
   // Signatures are checked side by side: they are most of the work, and a checker may use several threads.
-  const proofs: { at: string; holds: boolean | Promise<boolean> }[] = [];
+  const proofs: { at: string; holds: Promise<boolean> }[] = [];
   for (const { recorded, signature, key: id, content } of entries) {
     const at = `entry ${recorded.seq}`;
     if (isMadeByServer(recorded)) {
@@ -154,7 +154,7 @@ async function verifyAuthors(
     const isAuthors = key.owner.person === recorded.by && key.owner.device === recorded.device;
     requireWhole(isAuthors, at, 'The key that it is signed with belongs to another person or tablet.');
     const bytes = requireBytes(signature, 64, at);
-    proofs.push({ at, holds: verifyP256(key.point, authorMessage(content), bytes) });
+    proofs.push({ at, holds: Promise.resolve(verifyP256(key.point, authorMessage(content), bytes)) });
   }
   const held = await Promise.all(proofs.map(({ holds }) => holds));
   const broken = proofs.find((_, index) => held[index] !== true);
