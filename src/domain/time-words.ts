@@ -1,7 +1,13 @@
 /* Instants in words, in the workshop's zone. Times are kept in UTC and shown as the workshop's clock has them. */
 
+// Making a format takes milliseconds, and a screen that waits for a finger shows several times of day.
+const formats = new Map<string, Intl.DateTimeFormat>();
+
 function format(at: string | number, zone: string, parts: Intl.DateTimeFormatOptions): string {
-  return new Intl.DateTimeFormat('en-GB', { timeZone: zone, ...parts }).format(new Date(at));
+  const name = `${zone} ${Object.entries(parts).join()}`;
+  const known = formats.get(name) ?? new Intl.DateTimeFormat('en-GB', { timeZone: zone, ...parts });
+  formats.set(name, known);
+  return known.format(new Date(at));
 }
 
 /** The time of day of an instant in the workshop's zone, as "10:42". */

@@ -16,6 +16,11 @@ export interface Device {
 
 /** The device as this browser keeps it; its id is made on the first call. */
 export async function readDevice(s: Pick<Surroundings, 'db' | 'newId'>): Promise<Device> {
+  return (await findDevice(s.db)) ?? makeDevice(s);
+}
+
+/** In a transaction of its own, so that two tabs opened together agree on one id. */
+async function makeDevice(s: Pick<Surroundings, 'db' | 'newId'>): Promise<Device> {
   return s.db.transaction('rw', s.db.meta, async () => {
     const known = await findDevice(s.db);
     if (known) return known;

@@ -71,12 +71,16 @@ export async function recordEntries(
   drafts: readonly Draft[],
   { by, photos = [], now = offline.now() }: RecordOptions,
 ): Promise<RecordOutcome> {
-  const refusal =
-    (await refuseAuthor(offline, drafts, by, now)) ?? (await refuseUnknownPlan(offline, drafts));
+  // Asked for together: a finger is waiting.
+  const [author, plan, found] = await Promise.all([
+    refuseAuthor(offline, drafts, by, now),
+    refuseUnknownPlan(offline, drafts),
+    readGround(offline, by),
+  ]);
+  const refusal = author ?? plan;
   if (refusal) return refusal;
   let view = offline.jobs.get(job) ?? (await offline.jobs.open(job));
-  for (;;) {
-    const ground = await readGround(offline, by);
+  for (let ground = found; ; ground = await readGround(offline, by)) {
     if (!ground) return noWorkshop();
     const drawn = drawUp(offline, view, drafts, { by, now, photos, ...ground });
     if (!drawn.ok) {

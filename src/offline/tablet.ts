@@ -186,7 +186,7 @@ export async function setWorking(s: Surroundings, person: string): Promise<void>
 
 /** May this person make entries on this tablet now? */
 export async function canMakeEntries(s: Surroundings, person: string, now = s.now()): Promise<Verdict> {
-  const session = await s.db.signedIn.get(person);
+  const [session, isKnown] = await Promise.all([s.db.signedIn.get(person), hasKey(s, person)]);
   if (!session || Date.parse(session.sessionUntil) <= now) {
     return {
       ok: false,
@@ -197,7 +197,7 @@ export async function canMakeEntries(s: Surroundings, person: string, now = s.no
       unlock: 'Sign in on this tablet. What was recorded before is safe.',
     };
   }
-  return (await hasKey(s, person)) ? { ok: true } : noKey(session.name);
+  return isKnown ? { ok: true } : noKey(session.name);
 }
 
 /** Has the workshop this person's key for this tablet? Enough to sign with a PIN without a session. */

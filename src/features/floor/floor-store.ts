@@ -182,14 +182,16 @@ async function record(
   const { jobId, working, helpers, isRecording, isSettling, afterwards } = get();
   const author = by ?? working;
   if (jobId === null || author === null || isRecording || isSettling) return false;
-  set({ isRecording: true, refusal: undefined });
   const complete = drafts.map((draft): Draft => ({
     ...draft,
     with: draft.with ?? (by === undefined ? helpers.filter((id) => id !== author) : []),
     ...(afterwards && by === undefined ? { afterwards } : {}),
   }));
   try {
-    const outcome = await recordEntries(offline, jobId, complete, { by: author, photos });
+    const recording = recordEntries(offline, jobId, complete, { by: author, photos });
+    // Drawing "busy" takes longer than writing: the record is on its way first.
+    set({ isRecording: true, refusal: undefined });
+    const outcome = await recording;
     if (!outcome.ok) {
       set({ isRecording: false, refusal: { why: outcome.why, unlock: outcome.unlock } });
       return false;
