@@ -45,11 +45,21 @@ describe('the Floor between two touches', () => {
   it('moves on only after the record is on the disk', async () => {
     const { store, offline } = await openFloor();
     const done = store.getState().record([rags]);
-    expect(store.getState()).toMatchObject({ flash: 0, isRecording: true });
+    expect(store.getState()).toMatchObject({ flash: 0, isRecording: false });
+    expect(await store.getState().record([kit])).toBe(false);
     expect(await done).toBe(true);
     expect(await offline.db.outbox.count()).toBe(1);
     expect(store.getState()).toMatchObject({ flash: 1, isRecording: false });
     expect(store.getState().view?.state.tallies.rags).toEqual({ out: 12 });
+  });
+
+  it('says that it is writing only where the disk is slow', async () => {
+    const { store, settle } = await openFloor();
+    const done = store.getState().record([rags]);
+    settle();
+    expect(store.getState().isRecording).toBe(true);
+    expect(await done).toBe(true);
+    expect(store.getState().isRecording).toBe(false);
   });
 
   it('does not count a second touch within half a second', async () => {

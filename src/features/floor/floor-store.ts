@@ -15,6 +15,9 @@ import { findStep, type PlanStep } from '@/domain/plan';
 import { following, NOWHERE, staysAfter, type FloorPlace } from './current-step';
 import type { RecordOptions } from './run-context';
 
+/** A record that takes longer than this shows that it is being written. */
+const SLOW_MS = 100;
+
 /** A second touch within this time is the same touch. */
 export const TOUCH_GAP_MS = 500;
 
@@ -65,6 +68,7 @@ type Get = FloorStore['getState'];
 /** The Floor of one page on the tablet's records. */
 export function createFloorStore(offline: Offline): FloorStore {
   return createStore<FloorState>((set, get) => {
+    const writing: Writing = { isUnderWay: false };
     let stopWatching: (() => void) | undefined;
     return {
       offline,
@@ -100,7 +104,7 @@ export function createFloorStore(offline: Offline): FloorStore {
         stopWatching = undefined;
         set({ jobId: null, view: undefined, trouble: undefined, refusal: undefined });
       },
-      record: (drafts, options) => record(offline, drafts, options, set, get),
+      record: (drafts, options) => record(offline, drafts, options, { set, get, writing }),
       goTo: (step) => movePlace({ step, isVisit: true }, set, get),
       goOn: (from) => goOn(from, set, get),
       showAction: (action) => showAction(action, set, get),
@@ -172,26 +176,29 @@ function showAction(action: string, set: Set, get: Get): void {
   movePlace({ ...place, action }, set, get);
 }
 
+/** One record at a time. Not part of the state: to draw it takes longer than the disk does. */
+interface Writing {
+  isUnderWay: boolean;
+}
+
 async function record(
   offline: Offline,
   drafts: Draft[],
   { by, photos }: RecordOptions = {},
-  set: Set,
-  get: Get,
+  { set, get, writing }: { set: Set; get: Get; writing: Writing },
 ): Promise<boolean> {
-  const { jobId, working, helpers, isRecording, isSettling, afterwards } = get();
+  const { jobId, working, helpers, isSettling, afterwards } = get();
   const author = by ?? working;
-  if (jobId === null || author === null || isRecording || isSettling) return false;
+  if (jobId === null || author === null || writing.isUnderWay || isSettling) return false;
+  writing.isUnderWay = true;
+  const endSlow = offline.after(SLOW_MS, () => set({ isRecording: true }));
   const complete = drafts.map((draft): Draft => ({
     ...draft,
     with: draft.with ?? (by === undefined ? helpers.filter((id) => id !== author) : []),
     ...(afterwards && by === undefined ? { afterwards } : {}),
   }));
   try {
-    const recording = recordEntries(offline, jobId, complete, { by: author, photos });
-    // Drawing "busy" takes longer than writing: the record is on its way first.
-    set({ isRecording: true, refusal: undefined });
-    const outcome = await recording;
+    const outcome = await recordEntries(offline, jobId, complete, { by: author, photos });
     if (!outcome.ok) {
       set({ isRecording: false, refusal: { why: outcome.why, unlock: outcome.unlock } });
       return false;
@@ -209,6 +216,9 @@ async function record(
       },
     });
     return false;
+  } finally {
+    endSlow();
+    writing.isUnderWay = false;
   }
 }
 
@@ -217,6 +227,7 @@ function settle(offline: Offline, set: Set): void {
   set((state) => ({
     isRecording: false,
     isSettling: true,
+    refusal: undefined,
     flash: state.flash + 1,
     isAway: false,
     afterwards: undefined,
