@@ -2,12 +2,14 @@ import { type Kysely, type MigrationProvider, Migrator } from 'kysely';
 import * as signIn from './migrations/0001-sign-in';
 import * as workshop from './migrations/0002-workshop';
 import * as jobs from './migrations/0003-jobs';
+import * as headsAndPhotos from './migrations/0004-heads-photos';
 
 /** Frozen once merged: a change to the tables is a new file here, never an edit of an old one. */
 const migrations = {
   '0001-sign-in': signIn,
   '0002-workshop': workshop,
   '0003-jobs': jobs,
+  '0004-heads-photos': headsAndPhotos,
 };
 
 const provider: MigrationProvider = { getMigrations: () => Promise.resolve(migrations) };

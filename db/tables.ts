@@ -162,7 +162,8 @@ export interface WorkshopEntryTable {
   seq: Fixed<number>;
   id: Fixed<string>;
   kind: Fixed<string>;
-  by_person: Fixed<string>;
+  /** None for an entry that the server makes for the record itself. */
+  by_person: Fixed<string | null>;
   at: Fixed<string>;
   body: Fixed<string>;
   content_hash: Fixed<string>;

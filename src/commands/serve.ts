@@ -3,6 +3,7 @@ import type { Server } from 'node:http';
 import path from 'node:path';
 import { pathToFileURL } from 'node:url';
 import { closeApp } from '@/server/compose';
+import { keepHeadsSigned } from '@/server/daily-heads';
 import { readSettings, SettingsError, type Settings } from '@/server/settings';
 import { greeting } from './greeting';
 import { createHttpServer, type PageHandler } from './http/http-server';
@@ -23,6 +24,7 @@ export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void>
   const settings = readSettings(env, root);
   const built = path.join(root, 'dist');
   const app = await prepareApp(settings);
+  const stopSigningHeads = keepHeadsSigned(app);
   try {
     const entry = pathToFileURL(path.join(built, 'server', 'entry.mjs')).href;
     const { handler } = (await import(/* @vite-ignore */ entry)) as { handler: PageHandler };
@@ -33,6 +35,7 @@ export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void>
     await stopSignal(env);
     await drain(server);
   } finally {
+    await stopSigningHeads();
     await closeApp(app);
   }
 }

@@ -11,11 +11,24 @@ export interface Actor {
   sessionId: string | undefined;
 }
 
+/** The server itself, for what it notes of its own accord; it has no roles and may ask for nothing. */
+export const THE_WORKSHOP: Actor = {
+  personId: 'workshop',
+  name: 'Workshop',
+  roles: [],
+  sessionId: undefined,
+};
+
 const rolesText = z.array(z.enum(ROLES)).min(1);
 
 /** Reads the roles of a person as the database holds them. */
 export function parseRoles(text: string): Role[] {
   return rolesText.parse(JSON.parse(text));
+}
+
+/** The roles among these words that the workshop knows. */
+export function parseKnownRoles(words: readonly string[]): Role[] {
+  return ROLES.filter((role) => words.includes(role));
 }
 
 /** Whether the person has one of these roles. */

@@ -10,29 +10,34 @@ import { appendWorkshopEntry } from './workshop-trail';
 /** The trail's name of the workshop's own trail; every other trail is named by its job. */
 export const WORKSHOP_TRAIL = 'workshop';
 
+interface Signing {
+  clock: Clock;
+  ids: Ids;
+  keys: Keys;
+}
+
 /** Signs the newest entry of a trail; a head that is signed already is given out again. */
-export async function signHead(
-  trx: Trx,
-  actor: Actor,
-  trail: string,
-  app: { clock: Clock; ids: Ids; keys: Keys },
-): Promise<SignedHead> {
+export async function signHead(trx: Trx, actor: Actor, trail: string, app: Signing): Promise<SignedHead> {
   const last = await findLast(trx, trail);
   if (last === undefined) throw notFound('This trail');
+  return signHeadAt(trx, actor, { trail, ...last }, app);
+}
+
+/** Signs one entry of a trail; a head that is signed already is given out again. */
+export async function signHeadAt(
+  trx: Trx,
+  actor: Actor,
+  { trail, seq, hash }: { trail: string; seq: number; hash: string },
+  app: Signing,
+): Promise<SignedHead> {
   const known = await trx
     .selectFrom('signed_head')
     .selectAll()
     .where('trail', '=', trail)
-    .where('seq', '=', last.seq)
+    .where('seq', '=', seq)
     .executeTakeFirst();
   if (known !== undefined) return known;
-  const unsigned = {
-    trail,
-    seq: last.seq,
-    hash: last.hash,
-    at: stamp(app.clock),
-    key: app.keys.head.fingerprint,
-  };
+  const unsigned = { trail, seq, hash, at: stamp(app.clock), key: app.keys.head.fingerprint };
   const head = { ...unsigned, signature: signWithHeadKey(app.keys.head, headMessage(unsigned)) };
   await trx.insertInto('signed_head').values(head).execute();
   // The workshop's trail remembers the heads of jobs, so a job cannot vanish; its own head would never end.

@@ -1,7 +1,6 @@
 import type { Entry, EntryOf } from '@/domain/entry';
 import { evidenceFor } from '@/domain/job';
 import { evidenceDigest } from '@/domain/job-evidence';
-import { findStep } from '@/domain/plan';
 import { stamp } from './clock';
 import type { App } from './compose';
 import { sha256Hex } from './crypto';
@@ -9,8 +8,7 @@ import { AppError } from './errors';
 import { type JobFold, UNHEARD } from './job-fold';
 import { checkPin } from './pins';
 import { openSealed } from './sealing';
-import { signHead } from './signed-heads';
-import { type Batch, flush, type PinResult, type ProvedItem } from './sync-batch';
+import type { Batch, PinResult, ProvedItem } from './sync-batch';
 
 /*
  * A signature binds to exactly the evidence that its signer was shown. The server waits until it holds all of
@@ -83,16 +81,4 @@ export async function tryPin(app: App, item: ProvedItem): Promise<PinResult> {
     case 'none set':
       return { result: 'none set' };
   }
-}
-
-/** Signs the trail's head after a class A hold point and at handover, in the transaction that records it. */
-export async function signHeadAfter(batch: Batch, fold: JobFold, entry: Entry): Promise<void> {
-  const step = entry.step === undefined ? undefined : findStep(fold.state.plan, entry.step);
-  const isHoldPoint = entry.kind === 'signed' && step?.class === 'A';
-  if (!isHoldPoint && entry.kind !== 'handed-over') return;
-  await flush(batch);
-  const person = batch.history.at(batch.history.seq).people.find(({ id }) => id === entry.by);
-  const roles = (person?.roles ?? []) as Parameters<typeof signHead>[1]['roles'];
-  const signer = { personId: entry.by, name: entry.author.name, roles, sessionId: undefined };
-  await signHead(batch.trx, signer, fold.job, batch.app);
 }

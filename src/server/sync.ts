@@ -4,10 +4,11 @@ import { stamp } from './clock';
 import type { App } from './compose';
 import type { Db, Trx } from './database';
 import { type Device, noteHeardFrom } from './devices';
+import { signDueHeads } from './due-heads';
 import { AppError } from './errors';
 import { findFold, type JobFold, rememberFolds, storeFolds } from './job-fold';
 import { closeStates } from './job-rows';
-import { signHeadAfter, tryPin } from './signing';
+import { tryPin } from './signing';
 import {
   type Batch,
   beginBatch,
@@ -135,6 +136,10 @@ async function oneRound(
     };
   });
   rememberFolds(app.db, folds);
+  await signDueHeads(
+    app,
+    folds.map(({ job }) => job),
+  );
   for (const [index, verdict] of found) verdicts.set(index, verdict);
   return result;
 }
@@ -192,8 +197,6 @@ async function judgeSafely(batch: Batch, item: ReadItem): Promise<EntryVerdict |
     return unexpected(item.id);
   }
   if (!('needsPin' in verdict) && verdict.verdict === 'recorded' && item.read.ok) {
-    const fold = await foldOf(batch, item.read.entry.job);
-    if (fold !== undefined) await signHeadAfter(batch, fold, item.read.entry);
     await followPlan(batch, item.read.entry);
   }
   return verdict;

@@ -1,7 +1,7 @@
 import { canonicalJson } from '@/domain/canonical';
 import { chainHash, contentHash } from '@/domain/trail';
 import { NO_PREVIOUS } from '@/domain/trail-chain';
-import { type Actor, requireRole } from './actor';
+import { type Actor, requireRole, THE_WORKSHOP } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
 import { sha256Hex } from './crypto';
 import type { Db, Trx } from './database';
@@ -97,7 +97,7 @@ export async function appendWorkshopEntry(
       seq: recorded.seq,
       id: recorded.id,
       kind: recorded.kind,
-      by_person: recorded.by,
+      by_person: recorded.by === THE_WORKSHOP.personId ? null : recorded.by,
       at,
       body,
       content_hash: contentHash(authored, sha256Hex),

@@ -3,6 +3,11 @@ import { sql } from 'kysely';
 import { describe, expect, it } from 'vitest';
 import { authOptions } from '@/server/auth';
 import { closeApp, openApp } from '@/server/compose';
+import { openDatabase } from '@/server/database';
+import * as signIn from '@db/migrations/0001-sign-in';
+import * as workshop from '@db/migrations/0002-workshop';
+import * as jobs from '@db/migrations/0003-jobs';
+import * as headsAndPhotos from '@db/migrations/0004-heads-photos';
 import { openTestApp } from '../support/database';
 
 describe('the tables', () => {
@@ -68,5 +73,31 @@ describe('folded states that are stored', () => {
     const left = await again.db.selectFrom('job_fold').select('job_id').execute();
     await closeApp(again);
     expect(left).toEqual([]);
+  });
+});
+
+describe('the tables of an older version', () => {
+  it('keep the workshop’s trail as it was, and guard it as before', async () => {
+    const db = openDatabase(':memory:');
+    const untyped = db as never;
+    for (const { up } of [signIn, workshop, jobs]) await up(untyped);
+    const run = (statement: string) => sql.raw(statement).execute(db);
+    await run(`insert into "user" values ('p', 'P', 'p@witnessmark.example', 1, null, '', '')`);
+    await run(`insert into person values ('p', 'P', 'p@witnessmark.example', '["owner"]', 1, '', null)`);
+    for (const seq of [1, 2, 3])
+      await run(`insert into workshop_entry values (${seq}, 'i${seq}', 'k', 'p', '', '{}', 'c', 'h${seq}')`);
+    const before = await db.selectFrom('workshop_entry').selectAll().orderBy('seq').execute();
+    await headsAndPhotos.up(untyped);
+    expect(await db.selectFrom('workshop_entry').selectAll().orderBy('seq').execute()).toEqual(before);
+    await expect(run(`update workshop_entry set at = 'x' where seq = 2`)).rejects.toThrow(/never changed/);
+    await expect(run(`delete from workshop_entry where seq = 3`)).rejects.toThrow(/never deleted/);
+    await expect(
+      run(`insert into workshop_entry values (9, 'i9', 'k', 'p', '', '{}', 'c', 'h9')`),
+    ).rejects.toThrow(/no gaps/);
+    await expect(
+      run(`insert into workshop_entry values (4, 'i4', 'k', 'nobody', '', '{}', 'c', 'h4')`),
+    ).rejects.toThrow(/FOREIGN KEY/);
+    await run(`insert into workshop_entry values (4, 'i4', 'k', null, '', '{}', 'c', 'h4')`);
+    await db.destroy();
   });
 });
