@@ -92,7 +92,8 @@ function checkRods(plan: Plan, tell: TellAt): void {
       }
     }
     if (step.rod === undefined) continue;
-    const rod = now(step.rod);
+    // A reading takes the cap off first, and a fit puts it on first: what such a step sets holds while it is done.
+    const rod = { ...now(step.rod), ...(setsFirst(step) ? step.sets : {}) };
     if (step.kind === 'gauge' && (rod.cap === 'on' || rod.thread === 'gone')) {
       tell(
         step.id,
@@ -129,6 +130,10 @@ function checkRods(plan: Plan, tell: TellAt): void {
       'Close every rod: cap on, shells oiled, thread gone.',
     );
   }
+}
+
+function setsFirst(step: PlanStep): boolean {
+  return step.kind === 'gauge' || step.kind === 'tighten';
 }
 
 function whyOpen({ cap, shells, thread }: RodNow): string | undefined {

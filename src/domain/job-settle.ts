@@ -291,12 +291,17 @@ function settleSignatures(state: JobState, step: StepOf<'hold'>): JobState {
   return next;
 }
 
+/** Whether the step has changed its rod: a reading has from its first end on, which is read with the cap off. */
+function hasEffect(step: PlanStep, status: StepStatus): boolean {
+  return status === 'done' || (step.kind === 'gauge' && status === 'begun');
+}
+
 /** A done step changes the rod; one that is no longer done changes nothing back by itself. */
 function settleEffects(state: JobState, step: PlanStep, before: StepStatus, after: StepStatus): JobState {
   const { rod, sets } = step;
   let next = state;
   const last = activeEntries(state.steps[step.id]).at(-1);
-  if (sets && rod !== undefined && after === 'done' && before !== 'done' && last) {
+  if (sets && rod !== undefined && hasEffect(step, after) && !hasEffect(step, before) && last) {
     next = { ...next, effects: [...next.effects, { entry: last.id, rod, sets }] };
   }
   if (rod === undefined || (next.effects === state.effects && !sets)) return next;

@@ -91,12 +91,16 @@ describe.each(routes)('%s', (route) => {
     const order: [step: string, words: RegExp][] = [
       ['cap-off', /cap off/],
       ['new-shells', /Bores clean and dry, backs clean and dry, tabs seated[\s\S]*wiped free of oil/],
-      ['lay-thread', /As long as the shell is wide[\s\S]*not over the edge[\s\S]*6 mm off the middle/],
-      ['cap-on', /cap on by its marks/],
+      [
+        'lay-thread',
+        /As long as the shell is wide[\s\S]*not over the edge[\s\S]*6 mm off the middle[\s\S]*cap on by its marks/,
+      ],
       ['squeeze', /No impact wrench/],
-      ['cap-off-to-read', /thread sticks to pin or shell/],
-      ['gauge', /At its widest[\s\S]*Front first, then rear/],
-      ['clean-and-close', /Every trace of thread off[\s\S]*Oil pin and shell faces/],
+      [
+        'gauge',
+        /Cap off straight down[\s\S]*thread sticks to pin or shell[\s\S]*At its widest[\s\S]*Front first, then rear/,
+      ],
+      ['nip', /Every trace of thread off[\s\S]*Oil pin and shell faces[\s\S]*Cap on by its marks/],
     ];
     for (const rod of rodsOf(plan)) {
       const places = order.map(([step, words]) => {
