@@ -77,7 +77,7 @@ async function prepareJobs(workshop: BenchWorkshop): Promise<Prepared> {
   await workOn(workshop, long, {
     entries: ENTRIES,
     signs: true,
-    next: ({ kind }, made) => kind === 'do' && made > ENTRIES * 0.8,
+    next: ({ kind }, made) => kind === 'do' && made > ENTRIES * 0.5,
   });
   await workshop.tablet.sync();
   return { tightening, long };
