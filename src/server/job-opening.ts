@@ -10,6 +10,7 @@ import type { Db, Trx } from './database';
 import { AppError } from './errors';
 import { beginFold, rememberFolds } from './job-fold';
 import { type Identity, requireCommitted, storeIdentity } from './job-identity';
+import { makeUpLost } from './lost-workshop';
 import { compileReleased, getPlan } from './plans';
 import type { CanonicalField } from './recorded-text';
 import { readReleased } from './released-documents';
@@ -17,7 +18,7 @@ import { beginBatch, type Batch, flush, record } from './sync-batch';
 import { type ReadItem, readItem } from './sync-read';
 import { getWorkshopDetails } from './workshop';
 import { readWorkshopHistory } from './workshop-history';
-import { appendWorkshopEntry } from './workshop-trail';
+import { appendWorkshopEntry, workshopSeq } from './workshop-trail';
 
 export interface Opening {
   entry: unknown;
@@ -53,6 +54,7 @@ export async function openJob(
   const { identity, people, ...sent } = opening;
   const item = readItem(sent, 0);
   const { entry, fields } = requireOpened(item, actor);
+  await requireKnownWorkshop(app, item, entry);
   const { result, fold } = await app.db.transaction().execute(async (trx) => {
     const known = await findOpened(trx, item, entry);
     if (known !== undefined) return { result: { ...known, isNew: false }, fold: undefined };
@@ -86,6 +88,15 @@ export async function openJob(
   });
   if (fold !== undefined) rememberFolds(app.db, [fold]);
   return result;
+}
+
+/** What is opened names a workshop entry that is there, or that a restore took back and that is made up for. */
+async function requireKnownWorkshop(app: App, item: ReadItem, entry: Entry): Promise<void> {
+  if (entry.workshop <= (await workshopSeq(app.db))) return;
+  await requireSigned(app.db, item, entry);
+  await makeUpLost(app, entry.device, entry.workshop);
+  if (entry.workshop <= (await workshopSeq(app.db))) return;
+  throw wrong('entry.workshop', 'It names an entry of the workshop that was never there. Reload the page.');
 }
 
 async function openingBatch(
@@ -151,8 +162,8 @@ async function findOpened(
   return { id: row.job_id, number: row.number };
 }
 
-async function requireSigned(trx: Trx, item: ReadItem, entry: Entry): Promise<void> {
-  const key = item.carried === undefined ? undefined : await findKey(trx, item.carried.key);
+async function requireSigned(db: Db, item: ReadItem, entry: Entry): Promise<void> {
+  const key = item.carried === undefined ? undefined : await findKey(db, item.carried.key);
   if (item.carried === undefined || key === undefined) {
     throw wrong('key', 'This key is not enrolled. Sign in on this browser again, so that it enrols one.');
   }

@@ -97,6 +97,9 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
   if (!(await hadPlan(batch.trx, fold, entry.plan))) {
     return refuseIt('plan-unknown', 'It was made under a plan that this job never had.');
   }
+  if (entry.workshop > batch.history.seq) {
+    return refuseIt('workshop-unknown', 'It names an entry of the workshop that was never there.');
+  }
   if (entry.kind === 'plan-moved' && !(await isPlanKept(batch, entry.data.to))) {
     return refuseIt('plan-unknown', 'The plan that the job is to move to is not known.');
   }

@@ -6,7 +6,7 @@ import type { Db, Trx } from './database';
 import { type Device, noteHeardFrom } from './devices';
 import { signDueHeads } from './due-heads';
 import { AppError } from './errors';
-import { findFold, type JobFold, rememberFolds, storeFolds } from './job-fold';
+import { findFold, type JobFold, rememberFolds, storeFolds, UNHEARD } from './job-fold';
 import { closeStates } from './job-rows';
 import { tryPin } from './signing';
 import {
@@ -21,6 +21,7 @@ import {
 import type { EntryVerdict, SyncBody } from './sync-body';
 import { maySee, pullJobs, type PulledJob } from './sync-pull';
 import { readKeys } from './sync-known';
+import { makeUpLost } from './lost-workshop';
 import { type ReadItem, readItem } from './sync-read';
 import { judgeItem, type NeedsPin } from './sync-verdict';
 import { readWorkshopHistory } from './workshop-history';
@@ -54,6 +55,7 @@ export async function syncTablet(app: App, device: Device, body: SyncBody): Prom
   const verdicts = new Map<number, EntryVerdict>();
   const pins = new Map<string, PinResult>();
   const proofs = await proveSignatures(app.db, items);
+  await makeUpLost(app, device.id, newestNamed(items, proofs));
   let pulled: Pulled | undefined;
   let isCareful = false;
   while (pulled === undefined) {
@@ -73,6 +75,15 @@ export async function syncTablet(app: App, device: Device, body: SyncBody): Prom
     ...pulled,
     clockOffsetMs,
   };
+}
+
+/** The newest workshop entry that an entry of a known author names. */
+function newestNamed(items: readonly ReadItem[], proofs: ReadonlyMap<number, boolean>): number {
+  return items.reduce(
+    (newest, { index, read }) =>
+      read.ok && proofs.get(index) === true ? Math.max(newest, read.entry.workshop) : newest,
+    0,
+  );
 }
 
 interface Pulled {
@@ -227,17 +238,17 @@ function unexpected(id: string | null): EntryVerdict {
 
 /** A tablet that holds what the server does not: the server was restored from a backup, and says so once. */
 async function noteRestores(batch: Batch, body: SyncBody): Promise<void> {
+  const { device, trx } = batch;
+  if (device === undefined) return;
   for (const { id, have } of body.jobs) {
     if (have === null) continue;
     const fold = await foldOf(batch, id);
-    if (fold === undefined || (await holds(batch.trx, id, have))) continue;
+    if (fold === undefined || (await holds(trx, id, have))) continue;
     // A job that the tablet may not see tells it nothing, and keeps no trace of its asking.
-    if (batch.device === undefined || !(await maySee(batch.trx, batch.device, id))) continue;
-    const reason = `A tablet holds entry ${have.seq} (${have.hash.slice(0, 16)}) that the server does not hold.`;
-    if (!isNoted(fold, reason)) {
-      const data = { after: fold.seq, reason };
-      recordByServer(batch, fold, { id: batch.app.ids.next(), kind: 'restored', data });
-    }
+    if (isNoted(fold, device.id) || !(await maySee(trx, device, id))) continue;
+    const reason = `The tablet ${device.name} (${device.id}) holds entry ${have.seq} (${have.hash.slice(0, 16)}), and the server does not.`;
+    const data = { after: fold.seq, reason };
+    recordByServer(batch, fold, { id: batch.app.ids.next(), kind: 'restored', data });
   }
 }
 
@@ -251,8 +262,14 @@ async function holds(trx: Trx, job: string, have: { seq: number; hash: string })
   return row?.hash === have.hash;
 }
 
-function isNoted(fold: JobFold, reason: string): boolean {
+/**
+ * Noted already for this tablet, and nothing of it was recorded since: whatever it says to hold, it is the same
+ * restore, or a tablet that wants the trail filled.
+ */
+function isNoted(fold: JobFold, device: string): boolean {
+  const { seq: lastOwn } = fold.heard.get(device) ?? UNHEARD;
   return fold.state.unstepped.some(
-    (kept) => kept.kind === 'restored' && 'reason' in kept.data && kept.data.reason === reason,
+    ({ kind, data, seq = 0 }) =>
+      kind === 'restored' && 'reason' in data && data.reason?.includes(device) === true && seq > lastOwn,
   );
 }

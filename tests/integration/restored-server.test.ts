@@ -1,0 +1,150 @@
+import { beforeEach, describe, expect, it, vi } from 'vitest';
+import { GET as getExport } from '@/pages/api/jobs/[id]/export';
+import { POST as postJobs } from '@/pages/api/jobs/index';
+import { verifyTrail } from '@/domain/trail';
+import { nodeChecks } from '@/server/trail-checks';
+import { setWorkshop } from '@/server/workshop';
+import type { ScriptedEntry } from '@db/scripted-work';
+import {
+  ask,
+  enrolTestTablet,
+  type OpenedJob,
+  openShop,
+  openTestJob,
+  prepareOpening,
+  pushTo,
+  type Shop,
+  type TestTablet,
+  trailOf,
+} from '../support/tablet';
+
+vi.setConfig({ testTimeout: 30_000, hookTimeout: 30_000 });
+
+let shop: Shop;
+let tablet: TestTablet;
+let job: OpenedJob;
+
+beforeEach(async () => {
+  shop = await openShop();
+  const { supervisor, ann, ben } = shop.people;
+  tablet = await enrolTestTablet(shop, [supervisor, ann, ben]);
+  job = await openTestJob(tablet, supervisor);
+});
+
+const remark = (words: string) =>
+  ({ kind: 'deviation-raised', data: { class: 'C', words, blocks: false } }) satisfies Partial<ScriptedEntry>;
+
+const raise = (words: string) => tablet.record(job.id, remark(words), { by: shop.people.ann });
+
+const workshopRows = () => shop.app.db.selectFrom('workshop_entry').selectAll().orderBy('seq').execute();
+
+const verify = async () => {
+  const exported = await ask(getExport, { as: shop.people.supervisor, params: { id: job.id } });
+  return verifyTrail(exported.text, nodeChecks());
+};
+
+describe('the note of a restore', () => {
+  const asksWith = (from: TestTablet, seq: number, hash: string) =>
+    pushTo(from.credential, {
+      device: from.device,
+      sentAt: new Date(from.now).toISOString(),
+      jobs: [{ id: job.id, have: { seq, hash: hash.repeat(64) } }],
+      entries: [],
+    });
+  const kinds = async () => (await trailOf(shop.app, job.id)).map(({ kind }) => kind);
+
+  it('is one for a tablet, whatever it says to hold', async () => {
+    for (const hash of ['a', 'b', 'c', 'd']) {
+      for (const seq of [1, 2, 3, 40]) await asksWith(tablet, seq, hash);
+    }
+    expect(await kinds()).toEqual(['opened', 'restored']);
+  });
+
+  it('is one for each tablet', async () => {
+    const other = await enrolTestTablet(shop, [shop.people.ben]);
+    for (const from of [tablet, other, tablet, other]) await asksWith(from, 40, 'a');
+    expect(await kinds()).toEqual(['opened', 'restored', 'restored']);
+  });
+
+  it('comes again for another restore, after the tablet has come back into line', async () => {
+    await asksWith(tablet, 40, 'a');
+    await raise('one');
+    await tablet.sync();
+    await asksWith(tablet, 50, 'b');
+    await asksWith(tablet, 51, 'c');
+    expect(await kinds()).toEqual(['opened', 'restored', 'deviation-raised', 'restored']);
+  });
+});
+
+describe('a workshop entry that a restore took back', () => {
+  it('is made up for where an entry names it, so that the export stays whole', async () => {
+    const before = (await workshopRows()).length;
+    tablet.workshop = { ...tablet.workshop, seq: before + 7 };
+    await raise('one');
+    await raise('two');
+    expect(await tablet.sync()).toMatchObject([{ verdict: 'recorded' }, { verdict: 'recorded' }]);
+    const rows = (await workshopRows()).slice(before);
+    // The seven that were lost, and one more that makes the tablet fetch the workshop again.
+    expect(rows.map(({ kind }) => kind)).toEqual(Array.from({ length: 8 }, () => 'restored'));
+    expect(JSON.parse(rows[0]!.body)).toMatchObject({
+      by: 'workshop',
+      data: { after: before, upTo: before + 7, tablet: tablet.device },
+    });
+    expect(await verify()).toMatchObject({ ok: true, entries: 3 });
+    await raise('three');
+    await tablet.sync();
+    expect((await workshopRows()).filter(({ kind }) => kind === 'restored')).toHaveLength(8);
+  });
+
+  it('is never a number that something new has taken', async () => {
+    const before = (await workshopRows()).length;
+    tablet.workshop = { ...tablet.workshop, seq: before + 3 };
+    await raise('one');
+    await tablet.sync();
+    const { owner } = shop.people;
+    await shop.app.db
+      .transaction()
+      .execute((trx) => setWorkshop(trx, owner, { name: 'Testwell', zone: 'UTC' }, shop.app));
+    expect((await workshopRows()).at(-1)).toMatchObject({ kind: 'workshop-set', seq: before + 5 });
+  });
+
+  it('that can never have been there is refused, and nothing is made up', async () => {
+    const before = (await workshopRows()).length;
+    tablet.workshop = { ...tablet.workshop, seq: 1_000_000_000 };
+    await raise('one');
+    expect(await tablet.sync()).toMatchObject([{ verdict: 'refused', code: 'workshop-unknown' }]);
+    expect(await workshopRows()).toHaveLength(before);
+    expect(await verify()).toMatchObject({ ok: true });
+  });
+
+  it('is not made up for on the word of an entry whose signature is wrong', async () => {
+    const before = (await workshopRows()).length;
+    tablet.workshop = { ...tablet.workshop, seq: before + 7 };
+    await raise('one');
+    const [row] = tablet.held(job.id).outbox;
+    row!.signature = `${row!.signature.slice(0, -4)}AAAA`;
+    expect(await tablet.sync()).toMatchObject([{ verdict: 'refused', code: 'signature-wrong' }]);
+    expect(await workshopRows()).toHaveLength(before);
+  });
+
+  it('is made up for when a job is opened that names it, and not for a number that was never there', async () => {
+    const { supervisor } = shop.people;
+    const open = async (seq: number) => {
+      const { body } = await prepareOpening(tablet, supervisor, {
+        change: (entry) => ({ ...entry, workshop: seq }),
+      });
+      return ask(postJobs, { as: supervisor, body });
+    };
+    const before = (await workshopRows()).length;
+    expect(await open(before + 9000)).toMatchObject({
+      status: 400,
+      body: { error: { field: 'entry.workshop' } },
+    });
+    expect(await workshopRows()).toHaveLength(before);
+    expect((await open(before + 4)).status).toBe(201);
+    expect((await workshopRows()).slice(before).map(({ kind }) => kind)).toEqual([
+      ...Array.from({ length: 5 }, () => 'restored'),
+      'job-opened',
+    ]);
+  });
+});
