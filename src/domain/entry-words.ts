@@ -2,7 +2,7 @@
  * An entry in words, the same on the Floor, the Trail and in print. It never claims more than the record
  * knows: "confirmed at 110°" when somebody said so, "read 112°" when a value was keyed in or sent.
  */
-import type { Entry, EntryOf } from './entry';
+import type { Entry, EntryData, EntryOf } from './entry';
 import { findStep, type Plan } from './plan';
 
 /** What the entry says, in one line without its author and time. */
@@ -186,9 +186,17 @@ function recordWords(entry: Entry, plan: Plan): string {
       return `A tablet was declared lost; its records from number ${entry.data.from} on never came`;
     case 'restored':
       return `The server was restored to entry ${entry.data.after}: ${entry.data.reason}`;
+    case 'erased':
+      return `Erased for good (${erasedWords(entry.data)}): ${entry.data.reason}`;
     default:
       return title;
   }
+}
+
+function erasedWords({ fields, photographs }: EntryData<'erased'>): string {
+  const count = photographs.length;
+  const pictures = count === 0 ? [] : [`${count} photograph${count === 1 ? '' : 's'}`];
+  return [...fields, ...pictures].join(', ');
 }
 
 function withNote(words: string, note: string | undefined): string {

@@ -197,13 +197,21 @@ export const entryData = {
   refused: z.strictObject({ content: sha256Hex, code: text(60), reason: note, author: z.optional(text(60)) }),
   'tablet-lost': z.strictObject({ tablet: uuid, from: whole }),
   restored: z.strictObject({ after: whole, reason: note }),
+  /** Personal fields and marked photographs that were deleted; what is left proves that they were. */
+  erased: z.strictObject({
+    fields: z.array(text(40)),
+    photographs: z.array(sha256Hex),
+    reason: note,
+    /** Who decided it. */
+    decidedBy: text(60),
+  }),
 } as const;
 
 export type EntryKind = keyof typeof entryData;
 export type EntryData<K extends EntryKind> = z.infer<(typeof entryData)[K]>;
 
 /** Kinds that only the server makes. */
-export const officeKinds = ['refused', 'tablet-lost', 'restored'] as const satisfies EntryKind[];
+export const officeKinds = ['refused', 'tablet-lost', 'restored', 'erased'] as const satisfies EntryKind[];
 
 /** Judgements bind to evidence and are refused when it changed; every other kind records what happened. */
 export const judgementKinds = [

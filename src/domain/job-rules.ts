@@ -99,6 +99,7 @@ function whyNotRole(kind: EntryKind, roles: string[]): Verdict {
     case 'refused':
     case 'tablet-lost':
     case 'restored':
+    case 'erased':
       return no('office-kind', 'Only the server makes this kind of entry.');
     default:
       return may('technician', 'supervisor');

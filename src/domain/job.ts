@@ -198,6 +198,8 @@ function applyToJob(state: JobState, entry: Entry, kept: Kept): JobState | undef
       return remark(state, kept, 'refused', `Something was refused: ${entry.data.reason}`);
     case 'restored':
       return remark(state, kept, 'restored', `The server was restored to entry ${entry.data.after}.`);
+    case 'erased':
+      return remark(state, kept, 'erased', `Personal data was erased: ${entry.data.reason}`);
     default:
       return undefined;
   }

@@ -36,6 +36,16 @@ const headSchema = z.strictObject({
   signature: z.string(),
 });
 
+const workshopKeySchema = z.strictObject({
+  /** The fingerprint: hex SHA-256 of the raw 32-byte key. */
+  key: sha256Hex,
+  /** The raw Ed25519 key, base64url. */
+  publicKey: z.string(),
+  since: instant,
+  /** The signature of the key before it; the first has none. */
+  signedBefore: z.nullable(z.string()),
+});
+
 const bodySchema = z.strictObject({
   v: z.literal(1),
   format: z.literal(TRAIL_FORMAT),
@@ -64,6 +74,8 @@ const bodySchema = z.strictObject({
   ),
   workshop: z.array(z.strictObject({ recorded: workshopEntrySchema, hash: sha256Hex })),
   heads: z.array(headSchema),
+  /** Every key that the workshop has signed with, the oldest first; the last one signs the export. */
+  workshopKeys: z.array(workshopKeySchema).check(z.minLength(1)),
   identity: z.record(
     z.string(),
     z.union([
@@ -73,7 +85,14 @@ const bodySchema = z.strictObject({
       z.literal('withheld'),
     ]),
   ),
-  photographs: z.array(z.strictObject({ hash: sha256Hex, bytes: z.int().check(z.minimum(0)) })),
+  /** Each travels beside the file, named by its hash, unless an erasure took it. */
+  photographs: z.array(
+    z.strictObject({
+      hash: sha256Hex,
+      bytes: z.int().check(z.minimum(0)),
+      state: z.enum(['kept', 'missing', 'erased']),
+    }),
+  ),
 });
 
 export const trailExportSchema = z.strictObject({
@@ -86,6 +105,7 @@ export const trailExportSchema = z.strictObject({
 export type TrailExport = z.infer<typeof trailExportSchema>;
 export type TrailBody = TrailExport['body'];
 export type SignedHead = TrailBody['heads'][number];
+export type WorkshopKey = TrailBody['workshopKeys'][number];
 
 /** Where and why a trail does not hold. */
 export class BrokenTrailError extends Error {

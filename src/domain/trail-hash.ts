@@ -58,6 +58,21 @@ export function headMessage({
   return bytesOf(canonicalJson({ trail, seq, hash, at, key }));
 }
 
+/** What a workshop's key signs for the key after it: the canonical form of the new key and of what it follows. */
+export function keyMessage({
+  key,
+  publicKey,
+  since,
+  before,
+}: {
+  key: string;
+  publicKey: string;
+  since: string;
+  before: string;
+}): Uint8Array<ArrayBuffer> {
+  return bytesOf(canonicalJson({ before, key, publicKey, since }));
+}
+
 /** What the workshop's key signs for an export: the ASCII bytes of the hex SHA-256 of the body's form. */
 export function exportMessage(body: object, sha256: Sha256): Uint8Array<ArrayBuffer> {
   return bytesOf(hashJson(body, sha256));

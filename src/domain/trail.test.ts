@@ -1,7 +1,18 @@
+import { generateKeyPairSync } from 'node:crypto';
 import { describe, expect, it } from 'vitest';
 import { canonicalJson } from '@/domain/canonical';
 import { chainHash, contentHash, contentOf, verifyTrail } from '@/domain/trail';
-import { buildTrailBody, fingerprint, nodeChecks, seal, sha256 } from '../../tests/support/sealed-trail';
+import {
+  buildTrailBody,
+  fingerprint,
+  nodeChecks,
+  PHOTO,
+  rechain,
+  seal,
+  sha256,
+  workshopKeyOf,
+  workshopPair,
+} from '../../tests/support/sealed-trail';
 
 const body = buildTrailBody();
 const text = seal(body);
@@ -35,7 +46,7 @@ describe('hashes of entries', () => {
 describe('verifyTrail on a whole trail', () => {
   it('says what it checked, and that key and head were not compared', async () => {
     expect(await verifyTrail(text, nodeChecks)).toEqual({
-      ...{ ok: true, entries: 40, signatures: 36, heads: 2, key: fingerprint },
+      ...{ ok: true, entries: 40, signatures: 36, heads: 2, key: fingerprint, photographs: [PHOTO] },
       ...{ keyCompared: false, headCompared: false },
       notes: ['complaint: erased.', 'Key not compared.', 'Head not compared.'],
       body,
@@ -69,6 +80,69 @@ describe('verifyTrail on a whole trail', () => {
     expect((await verifyTrail(seal(short), nodeChecks)).ok).toBe(true);
     const held = { ...nodeChecks, head: body.entries[39]!.hash };
     expect(await verifyTrail(seal(short), held)).toMatchObject({ brokenAt: 'the head that you hold' });
+  });
+});
+
+describe('verifyTrail on a workshop that renewed its key', () => {
+  const old = generateKeyPairSync('ed25519');
+  const former = workshopKeyOf(old);
+  const present = workshopKeyOf(workshopPair, old);
+  const renewed = { ...buildTrailBody(), workshopKeys: [former, present] };
+
+  it('follows the way from the key that the reader holds to the present one', async () => {
+    expect(await verifyTrail(seal(renewed), { ...nodeChecks, key: former.key })).toMatchObject({
+      ok: true,
+      key: fingerprint,
+      notes: expect.arrayContaining([
+        'The key that you hold is an earlier one; it signed the way to this one.',
+      ]),
+    });
+  });
+
+  it.each([
+    ['a key that the one before it did not sign', [former, workshopKeyOf(workshopPair)]],
+    ['a key signed by another', [former, workshopKeyOf(workshopPair, generateKeyPairSync('ed25519'))]],
+    ['keys in another order', [present, former]],
+    ['one key twice', [former, present, present]],
+    ['another date', [former, { ...present, since: '2030-01-01T08:00:00Z' }]],
+    ['a key that does not sign the export', [former]],
+  ])('refuses %s', async (_, workshopKeys) => {
+    const verdict = await verifyTrail(seal({ ...renewed, workshopKeys }), nodeChecks);
+    expect(verdict).toMatchObject({ ok: false, brokenAt: expect.stringMatching(/^the workshop's key/) });
+  });
+});
+
+describe('verifyTrail on what is not there', () => {
+  it('tells a photograph that never came from a broken trail', async () => {
+    const photographs = [{ hash: PHOTO, bytes: 182_044, state: 'missing' as const }];
+    expect(await verifyTrail(seal({ ...buildTrailBody(), photographs }), nodeChecks)).toMatchObject({
+      ...{ ok: true, photographs: [] },
+      notes: expect.arrayContaining([`Photograph ${PHOTO} is missing.`]),
+    });
+  });
+
+  it('takes a field or a photograph as erased only where an entry says so', async () => {
+    const silent = buildTrailBody();
+    silent.entries[9]!.recorded.data = { fields: [], photographs: [], reason: 'asked for' };
+    expect(await verifyTrail(seal(rechain(silent)), nodeChecks)).toMatchObject({
+      brokenAt: 'identity: complaint',
+    });
+    const photographs = [{ hash: PHOTO, bytes: 182_044, state: 'erased' as const }];
+    expect(await verifyTrail(seal({ ...buildTrailBody(), photographs }), nodeChecks)).toMatchObject({
+      brokenAt: `photograph ${PHOTO}`,
+    });
+    const told = { ...buildTrailBody(), photographs };
+    told.entries[9]!.recorded.data = { fields: ['complaint'], photographs: [PHOTO], reason: 'asked for' };
+    expect(await verifyTrail(seal(rechain(told)), nodeChecks)).toMatchObject({ ok: true });
+  });
+
+  it.each([
+    ['has one that no entry names', [{ hash: 'cd'.repeat(32), bytes: 1, state: 'kept' as const }]],
+    ['gives one another size', [{ hash: PHOTO, bytes: 1, state: 'kept' as const }]],
+    ['leaves one out', []],
+  ])('refuses a list of photographs that %s', async (_, photographs) => {
+    const verdict = await verifyTrail(seal({ ...buildTrailBody(), photographs }), nodeChecks);
+    expect(verdict).toMatchObject({ ok: false, brokenAt: expect.stringMatching(/^photograph /) });
   });
 });
 

@@ -15,7 +15,9 @@ import {
   requireWhole,
   type TrailBody,
 } from '@/domain/trail-export';
-import { authorKeyId, authorMessage, headMessage, identityCommitment, type HmacSha256 } from './trail-hash';
+import { authorKeyId, authorMessage, headMessage, type HmacSha256 } from './trail-hash';
+import { verifyIdentity, verifyPhotographs } from './trail-erasures';
+import { compareKey, verifyWorkshopKeys, type WorkshopKeys } from './trail-keys';
 
 export {
   authorKeyId,
@@ -26,6 +28,7 @@ export {
   exportMessage,
   headMessage,
   identityCommitment,
+  keyMessage,
 } from './trail-hash';
 
 /*
@@ -67,6 +70,8 @@ export type TrailVerdict =
       heads: number;
       /** The fingerprint of the workshop's key that signed the export. */
       key: string;
+      /** Photographs that should lie beside the file, by their hash. */
+      photographs: string[];
       keyCompared: boolean;
       headCompared: boolean;
       notes: string[];
@@ -107,6 +112,7 @@ async function verifyOpened(
   const { body } = whole;
   const workshopKey = requireBytes(whole.publicKey, 32, "the workshop's key");
   const key = checks.sha256(workshopKey);
+  const workshopKeys = await verifyWorkshopKeys(whole, checks);
   // An edit breaks the signature over the whole too; looking inside first says where the edit was made.
   const isSigned = await checks.verifyEd25519(
     workshopKey,
@@ -117,13 +123,15 @@ async function verifyOpened(
   const notes = verifyCounts(body);
   verifyWorkshopEntries(body, checks.sha256);
   const signatures = await verifyAuthors(chained, body.keys, checks);
-  await verifyHeads(body, { id: key, bytes: workshopKey }, checks);
-  notes.push(...verifyIdentity(body, checks));
+  await verifyHeads(body, workshopKeys, checks);
+  notes.push(...verifyIdentity(body, checks), ...verifyPhotographs(body));
   requireWhole(isSigned, "the export's signature", 'It does not belong to this text and key.');
-  notes.push(...compare(body, key, checks));
+  notes.push(...compareKey(workshopKeys, key, checks.key), ...compareHead(body, checks.head));
   const { length: entries } = body.entries;
   const compared = { keyCompared: checks.key !== undefined, headCompared: checks.head !== undefined };
-  return { ok: true, entries, signatures, heads: body.heads.length, key, ...compared, notes, body };
+  const photographs = body.photographs.flatMap(({ hash, state }) => (state === 'kept' ? [hash] : []));
+  const counts = { entries, signatures, heads: body.heads.length, photographs };
+  return { ok: true, ...counts, key, ...compared, notes, body };
 }
 
 /** Every entry but the server's own is signed by its author's key for its tablet; gives how many were. */
@@ -162,10 +170,10 @@ async function verifyAuthors(
   return proofs.length;
 }
 
-/** Each signed head names an entry that is there with that hash, and is signed by the workshop's key. */
+/** Each signed head names an entry that is there with that hash, and is signed by a key of the workshop. */
 async function verifyHeads(
   { heads, entries, workshop, job }: TrailBody,
-  key: { id: string; bytes: Uint8Array<ArrayBuffer> },
+  keys: WorkshopKeys,
   { verifyEd25519 }: TrailChecks,
 ): Promise<void> {
   for (const head of heads) {
@@ -177,44 +185,21 @@ async function verifyHeads(
       ? (workshop.find(({ recorded }) => recorded.seq === head.seq)?.hash ?? head.hash)
       : entries[head.seq - 1]?.hash;
     requireWhole(hash === head.hash, at, 'The trail has another entry in this place, or none.');
-    requireWhole(head.key === key.id, at, 'It is signed with a key that is not in the file.');
-    const holds = await verifyEd25519(key.bytes, headMessage(head), requireBytes(head.signature, 64, at));
+    const key = keys.get(head.key);
+    requireWhole(key !== undefined, at, 'It is signed with a key that is not in the file.');
+    const holds = await verifyEd25519(key, headMessage(head), requireBytes(head.signature, 64, at));
     requireWhole(holds, at, 'Its signature does not hold.');
   }
 }
 
-/** Who and which vehicle: each value is the one that the job was opened with, was erased, or is withheld. */
-function verifyIdentity({ entries, identity }: TrailBody, { hmacSha256 }: TrailChecks): string[] {
-  const opened = entries.find(({ recorded }) => recorded.kind === 'opened')?.recorded.data.commitments;
-  const commitments = typeof opened === 'object' && opened !== null ? Object.entries(opened) : [];
-  const values = new Map(Object.entries(identity));
-  const notes: string[] = [];
-  for (const [field, commitment] of commitments) {
-    const [at, value] = [`identity: ${field}`, values.get(field)];
-    requireWhole(value !== undefined, at, 'It is neither in the file nor erased or withheld.');
-    values.delete(field);
-    if (value === 'erased' || value === 'withheld') notes.push(`${field}: ${value}.`);
-    else {
-      const isCommitted = identityCommitment(value, hmacSha256) === commitment;
-      requireWhole(isCommitted, at, 'It is not the value that the job was opened with.');
-    }
-  }
-  for (const field of values.keys())
-    requireWhole(false, `identity: ${field}`, 'The trail knows nothing of it.');
-  return notes;
-}
-
-/** Compares with the key and the head that the reader has from elsewhere; says where there was none. */
-function compare({ entries }: TrailBody, key: string, checks: TrailChecks): string[] {
-  const isKey = checks.key === undefined || checks.key === key;
-  requireWhole(isKey, "the workshop's key", 'It is not the key whose fingerprint you hold.');
-  const notes = checks.key === undefined ? ['Key not compared.'] : [];
-  if (checks.head === undefined) return [...notes, 'Head not compared.'];
-  const at = entries.findIndex(({ hash }) => hash === checks.head);
+/** Compares with the head that the reader has from elsewhere; says where there was none. */
+function compareHead({ entries }: TrailBody, head: string | undefined): string[] {
+  if (head === undefined) return ['Head not compared.'];
+  const at = entries.findIndex(({ hash }) => hash === head);
   const cut = 'The trail has no such entry: it was cut short or rewritten.';
   requireWhole(at !== -1, 'the head that you hold', cut);
   const later = entries.length - 1 - at;
-  return later === 0 ? notes : [...notes, `${later} more came after the head that you hold.`];
+  return later === 0 ? [] : [`${later} more came after the head that you hold.`];
 }
 
 function requireHex(text: string | undefined, name: string): void {

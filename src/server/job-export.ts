@@ -1,6 +1,6 @@
 import type { Recorded } from '@/domain/entry';
 import { exportMessage } from '@/domain/trail';
-import { type SignedHead, TRAIL_FORMAT } from '@/domain/trail-export';
+import { type SignedHead, TRAIL_FORMAT, type WorkshopKey } from '@/domain/trail-export';
 import type { Actor } from './actor';
 import { stamp } from './clock';
 import type { App } from './compose';
@@ -27,15 +27,16 @@ export interface TrailBundle {
   /** The workshop's entries that the job names, those that enrolled its keys, and those that tell of it. */
   workshop: { recorded: Record<string, unknown>; hash: string }[];
   heads: SignedHead[];
+  workshopKeys: WorkshopKey[];
   identity: Record<string, { value: string; salt: string } | 'erased' | 'withheld'>;
-  photographs: { hash: string; bytes: number }[];
+  photographs: { hash: string; bytes: number; state: 'kept' | 'missing' | 'erased' }[];
 }
 
 /** The signed trail of a job for reading on a page: the form of an export, but nothing leaves the house. */
 export async function readTrail(app: App, actor: Actor, id: string): Promise<string> {
   const job = await getReadableJob(app.db, actor, id);
   // One transaction, so that nothing comes in between the entries and what is read for them.
-  const body = await app.db.transaction().execute((trx) => bundle(trx, actor, job, stamp(app.clock)));
+  const body = await app.db.transaction().execute((trx) => bundle(trx, actor, job, app));
   return signedText(app, body);
 }
 
@@ -47,7 +48,7 @@ export async function exportTrail(
 ): Promise<{ text: string; number: string }> {
   const job = await getReadableJob(app.db, actor, id);
   return app.db.transaction().execute(async (trx) => {
-    const body = await bundle(trx, actor, job, stamp(app.clock));
+    const body = await bundle(trx, actor, job, app);
     const data = { job: id, number: job.number, entries: body.entries.length };
     await appendWorkshopEntry(trx, actor, { kind: 'exported', data }, app);
     return { text: signedText(app, body), number: job.number };
@@ -59,7 +60,12 @@ function signedText({ keys: { head } }: App, body: TrailBundle): string {
   return canonicalJson({ body, publicKey: head.publicKey, signature });
 }
 
-async function bundle(db: Db, actor: Actor, job: JobRow, exportedAt: string): Promise<TrailBundle> {
+async function bundle(
+  db: Db,
+  actor: Actor,
+  job: JobRow,
+  { clock, keys: { workshopKeys } }: App,
+): Promise<TrailBundle> {
   const rows = await listTrailRows(db, job.id, { after: 0, limit: Number.MAX_SAFE_INTEGER });
   const entries = rows.map(({ body, hash, signature, key }) => ({
     recorded: JSON.parse(body) as Recorded,
@@ -75,15 +81,16 @@ async function bundle(db: Db, actor: Actor, job: JobRow, exportedAt: string): Pr
   return {
     v: 1,
     format: TRAIL_FORMAT,
-    exportedAt,
+    exportedAt: stamp(clock),
     job: { id: job.id, number: job.number },
     plans: await readPlans(db, job, entries),
     entries,
     keys,
     workshop: await readWorkshopEntries(db, job.id, named),
     heads: (await listSignedHeads(db, job.id)).map(toHead),
+    workshopKeys,
     identity: await identityOf(db, actor, job.id, entries[0]?.recorded),
-    photographs: photographsIn(entries),
+    photographs: await photographsIn(db, entries),
   };
 }
 
@@ -151,12 +158,24 @@ async function identityOf(
   );
 }
 
-function photographsIn(entries: TrailBundle['entries']): TrailBundle['photographs'] {
-  const bytes = new Map<string, number>();
+async function photographsIn(db: Db, entries: TrailBundle['entries']): Promise<TrailBundle['photographs']> {
+  const sizes = new Map<string, number>();
+  const erased = new Set<string>();
   for (const { recorded } of entries) {
-    if (recorded.kind === 'photographed') bytes.set(recorded.data.photo, recorded.data.bytes);
+    if (recorded.kind === 'photographed') sizes.set(recorded.data.photo, recorded.data.bytes);
+    if (recorded.kind === 'erased') for (const hash of recorded.data.photographs) erased.add(hash);
   }
-  return [...bytes].map(([hash, size]) => ({ hash, bytes: size }));
+  const rows = await db
+    .selectFrom('photo')
+    .select('hash')
+    .where('hash', 'in', [...sizes.keys()])
+    .execute();
+  const kept = new Set(rows.map(({ hash }) => hash));
+  return [...sizes].map(([hash, bytes]) => ({
+    hash,
+    bytes,
+    state: kept.has(hash) ? 'kept' : erased.has(hash) ? 'erased' : 'missing',
+  }));
 }
 
 function unique<T>(values: readonly T[]): T[] {

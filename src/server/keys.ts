@@ -19,7 +19,8 @@ import {
 } from 'node:fs';
 import path from 'node:path';
 import * as z from 'zod';
-import { authorKeyId } from '@/domain/trail';
+import { authorKeyId, keyMessage } from '@/domain/trail';
+import type { WorkshopKey } from '@/domain/trail-export';
 import { newSecret, sha256Hex } from './crypto';
 
 /*
@@ -40,7 +41,14 @@ const headFile = z.strictObject({
   current: z.string(),
   keys: z
     .array(
-      z.strictObject({ key: z.string(), publicKey: z.string(), privateKey: z.string(), madeAt: z.string() }),
+      z.strictObject({
+        key: z.string(),
+        publicKey: z.string(),
+        privateKey: z.string(),
+        madeAt: z.string(),
+        /** The signature of the key before it; the first has none. */
+        signedBefore: z.string().nullable().default(null),
+      }),
     )
     .min(1),
 });
@@ -60,6 +68,8 @@ export interface Keys {
   signInSecret: string;
   sealing: { current: SealingKey; all: ReadonlyMap<string, SealingKey> };
   head: HeadKey;
+  /** Every key that heads were signed with, the oldest first and `head` the last. */
+  workshopKeys: WorkshopKey[];
 }
 
 /** Reads the workshop's keys from the data folder, making those that are not there yet. */
@@ -83,16 +93,37 @@ export function openKeys(dataDir: string, madeAt: string): Keys {
       `The key files in ${folder} do not hold the key that they call current. Restore them from the backup.`,
     );
   }
-  const privateKey = createPrivateKey({
-    key: Buffer.from(headKey.privateKey, 'base64url'),
-    format: 'der',
-    type: 'pkcs8',
-  });
   return {
     signInSecret: secret,
     sealing: { current, all },
-    head: { fingerprint: headKey.key, publicKey: headKey.publicKey, privateKey },
+    head: toHeadKey(headKey),
+    workshopKeys: head.keys.map(({ key, publicKey, madeAt: since, signedBefore }) => ({
+      ...{ key, publicKey, since, signedBefore },
+    })),
   };
+}
+
+/**
+ * Makes the workshop a new key for its heads and exports, signed by the one before it, and gives its fingerprint.
+ * The server must not be running: it goes on signing with the key that it read at its start.
+ */
+export function renewHeadKey(dataDir: string, madeAt: string): { before: string; now: string } {
+  const file = path.join(dataDir, 'keys', 'head.json');
+  const { current, keys } = headFile.parse(JSON.parse(readFileSync(file, 'utf8')));
+  const before = keys.find(({ key }) => key === current);
+  if (before === undefined) throw new Error(`${file} does not hold the key that it calls current.`);
+  const [made] = makeHeadFile(madeAt).keys;
+  if (made === undefined) throw new Error('No key was made.');
+  const message = keyMessage({ ...made, since: made.madeAt, before: before.key });
+  const signed = { ...made, signedBefore: signWithHeadKey(toHeadKey(before), message) };
+  writeSecretFile(file, `${JSON.stringify({ current: signed.key, keys: [...keys, signed] })}\n`);
+  return { before: before.key, now: signed.key };
+}
+
+function toHeadKey({ key, publicKey, privateKey }: z.infer<typeof headFile>['keys'][number]): HeadKey {
+  const der = Buffer.from(privateKey, 'base64url');
+  const opened = createPrivateKey({ key: der, format: 'der', type: 'pkcs8' });
+  return { fingerprint: key, publicKey, privateKey: opened };
 }
 
 /** Signs bytes with the head key; the signature is base64url. */
@@ -124,7 +155,12 @@ function makeHeadFile(madeAt: string): z.infer<typeof headFile> {
   const der = privateKey.export({ format: 'der', type: 'pkcs8' }).toString('base64url');
   return {
     current: fingerprint,
-    keys: [{ key: fingerprint, publicKey: raw.toString('base64url'), privateKey: der, madeAt }],
+    keys: [
+      {
+        ...{ key: fingerprint, publicKey: raw.toString('base64url') },
+        ...{ privateKey: der, madeAt, signedBefore: null },
+      },
+    ],
   };
 }
 

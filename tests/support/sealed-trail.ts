@@ -18,6 +18,7 @@ import {
   exportMessage,
   headMessage,
   identityCommitment,
+  keyMessage,
   type TrailChecks,
 } from '@/domain/trail';
 import { NO_PREVIOUS } from '@/domain/trail-chain';
@@ -31,6 +32,10 @@ import type { TrailBody } from '@/domain/trail-export';
 export const JOB = '01900000-0000-7000-8000-000000000001';
 const TABLETS = ['tablet-1', 'tablet-2'] as const;
 const PEOPLE = ['p-wren', 'p-moss'] as const;
+export const PHOTO = 'ab'.repeat(32);
+/** The places of the entries that are no readings; the server makes every tenth. */
+const PICTURE = 2;
+const ERASURE = 9;
 
 export function sha256(bytes: Uint8Array): string {
   return createHash('sha256').update(bytes).digest('hex');
@@ -74,6 +79,21 @@ function rawP256(key: KeyObject): Buffer {
   const { x, y } = key.export({ format: 'jwk' });
   return Buffer.concat([Buffer.of(4), Buffer.from(x!, 'base64url'), Buffer.from(y!, 'base64url')]);
 }
+
+/** One more key of a workshop as an export names it, signed by the one before it. */
+export function workshopKeyOf(
+  pair: KeyPairKeyObjectResult,
+  before?: KeyPairKeyObjectResult,
+): TrailBody['workshopKeys'][number] {
+  const raw = rawEd25519(pair.publicKey);
+  const named = { key: sha256(raw), publicKey: raw.toString('base64url'), since: '2031-01-01T08:00:00Z' };
+  if (before === undefined) return { ...named, signedBefore: null };
+  const message = keyMessage({ ...named, before: sha256(rawEd25519(before.publicKey)) });
+  return { ...named, signedBefore: sign(null, message, before.privateKey).toString('base64url') };
+}
+
+/** The pair that `seal` signs with. */
+export const workshopPair = workshopKey;
 
 /** The fingerprint of the key that `seal` signs with. */
 export const fingerprint = sha256(rawEd25519(workshopKey.publicKey));
@@ -129,18 +149,20 @@ export function buildTrailBody(count = 40): TrailBody {
   const identity = {
     registration: { value: 'INV 123 É', salt: '5a'.repeat(32) },
     contact: { value: 'somebody@example.test', salt: '0f'.repeat(32) },
-    complaint: 'erased' as const,
+    // A trail too short to tell of an erasure has nothing erased.
+    complaint: count > ERASURE ? ('erased' as const) : { value: 'knocks when cold', salt: '77'.repeat(32) },
   };
   const commitments = {
     registration: identityCommitment(identity.registration, hmacSha256),
     contact: identityCommitment(identity.contact, hmacSha256),
-    complaint: identityCommitment({ value: 'gone', salt: '77'.repeat(32) }, hmacSha256),
+    complaint: identityCommitment({ value: 'knocks when cold', salt: '77'.repeat(32) }, hmacSha256),
   };
   const body: TrailBody = {
     ...{ v: 1, format: 'witnessmark-trail', exportedAt: '2031-03-05T09:00:00Z' },
     job: { id: JOB, number: 'J-0017' },
     ...{ plans: [plan], entries: [], keys: [], workshop: [], heads: [], identity },
-    photographs: [{ hash: 'ab'.repeat(32), bytes: 182_044 }],
+    workshopKeys: [workshopKeyOf(workshopKey)],
+    photographs: [{ hash: PHOTO, bytes: 182_044, state: 'kept' }],
   };
   addKeys(body);
   for (let i = 0; i < count; i += 1) body.entries.push(entryAt(i, hashJson(plan, sha256), commitments));
@@ -161,6 +183,25 @@ function addKeys(body: TrailBody): void {
   }
 }
 
+function kindAt(index: number): string {
+  if (index === ERASURE) return 'erased';
+  if (index % 10 === 9) return 'refused';
+  return index === 0 ? 'opened' : index === PICTURE ? 'photographed' : 'gauged';
+}
+
+function dataAt(index: number, commitments: Record<string, string>): Record<string, unknown> {
+  if (index === 0) return { commitments };
+  if (index === PICTURE) return { photo: PHOTO, bytes: 182_044, type: 'image/webp', from: 'camera here' };
+  if (index === ERASURE) return { fields: ['complaint'], photographs: [], reason: 'asked for' };
+  return {
+    end: 'front',
+    clearance: '0.050',
+    uncertainty: '0.006',
+    unit: 'mm',
+    note: 'thread laid – dry, 20 °C',
+  };
+}
+
 function entryAt(
   index: number,
   plan: string,
@@ -168,16 +209,9 @@ function entryAt(
 ): TrailBody['entries'][number] {
   const isServers = index % 10 === 9;
   const minute = `2031-03-04T${String(8 + Math.floor(index / 60)).padStart(2, '0')}:${String(index % 60).padStart(2, '0')}`;
-  const reading = {
-    end: 'front',
-    clearance: '0.050',
-    uncertainty: '0.006',
-    unit: 'mm',
-    note: 'thread laid – dry, 20 °C',
-  };
   const recorded: TrailBody['entries'][number]['recorded'] = {
     ...{ v: 1, id: `01900000-0000-7000-8000-${String(index + 100).padStart(12, '0')}`, job: JOB, plan },
-    ...{ basis: index, workshop: 4, kind: isServers ? 'refused' : index === 0 ? 'opened' : 'gauged' },
+    ...{ basis: index, workshop: 4, kind: kindAt(index) },
     step: 'measure.gauge@rod1',
     by: isServers ? 'workshop' : PEOPLE[index % 3 === 0 ? 1 : 0],
     author: { name: isServers ? 'Workshop' : 'Ada Wren', roles: ['technician'] },
@@ -185,7 +219,7 @@ function entryAt(
     device: isServers ? 'server' : TABLETS[index % 2]!,
     deviceSeq: Math.floor(index / 2) + 1,
     at: `${minute}:00Z`,
-    data: index === 0 ? { commitments } : reading,
+    data: dataAt(index, commitments),
     ...{ seq: index + 1, recordedAt: `${minute}:02Z`, prev: NO_PREVIOUS, clockOffsetMs: -140 },
   };
   return { recorded, hash: '', signature: null, key: null };

@@ -25,6 +25,7 @@ const NOT_AN_ACT = new Set<EntryKind>([
   'refused',
   'tablet-lost',
   'restored',
+  'erased',
 ]);
 
 /** The last act, newest record first; one touch may have made several records. */
