@@ -2,6 +2,7 @@ import type { APIContext } from 'astro';
 import type * as z from 'zod';
 import type { Role } from '@/domain/role';
 import { type Actor, requireRole } from './actor';
+import type { Asker } from './asker';
 import { type App, getApp } from './compose';
 import { type Device, findRequestDevice, requireDevice } from './devices';
 import { AppError } from './errors';
@@ -37,6 +38,8 @@ type QueryOf<Q> = Q extends z.ZodType ? z.output<Q> : undefined;
 type ActorOf<W extends Who> = W extends 'session' | 'session and tablet' | readonly Role[]
   ? Actor
   : Actor | undefined;
+/** Whoever asks, where it has to be somebody: the person if one is signed in, else the tablet. */
+type AskerOf<W extends Who> = W extends 'anyone' ? Asker | undefined : Asker;
 type DeviceOf<W extends Who> = W extends 'tablet' | 'session and tablet' ? Device : Device | undefined;
 
 export interface EndpointSpec<W extends Who, B, Q, A extends z.ZodType> {
@@ -66,6 +69,7 @@ export interface EndpointContext<W extends Who, B, Q> {
   query: QueryOf<Q>;
   actor: ActorOf<W>;
   device: DeviceOf<W>;
+  asker: AskerOf<W>;
   /** `Set-Cookie` values that go out with the answer. */
   cookies: string[];
 }
@@ -114,6 +118,7 @@ export function endpoint<
         body: await readBody(spec, request),
         actor,
         device,
+        asker: actor ?? device,
       } as EndpointContext<W, B, Q>;
       const result = await run(context);
       const response = result instanceof Response ? result : json(result, spec.status ?? 200);

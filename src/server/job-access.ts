@@ -1,4 +1,5 @@
 import { type Actor, hasRole } from './actor';
+import { type Asker, isDevice } from './asker';
 import type { Db } from './database';
 import { notFound } from './errors';
 import type { JobRow } from './job-rows';
@@ -8,12 +9,26 @@ export function seesAllJobs(actor: Actor): boolean {
   return hasRole(actor, 'supervisor', 'quality lead', 'auditor', 'owner');
 }
 
-/** The jobs that a person may see. */
-export function selectVisibleJobs(db: Db, actor: Actor) {
+/**
+ * The jobs that a person or a tablet may see: those that are open, and those in which they have a part; some
+ * people see all.
+ */
+export function selectVisibleJobs(db: Db, asker: Asker) {
   const jobs = db.selectFrom('job').selectAll('job');
-  if (seesAllJobs(actor)) return jobs;
+  if (!isDevice(asker) && seesAllJobs(asker)) return jobs;
   return jobs.where((eb) =>
-    eb.or([eb('job.state', 'in', ['open', 'parked']), eb('job.id', 'in', ownJobs(db, actor))]),
+    eb.or([
+      eb('job.state', 'in', ['open', 'parked']),
+      isDevice(asker)
+        ? eb.exists(
+            eb
+              .selectFrom('job_entry')
+              .select('job_entry.seq')
+              .whereRef('job_entry.job_id', '=', 'job.id')
+              .where('job_entry.device_id', '=', asker.id),
+          )
+        : eb('job.id', 'in', ownJobs(db, asker)),
+    ]),
   );
 }
 

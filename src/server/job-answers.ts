@@ -50,6 +50,18 @@ export const jobSummaryAnswer = z.strictObject({
   identity: z.record(z.string(), z.string()),
   /** Fields that are known and not for this person. */
   withheld: z.array(z.string()),
+  /** Photographs of the record whose bytes have not come; a handover waits for those that are awaited. */
+  missingPhotographs: z.array(
+    z.strictObject({
+      entry: z.string(),
+      hash,
+      name: z.string(),
+      subject: z.string(),
+      at: z.string(),
+      tablet: z.string(),
+      isAwaited: z.boolean(),
+    }),
+  ),
   /** The folded state, with its plan. */
   jobState: z.looseObject({ plan: z.looseObject({}), phase: z.string(), seq: z.int() }),
 });

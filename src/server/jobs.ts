@@ -8,6 +8,7 @@ import { getVisibleJob, selectVisibleJobs } from './job-access';
 import { getFold } from './job-fold';
 import { readIdentity, readRegistrations } from './job-identity';
 import type { JobRow } from './job-rows';
+import { listMissingPhotographs, type MissingPhotograph } from './photos-missing';
 
 const PAGE = 25;
 
@@ -92,6 +93,8 @@ export interface JobSummary extends JobLine {
   identity: Record<string, string>;
   /** Fields that are known and not for this person. */
   withheld: string[];
+  /** Photographs of the record whose bytes have not come. */
+  missingPhotographs: MissingPhotograph[];
   jobState: JobState;
 }
 
@@ -113,6 +116,7 @@ export async function getJob(app: App, actor: Actor, id: string): Promise<JobSum
     progress: progressOf(state),
     identity: Object.fromEntries(Object.entries(known).map(([field, { value }]) => [field, value])),
     withheld,
+    missingPhotographs: await listMissingPhotographs(app, state),
     jobState: state,
   };
 }

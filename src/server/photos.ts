@@ -1,10 +1,14 @@
 import path from 'node:path';
+import { sql } from 'kysely';
 import sharp from 'sharp';
 import { type App } from './compose';
 import { stamp } from './clock';
 import { sha256Hex } from './crypto';
+import { type Asker, isDevice } from './asker';
+import type { Db } from './database';
 import type { Device } from './devices';
 import { AppError, notFound } from './errors';
+import { selectVisibleJobs } from './job-access';
 import { folderStorage, type Storage } from './storage';
 
 /*
@@ -61,14 +65,24 @@ export async function storePhoto(
   return { isNew: true };
 }
 
-/** The photograph's own bytes, or a small WebP of it. */
+/**
+ * The photograph's own bytes, or a small WebP of it, for those who may see a job that it belongs to, and for the
+ * tablet that sent it. What somebody may not see reads as what is not there.
+ */
 export async function getPhoto(
   app: App,
+  asker: Asker,
   hash: string,
   size: 'full' | 'thumb',
 ): Promise<{ bytes: Uint8Array; type: string }> {
-  const row = await app.db.selectFrom('photo').select('type').where('hash', '=', hash).executeTakeFirst();
+  const row = await app.db
+    .selectFrom('photo')
+    .select(['type', 'uploaded_by_device'])
+    .where('hash', '=', hash)
+    .executeTakeFirst();
   if (row === undefined) throw notFound('This photograph');
+  const isSenders = isDevice(asker) && row.uploaded_by_device === asker.id;
+  if (!isSenders && !(await isInVisibleJob(app.db, asker, hash))) throw notFound('This photograph');
   const bytes = await photoStorage(app).find(size === 'thumb' ? `thumbs/${hash}` : `photos/${hash}`);
   if (bytes === undefined) {
     app.log.error({ hash, size }, 'A photograph has a row and no bytes: restore it from the backup');
@@ -77,9 +91,23 @@ export async function getPhoto(
   return { bytes, type: size === 'thumb' ? 'image/webp' : row.type };
 }
 
+/** Whether a job that they may see names the photograph. SQLite only: the index is on the JSON of the entry. */
+async function isInVisibleJob(db: Db, asker: Asker, hash: string): Promise<boolean> {
+  const row = await selectVisibleJobs(db, asker)
+    .where(
+      'job.id',
+      'in',
+      sql<string>`(select job_id from job_entry
+        where kind = 'photographed' and json_extract(body, '$.data.photo') = ${hash})`,
+    )
+    .executeTakeFirst();
+  return row !== undefined;
+}
+
+/** Kept before, and the bytes are still there: what a disk lost is taken again. */
 async function isStored(app: App, hash: string): Promise<boolean> {
   const row = await app.db.selectFrom('photo').select('hash').where('hash', '=', hash).executeTakeFirst();
-  return row !== undefined;
+  return row !== undefined && (await photoStorage(app).has(`photos/${hash}`));
 }
 
 /** Opens the picture as what it says it is and makes its thumbnail. */

@@ -21,10 +21,12 @@ describe('storage in a folder', () => {
     const storage = folderStorage(folder);
     await storage.put(key, Uint8Array.of(0, 255, 1, 254));
     expect([...((await storage.find(key)) ?? [])]).toEqual([0, 255, 1, 254]);
+    expect(await storage.has(key)).toBe(true);
   });
 
   it('finds nothing under a key that was never put', async () => {
     expect(await folderStorage(folder).find(key)).toBeUndefined();
+    expect(await folderStorage(folder).has(key)).toBe(false);
   });
 
   it('leaves nothing beside the file it wrote', async () => {

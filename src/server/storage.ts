@@ -1,5 +1,5 @@
 import { randomUUID } from 'node:crypto';
-import { mkdir, open, readFile, rename, rm } from 'node:fs/promises';
+import { mkdir, open, readFile, rename, rm, stat } from 'node:fs/promises';
 import path from 'node:path';
 
 /** Where bytes that are no rows lie: photographs and their thumbnails, each under its own key. */
@@ -8,6 +8,8 @@ export interface Storage {
   put(key: string, bytes: Uint8Array): Promise<void>;
   /** The bytes under a key, or undefined if there are none. */
   find(key: string): Promise<Uint8Array | undefined>;
+  /** Whether there are bytes under a key. */
+  has(key: string): Promise<boolean>;
   remove(key: string): Promise<void>;
 }
 
@@ -18,6 +20,7 @@ export function folderStorage(folder: string): Storage {
   return {
     put: (key, bytes) => putFile(fileOf(folder, key), bytes),
     find: (key) => findFile(fileOf(folder, key)),
+    has: (key) => hasFile(fileOf(folder, key)),
     remove: (key) => rm(fileOf(folder, key), { force: true }),
   };
 }
@@ -64,6 +67,15 @@ async function findFile(file: string): Promise<Uint8Array | undefined> {
     return await readFile(file);
   } catch (error) {
     if (error instanceof Error && 'code' in error && error.code === 'ENOENT') return undefined;
+    throw error;
+  }
+}
+
+async function hasFile(file: string): Promise<boolean> {
+  try {
+    return (await stat(file)).isFile();
+  } catch (error) {
+    if (error instanceof Error && 'code' in error && error.code === 'ENOENT') return false;
     throw error;
   }
 }

@@ -57,6 +57,8 @@ export interface Batch {
   device: Device | undefined;
   receivedAt: string;
   clockOffsetMs: number;
+  /** What came with this push and is judged in it. */
+  pushed: readonly ReadItem[];
   /** Jobs by id as they stand now; undefined for one that the server does not hold. */
   folds: Map<string, JobFold | undefined>;
   /** Jobs that this push added to. */
@@ -93,6 +95,7 @@ export async function beginBatch(
   const keyIds = unique(items.flatMap((item) => (item.carried === undefined ? [] : [item.carried.key])));
   return {
     ...parts,
+    pushed: items,
     folds: new Map(),
     changed: new Set(),
     keys: await readKeys(trx, keyIds),

@@ -1,5 +1,6 @@
 import type { Db } from './database';
 import type { Device } from './devices';
+import { selectVisibleJobs } from './job-access';
 import type { SyncBody } from './sync-body';
 
 /** How many entries one answer brings at most, of one job and of all; the rest comes with the next. */
@@ -78,17 +79,8 @@ async function pullJob(
 
 /** A tablet holds open jobs, and those in which it has a part; closed ones of others are not for it. */
 export async function maySee(db: Db, device: Device, id: string): Promise<boolean> {
-  const job = await db.selectFrom('job').select('state').where('id', '=', id).executeTakeFirst();
-  if (job === undefined) return false;
-  if (job.state === 'open' || job.state === 'parked') return true;
-  const own = await db
-    .selectFrom('job_entry')
-    .select('seq')
-    .where('job_id', '=', id)
-    .where('device_id', '=', device.id)
-    .limit(1)
-    .executeTakeFirst();
-  return own !== undefined;
+  const job = await selectVisibleJobs(db, device).where('job.id', '=', id).executeTakeFirst();
+  return job !== undefined;
 }
 
 function findHead(db: Db, id: string): Promise<{ seq: number; hash: string } | undefined> {

@@ -3,6 +3,7 @@ import { mayRecord } from '@/domain/job';
 import type { Verdict } from '@/domain/job-state';
 import { MINUTE } from './clock';
 import { hadPlan, isBehind, type JobFold, SERVER_DEVICE, UNHEARD } from './job-fold';
+import { whyWaitForPhotographs } from './photos-missing';
 import { whyNotCovered, whyWaitForEvidence } from './signing';
 import { type Batch, foldOf, type ProvedItem, record, refuse } from './sync-batch';
 import { isRevoked, isTrueToWorkshop, proveAuthor } from './sync-author';
@@ -117,6 +118,8 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
     const uncovered = await whyNotCovered(batch, fold, entry);
     if (uncovered !== undefined) return refuseIt('evidence-changed', uncovered);
   }
+  const noPhotographs = await whyWaitForPhotographs(batch, fold, entry);
+  if (noPhotographs !== undefined) return waiting(item, 'photograph-missing', noPhotographs);
   const pin = checkedPin(batch, item);
   if ('needsPin' in pin) return pin;
   if ('code' in pin) {

@@ -1,10 +1,19 @@
 import { createHash, randomBytes } from 'node:crypto';
 import { readdirSync, rmSync } from 'node:fs';
 import path from 'node:path';
+import { sql } from 'kysely';
 import sharp from 'sharp';
 import { beforeEach, describe, expect, it, vi } from 'vitest';
 import { GET as getPhoto, PUT as putPhoto } from '@/pages/api/photos/[hash]';
-import { ask, enrolTestTablet, openShop, type Shop, type TestTablet } from '../support/tablet';
+import {
+  ask,
+  enrolTestTablet,
+  type Hand,
+  openShop,
+  openTestJob,
+  type Shop,
+  type TestTablet,
+} from '../support/tablet';
 
 // A whole workshop and its jobs are made for each of these; a busy machine takes its time.
 vi.setConfig({ testTimeout: 30_000, hookTimeout: 30_000 });
@@ -43,6 +52,81 @@ async function fetchPhoto(hash: string, query = ''): Promise<Response> {
     locals: {},
   });
 }
+
+/** A photograph in the record of a job of Ann's, sent by her tablet. */
+async function photographInJob() {
+  const { supervisor, ann } = shop.people;
+  const first = await enrolTestTablet(shop, [supervisor, ann]);
+  const job = await openTestJob(first, supervisor);
+  const bytes = await picture('jpeg');
+  const hash = hashOf(bytes);
+  const data = {
+    photo: hash,
+    bytes: bytes.byteLength,
+    type: 'image/jpeg',
+    from: 'camera here',
+    subject: 's',
+  };
+  await first.record(job.id, { kind: 'photographed', data }, { by: ann });
+  await first.sync();
+  await put(bytes, { tablet: first.credential });
+  return { job, hash, bytes, first };
+}
+
+describe('the bytes of a photograph', () => {
+  const reads = async (hash: string, by: { as?: Hand; tablet?: string }) =>
+    (await ask(getPhoto, { ...by, params: { hash } })).status;
+
+  it('of an open job are for everybody at work, and for any tablet', async () => {
+    const { hash } = await photographInJob();
+    for (const person of Object.values(shop.people)) expect(await reads(hash, { as: person })).toBe(200);
+    expect(await reads(hash, { tablet: tablet.credential })).toBe(200);
+  });
+
+  it('of a job that is over are for those who see all, and who had a part in it', async () => {
+    const { job, hash, first } = await photographInJob();
+    await shop.app.db.updateTable('job').set({ state: 'handed over' }).where('id', '=', job.id).execute();
+    const { ann, ben, ...seeAll } = shop.people;
+    for (const person of Object.values(seeAll)) expect(await reads(hash, { as: person })).toBe(200);
+    expect(await reads(hash, { as: ann }), 'her own work').toBe(200);
+    expect(await reads(hash, { as: ben }), 'a job of others').toBe(404);
+    expect(await reads(hash, { tablet: first.credential }), 'the tablet that has a part in it').toBe(200);
+    expect(await reads(hash, { tablet: tablet.credential }), 'another tablet').toBe(404);
+    const small = await ask(getPhoto, { as: ben, params: { hash }, query: '?size=thumb' });
+    expect(small.status, 'the small copy is no way round').toBe(404);
+  });
+
+  it('that no job names yet are for the tablet that sent them alone', async () => {
+    const bytes = await picture('jpeg');
+    await put(bytes);
+    const other = await enrolTestTablet(shop, []);
+    expect(await reads(hashOf(bytes), { tablet: tablet.credential })).toBe(200);
+    expect(await reads(hashOf(bytes), { tablet: other.credential })).toBe(404);
+    expect(await reads(hashOf(bytes), { as: shop.people.owner })).toBe(404);
+  });
+
+  it('are kept by no browser for the next person at it', async () => {
+    const { hash } = await photographInJob();
+    const { headers } = await ask(getPhoto, { as: shop.people.ben, params: { hash } });
+    expect(headers.get('vary')).toBe('cookie, authorization');
+  });
+
+  it('are found by an index, however long the trails are', async () => {
+    const plan = await sql<{ detail: string }>`explain query plan select job_id from job_entry
+      where kind = 'photographed' and json_extract(body, '$.data.photo') = 'x'`.execute(shop.app.db);
+    expect(plan.rows.map(({ detail }) => detail).join()).toContain('job_entry_photo');
+  });
+
+  it('are taken again where the disk lost them', async () => {
+    const bytes = await picture('jpeg');
+    await put(bytes);
+    const hash = hashOf(bytes);
+    rmSync(path.join(shop.app.settings.dataDir, 'photos', 'photos', hash.slice(0, 2), hash));
+    expect((await fetchPhoto(hash)).status).toBe(404);
+    expect((await put(bytes)).status).toBe(201);
+    expect((await fetchPhoto(hash)).status).toBe(200);
+  });
+});
 
 describe('a photograph', () => {
   it.each(['jpeg', 'png', 'webp'] as const)('in %s is kept and given back byte for byte', async (format) => {

@@ -52,7 +52,7 @@ describe('the demo’s jobs', () => {
     const photos = photosOf(finished!);
     expect(photos.length).toBeGreaterThan(3);
     for (const { hash } of photos) {
-      expect((await getPhoto(app, hash, 'full')).type).toBe('image/jpeg');
+      expect((await getPhoto(app, actor!, hash, 'full')).type).toBe('image/jpeg');
     }
     const times = await db.selectFrom('workshop_entry').select('at').orderBy('seq').execute();
     expect(times.map(({ at }) => at)).toEqual(times.map(({ at }) => at).sort());

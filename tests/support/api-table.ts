@@ -70,6 +70,12 @@ export async function openTable(): Promise<Table> {
     .jpeg()
     .toBuffer();
   const photoHash = createHash('sha256').update(photo).digest('hex');
+  const photographed = {
+    ...{ photo: photoHash, bytes: photo.byteLength, type: 'image/jpeg' },
+    ...{ from: 'camera here', subject: 'arrival' },
+  };
+  await tablet.record(job.id, { kind: 'photographed', data: photographed }, { by: ann });
+  await tablet.sync();
   const opening = await prepareOpening(tablet, owner);
   const tool = shop.kit.workshop.tools[0]?.id ?? '';
   const day = { on: '2031-05-01', dueOn: '2032-05-01' };

@@ -1,4 +1,4 @@
-import { createHmac, randomBytes } from 'node:crypto';
+import { createHash, createHmac, randomBytes } from 'node:crypto';
 import { documentHash } from '@/server/shipped-documents';
 import { POST as postDevices } from '@/pages/api/devices/index';
 import { POST as postJobs } from '@/pages/api/jobs/index';
@@ -10,6 +10,7 @@ import type { Workshop } from '@/domain/job-state';
 import type { Plan } from '@/domain/plan';
 import type { Actor } from '@/server/actor';
 import type { HandlerContext } from '@/server/http';
+import { photoStorage } from '@/server/photos';
 import { hashNewPin, storePin } from '@/server/pins';
 import { releaseDocuments } from '@/server/released-documents';
 import { addTool, recordCalibration } from '@/server/tools';
@@ -75,13 +76,31 @@ export async function openShop(): Promise<Shop> {
   return { app, people, kit: { workshop: await workshopOf(app), today, photo: testPhoto } };
 }
 
-/** A photograph that is named but has no bytes. */
+const bytesOf = (subject: string) => Buffer.from(`a photograph of ${subject}`);
+
+/** A photograph of the test workshop; its bytes are kept when a job is opened, unless a test wants them missing. */
 function testPhoto(subject: string): { hash: string; bytes: number; type: 'image/jpeg' } {
-  return {
-    hash: createHmac('sha256', 'photo').update(subject).digest('hex'),
-    bytes: 1000,
-    type: 'image/jpeg',
-  };
+  const bytes = bytesOf(subject);
+  return { hash: photoHash(subject), bytes: bytes.byteLength, type: 'image/jpeg' };
+}
+
+/** The hash of the test photograph of a subject. */
+export function photoHash(subject: string): string {
+  return createHash('sha256').update(bytesOf(subject)).digest('hex');
+}
+
+/** Puts the bytes of a test photograph where the server keeps them. */
+export async function keepTestPhoto({ app }: Shop, subject: string): Promise<void> {
+  const bytes = bytesOf(subject);
+  const hash = photoHash(subject);
+  await photoStorage(app).put(`photos/${hash}`, bytes);
+  await photoStorage(app).put(`thumbs/${hash}`, bytes);
+  const row = { hash, bytes: bytes.byteLength, type: 'image/jpeg', uploaded_by_device: null };
+  await app.db
+    .insertInto('photo')
+    .values({ ...row, stored_at: app.clock.now().toISOString() })
+    .onConflict((conflict) => conflict.column('hash').doNothing())
+    .execute();
 }
 
 async function addTestTool(
@@ -260,13 +279,21 @@ export async function prepareOpening(
   return { body: { ...signed, identity, people: [people.ann.id] }, plan: planBody, planHash, job };
 }
 
-/** Opens a job through the real handler, and takes it up on the tablet. */
-export async function openTestJob(tablet: TestTablet, opener: Hand): Promise<OpenedJob> {
+/** Opens a job through the real handler, and takes it up on the tablet; its photographs are there beforehand. */
+export async function openTestJob(
+  tablet: TestTablet,
+  opener: Hand,
+  { photographs = true }: { photographs?: boolean } = {},
+): Promise<OpenedJob> {
   const { body, plan, planHash, job } = await prepareOpening(tablet, opener);
   const answer = await ask(postJobs, { as: opener, body });
   if (answer.status !== 201) throw new Error(`opening was answered ${answer.status}: ${answer.text}`);
   tablet.takeUp(job, plan);
   await tablet.sync();
+  if (photographs) {
+    const subjects = plan.steps.flatMap((step) => (step.kind === 'photograph' ? [step.subject] : []));
+    for (const subject of subjects) await keepTestPhoto(tablet.shop, subject);
+  }
   return { ...(answer.body as { id: string; number: string }), plan, planHash };
 }
 

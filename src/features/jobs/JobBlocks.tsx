@@ -3,15 +3,18 @@ import { openBlockers } from '@/domain/job-order';
 import type { JobState } from '@/domain/job-state';
 import { dayAndTime } from '@/domain/time-words';
 import { holdPointName } from './hold-point-name';
+import type { MissingPhotograph } from './job-answer';
 
 export interface JobBlocksProps {
   state: JobState;
   zone: string;
   waiting: { step: string; holdPoint: string; title: string }[];
+  missingPhotographs: MissingPhotograph[];
 }
 
 /** What stands in the way: signatures that are due, open deviations, parts, and what is still open. */
-export function JobBlocks({ state, zone, waiting }: JobBlocksProps) {
+export function JobBlocks({ state, zone, waiting, missingPhotographs }: JobBlocksProps) {
+  const awaited = isOver(state) ? [] : missingPhotographs.filter(({ isAwaited }) => isAwaited);
   const things = [
     ...waiting.map(({ step, title }) => ({
       key: step,
@@ -33,12 +36,23 @@ export function JobBlocks({ state, zone, waiting }: JobBlocksProps) {
         what: `Signed, to be checked: ${holdPoint}`,
         note: 'bring the tablet to the network',
       })),
+    ...awaited.map(({ entry, subject, name, tablet, at }) => ({
+      key: entry,
+      what: `Handover waits for a photograph: ${subject}`,
+      note: `${name}, taken ${dayAndTime(at, zone)} on ${tablet}: bring it to the network`,
+    })),
     ...barred(state),
   ];
   return (
     <section className="part">
       <h2 className="part-title">What blocks it</h2>
       {things.length === 0 ? <p>Nothing blocks it.</p> : <BlockList things={things} />}
+      {awaited.length > 0 && (
+        <p className="mt-2 text-soft">
+          Is a photograph lost? Take it again at its step on the Floor, or raise a deviation that names it (
+          <span className="figure">{awaited[0]?.name}</span>) and have it disposed of.
+        </p>
+      )}
       {state.open.length > 0 && (
         <>
           <h3 className="form-label mt-4">Taken off or put in, still open</h3>
@@ -51,6 +65,10 @@ export function JobBlocks({ state, zone, waiting }: JobBlocksProps) {
       )}
     </section>
   );
+}
+
+function isOver({ phase }: JobState): boolean {
+  return phase === 'handed over' || phase === 'ended unfinished';
 }
 
 function BlockList({ things }: { things: { key: string; what: string; note: string }[] }) {

@@ -1,6 +1,7 @@
 import { render, screen, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { describe, expect, it } from 'vitest';
+import { photosOf } from '@/domain/job-photos';
 import { progressOf } from '@/domain/job-progress';
 import { nextSteps } from '@/domain/job';
 import { answerDesk, refused, type DeskAnswer } from '../../../tests/support/desk-server';
@@ -45,6 +46,7 @@ function answerOf(journal: Journal, over: Partial<JobAnswer> = {}): JobAnswer {
     progress,
     identity: { registration: 'TW71 ABC' },
     withheld: ['customerName'],
+    missingPhotographs: [],
     jobState: state,
     ...over,
   };
@@ -139,6 +141,36 @@ describe('the page of a job', () => {
     await show(answerOf(journal));
     expect(screen.queryByRole('img', { name: 'a thumb' })).not.toBeInTheDocument();
     expect(part('Photographs').getByText('None yet.')).toBeVisible();
+  });
+
+  it('says of a photograph that has not come where it is, and how a lost one is got out of', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.turn-to@stop2');
+    const [photo] = photosOf(journal.state);
+    const missing = {
+      entry: photo!.entry,
+      name: 'photograph bbbbbbbb',
+      subject: photo!.subject,
+      at: photo!.at,
+      tablet: 'Bay 2',
+    };
+    await show(answerOf(journal, { missingPhotographs: [{ ...missing, isAwaited: true }] }));
+    const blocks = part('What blocks it');
+    expect(blocks.getByText(`Handover waits for a photograph: ${photo!.subject}`)).toBeVisible();
+    expect(blocks.getByText(/on Bay 2: bring it to the network/)).toHaveTextContent(/^photograph bbbbbbbb/);
+    expect(blocks.getByText(/Take it again at its step on the Floor/)).toHaveTextContent(
+      'raise a deviation that names it (photograph bbbbbbbb)',
+    );
+    expect(part('Photographs').getByText('not here yet, on Bay 2')).toBeVisible();
+    expect(screen.queryByRole('img', { name: photo!.subject })).not.toBeInTheDocument();
+  });
+
+  it('does not say that handover waits for a photograph that was taken again', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.turn-to@stop2');
+    const [photo] = photosOf(journal.state);
+    const missing = { entry: photo!.entry, name: 'n', subject: 's', at: photo!.at, tablet: 'Bay 2' };
+    await show(answerOf(journal, { missingPhotographs: [{ ...missing, isAwaited: false }] }));
+    expect(screen.queryByText(/Handover waits/)).not.toBeInTheDocument();
+    expect(part('Photographs').getByText('not here yet, on Bay 2')).toBeVisible();
   });
 
   it('says what is kept from this role, and leaves out what nobody gave', async () => {

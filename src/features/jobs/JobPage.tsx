@@ -87,11 +87,16 @@ function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & {
           <JobClearances state={jobState} />
         </div>
         <div className="job-state">
-          <JobBlocks state={jobState} zone={zone} waiting={answer.waiting} />
+          <JobBlocks
+            state={jobState}
+            zone={zone}
+            waiting={answer.waiting}
+            missingPhotographs={answer.missingPhotographs}
+          />
           <JobNext state={jobState} />
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
           <JobSignatures state={jobState} zone={zone} />
-          <JobPhotos state={jobState} zone={zone} />
+          <JobPhotos state={jobState} zone={zone} missing={answer.missingPhotographs} />
         </div>
         <JobFacts job={answer} />
       </div>

@@ -41,8 +41,19 @@ export const jobAnswer = z.object({
   ),
   identity: z.record(z.string(), z.string()),
   withheld: z.array(z.string()),
+  missingPhotographs: z.array(
+    z.object({
+      entry: z.string(),
+      name: z.string(),
+      subject: z.string(),
+      at: z.string(),
+      tablet: z.string(),
+      isAwaited: z.boolean(),
+    }),
+  ),
   jobState: z.custom<JobState>(
     (value: unknown) => typeof value === 'object' && value !== null && 'steps' in value,
   ),
 });
 export type JobAnswer = z.infer<typeof jobAnswer>;
+export type MissingPhotograph = JobAnswer['missingPhotographs'][number];

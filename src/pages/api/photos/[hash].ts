@@ -33,14 +33,16 @@ export const GET = endpoint(
     answer: z.unknown(),
     answerTypes: PHOTO_TYPES,
   },
-  async ({ app, params, query }) => {
-    const { bytes, type } = await getPhoto(app, requireHash(params.hash), query.size);
+  async ({ app, asker, params, query }) => {
+    const { bytes, type } = await getPhoto(app, asker, requireHash(params.hash), query.size);
     return new Response(new Uint8Array(bytes), {
       headers: {
         'content-type': type,
         'content-length': String(bytes.byteLength),
         // The address names the bytes, so they never change; no shared cache may keep them.
         'cache-control': 'private, max-age=31536000, immutable',
+        // Somebody else at this browser may see less.
+        vary: 'cookie, authorization',
         'content-disposition': 'inline',
         'x-content-type-options': 'nosniff',
       },

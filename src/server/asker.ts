@@ -1,0 +1,10 @@
+import type { Actor } from './actor';
+import type { Device } from './devices';
+
+/** On whose behalf something is read: a person, or a tablet by its own credential while nobody is signed in. */
+export type Asker = Actor | Device;
+
+/** Whether it is a tablet that asks, and no person. */
+export function isDevice(asker: Asker): asker is Device {
+  return 'enrolledBy' in asker;
+}
