@@ -1,7 +1,9 @@
+import { createHash } from 'node:crypto';
 import { mkdirSync, mkdtempSync, rmSync, truncateSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import path from 'node:path';
 import { afterEach, beforeEach, describe, expect, it, vi } from 'vitest';
+import { buildTrailBody, rechain, seal, signAsAuthor } from '../../tests/support/sealed-trail';
 import { main } from './verify-trail';
 
 let folder: string;
@@ -85,4 +87,49 @@ describe('the command that verifies a trail', () => {
     truncateSync(path.join(folder, large), 100_000_000);
     expect(await verify(large)).toMatchObject({ code: 2 });
   }, 30_000);
+});
+
+describe('the photographs beside a trail', () => {
+  const picture = Buffer.from('an invented picture');
+  const hash = createHash('sha256').update(picture).digest('hex');
+
+  /** A whole trail that names the picture, and a folder for it. */
+  function trail(): string {
+    const body = buildTrailBody(12);
+    body.entries[2]!.recorded.data = { photo: hash, bytes: picture.length };
+    body.photographs = [{ hash, bytes: picture.length, state: 'kept' }];
+    rechain(body);
+    for (const entry of body.entries) if (entry.recorded.by !== 'workshop') signAsAuthor(entry);
+    mkdirSync(path.join(folder, 'pictures'));
+    return file(seal(body));
+  }
+
+  async function verifyWhole(...args: string[]): Promise<{ code: number; said: string }> {
+    const log = vi.spyOn(console, 'log').mockImplementation(() => undefined);
+    const code = await main(args, folder);
+    const said = String(log.mock.lastCall?.[0]);
+    log.mockRestore();
+    return { code, said };
+  }
+
+  it('are compared by their bytes, with an ending or without', async () => {
+    const given = trail();
+    writeFileSync(path.join(folder, 'pictures', `${hash}.webp`), picture);
+    const { code, said } = await verifyWhole(given, '--photographs', 'pictures');
+    expect(code).toBe(0);
+    expect(said).toContain('1 photographs compared.');
+  });
+
+  it('are missing without a break, and broken when a byte was changed', async () => {
+    const given = trail();
+    const without = await verifyWhole(given, '--photographs', 'pictures');
+    expect(without.code).toBe(0);
+    expect(without.said).toContain(`Photograph ${hash} is not in the folder.`);
+    writeFileSync(path.join(folder, 'pictures', hash), 'An invented picture');
+    expect(await verify(given, '--photographs', 'pictures')).toMatchObject({
+      code: 1,
+      said: expect.stringContaining(`At photograph ${hash}`),
+    });
+    expect(await verify(given, '--photographs', 'nowhere')).toMatchObject({ code: 2 });
+  });
 });
