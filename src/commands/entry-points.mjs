@@ -2,7 +2,7 @@ import { fileURLToPath } from 'node:url';
 import { ROOT } from './root.mjs';
 
 /** The commands that a plain Node runs from `dist/server`: NAME.ts here becomes NAME.mjs there. */
-const COMMANDS = ['serve', 'verify-trail'];
+const COMMANDS = ['serve', 'verify-trail', 'backup', 'restore', 'renew-key'];
 
 /**
  * An Astro integration that builds the commands together with the pages, and makes the data folder ready for
