@@ -10,6 +10,7 @@ import { fetchMissingPlans, pullWorkshop } from './prefetch';
 import { callServer, type Outcome, type Trouble } from './server-call';
 import { instantOf, type Surroundings } from './surroundings';
 import { syncAnswer, type SyncAnswer } from './sync-answer';
+import { finishSignOuts } from './sign-out';
 import { applyJobAnswer } from './sync-pull';
 import { applyVerdicts, nextBatch, toWire, type Batch } from './sync-push';
 import { extendSessionsHourly } from './tablet';
@@ -19,6 +20,8 @@ const MAX_JOBS = 100;
 
 /** Sends and brings everything once. */
 export async function runSync(s: Surroundings): Promise<Outcome> {
+  // What does not come about stays noted and is tried again with the next run.
+  await finishSignOuts(s);
   const device = await readDevice(s);
   if (device.credential === undefined) return NOT_ENROLLED;
   const tried = new Set<string>();

@@ -116,6 +116,11 @@ export async function forgetSignIn(s: Surroundings, person: string): Promise<voi
   });
 }
 
+/** Who signed out here while their session at the server goes on until it can be reached. */
+export async function readSigningOut({ db }: Surroundings): Promise<string[]> {
+  return ((await db.meta.get('signingOut'))?.value as string[] | undefined) ?? [];
+}
+
 const me = z.object({
   sideBySide: z.array(
     z.object({
@@ -133,11 +138,12 @@ export async function refreshSignedIn(s: Surroundings): Promise<Outcome> {
   const answer = await callServer(s, { path: '/api/me', answer: me, without: 'tablet' });
   if (!answer.ok) return answer;
   const rows = answer.body.sideBySide.map(({ personId, ...rest }) => ({ person: personId, ...rest }));
-  await s.db.transaction('rw', s.db.signedIn, async () => {
+  await s.db.transaction('rw', s.db.signedIn, s.db.meta, async () => {
     // Whoever signed in or out while the answer was on its way is right, not the answer.
     if (JSON.stringify(await s.db.signedIn.toArray()) !== JSON.stringify(before)) return;
+    const leaving = new Set(await readSigningOut(s));
     await s.db.signedIn.clear();
-    await s.db.signedIn.bulkPut(rows);
+    await s.db.signedIn.bulkPut(rows.filter(({ person }) => !leaving.has(person)));
   });
   return { ok: true };
 }

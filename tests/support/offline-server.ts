@@ -170,6 +170,8 @@ export class OfflineServer {
         ? refusal(401, 'not-signed-in', 'Nobody is signed in here.')
         : [200, { actor: { personId: this.session }, sideBySide: this.sideBySide }];
     }
+    if (path === '/api/auth/sign-out') return this.signOut((body as { person: string }).person);
+    if (path === '/api/auth/switch') return this.switchTo((body as { person: string }).person);
     const device = this.deviceOf(authorization);
     if (!device) return refusal(401, 'unknown-tablet', 'This tablet is not known to the workshop.');
     if (path === '/api/keys') return this.addKey(device, (body as { publicKey: string }).publicKey);
@@ -183,6 +185,23 @@ export class OfflineServer {
     }
     if (kind === 'photos' && method === 'PUT') return this.takePhoto(hash, body as ArrayBuffer);
     return refusal(404, 'not-found', 'Nothing is here.');
+  }
+
+  /** Ends one session of those side by side; some session has to be the active one. */
+  private signOut(person: string): [number, unknown] {
+    const isHere = this.sideBySide.some(({ personId }) => personId === person);
+    if (this.session === undefined || !isHere)
+      return refusal(401, 'not-signed-in', 'Nobody is signed in here.');
+    this.sideBySide = this.sideBySide.filter(({ personId }) => personId !== person);
+    if (this.session === person) this.session = this.sideBySide[0]?.personId;
+    return [200, { ok: true }];
+  }
+
+  private switchTo(person: string): [number, unknown] {
+    const isHere = this.sideBySide.some(({ personId }) => personId === person);
+    if (!isHere) return refusal(401, 'not-signed-in', 'This person is not signed in here.');
+    this.session = person;
+    return [200, { ok: true }];
   }
 
   private enrol({ id }: { id: string }): [number, unknown] {

@@ -18,7 +18,7 @@ export function JobRows({ jobs, working, isOnline, onOpen, onKeep }: JobRowsProp
         <li key={job.id} className="flex gap-3">
           <button
             type="button"
-            className="grid min-h-22 flex-1 grid-cols-[1fr_auto] items-center gap-x-6 rounded-md border-2 border-strong bg-sheet px-5 py-3 text-left aria-disabled:border aria-disabled:border-rule aria-disabled:text-soft"
+            className="grid min-h-22 flex-1 items-center gap-x-6 gap-y-1 rounded-md border-2 border-strong bg-sheet px-5 py-3 text-left aria-disabled:border aria-disabled:border-rule aria-disabled:text-soft @4xl/floor-main:grid-cols-[1fr_auto]"
             aria-disabled={!job.availableOffline && !isOnline ? true : undefined}
             onClick={() => (job.availableOffline || isOnline ? onOpen(job.id) : undefined)}
           >
@@ -28,7 +28,7 @@ export function JobRows({ jobs, working, isOnline, onOpen, onKeep }: JobRowsProp
               </span>
               <span className="block text-lg text-soft">{jobNote(job, working)}</span>
             </span>
-            <span className="text-right text-lg font-bold">{placeWords(job, isOnline)}</span>
+            <span className="text-lg font-bold">{placeWords(job, isOnline)}</span>
           </button>
           {!job.availableOffline && (
             <QuietButton

@@ -16,7 +16,7 @@ export function SignInForm({ isOnline, isBusy, onSignIn, onCancel }: SignInFormP
   const why = !isOnline
     ? 'needs the network once'
     : email.trim() === '' || password === ''
-      ? 'both fields'
+      ? 'fill in both'
       : undefined;
   return (
     <form

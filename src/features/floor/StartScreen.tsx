@@ -9,10 +9,11 @@ import { makeAvailableOffline } from '@/offline/prefetch';
 import type { Outcome } from '@/offline/server-call';
 import { setWorking } from '@/offline/tablet';
 import { useFloor, useFloorStore } from './floor-context';
-import type { FloorState } from './floor-store';
+import type { FloorState, SignedInPerson } from './floor-store';
 import { JobRows } from './JobRows';
 import { bringWork, finishEnrolment, nameTablet, signIn } from './sign-in';
 import { SignInForm } from './SignInForm';
+import { SignOutSheet } from './SignOutSheet';
 import { TabletForm } from './TabletForm';
 import { clockTime } from '@/domain/time-words';
 import { useIsOnline } from './use-is-online';
@@ -23,13 +24,15 @@ export function StartScreen() {
   const floor = useFloor((state) => state);
   const isOnline = useIsOnline();
   const [isAdding, setAdding] = useState(false);
+  const [leaving, setLeaving] = useState<SignedInPerson>();
   const { act, isBusy, trouble } = useServerActs();
   const { offline, working, signedIn, tablet } = floor;
   const update = useUpdate();
+  const isCalm = !isBusy && !isAdding && leaving === undefined;
   useEffect(() => {
     // Nobody is in the middle of anything here.
-    if (update.isWaiting) update.activate();
-  }, [update]);
+    if (update.isWaiting && isCalm) update.activate();
+  }, [update, isCalm]);
   const person = signedIn.find((who) => who.person === working);
   const needsSignIn = floor.isReady && (signedIn.length === 0 || isAdding);
   const needsName = floor.isReady && !needsSignIn && tablet?.enrolled === false;
@@ -40,10 +43,10 @@ export function StartScreen() {
       sync={startSync(floor, isOnline)}
       person={{
         label: person?.name ?? 'Nobody yet',
-        note: person ? person.roles.join(', ') : 'touch your name',
+        note: person ? person.roles.join(', ') : signedIn.length === 0 ? 'sign in first' : 'touch your name',
       }}
     >
-      <div className="mx-auto grid max-w-5xl gap-8 pb-6">
+      <div className="mx-auto grid max-w-5xl gap-6 pb-6">
         {!needsSignIn && !needsName && <h1 className="unseen">The Floor</h1>}
         {trouble !== undefined && <Notice tone="stop" title={trouble} isAlert />}
         {needsSignIn && (
@@ -70,6 +73,7 @@ export function StartScreen() {
           <People
             floor={floor}
             onAdd={() => setAdding(true)}
+            onLeave={setLeaving}
             onPick={(id) =>
               act(async () => {
                 await setWorking(offline, id);
@@ -82,6 +86,14 @@ export function StartScreen() {
           <JobList floor={floor} isOnline={isOnline} isBusy={isBusy} act={act} />
         )}
       </div>
+      {leaving && (
+        <SignOutSheet
+          person={{ id: leaving.person, name: leaving.name }}
+          isOnline={isOnline}
+          onClose={() => setLeaving(undefined)}
+          onLeft={() => setLeaving(undefined)}
+        />
+      )}
     </FloorFrame>
   );
 }
@@ -116,18 +128,26 @@ function startSync({ sync, workshop }: FloorState, isOnline: boolean) {
   });
 }
 
-function People({
-  floor,
-  onAdd,
-  onPick,
-}: {
+interface PeopleProps {
   floor: FloorState;
   onAdd: () => void;
   onPick: (person: string) => void;
-}) {
+  onLeave: (person: SignedInPerson) => void;
+}
+
+function People({ floor, onAdd, onPick, onLeave }: PeopleProps) {
+  const working = floor.signedIn.find(({ person }) => person === floor.working);
   return (
     <section>
-      <h2 className="border-b-2 border-text pb-1 text-xl">Who is working</h2>
+      <div className="flex flex-wrap items-end justify-between gap-3 border-b-2 border-text pb-2">
+        <h2 className="text-xl">Who is working</h2>
+        <div className="flex flex-wrap gap-3">
+          {working && (
+            <QuietButton shape="wide" label={`Sign ${working.name} out`} onPress={() => onLeave(working)} />
+          )}
+          <QuietButton shape="wide" sign="plus" label="Add a person" onPress={onAdd} />
+        </div>
+      </div>
       <div className="flex flex-wrap gap-3 pt-4 [&_.quiet-button]:text-xl">
         {floor.signedIn.map(({ person, name, hasKey }) => (
           <QuietButton
@@ -138,7 +158,6 @@ function People({
             onPress={() => onPick(person)}
           />
         ))}
-        <QuietButton shape="wide" sign="plus" label="Add a person" onPress={onAdd} />
       </div>
     </section>
   );

@@ -113,6 +113,40 @@ describe('the Floor between two touches', () => {
     expect(again.getState().isAway).toBe(false);
   });
 
+  it('asks about the action on the screen after somebody else took over', async () => {
+    const { store, settle } = await openFloor();
+    await store.getState().record([rags]);
+    settle();
+    store.getState().showAction('1A.0.2');
+    const over: Draft = { kind: 'took-over', data: { from: 'tech', firstOfShift: false } };
+    expect(await store.getState().record([over], { by: 'mate' })).toBe(true);
+    expect(store.getState().isAway).toBe(true);
+    settle();
+    await store.getState().record([kit]);
+    expect(store.getState().isAway).toBe(false);
+  });
+
+  it('shows what comes of parking a job, whichever step it was said on', async () => {
+    const { store, settle, tablet } = await openFloor();
+    const [photo, ...rest] = firstWork(6);
+    for (const draft of [photo!, ...rest]) {
+      tablet.now += 5000;
+      const photos = draft.kind === 'photographed' ? [picture(draft.step ?? '')] : [];
+      await store.getState().record([draft], { photos });
+      settle();
+    }
+    store.getState().goTo('strip.park');
+    const { view } = store.getState();
+    const park = view!.state.plan.steps.find(({ id }) => id === 'strip.park');
+    const checks = park && 'checks' in park ? park.checks.map(({ id }) => ({ id, ok: true })) : [];
+    expect(await store.getState().record([{ kind: 'parked', step: 'strip.park', data: { checks } }])).toBe(
+      true,
+    );
+    const { view: after, place } = store.getState();
+    expect(after!.state.phase).toBe('parked');
+    expect(currentStep(after!.state, place)?.kind).toBe('resume');
+  });
+
   it('goes through the first work of a job without a network', async () => {
     const { store, settle, tablet } = await openFloor();
     const drafts = firstWork(6);

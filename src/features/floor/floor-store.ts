@@ -12,6 +12,7 @@ import { recordEntries, type Draft } from '@/offline/record';
 import type { SyncStatus } from '@/offline/sync-status';
 import { listSignedIn, readTablet, whoIsWorking, type Tablet } from '@/offline/tablet';
 import { findStep, type PlanStep } from '@/domain/plan';
+import { capInHand, isToolChange } from './cap-in-hand';
 import { following, NOWHERE, staysAfter, type FloorPlace } from './current-step';
 import type { RecordOptions } from './run-context';
 
@@ -40,6 +41,8 @@ export interface FloorState {
   place: FloorPlace;
   /** Nobody was at the tablet, or someone else is now: what became of the action shown is not known. */
   isAway: boolean;
+  /** Someone else took a half-done cap over: whatever action comes next on it is asked about. */
+  isNewHand: boolean;
   helpers: string[];
   flash: number;
   isRecording: boolean;
@@ -80,6 +83,7 @@ export function createFloorStore(offline: Offline): FloorStore {
       jobId: null,
       place: NOWHERE,
       isAway: false,
+      isNewHand: false,
       helpers: [],
       flash: 0,
       isRecording: false,
@@ -93,6 +97,7 @@ export function createFloorStore(offline: Offline): FloorStore {
           trouble: undefined,
           place: NOWHERE,
           isAway: false,
+          isNewHand: false,
           helpers: [],
           refusal: undefined,
         });
@@ -108,7 +113,7 @@ export function createFloorStore(offline: Offline): FloorStore {
       goTo: (step) => movePlace({ step, isVisit: true }, set, get),
       goOn: (from) => goOn(from, set, get),
       showAction: (action) => showAction(action, set, get),
-      settleAction: () => set({ isAway: false }),
+      settleAction: () => set({ isAway: false, isNewHand: false }),
       noteAway: () => set({ isAway: true }),
       noteTouch() {
         const { jobId } = get();
@@ -169,10 +174,10 @@ function goOn(from: PlanStep, set: Set, get: Get): void {
 }
 
 function showAction(action: string, set: Set, get: Get): void {
-  const { place, isAway } = get();
+  const { place, isAway, isNewHand } = get();
   if (place.action === action) return;
-  // Another action than the one before: there is nothing to ask about.
-  if (isAway) set({ isAway: false });
+  // Another action than the one before: there is nothing to ask about, unless somebody else had it in hand.
+  if (isAway && !isNewHand) set({ isAway: false });
   movePlace({ ...place, action }, set, get);
 }
 
@@ -189,6 +194,7 @@ async function record(
 ): Promise<boolean> {
   const { jobId, working, helpers, isSettling, afterwards } = get();
   const author = by ?? working;
+  const question = questionAfter(drafts, get());
   if (jobId === null || author === null || writing.isUnderWay || isSettling) return false;
   writing.isUnderWay = true;
   const endSlow = offline.after(SLOW_MS, () => set({ isRecording: true }));
@@ -203,7 +209,7 @@ async function record(
       set({ isRecording: false, refusal: { why: outcome.why, unlock: outcome.unlock } });
       return false;
     }
-    settle(offline, set);
+    settle(offline, set, question);
     moveAfter(drafts, set, get);
     return true;
   } catch (error) {
@@ -222,21 +228,42 @@ async function record(
   }
 }
 
+type Question = Pick<FloorState, 'isAway' | 'isNewHand'>;
+
+/** Another person, or another tool within a cap: what became of the action on the screen has to be asked. */
+function questionAfter(drafts: Draft[], { offline, view, workshop, place }: FloorState): Question {
+  if (!view || !workshop) return { isAway: false, isNewHand: false };
+  const { state } = view;
+  const step = place.step === null ? undefined : findStep(state.plan, place.step);
+  const isNewHand = drafts.some(({ kind }) => kind === 'took-over');
+  const isNewTool = drafts.some(
+    (draft) => draft.kind === 'tool-taken' && isToolChange(state, workshop, step, draft.data, offline.now()),
+  );
+  return { isAway: isNewHand || isNewTool, isNewHand: isNewHand && capInHand(state) !== undefined };
+}
+
 /** The edge flashes, and for a moment another touch is the same touch. */
-function settle(offline: Offline, set: Set): void {
+function settle(offline: Offline, set: Set, question: Question): void {
   set((state) => ({
     isRecording: false,
     isSettling: true,
     refusal: undefined,
     flash: state.flash + 1,
-    isAway: false,
+    ...question,
     afterwards: undefined,
   }));
   offline.after(TOUCH_GAP_MS, () => set({ isSettling: false }));
 }
 
+const STOPS_WORK = new Set<Draft['kind']>(['parked', 'ended-unfinished']);
+
 function moveAfter(drafts: Draft[], set: Set, get: Get): void {
   const { view, place } = get();
+  // A job that has just been parked or ended shows what comes of that, whichever step it was said on.
+  if (view && view.state.phase !== 'running' && drafts.some(({ kind }) => STOPS_WORK.has(kind))) {
+    movePlace(NOWHERE, set, get);
+    return;
+  }
   const stepId = drafts.findLast(({ step }) => step !== undefined)?.step;
   const step = view && stepId !== undefined ? findStep(view.state.plan, stepId) : undefined;
   if (!view || !step) return;

@@ -12,6 +12,7 @@ export type SheetName =
   | 'job'
   | 'sync'
   | 'person'
+  | 'sign out'
   | 'problem'
   | 'take back'
   | 'deviation'

@@ -1,6 +1,7 @@
 import * as z from 'zod/mini';
 import { keepOpenJobsOffline, pullJobList, pullWorkshop } from '@/offline/prefetch';
 import { callServer, type Outcome } from '@/offline/server-call';
+import { finishSignOuts, keepSession, signOutHere } from '@/offline/sign-out';
 import {
   enrolAuthorKey,
   enrolTablet,
@@ -9,7 +10,9 @@ import {
   refreshSignedIn,
   setWorking,
 } from '@/offline/tablet';
+import { JobNotHereError, type JobView } from '@/offline/job-store';
 import type { Offline } from '@/offline/offline';
+import { capInHand, capWords } from './cap-in-hand';
 
 const whoSignedIn = z.object({ personId: z.string() });
 
@@ -18,6 +21,8 @@ export async function signIn(
   offline: Offline,
   { email, password }: { email: string; password: string },
 ): Promise<Outcome> {
+  // Else the session that begins now could be taken for the one that was to end.
+  await finishSignOuts(offline);
   const answer = await callServer(offline, {
     method: 'POST',
     path: '/api/auth/sign-in',
@@ -25,9 +30,10 @@ export async function signIn(
     answer: whoSignedIn,
   });
   if (!answer.ok) return answer;
+  const { personId } = answer.body;
+  await keepSession(offline, personId);
   const refreshed = await refreshSignedIn(offline);
   if (!refreshed.ok) return refreshed;
-  const { personId } = answer.body;
   await setWorking(offline, personId);
   const { enrolled } = await readTablet(offline);
   return enrolled ? settleIn(offline, personId) : { ok: true };
@@ -60,4 +66,32 @@ export async function finishEnrolment(offline: Offline, person: string): Promise
   if (signedIn.find((who) => who.person === person)?.hasKey === true) return { ok: true };
   const { enrolled } = await readTablet(offline);
   return enrolled ? enrolAuthorKey(offline, person) : { ok: true };
+}
+
+/** Signs one person out at this tablet; the others stay, and so do the records. */
+export async function leaveTablet(offline: Offline, person: string): Promise<void> {
+  await signOutHere(offline, person);
+  offline.sync.nudge();
+}
+
+/** Why a person can't leave the tablet now: a cap that they work on stands half done. */
+export async function whyNotLeave(offline: Offline, person: string): Promise<string | undefined> {
+  for (const { id, number } of await offline.db.jobs.filter((job) => job.availableOffline).toArray()) {
+    const view = offline.jobs.get(id) ?? (await openQuietly(offline, id));
+    const cap = view?.state.working?.by === person ? capInHand(view.state) : undefined;
+    if (cap) {
+      return `Job ${number}: ${capWords(cap)} stand half tightened. Finish them, or let somebody take the job over.`;
+    }
+  }
+  return undefined;
+}
+
+/** A job that is not whole on this tablet holds nobody here. */
+async function openQuietly(offline: Offline, job: string): Promise<JobView | undefined> {
+  try {
+    return await offline.jobs.open(job);
+  } catch (error) {
+    if (error instanceof JobNotHereError) return undefined;
+    throw error;
+  }
 }
