@@ -1,4 +1,4 @@
-import { useEffect, useId, useRef, type MouseEvent, type ReactNode } from 'react';
+import { useId, useLayoutEffect, useRef, type MouseEvent, type ReactNode } from 'react';
 
 export interface DialogProps {
   title: string;
@@ -6,7 +6,7 @@ export interface DialogProps {
   /** Called on Escape, on the close button and, for a sheet, on a touch beside it. */
   onClose: () => void;
   children: ReactNode;
-  /** Buttons at the foot. */
+  /** Buttons at the foot, always in sight on a sheet. */
   actions?: ReactNode;
   /** `sheet` rises over the lower part of the screen or stands at the side; `dialog` stands in the middle. */
   shape?: 'dialog' | 'sheet' | undefined;
@@ -27,7 +27,8 @@ export function Dialog({
   const ref = useRef<HTMLDialogElement>(null);
   const titleId = useId();
 
-  useEffect(() => {
+  // Before the effects of what is inside, which may scroll to something that has to be seen.
+  useLayoutEffect(() => {
     const dialog = ref.current;
     if (dialog === null) return;
     if (isOpen && !dialog.open) dialog.showModal();

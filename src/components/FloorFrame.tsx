@@ -51,7 +51,11 @@ export function FloorFrame({
       </header>
       {notice !== undefined && <div className="floor-notice">{notice}</div>}
       <div className="floor-middle">
-        {side !== undefined && <div className="floor-side">{side}</div>}
+        {side !== undefined && (
+          <aside className="floor-side" aria-label="Beside the step">
+            {side}
+          </aside>
+        )}
         <main className="floor-main">{children}</main>
       </div>
       {(quiet !== undefined || main !== undefined) && (

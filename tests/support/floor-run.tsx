@@ -3,7 +3,7 @@ import { useState, type ReactNode } from 'react';
 import { vi } from 'vitest';
 import { mayRecord } from '@/domain/job';
 import type { PlanStep } from '@/domain/plan';
-import type { WorkshopRow } from '@/offline/database';
+import type { RefusedRow, WorkshopRow } from '@/offline/database';
 import type { Draft } from '@/offline/record';
 import { currentStep, following, NOWHERE, staysAfter, type FloorPlace } from '@/features/floor/current-step';
 import { RunContext, type Run, type SheetName, type Worker } from '@/features/floor/run-context';
@@ -39,6 +39,10 @@ export interface FixtureOptions {
   now?: () => number;
   start?: FloorPlace;
   onSheet?: (name: SheetName) => void;
+  /** What the server refused of the job. */
+  refused?: RefusedRow[];
+  /** Something is being written down. */
+  isBusy?: boolean;
   /** What lies over the step's screen. */
   over?: (step: PlanStep | undefined) => ReactNode;
 }
@@ -93,9 +97,9 @@ export function FixtureRun(options: FixtureOptions) {
     person,
     helpers: [],
     isOnline,
-    isBusy: false,
+    isBusy: options.isBusy ?? false,
     refusal,
-    refused: [],
+    refused: options.refused ?? [],
     flash,
     askAbout,
     record,

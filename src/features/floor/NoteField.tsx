@@ -15,6 +15,9 @@ export function NoteField({ label, value, onChange, phrases = [] }: NoteFieldPro
   const dictation = useDictation((heard) => onChange(joined(value, heard)));
   return (
     <div className="grid gap-3">
+      <label htmlFor={id} className="text-xl font-bold">
+        {label}
+      </label>
       {phrases.length > 0 && (
         <div className="flex flex-wrap gap-3" role="group" aria-label={`${label}: words to pick`}>
           {phrases.map((phrase) => (
@@ -22,41 +25,38 @@ export function NoteField({ label, value, onChange, phrases = [] }: NoteFieldPro
               key={phrase}
               shape="wide"
               label={phrase}
-              onPress={() => onChange(joined(value, phrase))}
+              onPress={() => onChange(joined(value, phrase, ', '))}
             />
           ))}
         </div>
       )}
-      <label htmlFor={id} className="text-xl font-bold">
-        {label}
-      </label>
-      <textarea
-        id={id}
-        className="min-h-30 w-full rounded-md border-2 border-strong bg-sheet px-4 py-3 text-xl"
-        rows={3}
-        maxLength={2000}
-        value={value}
-        onChange={(event) => onChange(event.target.value)}
-      />
-      <p className="text-sm text-soft">
-        Leave out names, registrations and telephone numbers: notes stay readable for years.
-      </p>
-      {dictation && (
-        <div>
+      <div className="flex items-stretch gap-3">
+        <textarea
+          id={id}
+          className="min-h-24 min-w-0 flex-1 resize-none rounded-md border-2 border-strong bg-sheet px-4 py-3 text-xl"
+          rows={2}
+          maxLength={2000}
+          value={value}
+          onChange={(event) => onChange(event.target.value)}
+        />
+        {dictation && (
           <QuietButton
             shape="wide"
             label={dictation.isListening ? 'Listening…' : 'Speak'}
             isPressed={dictation.isListening}
             onPress={dictation.toggle}
           />
-        </div>
-      )}
+        )}
+      </div>
+      <p className="text-sm text-soft">
+        Leave out names, registrations and telephone numbers: notes stay readable for years.
+      </p>
     </div>
   );
 }
 
-function joined(value: string, more: string): string {
-  return value.trim() === '' ? more : `${value.trim()} ${more}`;
+function joined(value: string, more: string, between = ' '): string {
+  return value.trim() === '' ? more : `${value.trim()}${between}${more}`;
 }
 
 interface Recogniser {

@@ -6,7 +6,9 @@ import { openBlockers } from '@/domain/job-order';
 import { findSignature } from '@/domain/job-evidence';
 import { whyNot } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
+import { dayAndTime } from '@/domain/time-words';
 import { isOpen } from './current-step';
+import { dataOf } from './done-words';
 import { engineView } from '@/domain/engine-view';
 import { useRun } from './run-context';
 
@@ -21,16 +23,31 @@ export function NothingToDo() {
       {...run.cells}
       flash={run.flash}
       side={<EngineBelow {...engineView(state, undefined, run.workshop.zone)} />}
-      quiet={<QuietButton label="Problem" onPress={() => run.openSheet('problem')} />}
+      quiet={
+        hasEnded ? (
+          <QuietButton label="Send now" onPress={() => void run.syncNow()} />
+        ) : (
+          <QuietButton label="Problem" onPress={() => run.openSheet('problem')} />
+        )
+      }
       main={
-        <MainAction
-          label={hasEnded ? 'Send it now' : 'What is open'}
-          next={hasEnded ? (run.isOnline ? undefined : 'no network') : 'deviations and open list'}
-          onPress={() => (hasEnded ? void run.syncNow() : run.openSheet('job'))}
-        />
+        hasEnded ? (
+          <MainAction
+            label="Back to the jobs"
+            next={run.cells.sync.label.toLowerCase()}
+            onPress={() => (location.hash = '')}
+          />
+        ) : (
+          <MainAction
+            label="What is open"
+            next="deviations and open list"
+            onPress={() => run.openSheet('job')}
+          />
+        )
       }
     >
       <h1 className="floor-step pb-4">{endWords(state)}</h1>
+      {hasEnded && <HowItEnded />}
       <ul className="grid gap-3">
         {waits.map(({ title, why }) => (
           <li key={title} className="border-b border-rule pb-3 text-xl">
@@ -39,6 +56,26 @@ export function NothingToDo() {
         ))}
       </ul>
     </FloorFrame>
+  );
+}
+
+/** Who ended the job, when and why, and what was open then. */
+function HowItEnded() {
+  const { state, workshop } = useRun();
+  const last = Object.values(state.steps)
+    .flatMap(({ entries }) => entries)
+    .concat(state.unstepped)
+    .findLast(({ kind }) => kind === 'ended-unfinished' || kind === 'handed-over');
+  if (!last) return null;
+  const reason = last.kind === 'ended-unfinished' ? dataOf(last, 'ended-unfinished').reason : undefined;
+  return (
+    <div className="grid gap-3 text-xl">
+      <p>
+        By {last.name}, {dayAndTime(last.at, workshop.zone)}.
+      </p>
+      {reason !== undefined && <p>“{reason}”</p>}
+      {state.open.length > 0 && <p>Still open: {state.open.map(({ name }) => name).join(', ')}.</p>}
+    </div>
   );
 }
 

@@ -4,11 +4,12 @@ import { MainAction } from '@/components/MainAction';
 import { PinPad } from '@/components/PinPad';
 import { QuietButton } from '@/components/QuietButton';
 import { findKept } from '@/domain/job';
+import { dayAndTime } from '@/domain/time-words';
+import { capInHand, capWords } from './cap-in-hand';
 import { dataOf, doneWords } from './done-words';
 import { useRun } from './run-context';
 import { needsPin } from './shift';
 import { SheetRefusal } from './sheets/SheetRefusal';
-import { dayAndTime } from '@/domain/time-words';
 
 const SHORTEST_PIN = 4;
 
@@ -19,6 +20,7 @@ export function TakeOverScreen() {
   const { working, lastAt, lastEntry, plan } = run.state;
   const asksPin = needsPin(run.state, run.person.id, run.now());
   const last = lastEntry === undefined ? undefined : findKept(run.state, lastEntry);
+  const cap = capInHand(run.state);
   const note = last?.kind === 'took-over' ? dataOf(last, 'took-over').note : undefined;
   async function takeOver() {
     await run.record([
@@ -46,15 +48,22 @@ export function TakeOverScreen() {
         />
       }
     >
-      <div className="grid gap-5">
-        <h1 className="floor-step">Take over from {working?.name ?? 'whoever worked last'}</h1>
-        <SheetRefusal />
-        {last && lastAt !== undefined && (
-          <p className="floor-then">
-            Last, {dayAndTime(lastAt, run.workshop.zone)}: {doneWords(last, plan)}
-          </p>
-        )}
-        {note !== undefined && <p className="text-xl">“{note}”</p>}
+      <div className="grid items-start gap-x-10 gap-y-5 @4xl/floor-main:grid-cols-[1fr_25rem]">
+        <div className="grid gap-5">
+          <h1 className="floor-step">Take over from {working?.name ?? 'whoever worked last'}</h1>
+          {run.refusal && <SheetRefusal {...run.refusal} />}
+          {last && lastAt !== undefined && (
+            <p className="floor-then">
+              Last, {dayAndTime(lastAt, run.workshop.zone)}: {doneWords(last, plan)}
+            </p>
+          )}
+          {note !== undefined && <p className="text-xl">“{note}”</p>}
+          {cap && (
+            <p className="text-xl font-bold">
+              {capWords(cap)} stand half tightened. You are asked what was done before anything else.
+            </p>
+          )}
+        </div>
         {asksPin && (
           <PinPad
             label={`PIN of ${run.person.name}`}

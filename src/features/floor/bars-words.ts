@@ -9,8 +9,12 @@ const GATES: Record<Gate, string> = {
 
 /** What an open item bars, in words that follow its sentence; nothing where it bars nothing. */
 export function barsWords(bars: readonly Gate[]): string {
-  if (bars.length === 0) return '';
+  return bars.length === 0 ? '' : `; until then it bars ${gatesWords(bars)}`;
+}
+
+/** Gates in words, as "the first start and the handover". */
+export function gatesWords(bars: readonly Gate[]): string {
   const names = bars.map((gate) => GATES[gate]);
   const last = names.at(-1) ?? '';
-  return `; until then it bars ${names.length === 1 ? last : `${names.slice(0, -1).join(', ')} and ${last}`}`;
+  return names.length < 2 ? last : `${names.slice(0, -1).join(', ')} and ${last}`;
 }

@@ -9,7 +9,6 @@ import { PhotoInput } from '../PhotoInput';
 import { useRun } from '../run-context';
 import { usePhoto } from '../use-photo';
 import { Sheet } from './Sheet';
-import { SheetRefusal } from './SheetRefusal';
 
 const CLASSES = [
   { value: 'A', label: 'A', note: 'can endanger life or destroy the engine' },
@@ -65,52 +64,57 @@ export function DeviationForm({ step, onClose }: { step: PlanStep | undefined; o
     if (await run.record(drafts, taken ? { photos: [taken.prepared] } : {})) onClose();
   }
   return (
-    <Sheet title="Raise a deviation" onClose={onClose}>
-      <div className="grid gap-6">
-        <SheetRefusal />
-        {step && <p className="text-lg text-soft">On: {step.title}</p>}
-        <NoteField label="What is wrong" phrases={PHRASES} value={words} onChange={setWords} />
-        <ChoiceRows
-          label="Class"
-          columns={3}
-          choices={CLASSES}
-          value={criticalClass}
-          onChoose={(value) => setClass(value as CriticalClass)}
+    <Sheet
+      title="Raise a deviation"
+      onClose={onClose}
+      foot={
+        <MainAction
+          label="Raise the deviation"
+          next={step && `on: ${step.title}`}
+          why={words.trim() === '' ? 'say what is wrong' : undefined}
+          isBusy={run.isBusy || photo.isPreparing}
+          onPress={() => void raise()}
         />
-        <ChoiceRows
-          label="And the work"
-          columns={2}
-          choices={[
-            { value: 'blocks', label: 'waits', note: 'until a supervisor disposes of it' },
-            { value: 'remark', label: 'goes on', note: 'a remark' },
-          ]}
-          value={blocks ? 'blocks' : 'remark'}
-          onChoose={(value) => setBlocks(value === 'blocks')}
-        />
-        <PhotoInput
-          label="Photograph of the deviation"
-          inputRef={camera}
-          isCamera
-          onPick={(file) => void photo.prepare(file, 'camera here')}
-        />
-        <div className="flex flex-wrap items-center gap-4">
-          <QuietButton
-            shape="wide"
-            label={taken ? 'Photograph again' : 'Photograph it'}
-            onPress={() => camera.current?.click()}
-          />
-          {taken && (
-            <img src={taken.url} alt="The deviation" className="h-28 rounded-md border-2 border-strong" />
-          )}
-          {photo.trouble !== undefined && <p role="alert">{photo.trouble}</p>}
+      }
+    >
+      <div className="grid items-start gap-6 @4xl/sheet:grid-cols-2">
+        <div className="grid gap-6">
+          <NoteField label="What is wrong" phrases={PHRASES} value={words} onChange={setWords} />
         </div>
-        <div className="flex">
-          <MainAction
-            label="Raise the deviation"
-            why={words.trim() === '' ? 'say what is wrong' : undefined}
-            isBusy={run.isBusy || photo.isPreparing}
-            onPress={() => void raise()}
+        <div className="grid gap-6">
+          <ChoiceRows
+            label="Class"
+            choices={CLASSES}
+            value={criticalClass}
+            onChoose={(value) => setClass(value as CriticalClass)}
           />
+          <ChoiceRows
+            label="And the work"
+            columns={2}
+            choices={[
+              { value: 'blocks', label: 'waits', note: 'until a supervisor disposes of it' },
+              { value: 'remark', label: 'goes on', note: 'a remark' },
+            ]}
+            value={blocks ? 'blocks' : 'remark'}
+            onChoose={(value) => setBlocks(value === 'blocks')}
+          />
+          <PhotoInput
+            label="Photograph of the deviation"
+            inputRef={camera}
+            isCamera
+            onPick={(file) => void photo.prepare(file, 'camera here')}
+          />
+          <div className="flex flex-wrap items-center gap-4">
+            <QuietButton
+              shape="wide"
+              label={taken ? 'Photograph again' : 'Photograph it'}
+              onPress={() => camera.current?.click()}
+            />
+            {taken && (
+              <img src={taken.url} alt="The deviation" className="h-28 rounded-md border-2 border-strong" />
+            )}
+            {photo.trouble !== undefined && <p role="alert">{photo.trouble}</p>}
+          </div>
         </div>
       </div>
     </Sheet>

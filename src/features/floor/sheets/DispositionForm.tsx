@@ -3,9 +3,11 @@ import { ChoiceRows } from '@/components/ChoiceRows';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
 import type { Deviation } from '@/domain/job-state';
+import { findStep } from '@/domain/plan';
+import { dayAndTime } from '@/domain/time-words';
 import { NoteField } from '../NoteField';
 import { useRun } from '../run-context';
-import { SheetRefusal } from './SheetRefusal';
+import { Sheet } from './Sheet';
 
 const DISPOSITIONS = [
   { value: 'rework', label: 'Rework', note: 'it is done again' },
@@ -16,16 +18,26 @@ const DISPOSITIONS = [
 
 type Disposition = (typeof DISPOSITIONS)[number]['value'];
 
+interface DispositionFormProps {
+  deviation: Deviation;
+  /** It is disposed of, or left as it is. */
+  onDone: () => void;
+}
+
 /** What becomes of a deviation; a supervisor or the quality lead says so. */
-export function DispositionForm({ deviation, onDone }: { deviation: Deviation; onDone: () => void }) {
+export function DispositionForm(props: DispositionFormProps) {
+  const { person } = useRun();
+  const may = person.roles.some((role) => role === 'supervisor' || role === 'quality lead');
+  return may ? <Disposing {...props} /> : <NeedsSupervisor {...props} />;
+}
+
+function Disposing({ deviation, onDone }: DispositionFormProps) {
   const run = useRun();
   const [disposition, setDisposition] = useState<Disposition>();
   const [reason, setReason] = useState('');
   const [agreed, setAgreed] = useState<'by telephone' | 'in person' | 'in writing'>();
-  const may = run.person.roles.some((role) => role === 'supervisor' || role === 'quality lead');
   const isOutside = deviation.rule === 'clearance-outside' || deviation.rule === 'limit-outside';
   const needsCustomer = isOutside && disposition === 'accept as is';
-  if (!may) return <NeedsSupervisor words={deviation.words} />;
   const why =
     disposition === undefined
       ? 'what becomes of it?'
@@ -48,30 +60,10 @@ export function DispositionForm({ deviation, onDone }: { deviation: Deviation; o
     if (isRecorded) onDone();
   }
   return (
-    <div className="grid gap-5">
-      <SheetRefusal />
-      <p className="text-xl font-bold">{deviation.words}</p>
-      <ChoiceRows
-        label="What becomes of it"
-        columns={2}
-        choices={[...DISPOSITIONS]}
-        value={disposition}
-        onChoose={(value) => setDisposition(DISPOSITIONS.find((each) => each.value === value)?.value)}
-      />
-      {needsCustomer && (
-        <ChoiceRows
-          label="The customer agreed, just now"
-          columns={3}
-          choices={(['by telephone', 'in person', 'in writing'] as const).map((value) => ({
-            value,
-            label: value,
-          }))}
-          value={agreed}
-          onChoose={(value) => setAgreed(value)}
-        />
-      )}
-      <NoteField label="Reason" value={reason} onChange={setReason} />
-      <div className="flex">
+    <Sheet
+      title="Dispose of the deviation"
+      onClose={onDone}
+      foot={
         <MainAction
           label="Dispose of it"
           next={`as ${run.person.name}`}
@@ -79,23 +71,68 @@ export function DispositionForm({ deviation, onDone }: { deviation: Deviation; o
           isBusy={run.isBusy}
           onPress={() => disposition && void dispose(disposition)}
         />
+      }
+    >
+      <div className="grid gap-5">
+        <WhatIsWrong deviation={deviation} />
+        <ChoiceRows
+          label="What becomes of it"
+          columns={2}
+          choices={[...DISPOSITIONS]}
+          value={disposition}
+          onChoose={(value) => setDisposition(DISPOSITIONS.find((each) => each.value === value)?.value)}
+        />
+        {needsCustomer && (
+          <ChoiceRows
+            label="The customer agreed, just now"
+            columns={3}
+            choices={(['by telephone', 'in person', 'in writing'] as const).map((value) => ({
+              value,
+              label: value,
+            }))}
+            value={agreed}
+            onChoose={(value) => setAgreed(value)}
+          />
+        )}
+        <NoteField label="Reason" value={reason} onChange={setReason} />
       </div>
+    </Sheet>
+  );
+}
+
+/** The words of the deviation, the step that it is on, and who said so. */
+function WhatIsWrong({ deviation }: { deviation: Deviation }) {
+  const { state, workshop } = useRun();
+  const { words, step, raisedAt, raisedByName } = deviation;
+  const title = step === undefined ? undefined : findStep(state.plan, step)?.title;
+  return (
+    <div>
+      <p className="text-xl font-bold">{words}</p>
+      <p className="text-lg text-soft">
+        {title === undefined ? '' : `${title}; `}class {deviation.class}, {raisedByName},{' '}
+        {dayAndTime(raisedAt, workshop.zone)}
+      </p>
     </div>
   );
 }
 
-function NeedsSupervisor({ words }: { words: string }) {
+function NeedsSupervisor({ deviation, onDone }: DispositionFormProps) {
   const run = useRun();
   return (
-    <div className="grid gap-4">
-      <p className="text-xl font-bold">{words}</p>
-      <p className="text-lg">
-        A supervisor or the quality lead disposes of a deviation. Hand the tablet over and change who is
-        working; change back after.
-      </p>
-      <div>
+    <Sheet
+      title="Dispose of the deviation"
+      onClose={onDone}
+      foot={
         <QuietButton shape="wide" label="Change who is working" onPress={() => run.openSheet('person')} />
+      }
+    >
+      <div className="grid gap-4">
+        <WhatIsWrong deviation={deviation} />
+        <p className="text-lg">
+          A supervisor or the quality lead disposes of a deviation. Hand the tablet over and change who is
+          working; change back after.
+        </p>
       </div>
-    </div>
+    </Sheet>
   );
 }

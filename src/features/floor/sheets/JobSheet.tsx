@@ -3,7 +3,7 @@ import { QuietButton } from '@/components/QuietButton';
 import { Sign } from '@/components/Sign';
 import type { Deviation, JobState, OpenItem } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
-import { barsWords } from '../bars-words';
+import { gatesWords } from '../bars-words';
 import { openWitnessPoints } from '../current-step';
 import { useRun } from '../run-context';
 import { dayAndTime } from '@/domain/time-words';
@@ -23,18 +23,12 @@ export function JobSheet({ onClose, onLeave }: JobSheetProps) {
   const open = state.deviations.filter(({ disposed }) => !disposed);
   const deviation = open.find(({ id }) => id === disposing);
   const witness = openWitnessPoints(state);
-  if (deviation) {
-    return (
-      <Sheet title="Dispose of the deviation" onClose={() => setDisposing(undefined)}>
-        <DispositionForm deviation={deviation} onDone={() => setDisposing(undefined)} />
-      </Sheet>
-    );
-  }
+  if (deviation) return <DispositionForm deviation={deviation} onDone={() => setDisposing(undefined)} />;
   return (
     <Sheet
       title={`Job ${state.number ?? ''}: what is open`}
       onClose={onClose}
-      actions={<QuietButton shape="wide" sign="back" label="Other job" onPress={onLeave} />}
+      foot={<QuietButton shape="wide" sign="back" label="Other job" onPress={onLeave} />}
     >
       <Deviations deviations={open} onDispose={setDisposing} />
       <OpenList
@@ -113,7 +107,7 @@ function OpenList({ state, zone, onGo }: { state: JobState; zone: string; onGo: 
       {state.open.length === 0 && (
         <p className="pt-2 text-lg">Nothing is off, and nothing temporary is in.</p>
       )}
-      <ul className="grid gap-3 pt-3">
+      <ul className="grid gap-x-8 gap-y-3 pt-3 @4xl/sheet:grid-cols-2">
         {state.open.map((item) => {
           const planned = state.plan.items.find(({ id }) => id === item.item);
           const closes = planned && findStep(state.plan, planned.closes);
@@ -126,11 +120,11 @@ function OpenList({ state, zone, onGo }: { state: JobState; zone: string; onGo: 
                 <p className="text-lg font-semibold">
                   {item.name}: {HOW[item.how]}
                   {item.count === undefined ? '' : `, ${item.count} pieces`}
-                  {item.into === undefined ? '' : `, in ${item.into}`}
+                  {item.into === undefined ? '' : `; ${item.into}`}
                 </p>
                 <p className="text-base text-soft">
                   since {item.since === '' ? 'an earlier entry' : dayAndTime(item.since, zone)}
-                  {planned ? barsWords(planned.bars) : ''}
+                  {planned && planned.bars.length > 0 ? `; bars ${gatesWords(planned.bars)}` : ''}
                 </p>
               </div>
               {closes && <QuietButton shape="wide" label="Go to it" onPress={() => onGo(closes.id)} />}

@@ -8,10 +8,9 @@ import type { PlanStep } from '@/domain/plan';
 import type { SignedInPerson } from '../floor-store';
 import { NoteField } from '../NoteField';
 import { needsPin } from '../shift';
-import { isMidCycle } from '../tighten-touch';
 import { useRun, type Worker } from '../run-context';
+import { isMidCycle } from '../tighten-touch';
 import { Sheet } from './Sheet';
-import { SheetRefusal } from './SheetRefusal';
 
 interface PersonSheetProps {
   step: PlanStep | undefined;
@@ -20,10 +19,13 @@ interface PersonSheetProps {
   /** Someone else works here from now on. */
   onChanged: (person: Worker) => Promise<void>;
   onHelpers: (helpers: string[]) => void;
+  /** Whoever works here wants to leave the tablet. */
+  onSignOut: () => void;
 }
 
 /** Who works here and who with them; a change is a touch and, at the first of a shift, a PIN. */
-export function PersonSheet({ step, signedIn, onClose, onChanged, onHelpers }: PersonSheetProps) {
+export function PersonSheet(props: PersonSheetProps) {
+  const { step, signedIn, onClose, onChanged, onHelpers, onSignOut } = props;
   const run = useRun();
   const [chosen, choose] = useState<string>();
   const next = signedIn.find(({ person }) => person === chosen);
@@ -41,7 +43,11 @@ export function PersonSheet({ step, signedIn, onClose, onChanged, onHelpers }: P
     );
   const others = signedIn.filter(({ person }) => person !== run.person.id);
   return (
-    <Sheet title="Who is working" onClose={onClose}>
+    <Sheet
+      title="Who is working"
+      onClose={onClose}
+      foot={<QuietButton shape="wide" label={`Sign ${run.person.name} out`} onPress={onSignOut} />}
+    >
       <div className="grid gap-6">
         <p className="text-xl">
           <b>{run.person.name}</b> works here now.
@@ -150,25 +156,44 @@ function TakeOver({ next, step, isMid, onBack, onClose, onChanged }: TakeOverPro
     onClose();
   }
   return (
-    <Sheet title={`${next.name} takes over`} onClose={onBack}>
-      <div className="grid gap-5">
-        <SheetRefusal />
-        {isMid && (
-          <ChoiceRows
-            label={`${step?.kind === 'tighten' ? step.bolts.join(' and ') : 'The bolts'}: in the middle of a cycle`}
-            columns={2}
-            choices={[
-              { value: 'wait', label: `${run.person.name} finishes the cycle first` },
-              {
-                value: 'again',
-                label: 'They are let off and start again',
-                note: 'one more tightening is counted',
-              },
-            ]}
-            value={startsAgain}
-            onChoose={(value) => (value === 'wait' ? onBack() : setStartsAgain('again'))}
-          />
-        )}
+    <Sheet
+      title={`${next.name} takes over`}
+      onClose={onBack}
+      foot={
+        <MainAction
+          label="Take over"
+          next={`from ${run.person.name}`}
+          why={why}
+          isBusy={run.isBusy}
+          onPress={() => void takeOver()}
+        />
+      }
+    >
+      <div className={asksPin ? 'grid items-start gap-6 @4xl/sheet:grid-cols-[1fr_25rem]' : 'grid gap-6'}>
+        <div className="grid gap-5">
+          {isMid && (
+            <ChoiceRows
+              label={`${step?.kind === 'tighten' ? step.bolts.join(' and ') : 'The bolts'}: in the middle of a cycle`}
+              choices={[
+                { value: 'wait', label: `${run.person.name} finishes the cycle first` },
+                {
+                  value: 'again',
+                  label: 'They are let off and start again',
+                  note: 'one more tightening is counted',
+                },
+              ]}
+              value={startsAgain}
+              onChoose={(value) => (value === 'wait' ? onBack() : setStartsAgain('again'))}
+            />
+          )}
+          {hasNote ? (
+            <NoteField label="Note for the handover" value={note} onChange={setNote} />
+          ) : (
+            <div>
+              <QuietButton shape="wide" label="Add a note" onPress={() => setHasNote(true)} />
+            </div>
+          )}
+        </div>
         {asksPin && (
           <PinPad
             label={`PIN of ${next.name}`}
@@ -177,22 +202,6 @@ function TakeOver({ next, step, isMid, onBack, onClose, onChanged }: TakeOverPro
             hint="first change of this shift"
           />
         )}
-        {hasNote ? (
-          <NoteField label="Note for the handover" value={note} onChange={setNote} />
-        ) : (
-          <div>
-            <QuietButton shape="wide" label="Add a note" onPress={() => setHasNote(true)} />
-          </div>
-        )}
-        <div className="flex">
-          <MainAction
-            label="Take over"
-            next={`from ${run.person.name}`}
-            why={why}
-            isBusy={run.isBusy}
-            onPress={() => void takeOver()}
-          />
-        </div>
       </div>
     </Sheet>
   );

@@ -6,7 +6,6 @@ import type { PlanStep, StepOf } from '@/domain/plan';
 import { useRun, type SheetName } from '../run-context';
 import { toolUsed } from '../tighten-touch';
 import { Sheet } from './Sheet';
-import { SheetRefusal } from './SheetRefusal';
 
 interface ProblemSheetProps {
   step: PlanStep | undefined;
@@ -21,7 +20,6 @@ export function ProblemSheet({ step, onClose }: ProblemSheetProps) {
   return (
     <Sheet title={step ? `Problem: ${step.title}` : 'Problem'} onClose={onClose}>
       <div className="grid gap-5">
-        <SheetRefusal />
         {step?.kind === 'tighten' && <TighteningProblems step={step} onClose={onClose} />}
         {step?.kind === 'gauge' && <MeasureAgain step={step} onClose={onClose} />}
         <div className="grid gap-3 @container sm:grid-cols-2 [&_.quiet-button]:justify-start [&_.quiet-button]:text-xl">

@@ -2,7 +2,8 @@ import type { PlanStep } from '@/domain/plan';
 import { setWorking } from '@/offline/tablet';
 import { useFloor, useFloorStore } from '../floor-context';
 import { useUpdate } from '../use-update';
-import type { SheetName, Worker } from '../run-context';
+import { useRun, type SheetName, type Worker } from '../run-context';
+import { SignOutSheet } from '../SignOutSheet';
 import { DeviationForm } from './DeviationForm';
 import { JobSheet } from './JobSheet';
 import { PersonSheet } from './PersonSheet';
@@ -28,6 +29,7 @@ interface RunSheetsProps {
 /** The sheet of this name over the run screen. */
 export function RunSheets({ name, step, onClose }: RunSheetsProps) {
   const store = useFloorStore();
+  const run = useRun();
   const signedIn = useFloor((floor) => floor.signedIn);
   const status = useFloor((floor) => floor.sync);
   const update = useUpdate();
@@ -39,6 +41,7 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
     case 'sync':
       return (
         <SyncSheet
+          step={step}
           status={status}
           hasUpdate={update.isWaiting}
           onUpdate={update.activate}
@@ -53,6 +56,18 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
           onClose={onClose}
           onHelpers={store.getState().setHelpers}
           onChanged={(person) => changePerson(store.getState(), person)}
+          onSignOut={() => run.openSheet('sign out')}
+        />
+      );
+    case 'sign out':
+      return (
+        <SignOutSheet
+          person={run.person}
+          isOnline={run.isOnline}
+          onClose={() => run.openSheet('person')}
+          onLeft={() => {
+            location.hash = '';
+          }}
         />
       );
     case 'problem':
@@ -88,7 +103,7 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
   }
 }
 
-/** Someone else works here now; what stood on the screen is asked about. */
+/** Someone else works here now; that they took over has already made the Floor ask about what was on the screen. */
 async function changePerson(
   floor: ReturnType<ReturnType<typeof useFloorStore>['getState']>,
   person: Worker,
@@ -96,5 +111,4 @@ async function changePerson(
   await setWorking(floor.offline, person.id);
   await floor.reload();
   floor.setHelpers([]);
-  floor.noteAway();
 }

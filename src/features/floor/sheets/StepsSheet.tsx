@@ -1,6 +1,4 @@
 import { useEffect, useMemo, useRef, useState } from 'react';
-import { ProgressRail } from '@/components/ProgressRail';
-import { QuietButton } from '@/components/QuietButton';
 import { Sign, type SignName } from '@/components/Sign';
 import { progressOf, whyNot } from '@/domain/job';
 import { isBlocked } from '@/domain/job-deviation';
@@ -23,23 +21,18 @@ export function StepsSheet({ current, onClose }: StepsSheetProps) {
   const sections = useMemo(() => sectionsOf(run.state, phaseId), [run.state, phaseId]);
   return (
     <Sheet title="Steps" onClose={onClose}>
-      <ProgressRail
-        label="Phases"
-        phases={progress.map(({ id, name, done, total, blocked }) => ({
-          name,
-          state:
-            blocked > 0 ? 'blocked' : done === total ? 'done' : id === current?.phase ? 'now' : 'waiting',
-          note: `${done} of ${total}`,
-        }))}
-      />
-      <div role="group" aria-label="Phase to show" className="flex flex-wrap gap-3 py-4">
-        {phases.map(({ id, name }) => (
-          <QuietButton
-            key={id}
-            shape="wide"
-            label={name}
-            isPressed={id === phaseId}
-            onPress={() => setPhase(id)}
+      <div
+        role="group"
+        aria-label="Phase to show"
+        className="grid grid-cols-[repeat(auto-fit,minmax(8.5rem,1fr))] gap-3 pb-4"
+      >
+        {progress.map((phase) => (
+          <PhaseButton
+            key={phase.id}
+            {...phase}
+            isNow={phase.id === current?.phase}
+            isShown={phase.id === phaseId}
+            onPress={() => setPhase(phase.id)}
           />
         ))}
       </div>
@@ -62,6 +55,28 @@ export function StepsSheet({ current, onClose }: StepsSheetProps) {
         </section>
       ))}
     </Sheet>
+  );
+}
+
+interface PhaseButtonProps extends Omit<ReturnType<typeof progressOf>[number], 'id'> {
+  isNow: boolean;
+  isShown: boolean;
+  onPress: () => void;
+}
+
+/** A phase with how far it is; touched, it shows its steps. */
+function PhaseButton({ name, done, total, blocked, isNow, isShown, onPress }: PhaseButtonProps) {
+  const sign = blocked > 0 ? 'cross' : done === total ? 'tick' : isNow ? 'dot' : 'ring';
+  return (
+    <button type="button" className="quiet-button" data-shape="wide" aria-pressed={isShown} onClick={onPress}>
+      <Sign name={sign} />
+      <span>{name}</span>
+      <span className="quiet-button-why">
+        {' '}
+        {done} of {total}
+        {blocked > 0 ? ', deviation open' : ''}
+      </span>
+    </button>
   );
 }
 
@@ -115,6 +130,6 @@ function standing(state: JobState, step: PlanStep): { sign: SignName; words: str
   return {
     sign: 'lock',
     words: 'not yet',
-    why: `${verdict.why}${verdict.unlock === undefined ? '' : ` ${verdict.unlock}`}`,
+    why: verdict.why,
   };
 }

@@ -1,17 +1,23 @@
 import { useState } from 'react';
 import { LookPanel } from '@/components/LookPanel';
 import { QuietButton } from '@/components/QuietButton';
+import { Sign } from '@/components/Sign';
 import { WipeCover } from '@/components/WipeCover';
 import { wordsOf } from '@/domain/entry-words';
+import { findStep, type PlanStep } from '@/domain/plan';
+import { dayAndTime } from '@/domain/time-words';
 import type { RefusedRow } from '@/offline/database';
 import type { SyncStatus } from '@/offline/sync-status';
-import { useRun } from '../run-context';
-import { dayAndTime } from '@/domain/time-words';
+import { capWords, isCapBegun } from '../cap-in-hand';
+import { afterRefusal } from '../refused-words';
+import { useRun, type Run } from '../run-context';
 import { Sheet } from './Sheet';
 
 const WIPE_SECONDS = 10;
 
 interface SyncSheetProps {
+  /** The step on the screen. */
+  step: PlanStep | undefined;
   status: SyncStatus;
   hasUpdate: boolean;
   onUpdate: () => void;
@@ -19,7 +25,7 @@ interface SyncSheetProps {
 }
 
 /** Where the records are, what was refused and why, and how this tablet looks. */
-export function SyncSheet({ status, hasUpdate, onUpdate, onClose }: SyncSheetProps) {
+export function SyncSheet({ step, status, hasUpdate, onUpdate, onClose }: SyncSheetProps) {
   const run = useRun();
   const [wipedUntil, setWipedUntil] = useState<number>();
   if (wipedUntil !== undefined) {
@@ -34,29 +40,40 @@ export function SyncSheet({ status, hasUpdate, onUpdate, onClose }: SyncSheetPro
   }
   return (
     <Sheet title="Where the records are" onClose={onClose}>
-      <div className="grid gap-6">
-        <section className="grid gap-2 text-lg" role="status">
-          <p className="text-2xl font-bold">{status.words}</p>
-          <p>
-            <span className="figure">{status.sent}</span> made on this tablet are with the server.
-            {status.lastSyncAt !== undefined &&
-              ` Last sent ${dayAndTime(status.lastSyncAt, run.workshop.zone)}.`}
-          </p>
-          {status.trouble && <p className="font-bold">{status.trouble.words}</p>}
-          <p className="text-soft">
-            What is on this tablet is safe through a reload, an empty battery and a shift without a network.
-          </p>
-          <div className="flex flex-wrap gap-3 pt-2">
-            <QuietButton shape="wide" label="Send now" onPress={() => void run.syncNow()} />
-            {hasUpdate && <QuietButton shape="wide" label="Use the new version" onPress={onUpdate} />}
-            <QuietButton
-              shape="wide"
-              label="Wipe the screen"
-              onPress={() => setWipedUntil(run.now() + WIPE_SECONDS * 1000)}
-            />
-          </div>
-        </section>
-        <Refused refused={run.refused} />
+      <div className="grid items-start gap-x-10 gap-y-6 @4xl/sheet:grid-cols-2">
+        <div className="grid gap-6">
+          <section className="grid gap-2 text-lg">
+            <div className="grid gap-2" role="status">
+              <p className="text-2xl font-bold">{status.words}</p>
+              <p>
+                <span className="figure">{status.sent}</span> made on this tablet are with the server.
+                {status.lastSyncAt !== undefined &&
+                  ` Last sent ${dayAndTime(status.lastSyncAt, run.workshop.zone)}.`}
+              </p>
+              {status.trouble && <p className="font-bold">{status.trouble.words}</p>}
+            </div>
+            <p className="text-soft">
+              What is on this tablet is safe through a reload, an empty battery and a shift without a network.
+            </p>
+            <div className="flex flex-wrap gap-3 pt-2">
+              <QuietButton shape="wide" label="Send now" onPress={() => void run.syncNow()} />
+              {hasUpdate && (
+                <QuietButton
+                  shape="wide"
+                  label="Use the new version"
+                  why={whyNotUpdate(run, step)}
+                  onPress={onUpdate}
+                />
+              )}
+              <QuietButton
+                shape="wide"
+                label="Wipe the screen"
+                onPress={() => setWipedUntil(run.now() + WIPE_SECONDS * 1000)}
+              />
+            </div>
+          </section>
+          <Refused refused={run.refused} onClose={onClose} />
+        </div>
         <section className="grid gap-4">
           <h3 className="form-label border-b-2 border-text pb-1">How this tablet looks</h3>
           <LookPanel />
@@ -66,21 +83,68 @@ export function SyncSheet({ status, hasUpdate, onUpdate, onClose }: SyncSheetPro
   );
 }
 
-function Refused({ refused }: { refused: RefusedRow[] }) {
+/** A new version comes between two actions only. */
+function whyNotUpdate({ isBusy, state }: Run, step: PlanStep | undefined): string | undefined {
+  if (isBusy) return 'something is being recorded';
+  return isCapBegun(state, step) ? `${capWords(step)} stand half tightened: finish them first` : undefined;
+}
+
+/** What the server refused: that of whoever works here first, with what to do about it. */
+function Refused({ refused, onClose }: { refused: RefusedRow[]; onClose: () => void }) {
+  const { person } = useRun();
+  const own = refused.filter(({ entry }) => entry.by === person.id);
+  const others = refused.filter(({ entry }) => entry.by !== person.id);
+  return (
+    <>
+      <RefusedRows title={`Refused, yours: ${own.length}`} rows={own} onClose={onClose} />
+      <RefusedRows title={`Refused, of others: ${others.length}`} rows={others} onClose={onClose} />
+    </>
+  );
+}
+
+interface RefusedRowsProps {
+  title: string;
+  rows: RefusedRow[];
+  onClose: () => void;
+}
+
+function RefusedRows({ title, rows, onClose }: RefusedRowsProps) {
   const run = useRun();
-  if (refused.length === 0) return null;
+  const { plan } = run.state;
+  if (rows.length === 0) return null;
   return (
     <section>
-      <h3 className="form-label border-b-2 border-text pb-1">Refused by the server, kept here</h3>
+      <h3 className="form-label border-b-2 border-text pb-1">{title}</h3>
       <ul className="grid gap-3 pt-3 text-lg">
-        {refused.map(({ id, entry, reason }) => (
-          <li key={id} className="border-b border-rule pb-3">
-            <p className="font-bold">{wordsOf(entry, run.state.plan)}</p>
-            <p>
-              {entry.author.name}, {dayAndTime(entry.at, run.workshop.zone)}. {reason}
-            </p>
-          </li>
-        ))}
+        {rows.map((row) => {
+          const { id, entry, reason } = row;
+          const step = entry.step === undefined ? undefined : findStep(plan, entry.step);
+          return (
+            <li key={id} className="grid gap-1 border-b border-rule pb-3">
+              <p className="flex items-start gap-2 font-bold">
+                <Sign name="cross" className="text-outside" />
+                {wordsOf(entry, plan)}
+              </p>
+              <p className="text-base text-soft">
+                {entry.author.name}, {dayAndTime(entry.at, run.workshop.zone)}; kept here
+              </p>
+              <p>{reason}</p>
+              <p className="font-bold">{afterRefusal(row)}</p>
+              {step && (
+                <div className="pt-1">
+                  <QuietButton
+                    shape="wide"
+                    label={`Go to “${step.title}”`}
+                    onPress={() => {
+                      run.goTo(step.id);
+                      onClose();
+                    }}
+                  />
+                </div>
+              )}
+            </li>
+          );
+        })}
       </ul>
     </section>
   );

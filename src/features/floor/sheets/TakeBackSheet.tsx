@@ -4,7 +4,6 @@ import { actWords, lastAct } from '../last-act';
 import { useRun } from '../run-context';
 import { clockTime } from '@/domain/time-words';
 import { Sheet } from './Sheet';
-import { SheetRefusal } from './SheetRefusal';
 
 type Which = 'touched by mistake, not done' | 'done, but wrong';
 
@@ -27,7 +26,6 @@ export function TakeBackSheet({ onClose }: { onClose: () => void }) {
   return (
     <Sheet title="Take back" onClose={onClose}>
       <div className="grid gap-5">
-        <SheetRefusal />
         <p className="text-2xl font-bold">
           {clockTime(newest.at, run.workshop.zone)}: {actWords(acts, run.state.plan)}
         </p>

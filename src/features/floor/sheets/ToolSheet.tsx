@@ -1,13 +1,12 @@
 import { useState } from 'react';
 import { ChoiceRows } from '@/components/ChoiceRows';
 import { MainAction } from '@/components/MainAction';
-import { nextTightening } from '@/domain/job';
 import type { PlanStep } from '@/domain/plan';
+import { torqueWanted } from '../cap-in-hand';
 import { useRun } from '../run-context';
 import { dayWords } from '@/domain/time-words';
 import { offerTools, wantedFor, type Hand, type ToolOffer } from '../tool-choice';
 import { Sheet } from './Sheet';
-import { SheetRefusal } from './SheetRefusal';
 
 interface ToolSheetProps {
   hand: Hand;
@@ -27,7 +26,7 @@ export function ToolSheet({ hand, step, onClose }: ToolSheetProps) {
   const offers = offerTools(
     run.workshop,
     hand,
-    wantedFor(hand, step?.class ?? 'A', torqueWanted(run.state, step)),
+    wantedFor(hand, step?.class ?? 'A', torqueWanted(run.state, step, hand)),
     run.now(),
   );
   const [chosen, choose] = useState<string | undefined>(() => onlyFit(offers));
@@ -39,9 +38,19 @@ export function ToolSheet({ hand, step, onClose }: ToolSheetProps) {
       onClose();
   }
   return (
-    <Sheet title={TITLES[hand]} onClose={onClose}>
+    <Sheet
+      title={TITLES[hand]}
+      onClose={onClose}
+      foot={
+        <MainAction
+          label="It is in my hand"
+          why={chosen === undefined ? 'touch the tool' : undefined}
+          isBusy={run.isBusy}
+          onPress={() => void take()}
+        />
+      }
+    >
       <div className="grid gap-5">
-        <SheetRefusal />
         {offers.length === 0 && (
           <p className="text-lg">
             This tablet knows no such tool. Enter it at a desk under Tools & parts, then bring the tablet to
@@ -61,14 +70,6 @@ export function ToolSheet({ hand, step, onClose }: ToolSheetProps) {
           value={chosen}
           onChoose={choose}
         />
-        <div className="flex">
-          <MainAction
-            label="It is in my hand"
-            why={chosen === undefined ? 'touch the tool' : undefined}
-            isBusy={run.isBusy}
-            onPress={() => void take()}
-          />
-        </div>
       </div>
     </Sheet>
   );
@@ -77,13 +78,4 @@ export function ToolSheet({ hand, step, onClose }: ToolSheetProps) {
 function onlyFit(offers: ToolOffer[]): string | undefined {
   const fit = offers.filter(({ isFit }) => isFit);
   return fit.length === 1 ? fit[0]?.tool.id : undefined;
-}
-
-function torqueWanted(
-  state: Parameters<typeof nextTightening>[0],
-  step: PlanStep | undefined,
-): number | undefined {
-  if (step?.kind !== 'tighten') return undefined;
-  const next = nextTightening(state, step);
-  return next?.kind === 'stage' && next.spec.kind === 'torque' ? next.spec.target : undefined;
 }

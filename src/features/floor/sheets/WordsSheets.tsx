@@ -8,7 +8,6 @@ import { LotEntry } from '../LotEntry';
 import { NoteField } from '../NoteField';
 import { useRun } from '../run-context';
 import { Sheet } from './Sheet';
-import { SheetRefusal } from './SheetRefusal';
 
 interface StepSheetProps {
   step: PlanStep;
@@ -24,9 +23,19 @@ export function NotApplicableSheet({ step, onClose }: StepSheetProps) {
       onClose();
   }
   return (
-    <Sheet title="Not applicable" onClose={onClose}>
+    <Sheet
+      title="Not applicable"
+      onClose={onClose}
+      foot={
+        <MainAction
+          label="Set it aside"
+          why={reason.trim() === '' ? 'give the reason' : undefined}
+          isBusy={run.isBusy}
+          onPress={() => void setAside()}
+        />
+      }
+    >
       <div className="grid gap-5">
-        <SheetRefusal />
         <p className="text-xl font-bold">{step.title}</p>
         {step.class === 'A' && <p className="text-lg">Class A: a supervisor sets it aside.</p>}
         <NoteField
@@ -35,14 +44,6 @@ export function NotApplicableSheet({ step, onClose }: StepSheetProps) {
           value={reason}
           onChange={setReason}
         />
-        <div className="flex">
-          <MainAction
-            label="Set it aside"
-            why={reason.trim() === '' ? 'give the reason' : undefined}
-            isBusy={run.isBusy}
-            onPress={() => void setAside()}
-          />
-        </div>
       </div>
     </Sheet>
   );
@@ -64,9 +65,20 @@ export function WaitingForPartSheet({ step, onClose }: StepSheetProps) {
     if (isRecorded) onClose();
   }
   return (
-    <Sheet title={isWaiting ? 'The part is here' : 'Waiting for a part'} onClose={onClose}>
+    <Sheet
+      title={isWaiting ? 'The part is here' : 'Waiting for a part'}
+      onClose={onClose}
+      foot={
+        <MainAction
+          label={isWaiting ? 'It is here' : 'It waits'}
+          next={isWaiting ? 'the step can go on' : 'other steps stay free'}
+          why={!isWaiting && part.trim() === '' ? 'name the part' : undefined}
+          isBusy={run.isBusy}
+          onPress={() => void record()}
+        />
+      }
+    >
       <div className="grid gap-5">
-        <SheetRefusal />
         <p className="text-xl font-bold">{step.title}</p>
         {isWaiting ? (
           <LotEntry
@@ -78,15 +90,6 @@ export function WaitingForPartSheet({ step, onClose }: StepSheetProps) {
         ) : (
           <NoteField label="Which part" value={part} onChange={(value) => setPart(value.slice(0, 120))} />
         )}
-        <div className="flex">
-          <MainAction
-            label={isWaiting ? 'It is here' : 'It waits'}
-            next={isWaiting ? undefined : 'other steps stay free'}
-            why={!isWaiting && part.trim() === '' ? 'name the part' : undefined}
-            isBusy={run.isBusy}
-            onPress={() => void record()}
-          />
-        </div>
       </div>
     </Sheet>
   );
@@ -105,9 +108,19 @@ export function ExtraWorkSheet({ onClose }: { onClose: () => void }) {
     if (await run.record([{ kind: 'extra-work', data: { words: words.trim(), approval } }])) onClose();
   }
   return (
-    <Sheet title="Extra work" onClose={onClose}>
+    <Sheet
+      title="Extra work"
+      onClose={onClose}
+      foot={
+        <MainAction
+          label="Record the agreement"
+          why={why}
+          isBusy={run.isBusy}
+          onPress={() => void record()}
+        />
+      }
+    >
       <div className="grid gap-5">
-        <SheetRefusal />
         <NoteField label="What is done beyond the order" value={words} onChange={setWords} />
         <ChoiceRows
           label="Who agreed, just now"
@@ -126,14 +139,6 @@ export function ExtraWorkSheet({ onClose }: { onClose: () => void }) {
           value={how}
           onChoose={setHow}
         />
-        <div className="flex">
-          <MainAction
-            label="Record the agreement"
-            why={why}
-            isBusy={run.isBusy}
-            onPress={() => void record()}
-          />
-        </div>
       </div>
     </Sheet>
   );
@@ -153,7 +158,17 @@ export function AfterwardsSheet({
   const [reason, setReason] = useState('');
   const why = when === undefined ? 'when was it done?' : reason.trim() === '' ? 'why is it late?' : undefined;
   return (
-    <Sheet title="Done earlier, recorded now" onClose={onClose}>
+    <Sheet
+      title="Done earlier, recorded now"
+      onClose={onClose}
+      foot={
+        <MainAction
+          label="Use it for the next touch"
+          why={why}
+          onPress={() => when !== undefined && onChoose({ when, reason: reason.trim() })}
+        />
+      }
+    >
       <div className="grid gap-5">
         <p className="text-lg">The next touch carries this, and it stays visible in the record.</p>
         <ChoiceRows
@@ -169,13 +184,6 @@ export function AfterwardsSheet({
           value={reason}
           onChange={setReason}
         />
-        <div className="flex">
-          <MainAction
-            label="Use it for the next touch"
-            why={why}
-            onPress={() => when !== undefined && onChoose({ when, reason: reason.trim() })}
-          />
-        </div>
       </div>
     </Sheet>
   );
@@ -195,21 +203,25 @@ export function EndUnfinishedSheet({ onClose }: { onClose: () => void }) {
       onClose();
   }
   return (
-    <Sheet title="End the job unfinished" onClose={onClose}>
-      <div className="grid gap-5">
-        <SheetRefusal />
-        <p className="text-2xl font-bold text-outside">The engine is not to be run.</p>
-        <p className="text-lg">
-          {open.length === 0 ? 'Nothing is on the open list.' : `Still open: ${open.join(', ')}.`}
-        </p>
-        <NoteField label="Why it ends here" value={reason} onChange={setReason} />
+    <Sheet
+      title="End the job unfinished"
+      onClose={onClose}
+      foot={
         <HoldButton
-          size="wide"
+          size="main"
           tone="stop"
           label="End unfinished, not to be run"
           why={reason.trim() === '' ? 'give the reason' : undefined}
           onHeld={() => void end()}
         />
+      }
+    >
+      <div className="grid gap-5">
+        <p className="text-2xl font-bold text-outside">The engine is not to be run.</p>
+        <p className="text-lg">
+          {open.length === 0 ? 'Nothing is on the open list.' : `Still open: ${open.join(', ')}.`}
+        </p>
+        <NoteField label="Why it ends here" value={reason} onChange={setReason} />
       </div>
     </Sheet>
   );
