@@ -188,7 +188,7 @@ async function openShop(
   const { device } = await app.db
     .transaction()
     .execute((trx) => enrolDevice(trx, actor(owner), { id, name: 'Bay 2' }, app));
-  const { sealingKey } = await getWorkshopView(app.db, app.keys);
+  const { sealingKey } = await getWorkshopView(app.db, device, app.keys);
   const tablet = new ScriptedTablet({
     device: id,
     workshop: { seq: 0, zone: 'UTC', people: [], tools: [] },
@@ -213,7 +213,7 @@ async function doJob(shop: Shop, demo: DemoJob, nowMs: number): Promise<void> {
   const { app, tablet, people } = shop;
   tablet.now = startOf(nowMs, demo);
   shop.clock.set(tablet.now);
-  const { seq, zone, people: all, tools } = await getWorkshopView(app.db, app.keys);
+  const { seq, zone, people: all, tools } = await getWorkshopView(app.db, shop.device, app.keys);
   tablet.workshop = { seq, zone, people: all, tools };
   const { id, plan } = await open(shop, demo);
   tablet.takeUp(id, plan);
@@ -289,7 +289,7 @@ async function open(shop: Shop, demo: DemoJob): Promise<{ id: string; plan: Plan
   };
   const { hash, plan, number } = await app.db.transaction().execute(async (trx) => ({
     ...(await preparePlan(trx, actor, demo, app)),
-    number: await nextJobNumber(trx, app),
+    number: await nextJobNumber(trx, actor, app),
   }));
   const identity = identityOf(demo);
   const id = app.ids.next();

@@ -3,6 +3,7 @@ import { authorKeyId } from '@/domain/trail';
 import { type Actor, hasRole } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
 import { sha256Hex } from './crypto';
+import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import type { Device } from './devices';
 import { AppError, notFound } from './errors';
@@ -79,12 +80,25 @@ export async function findKey(db: Db, id: string): Promise<AuthorKey | undefined
   return row === undefined ? undefined : toKey(row);
 }
 
-/** All keys of a person, or everybody's for those who may see all. */
-export async function listKeys(db: Db, actor: Actor): Promise<AuthorKey[]> {
+/** All keys of a person, or everybody's for those who may see all, in the order of enrolment, a page at a time. */
+export async function listKeys(
+  db: Db,
+  actor: Actor,
+  { cursor }: { cursor?: string | undefined } = {},
+): Promise<{ keys: AuthorKey[]; cursor?: string }> {
   const all = hasRole(actor, 'supervisor', 'quality lead', 'auditor', 'owner');
-  let query = db.selectFrom('author_key').selectAll().orderBy('enrolled_at');
+  let query = db
+    .selectFrom('author_key')
+    .selectAll()
+    .orderBy('enrolled_at')
+    .orderBy('id')
+    .limit(LIST_PAGE + 1);
   if (!all) query = query.where('person_id', '=', actor.personId);
-  return (await query.execute()).map(toKey);
+  const after = readCursor(cursor, 2);
+  if (after !== undefined)
+    query = query.where((eb) => eb(eb.refTuple('enrolled_at', 'id'), '>', eb.tuple(...after)));
+  const { rows, ...next } = pageOf(await query.execute(), LIST_PAGE, (row) => [row.enrolled_at, row.id]);
+  return { keys: rows.map(toKey), ...next };
 }
 
 /** Revokes a key: one's own, or anybody's for the owner and a supervisor. What it signed before stays proved. */

@@ -2,6 +2,7 @@ import type { DeviceRow } from '@db/tables';
 import { type Actor, requireRole } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
 import { isSameDigest, newSecret, sha256Hex } from './crypto';
+import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import { AppError, notFound } from './errors';
 import { appendWorkshopEntry } from './workshop-trail';
@@ -84,11 +85,24 @@ export async function requireDevice(db: Db, request: Request): Promise<Device> {
   );
 }
 
-/** Every tablet of the workshop, the newest first. */
-export async function listDevices(db: Db, actor: Actor): Promise<Device[]> {
+/** Every tablet of the workshop, the newest first, a page at a time. */
+export async function listDevices(
+  db: Db,
+  actor: Actor,
+  { cursor }: { cursor?: string | undefined } = {},
+): Promise<{ devices: Device[]; cursor?: string }> {
   requireRole(actor, 'owner', 'supervisor', 'quality lead', 'auditor');
-  const rows = await db.selectFrom('device').selectAll().orderBy('enrolled_at', 'desc').execute();
-  return rows.map(toDevice);
+  let query = db
+    .selectFrom('device')
+    .selectAll()
+    .orderBy('enrolled_at', 'desc')
+    .orderBy('id', 'desc')
+    .limit(LIST_PAGE + 1);
+  const after = readCursor(cursor, 2);
+  if (after !== undefined)
+    query = query.where((eb) => eb(eb.refTuple('enrolled_at', 'id'), '<', eb.tuple(...after)));
+  const { rows, ...next } = pageOf(await query.execute(), LIST_PAGE, (row) => [row.enrolled_at, row.id]);
+  return { devices: rows.map(toDevice), ...next };
 }
 
 /** Renames a tablet, declares it lost, or takes it back into use. */

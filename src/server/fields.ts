@@ -60,6 +60,9 @@ export const roles = z
 /** The secret of a one-time link or of a tablet. */
 export const secret = z.string().regex(/^[\w-]{43}$/, 'is not whole; use the link as it was given');
 
+/** Where the next page of a list begins, as the last one said. */
+export const cursor = z.string().max(3000, 'is longer than any page’s').optional();
+
 /** The answer of something that has nothing more to say. */
 export const nothing = z.strictObject({ ok: z.literal(true) });
 

@@ -29,7 +29,8 @@ export interface Opening {
 }
 
 /** The number that the next job gets: the year in the workshop's zone, and a count within it. */
-export async function nextJobNumber(db: Db, app: Pick<App, 'clock'>): Promise<string> {
+export async function nextJobNumber(db: Db, actor: Actor, app: Pick<App, 'clock'>): Promise<string> {
+  requireRole(actor, 'supervisor', 'owner');
   const { zone } = await getWorkshopDetails(db);
   const year = new Intl.DateTimeFormat('en-GB', { timeZone: zone, year: '2-digit' }).format(app.clock.now());
   const last = await db

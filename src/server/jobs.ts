@@ -1,7 +1,9 @@
 import { nextSteps, progressOf, type PhaseProgress } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
 import { type Actor, requireRole } from './actor';
+import type { Asker } from './asker';
 import type { App } from './compose';
+import { pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import { AppError } from './errors';
 import { getVisibleJob, selectVisibleJobs } from './job-access';
@@ -56,28 +58,18 @@ export async function listJobs(
     .orderBy('job.id', 'desc')
     .limit(PAGE + 1);
   if (state !== undefined) query = query.where('job.state', '=', state);
-  const after = readCursor(cursor);
-  if (after !== undefined) {
-    query = query.where((eb) =>
-      eb.or([
-        eb('job.opened_at', '<', after.openedAt),
-        eb.and([eb('job.opened_at', '=', after.openedAt), eb('job.id', '<', after.id)]),
-      ]),
-    );
-  }
-  const rows = await query.execute();
-  const jobs = await toLines(db, rows.slice(0, PAGE));
-  const last = rows.length > PAGE ? rows[PAGE - 1] : undefined;
-  return { jobs, ...(last === undefined ? {} : { cursor: `${last.opened_at}~${last.id}` }) };
+  const after = readCursor(cursor, 2);
+  if (after !== undefined)
+    query = query.where((eb) => eb(eb.refTuple('job.opened_at', 'job.id'), '<', eb.tuple(...after)));
+  const { rows, ...next } = pageOf(await query.execute(), PAGE, ({ opened_at, id }) => [opened_at, id]);
+  return { jobs: await toLines(db, rows), ...next };
 }
 
 /** The open jobs, as tablets keep them: no contact data. */
-export async function listOpenJobs(db: Db): Promise<JobLine[]> {
-  const rows = await db
-    .selectFrom('job')
-    .selectAll()
-    .where('state', 'in', ['open', 'parked'])
-    .orderBy('opened_at')
+export async function listOpenJobs(db: Db, asker: Asker): Promise<JobLine[]> {
+  const rows = await selectVisibleJobs(db, asker)
+    .where('job.state', 'in', ['open', 'parked'])
+    .orderBy('job.opened_at')
     .execute();
   return toLines(db, rows);
 }
@@ -217,15 +209,4 @@ async function readPeople(db: Db, jobs: readonly string[]): Promise<ReadonlyMap<
 async function readNames(db: Db, ids: readonly string[]): Promise<ReadonlyMap<string, string>> {
   const rows = await db.selectFrom('person').select(['id', 'printed_name']).where('id', 'in', ids).execute();
   return new Map(rows.map(({ id, printed_name: name }) => [id, name]));
-}
-
-function readCursor(cursor: string | undefined): { openedAt: string; id: string } | undefined {
-  if (cursor === undefined) return undefined;
-  const [openedAt, id] = cursor.split('~');
-  if (openedAt === undefined || id === undefined) {
-    throw new AppError('invalid-field', 'This page is not there. Begin at the first one.', {
-      field: 'cursor',
-    });
-  }
-  return { openedAt, id };
 }

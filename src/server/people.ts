@@ -2,6 +2,7 @@ import type { PersonRow } from '@db/tables';
 import type { Role } from '@/domain/role';
 import { type Actor, hasRole, parseRoles, requireRole } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
+import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import { AppError, notFound } from './errors';
 import { appendWorkshopEntry } from './workshop-trail';
@@ -33,10 +34,21 @@ export interface NewPerson {
   roles: readonly Role[];
 }
 
-/** Everybody of the workshop, by name; the deactivated too, since their names stand in trails. */
-export async function listPeople(db: Db, actor: Actor): Promise<Person[]> {
-  const rows = await selectPeople(db).orderBy('person.printed_name').execute();
-  return rows.map((row) => toPerson(row, actor));
+/** Everybody of the workshop, by name, a page at a time; the deactivated too, since their names stand in trails. */
+export async function listPeople(
+  db: Db,
+  actor: Actor,
+  { cursor }: { cursor?: string | undefined } = {},
+): Promise<{ people: Person[]; cursor?: string }> {
+  let query = selectPeople(db)
+    .orderBy('person.printed_name')
+    .orderBy('person.id')
+    .limit(LIST_PAGE + 1);
+  const after = readCursor(cursor, 2);
+  if (after !== undefined)
+    query = query.where((eb) => eb(eb.refTuple('person.printed_name', 'person.id'), '>', eb.tuple(...after)));
+  const { rows, ...next } = pageOf(await query.execute(), LIST_PAGE, (row) => [row.printed_name, row.id]);
+  return { people: rows.map((row) => toPerson(row, actor)), ...next };
 }
 
 /** One person of the workshop. */

@@ -2,6 +2,7 @@ import { compilePlan } from '@/domain/compile-plan';
 import { hashJson } from '@/domain/canonical';
 import type { Plan } from '@/domain/plan';
 import { type Actor, requireRole } from './actor';
+import { type Asker, requireSomebody } from './asker';
 import { type Clock, type Ids, stamp } from './clock';
 import { canonicalJson, sha256Hex } from './crypto';
 import type { Db, Trx } from './database';
@@ -24,15 +25,23 @@ const plans = new Map<string, Plan>();
 export async function getPlan(db: Db, hash: string): Promise<Plan> {
   const held = plans.get(hash);
   if (held !== undefined) return held;
-  const body = await getPlanText(db, hash);
+  const body = await findPlanText(db, hash);
   const plan = JSON.parse(body) as Plan;
   if (plans.size >= KEPT) plans.clear();
   plans.set(hash, plan);
   return plan;
 }
 
-/** The plan's own text, exactly as it was hashed. */
-export async function getPlanText(db: Db, hash: string): Promise<string> {
+/**
+ * The plan's own text, exactly as it was hashed. It holds the workshop's procedures for a vehicle with these
+ * options and nothing of a job or a person, so it is for everybody of the workshop.
+ */
+export async function getPlanText(db: Db, asker: Asker, hash: string): Promise<string> {
+  requireSomebody(asker);
+  return findPlanText(db, hash);
+}
+
+async function findPlanText(db: Db, hash: string): Promise<string> {
   const row = await db.selectFrom('plan').select('body').where('hash', '=', hash).executeTakeFirst();
   if (row === undefined) throw notFound('This plan');
   return row.body;
@@ -50,7 +59,8 @@ export async function storePlan(trx: Trx, plan: Plan, clock: Clock): Promise<str
 }
 
 /** Every released route, with the options to ask. */
-export async function listRoutes(db: Db): Promise<RouteChoice[]> {
+export async function listRoutes(db: Db, actor: Actor): Promise<RouteChoice[]> {
+  requireSomebody(actor);
   const released = await readReleased(db);
   return [...released.routes.values()].flatMap(({ document: route }) => {
     const engine = released.engines.get(route.engine)?.document;

@@ -2,6 +2,8 @@ import type { CalibrationRow, ToolRow } from '@db/tables';
 import type { Tool } from '@/domain/tool';
 import { type Actor, requireRole } from './actor';
 import type { Clock, Ids } from './clock';
+import { type Asker, requireSomebody } from './asker';
+import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import { AppError, notFound } from './errors';
 import { appendWorkshopEntry } from './workshop-trail';
@@ -33,14 +35,40 @@ interface Making {
   ids: Ids;
 }
 
-/** Every tool, the withdrawn too, since their serials stand in trails. */
-export async function listTools(db: Db): Promise<Tool[]> {
+/** Every tool by name, a page at a time; the withdrawn too, since their serials stand in trails. */
+export async function listTools(
+  db: Db,
+  actor: Actor,
+  { cursor }: { cursor?: string | undefined } = {},
+): Promise<{ tools: Tool[]; cursor?: string }> {
+  requireSomebody(actor);
+  let query = db
+    .selectFrom('tool')
+    .selectAll()
+    .orderBy('name')
+    .orderBy('serial')
+    .limit(LIST_PAGE + 1);
+  const after = readCursor(cursor, 2);
+  if (after !== undefined)
+    query = query.where((eb) => eb(eb.refTuple('name', 'serial'), '>', eb.tuple(...after)));
+  const { rows, ...next } = pageOf(await query.execute(), LIST_PAGE, (row) => [row.name, row.serial]);
+  return { tools: rows.map(toTool), ...next };
+}
+
+/** All tools at once, as tablets and pages judge by them. */
+export async function readTools(db: Db, asker: Asker): Promise<Tool[]> {
+  requireSomebody(asker);
   const rows = await db.selectFrom('tool').selectAll().orderBy('name').orderBy('serial').execute();
   return rows.map(toTool);
 }
 
 /** One tool with its calibrations, the newest first. */
-export async function getTool(db: Db, id: string): Promise<Tool & { calibrations: Calibration[] }> {
+export async function getTool(
+  db: Db,
+  actor: Actor,
+  id: string,
+): Promise<Tool & { calibrations: Calibration[] }> {
+  requireSomebody(actor);
   const row = await getRow(db, id);
   const calibrations = await db
     .selectFrom('calibration')

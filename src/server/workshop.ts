@@ -1,10 +1,11 @@
 import type { Role } from '@/domain/role';
 import type { Tool } from '@/domain/tool';
 import { type Actor, parseRoles, requireRole } from './actor';
+import { type Asker, requireSomebody } from './asker';
 import type { Clock, Ids } from './clock';
 import type { Db, Trx } from './database';
 import type { Keys } from './keys';
-import { listTools } from './tools';
+import { readTools } from './tools';
 import { appendWorkshopEntry, workshopSeq } from './workshop-trail';
 
 export interface WorkshopDetails {
@@ -55,11 +56,14 @@ export async function getWorkshopDetails(db: Db): Promise<WorkshopDetails> {
 }
 
 /** The workshop as tablets and pages judge by it; read in one transaction, so that `seq` fits the rest. */
-export async function getWorkshopView(db: Db, keys: Keys): Promise<WorkshopView> {
-  return db.isTransaction ? readView(db, keys) : db.transaction().execute((trx) => readView(trx, keys));
+export async function getWorkshopView(db: Db, asker: Asker, keys: Keys): Promise<WorkshopView> {
+  return db.isTransaction
+    ? readView(db, asker, keys)
+    : db.transaction().execute((trx) => readView(trx, asker, keys));
 }
 
-async function readView(db: Db, keys: Keys): Promise<WorkshopView> {
+async function readView(db: Db, asker: Asker, keys: Keys): Promise<WorkshopView> {
+  requireSomebody(asker);
   const people = await db
     .selectFrom('person')
     .leftJoin('signing_pin', 'signing_pin.person_id', 'person.id')
@@ -76,7 +80,7 @@ async function readView(db: Db, keys: Keys): Promise<WorkshopView> {
       active: row.active === 1,
       hasPin: row.set_at !== null,
     })),
-    tools: await listTools(db),
+    tools: await readTools(db, asker),
     sealingKey: { id: keys.sealing.current.id, publicKey: keys.sealing.current.publicKey },
     headKey: keys.head.fingerprint,
   };

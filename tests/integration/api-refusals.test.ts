@@ -20,6 +20,9 @@ import {
  * the description itself, so an operation that is added is tried as well.
  */
 
+/** Cursors that no list has given. */
+const CURSORS = ['cursor=', 'cursor=nonsense', 'cursor=a,b,c', 'cursor=%25,a', `cursor=${'x'.repeat(3001)}`];
+
 let table: Table;
 
 beforeEach(async () => {
@@ -274,6 +277,11 @@ describe('every operation of the API', { timeout: 60_000 }, () => {
     }
     const wrong = {
       'GET /api/jobs': ['state=lost', `cursor=${'x'.repeat(101)}`, 'cursor=nonsense'],
+      'GET /api/jobs/{id}/set-aside': CURSORS,
+      'GET /api/people': CURSORS,
+      'GET /api/devices': CURSORS,
+      'GET /api/keys': CURSORS,
+      'GET /api/tools': CURSORS,
       'GET /api/workshop/trail': ['after=-1', 'after=x', 'limit=0', 'limit=1e9', 'after=1.5', 'after=NaN'],
       'GET /api/photos/{hash}': ['size=huge'],
     };
@@ -284,6 +292,25 @@ describe('every operation of the API', { timeout: 60_000 }, () => {
         expect(field).toBe(query.split('=')[0]);
       }
     }
+  });
+});
+
+describe('every list of the API', { timeout: 60_000 }, () => {
+  const hasCursor = (operation: Operation) =>
+    Object.keys((z.toJSONSchema(operation.query ?? z.object({})) as JsonSchema).properties ?? {}).includes(
+      'cursor',
+    );
+
+  it('that can grow is given a page at a time', () => {
+    const lists = operations.filter(hasCursor).map(nameOf).sort();
+    expect(lists).toEqual([
+      'GET /api/devices',
+      'GET /api/jobs',
+      'GET /api/jobs/{id}/set-aside',
+      'GET /api/keys',
+      'GET /api/people',
+      'GET /api/tools',
+    ]);
   });
 });
 

@@ -4,6 +4,7 @@ import path from 'node:path';
 import { sql } from 'kysely';
 import sharp from 'sharp';
 import { beforeEach, describe, expect, it, vi } from 'vitest';
+import type { EntryData } from '@/domain/entry';
 import { GET as getPhoto, PUT as putPhoto } from '@/pages/api/photos/[hash]';
 import {
   ask,
@@ -60,7 +61,7 @@ async function photographInJob() {
   const job = await openTestJob(first, supervisor);
   const bytes = await picture('jpeg');
   const hash = hashOf(bytes);
-  const data = {
+  const data: EntryData<'photographed'> = {
     photo: hash,
     bytes: bytes.byteLength,
     type: 'image/jpeg',

@@ -4,7 +4,8 @@ import { ROLES } from '@/domain/role';
 import { fitness } from '@/domain/tool';
 import { POST as postSignIn } from '@/pages/api/auth/sign-in';
 import { checkPin } from '@/server/pins';
-import { listTools } from '@/server/tools';
+import { getActor } from '@/server/session';
+import { readTools } from '@/server/tools';
 import { openTestApp } from '../support/database';
 import { newBrowser } from '../support/requests';
 
@@ -42,7 +43,12 @@ describe('the demo', () => {
     const app = await openTestApp();
     await seedDemo(app);
     const today = app.clock.now().toISOString().slice(0, 10);
-    const tools = await listTools(app.db);
+    const owner = await app.db
+      .selectFrom('person')
+      .select('id')
+      .where('email', 'like', 'owner@%')
+      .executeTakeFirstOrThrow();
+    const tools = await readTools(app.db, await getActor(app.db, owner.id));
     const unfit = tools.filter((tool) => !fitness(tool, { kind: tool.kind, criticalClass: 'A' }, today).fit);
     expect(unfit.map(({ serial }) => serial)).toEqual(['TW330-0108']);
     expect(tools.length).toBeGreaterThan(6);

@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import type { Actor } from '@/server/actor';
 import { MINUTE } from '@/server/clock';
 import { changeRoles, setActive } from '@/server/people';
 import { addTool, changeTool, recordCalibration } from '@/server/tools';
@@ -18,8 +19,10 @@ const FACTS = {
   cycleLimit: null,
 };
 
+const READER: Actor = { personId: 'reader', name: 'Reader', roles: ['auditor'], sessionId: undefined };
+
 async function now(app: TestApp) {
-  const { seq, people, tools } = await getWorkshopView(app.db, app.keys);
+  const { seq, people, tools } = await getWorkshopView(app.db, READER, app.keys);
   const byId = (one: { id: string }, other: { id: string }) => one.id.localeCompare(other.id);
   return {
     seq,

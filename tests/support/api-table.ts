@@ -1,5 +1,6 @@
 import { createHash } from 'node:crypto';
 import sharp from 'sharp';
+import type { EntryData } from '@/domain/entry';
 import { type HandlerContext, listOperations, type Operation } from '@/server/http';
 import { addPerson } from '@/server/people';
 import {
@@ -70,9 +71,12 @@ export async function openTable(): Promise<Table> {
     .jpeg()
     .toBuffer();
   const photoHash = createHash('sha256').update(photo).digest('hex');
-  const photographed = {
-    ...{ photo: photoHash, bytes: photo.byteLength, type: 'image/jpeg' },
-    ...{ from: 'camera here', subject: 'arrival' },
+  const photographed: EntryData<'photographed'> = {
+    photo: photoHash,
+    bytes: photo.byteLength,
+    type: 'image/jpeg',
+    from: 'camera here',
+    subject: 'arrival',
   };
   await tablet.record(job.id, { kind: 'photographed', data: photographed }, { by: ann });
   await tablet.sync();
@@ -113,6 +117,7 @@ export async function openTable(): Promise<Table> {
     'POST /api/jobs/prepare': { body: { route: 'test-route', options: { plate: 'fitted' } } },
     'GET /api/jobs/{id}': { params: { id: job.id } },
     'GET /api/jobs/{id}/export': { params: { id: job.id } },
+    'GET /api/jobs/{id}/set-aside': { params: { id: job.id } },
     'GET /api/jobs/{id}/trail': { params: { id: job.id } },
     'POST /api/jobs/{id}/people': { params: { id: job.id }, body: { people: [ann.id] } },
     'GET /api/keys': {},

@@ -117,9 +117,12 @@ async function addTestTool(
   await recordCalibration(trx, owner, tool.id, calibration, app);
 }
 
+/** Anybody of the workshop may read what tablets judge by. */
+const READER: Actor = { personId: 'reader', name: 'Reader', roles: ['auditor'], sessionId: undefined };
+
 /** The workshop as tablets get it. */
 export async function workshopOf(app: TestApp): Promise<Workshop> {
-  const { seq, zone, people, tools } = await getWorkshopView(app.db, app.keys);
+  const { seq, zone, people, tools } = await getWorkshopView(app.db, READER, app.keys);
   return { seq, zone, people, tools };
 }
 
@@ -183,7 +186,7 @@ export async function enrolTestTablet(
   });
   const { credential } = enrolled.body as { credential: string };
   const tablet = `${id}.${credential}`;
-  const { sealingKey } = await getWorkshopView(app.db, app.keys);
+  const { sealingKey } = await getWorkshopView(app.db, READER, app.keys);
   const made = new ScriptedTablet({
     device: id,
     workshop: await workshopOf(app),

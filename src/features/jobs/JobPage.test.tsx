@@ -56,6 +56,7 @@ async function show(answer: JobAnswer, more: Record<string, DeskAnswer> = {}, ca
   const server = answerDesk({
     'GET /api/jobs/job-1': { body: answer },
     'GET /api/workshop': { body: { people } },
+    'GET /api/jobs/job-1/set-aside': { body: { setAside: [] } },
     ...more,
   });
   render(<JobPage job="job-1" zone="Europe/Lisbon" canAssign={canAssign} canRun canReadTrail />);
@@ -171,6 +172,30 @@ describe('the page of a job', () => {
     await show(answerOf(journal, { missingPhotographs: [{ ...missing, isAwaited: false }] }));
     expect(screen.queryByText(/Handover waits/)).not.toBeInTheDocument();
     expect(part('Photographs').getByText('not here yet, on Bay 2')).toBeVisible();
+  });
+
+  it('lists what was set aside: what, by whom, from where, why, and when; the rest on asking', async () => {
+    const line = { at: '2026-06-02T08:10:00.000Z', reason: 'The PIN was wrong. Sign again.' };
+    const first = { ...line, id: '1', words: 'Signed the hold point', madeAt: '2026-06-02T08:00:00.000Z' };
+    const path = 'GET /api/jobs/job-1/set-aside';
+    await show(answerOf(new Journal(smallPlan())), {
+      [path]: { body: { setAside: [{ ...first, by: 'S. Visor', tablet: 'Bay 2' }], cursor: 'a~b' } },
+      [`${path}?cursor=a~b`]: { body: { setAside: [{ ...line, id: '2', words: 'Unreadable' }] } },
+    });
+    await screen.findByRole('heading', { name: 'Set aside' });
+    const list = part('Set aside');
+    const [one] = list.getAllByRole('listitem');
+    expect(one).toHaveTextContent('Signed the hold point');
+    expect(one).toHaveTextContent('The PIN was wrong. Sign again.');
+    expect(one).toHaveTextContent('S. Visor, 2 Jun, 09:00, on Bay 2; set aside 2 Jun, 09:10');
+    await userEvent.click(list.getByRole('button', { name: 'Older ones' }));
+    expect(await list.findByText('Unreadable')).toBeVisible();
+    expect(list.getByText(/nobody that the workshop knows, from a tablet that is not proved/)).toBeVisible();
+  });
+
+  it('has no list of what was set aside where nothing was', async () => {
+    await show(answerOf(new Journal(smallPlan())));
+    expect(screen.queryByRole('heading', { name: 'Set aside' })).not.toBeInTheDocument();
   });
 
   it('says what is kept from this role, and leaves out what nobody gave', async () => {

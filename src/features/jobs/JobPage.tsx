@@ -11,6 +11,7 @@ import { JobNext } from './JobNext';
 import { JobPeople } from './JobPeople';
 import { JobPhotos } from './JobPhotos';
 import { JobProgress } from './JobProgress';
+import { JobSetAside } from './JobSetAside';
 import { JobSignatures } from './JobSignatures';
 import { jobAnswer, type JobAnswer } from './job-answer';
 import { newQueryClient, useServer } from '@/offline/use-server';
@@ -93,6 +94,7 @@ function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & {
             waiting={answer.waiting}
             missingPhotographs={answer.missingPhotographs}
           />
+          <JobSetAside job={answer.id} zone={zone} />
           <JobNext state={jobState} />
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
           <JobSignatures state={jobState} zone={zone} />

@@ -36,6 +36,25 @@ describe('the page of people', () => {
     expect(row('G. One')).toHaveTextContent('deactivated: can’t sign in, stays in the record');
   });
 
+  it('shows the rest of a long list of people and of tablets when asked', async () => {
+    const device = { id: 'd1', name: 'Bay 2', state: 'active', enrolledAt: '2031-05-06T07:00:00.000Z' };
+    const { user } = await show({
+      'GET /api/people': { body: { people, cursor: 'G. One~gone' } },
+      'GET /api/people?cursor=G.%20One~gone': {
+        body: { people: [{ ...people[0], id: 'z', name: 'Z. Ed' }] },
+      },
+      'GET /api/devices': { body: { devices: [{ ...device, lastHeardAt: null }], cursor: 'c' } },
+      'GET /api/devices?cursor=c': {
+        body: { devices: [{ ...device, id: 'd2', name: 'Bay 3', lastHeardAt: null }] },
+      },
+    });
+    await user.click(screen.getByRole('button', { name: 'More people' }));
+    expect(await screen.findByText('Z. Ed')).toBeVisible();
+    expect(screen.queryByRole('button', { name: 'More people' })).not.toBeInTheDocument();
+    await user.click(screen.getByRole('button', { name: 'Older tablets' }));
+    expect(await screen.findByText('Bay 3')).toBeVisible();
+  });
+
   it('offers those who are deactivated nothing but the way back', async () => {
     const { sent, user } = await show({ 'PATCH /api/people/gone': { body: { ok: true } } });
     const acts = within(row('G. One')).getAllByRole('button');

@@ -6,7 +6,7 @@ import { DataTable, type DataColumn } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
 import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
-import { newQueryClient, useServer } from '@/offline/use-server';
+import { newQueryClient, useServerList } from '@/offline/use-server';
 import { AddPersonForm } from './AddPersonForm';
 import { LinkNote } from './LinkNote';
 import { RolesDialog } from './RolesDialog';
@@ -24,7 +24,8 @@ export function PeoplePage({ zone }: { zone: string }) {
 }
 
 function People({ zone }: { zone: string }) {
-  const { data, error } = useServer('/api/people', peopleAnswer);
+  const list = useServerList('/api/people', peopleAnswer);
+  const people = list.data?.pages.flatMap((page) => page.people);
   const client = useQueryClient();
   const [trouble, setTrouble] = useState<string>();
   const [link, setLink] = useState<GivenLink>();
@@ -51,7 +52,7 @@ function People({ zone }: { zone: string }) {
     setTrouble(given.ok ? undefined : given.why);
     if (given.ok) setLink({ name, ...given.body });
   };
-  const words = trouble ?? error?.message;
+  const words = trouble ?? list.error?.message;
   return (
     <>
       <div className="page-head">
@@ -64,7 +65,7 @@ function People({ zone }: { zone: string }) {
       <DataTable
         caption="The people of the workshop"
         columns={COLUMNS}
-        rows={(data?.people ?? []).map((row) => ({
+        rows={(people ?? []).map((row) => ({
           key: row.id,
           isSoft: !row.active,
           cells: {
@@ -82,8 +83,13 @@ function People({ zone }: { zone: string }) {
             ),
           },
         }))}
-        emptyWords={data ? 'Nobody yet.' : 'Reading the people'}
+        emptyWords={people ? 'Nobody yet.' : 'Reading the people'}
       />
+      {list.hasNextPage && (
+        <Button look="quiet" onClick={() => void list.fetchNextPage()} isBusy={list.isFetchingNextPage}>
+          More people
+        </Button>
+      )}
       {changing && (
         <RolesDialog
           name={changing.name}

@@ -1,7 +1,8 @@
 import * as z from 'zod/mini';
+import { Button } from '@/components/Button';
 import { DataTable } from '@/components/DataTable';
 import { dayAndTime } from '@/domain/time-words';
-import { useServer } from '@/offline/use-server';
+import { useServerList } from '@/offline/use-server';
 
 const devicesAnswer = z.object({
   devices: z.array(
@@ -13,11 +14,13 @@ const devicesAnswer = z.object({
       lastHeardAt: z.nullable(z.string()),
     }),
   ),
+  cursor: z.optional(z.string()),
 });
 
 /** The tablets and desk browsers that the workshop knows, and when each was last heard. */
 export function Tablets({ zone }: { zone: string }) {
-  const { data } = useServer('/api/devices', devicesAnswer);
+  const list = useServerList('/api/devices', devicesAnswer);
+  const devices = list.data?.pages.flatMap((page) => page.devices);
   return (
     <section className="part">
       <h2 className="part-title">Tablets</h2>
@@ -30,7 +33,7 @@ export function Tablets({ zone }: { zone: string }) {
           { key: 'heard', label: 'last heard' },
           { key: 'state', label: 'state' },
         ]}
-        rows={(data?.devices ?? []).map(({ id, name, state, enrolledAt, lastHeardAt }) => ({
+        rows={(devices ?? []).map(({ id, name, state, enrolledAt, lastHeardAt }) => ({
           key: id,
           isSoft: state === 'lost',
           cells: {
@@ -41,8 +44,13 @@ export function Tablets({ zone }: { zone: string }) {
             state,
           },
         }))}
-        emptyWords={data ? 'No tablet is enrolled.' : 'Reading the tablets'}
+        emptyWords={devices ? 'No tablet is enrolled.' : 'Reading the tablets'}
       />
+      {list.hasNextPage && (
+        <Button look="quiet" onClick={() => void list.fetchNextPage()} isBusy={list.isFetchingNextPage}>
+          Older tablets
+        </Button>
+      )}
     </section>
   );
 }

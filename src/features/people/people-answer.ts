@@ -10,8 +10,8 @@ const person = z.object({
   hasPassword: z.boolean(),
   email: z.optional(z.string()),
 });
-/** Everybody, as the page of people shows them. */
-export const peopleAnswer = z.object({ people: z.array(person) });
+/** A page of the list of everybody, as the page of people shows them. */
+export const peopleAnswer = z.object({ people: z.array(person), cursor: z.optional(z.string()) });
 export type PersonRow = z.infer<typeof person>;
 
 /** A one-time link as the server answers it. */

@@ -26,5 +26,5 @@ export const GET = endpoint(
       ),
     }),
   },
-  async ({ app }) => ({ routes: await listRoutes(app.db) }),
+  async ({ app, actor }) => ({ routes: await listRoutes(app.db, actor) }),
 );

@@ -1,18 +1,19 @@
 import * as z from 'zod';
 import { deviceAnswer } from '@/server/answers';
 import { enrolDevice, listDevices } from '@/server/devices';
-import { line, uuid } from '@/server/fields';
+import { cursor, line, uuid } from '@/server/fields';
 import { endpoint } from '@/server/http';
 
 export const GET = endpoint(
   {
     method: 'GET',
     path: '/api/devices',
-    summary: 'Every tablet of the workshop',
+    summary: 'Every tablet of the workshop, the newest first, a page at a time',
     who: ['supervisor', 'quality lead', 'auditor', 'owner'],
-    answer: z.strictObject({ devices: z.array(deviceAnswer) }),
+    query: z.strictObject({ cursor }),
+    answer: z.strictObject({ devices: z.array(deviceAnswer), cursor: z.string().optional() }),
   },
-  async ({ app, actor }) => ({ devices: await listDevices(app.db, actor) }),
+  async ({ app, actor, query }) => listDevices(app.db, actor, query),
 );
 
 export const POST = endpoint(

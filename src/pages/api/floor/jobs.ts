@@ -11,8 +11,8 @@ export const GET = endpoint(
     who: 'session or tablet',
     answer: z.strictObject({ jobs: z.array(floorJobAnswer) }),
   },
-  async ({ app }) => ({
-    jobs: (await listOpenJobs(app.db)).map(
+  async ({ app, asker }) => ({
+    jobs: (await listOpenJobs(app.db, asker)).map(
       ({ id, number, label, engine, registration, plan, phase, head, people, promisedOn }) => ({
         ...{ id, number, label, engine, registration, plan, phase, head, promisedOn },
         people: people.map((person) => person.id),

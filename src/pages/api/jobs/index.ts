@@ -1,4 +1,5 @@
 import * as z from 'zod';
+import { cursor } from '@/server/fields';
 import { endpoint, json } from '@/server/http';
 import { jobLineAnswer, jobState, openingBody } from '@/server/job-answers';
 import { openJob } from '@/server/job-opening';
@@ -10,7 +11,7 @@ export const GET = endpoint(
     path: '/api/jobs',
     summary: 'Jobs that you may see, the newest first, a page at a time',
     who: 'session',
-    query: z.strictObject({ cursor: z.string().max(100).optional(), state: jobState.optional() }),
+    query: z.strictObject({ cursor, state: jobState.optional() }),
     answer: z.strictObject({ jobs: z.array(jobLineAnswer), cursor: z.string().optional() }),
   },
   async ({ app, actor, query }) => listJobs(app.db, actor, query),

@@ -19,6 +19,6 @@ export const POST = endpoint(
   async ({ app, actor, body }) =>
     app.db.transaction().execute(async (trx) => {
       const { hash, plan } = await preparePlan(trx, actor, body, app);
-      return { number: await nextJobNumber(trx, app), plan: hash, planBody: { ...plan } };
+      return { number: await nextJobNumber(trx, actor, app), plan: hash, planBody: { ...plan } };
     }),
 );

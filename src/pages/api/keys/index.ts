@@ -1,17 +1,19 @@
 import * as z from 'zod';
 import { keyAnswer } from '@/server/answers';
 import { enrolKey, listKeys } from '@/server/author-keys';
+import { cursor } from '@/server/fields';
 import { endpoint } from '@/server/http';
 
 export const GET = endpoint(
   {
     method: 'GET',
     path: '/api/keys',
-    summary: 'Your author keys, or everybody’s if you may see all records',
+    summary: 'Your author keys, or everybody’s if you may see all records, a page at a time',
     who: 'session',
-    answer: z.strictObject({ keys: z.array(keyAnswer) }),
+    query: z.strictObject({ cursor }),
+    answer: z.strictObject({ keys: z.array(keyAnswer), cursor: z.string().optional() }),
   },
-  async ({ app, actor }) => ({ keys: await listKeys(app.db, actor) }),
+  async ({ app, actor, query }) => listKeys(app.db, actor, query),
 );
 
 export const POST = endpoint(

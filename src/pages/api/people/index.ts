@@ -1,6 +1,6 @@
 import * as z from 'zod';
 import { personAnswer } from '@/server/answers';
-import { email, personName, roles } from '@/server/fields';
+import { cursor, email, personName, roles } from '@/server/fields';
 import { endpoint } from '@/server/http';
 import { makePasswordLink } from '@/server/one-time-links';
 import { addPerson, getPerson, listPeople } from '@/server/people';
@@ -9,11 +9,12 @@ export const GET = endpoint(
   {
     method: 'GET',
     path: '/api/people',
-    summary: 'Everybody of the workshop, also those who left',
+    summary: 'Everybody of the workshop, also those who left, by name, a page at a time',
     who: 'session',
-    answer: z.strictObject({ people: z.array(personAnswer) }),
+    query: z.strictObject({ cursor }),
+    answer: z.strictObject({ people: z.array(personAnswer), cursor: z.string().optional() }),
   },
-  async ({ app, actor }) => ({ people: await listPeople(app.db, actor) }),
+  async ({ app, actor, query }) => listPeople(app.db, actor, query),
 );
 
 export const POST = endpoint(

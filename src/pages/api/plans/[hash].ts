@@ -10,8 +10,8 @@ export const GET = endpoint(
     who: 'session or tablet',
     answer: z.looseObject({ v: z.literal(1) }),
   },
-  async ({ app, params }) =>
-    new Response(await getPlanText(app.db, params.hash ?? ''), {
+  async ({ app, asker, params }) =>
+    new Response(await getPlanText(app.db, asker, params.hash ?? ''), {
       headers: {
         'content-type': 'application/json',
         'cache-control': 'private, max-age=31536000, immutable',

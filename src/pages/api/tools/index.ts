@@ -1,6 +1,6 @@
 import * as z from 'zod';
 import { toolAnswer } from '@/server/answers';
-import { day, decimal, line } from '@/server/fields';
+import { cursor, day, decimal, line } from '@/server/fields';
 import { endpoint } from '@/server/http';
 import { addTool, listTools } from '@/server/tools';
 
@@ -8,11 +8,12 @@ export const GET = endpoint(
   {
     method: 'GET',
     path: '/api/tools',
-    summary: 'Every tool, also the withdrawn',
+    summary: 'Every tool, also the withdrawn, by name, a page at a time',
     who: 'session',
-    answer: z.strictObject({ tools: z.array(toolAnswer) }),
+    query: z.strictObject({ cursor }),
+    answer: z.strictObject({ tools: z.array(toolAnswer), cursor: z.string().optional() }),
   },
-  async ({ app }) => ({ tools: await listTools(app.db) }),
+  async ({ app, actor, query }) => listTools(app.db, actor, query),
 );
 
 export const POST = endpoint(

@@ -28,7 +28,7 @@ export const GET = endpoint(
       headKey: z.string(),
     }),
   },
-  async ({ app }) => getWorkshopView(app.db, app.keys),
+  async ({ app, asker }) => getWorkshopView(app.db, asker, app.keys),
 );
 
 export const PUT = endpoint(

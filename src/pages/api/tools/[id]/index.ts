@@ -12,7 +12,7 @@ export const GET = endpoint(
     who: 'session',
     answer: toolAnswer.extend({ calibrations: z.array(calibrationAnswer) }),
   },
-  async ({ app, params }) => getTool(app.db, params.id ?? ''),
+  async ({ app, actor, params }) => getTool(app.db, actor, params.id ?? ''),
 );
 
 export const PATCH = endpoint(
