@@ -1,7 +1,7 @@
 import type { MiddlewareHandler } from 'astro';
 import { type App, getApp } from '@/server/compose';
 import { AppError } from '@/server/errors';
-import { errorResponse } from '@/server/http';
+import { errorResponse, noRouteResponse } from '@/server/http';
 import { requireOwnHost, requireOwnOrigin } from '@/server/request-origin';
 import { readSession } from '@/server/session';
 
@@ -26,7 +26,7 @@ export const onRequest: MiddlewareHandler = async (context, next) => {
     if (actor === undefined && !isApi && needsSignIn(pathname)) {
       return context.redirect(`/sign-in?next=${encodeURIComponent(pathname + search)}`, 303);
     }
-    const response = isApi ? asJsonError(app, await next()) : await next();
+    const response = isApi ? asJsonError(app, context.request, await next()) : await next();
     for (const cookie of cookies) response.headers.append('set-cookie', cookie);
     return response;
   } catch (error) {
@@ -41,17 +41,9 @@ function needsSignIn(pathname: string): boolean {
 }
 
 /** A path or method that no route answers gets the same shape of error as everything else. */
-function asJsonError(app: App, response: Response): Response {
+function asJsonError(app: App, request: Request, response: Response): Response {
   if (response.status < 400 || response.headers.get('content-type')?.startsWith('application/json'))
     return response;
-  if (response.status === 404 || response.status === 405) {
-    return errorResponse(
-      app,
-      new AppError(
-        'not-found',
-        'There is nothing at this address that answers this method. /api/openapi.json lists what there is.',
-      ),
-    );
-  }
+  if (response.status === 404 || response.status === 405) return noRouteResponse(app, request);
   return errorResponse(app, new Error(`A route answered ${response.status} without JSON`));
 }

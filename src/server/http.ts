@@ -93,6 +93,52 @@ export function listOperations(): readonly Operation[] {
   return operations;
 }
 
+/**
+ * The methods that an address of the API answers, none if it is no address. Of two that fit, the one with fewer
+ * gaps is meant, as the router has it. Only endpoints whose module is loaded are known; the router loads the one
+ * that a request is for.
+ */
+export function methodsAt(pathname: string): string[] {
+  const fitting = operations.filter(({ path }) => fits(path, pathname));
+  const gaps = (path: string) => path.split('{').length;
+  const fewest = Math.min(...fitting.map(({ path }) => gaps(path)));
+  const methods = new Set<string>(
+    fitting.flatMap(({ path, method }) => (gaps(path) === fewest ? [method] : [])),
+  );
+  if (methods.has('GET')) methods.add('HEAD');
+  return [...methods].sort();
+}
+
+function fits(path: string, pathname: string): boolean {
+  const parts = path.split('/');
+  const given = pathname.split('/');
+  return (
+    parts.length === given.length &&
+    parts.every((part, i) => (part.startsWith('{') ? given[i] !== '' : part === given[i]))
+  );
+}
+
+/** The answer to a method that an address of the API does not take, or to an address that there is not. */
+export function noRouteResponse(app: App, request: Request): Response {
+  const methods = methodsAt(new URL(request.url).pathname);
+  if (methods.length === 0 || methods.includes(request.method)) {
+    return errorResponse(
+      app,
+      new AppError('not-found', 'There is nothing at this address. /api/openapi.json lists what there is.'),
+    );
+  }
+  const allow = methods.join(', ');
+  const response = errorResponse(
+    app,
+    new AppError(
+      'wrong-method',
+      `This address takes ${allow}, not ${request.method}. Nothing was changed. /api/openapi.json lists what there is.`,
+    ),
+  );
+  response.headers.set('allow', allow);
+  return response;
+}
+
 /** Makes an API route from what it takes and answers, and the function that does its work. */
 export function endpoint<
   const W extends Who,

@@ -330,6 +330,54 @@ describe('before any operation', { timeout: 60_000 }, () => {
     return { status: response?.status, text, isReached };
   }
 
+  /** What is answered where the router has a module for the address and that has no handler for the method. */
+  async function asUnrouted(method: string, path: string) {
+    const request = new Request(`http://localhost:4321${path}`, { method });
+    const context = { request, url: new URL(request.url), locals: {}, isPrerendered: false };
+    const response = await onRequest(context as never, () =>
+      Promise.resolve(new Response(null, { status: 404 })),
+    );
+    if (response === undefined) throw new Error('The middleware has to answer.');
+    return { response, body: await response.json() };
+  }
+
+  it('a method that its address does not take is answered 405, and told which it takes', async () => {
+    const paths = Map.groupBy(operations, ({ path }) => path);
+    for (const [path, here] of paths) {
+      const { params = {} } = sentFor(table, here[0]!);
+      const address = path.replace(/\{(\w+)\}/g, (_, name: string) => params[name] ?? name);
+      const takes = here.map(({ method }) => String(method));
+      const allow = [...takes, ...(takes.includes('GET') ? ['HEAD'] : [])].sort().join(', ');
+      const others = ['GET', 'POST', 'PUT', 'PATCH', 'DELETE', 'OPTIONS'].filter(
+        (one) => !takes.includes(one),
+      );
+      for (const method of others) {
+        const { response, body } = await asUnrouted(method, address);
+        expect(response.status, `${method} ${address}`).toBe(405);
+        expect(response.headers.get('allow'), `${method} ${address}`).toBe(allow);
+        expect(refusal.parse(body).error.code).toBe('wrong-method');
+      }
+    }
+  });
+
+  it('an address that there is not is answered 404, whatever the method', async () => {
+    for (const path of [
+      '/api',
+      '/api/',
+      '/api/nothing',
+      '/api/people/x/y/z',
+      '/api/people//',
+      '/api/jobs/',
+    ]) {
+      for (const method of ['GET', 'POST', 'DELETE']) {
+        const { response, body } = await asUnrouted(method, path);
+        expect(response.status, `${method} ${path}`).toBe(404);
+        expect(response.headers.get('allow')).toBeNull();
+        expect(refusal.parse(body).error.code).toBe('not-found');
+      }
+    }
+  });
+
   it('a foreign Host is answered 421', async () => {
     for (const operation of operations) {
       const answer = await through(operation, { host: 'workshop.example' });
