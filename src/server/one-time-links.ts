@@ -1,5 +1,6 @@
 import { type Actor, requireRole } from './actor';
 import { type Clock, DAY, HOUR, type Ids, stamp } from './clock';
+import { forgetAttempts, signInAttempts } from './attempts';
 import { newSecret, sha256Hex } from './crypto';
 import type { App } from './compose';
 import type { Db, Trx } from './database';
@@ -94,11 +95,12 @@ export async function setPasswordByLink(
     const link = await useLink(trx, 'set password', token, app.clock);
     const person = await trx
       .selectFrom('person')
-      .select('active')
+      .select(['active', 'email'])
       .where('id', '=', link.person_id ?? '')
       .executeTakeFirst();
     if (person?.active !== 1 || link.person_id === null) throw usedUp();
     await storePassword(trx, link.person_id, hash, app);
+    await forgetAttempts(trx, signInAttempts(person.email));
   });
 }
 

@@ -1,23 +1,16 @@
 import { hashPassword, verifyPassword } from 'better-auth/crypto';
 import type { Actor } from './actor';
-import { type Clock, type Ids, MINUTE, stamp } from './clock';
+import { countAttempt, forgetAttempts, waitWords } from './attempts';
+import { type Clock, type Ids, stamp } from './clock';
 import type { Db, Trx } from './database';
 import { AppError } from './errors';
-
-const WINDOW_MS = 15 * MINUTE;
-const MAX_WRONG = 10;
 
 /** Makes the stored form of a password; slow by design, so never inside a transaction. */
 export function hashNewPassword(password: string): Promise<string> {
   return hashPassword(password);
 }
 
-/**
- * Checks the acting person's own password before something that needs it anew.
- *
- * An attempt is counted before the password is hashed, so that many at once do not get past the limit; a
- * right one clears the count.
- */
+/** Checks the acting person's own password before something that needs it anew. */
 export async function requirePassword(
   db: Db,
   actor: Actor,
@@ -26,7 +19,13 @@ export async function requirePassword(
   field: string,
 ): Promise<void> {
   const key = `password ${actor.personId}`;
-  await db.transaction().execute((trx) => countAttempt(trx, key, clock));
+  const over = await db.transaction().execute((trx) => countAttempt(trx, key, clock));
+  if (over !== undefined) {
+    throw new AppError(
+      'too-many-attempts',
+      `The password was wrong too often. Nothing was changed. ${waitWords(over.waitMinutes)} and try again.`,
+    );
+  }
   const account = await db
     .selectFrom('account')
     .select('password')
@@ -39,7 +38,7 @@ export async function requirePassword(
     throw new AppError('wrong-password', 'This is not your password. Nothing was changed. Try again.', {
       field,
     });
-  await db.deleteFrom('attempt_count').where('key', '=', key).execute();
+  await db.transaction().execute((trx) => forgetAttempts(trx, key));
 }
 
 /** Stores a password and ends every session of its person but one. */
@@ -86,23 +85,5 @@ export async function storePassword(
     .deleteFrom('session')
     .where('userId', '=', personId)
     .where('id', '!=', keepSession ?? '')
-    .execute();
-}
-
-async function countAttempt(trx: Trx, key: string, clock: Clock): Promise<void> {
-  const row = await trx.selectFrom('attempt_count').selectAll().where('key', '=', key).executeTakeFirst();
-  const now = clock.now().getTime();
-  const isOld = row === undefined || now - new Date(row.since).getTime() >= WINDOW_MS;
-  if (!isOld && row.failed >= MAX_WRONG) {
-    throw new AppError(
-      'too-many-attempts',
-      'The password was wrong too often. Nothing was changed. Wait 15 minutes and try again.',
-    );
-  }
-  const next = isOld ? { failed: 1, since: stamp(clock) } : { failed: row.failed + 1, since: row.since };
-  await trx
-    .insertInto('attempt_count')
-    .values({ key, ...next })
-    .onConflict((conflict) => conflict.column('key').doUpdateSet(next))
     .execute();
 }

@@ -1,4 +1,5 @@
 import * as z from 'zod';
+import { countAttempt, forgetAttempts, signInAttempts, waitWords } from './attempts';
 import { CLIENT_ADDRESS_HEADER } from './auth';
 import type { App } from './compose';
 import { AppError } from './errors';
@@ -18,6 +19,8 @@ export async function signIn(
   request: Request,
   credentials: { email: string; password: string },
 ): Promise<{ personId: string; cookies: string[] }> {
+  const key = signInAttempts(credentials.email);
+  await requireFewAttempts(app, request, credentials.email);
   const { publicUrl } = app.settings;
   const headers = new Headers({ 'content-type': 'application/json', origin: publicUrl });
   for (const name of ['cookie', 'user-agent', CLIENT_ADDRESS_HEADER]) {
@@ -33,6 +36,7 @@ export async function signIn(
   );
   if (response.ok) {
     const { user } = success.parse(await response.json());
+    await app.db.transaction().execute((trx) => forgetAttempts(trx, key));
     return { personId: user.id, cookies: response.headers.getSetCookie() };
   }
   if (response.status === 429) {
@@ -55,6 +59,27 @@ export async function signIn(
     );
   }
   throw new Error(`Signing in failed with ${response.status} ${code ?? ''}`);
+}
+
+/** Refuses an account that was tried too often, in the same words whether there is one or not. */
+async function requireFewAttempts(app: App, request: Request, email: string): Promise<void> {
+  const key = signInAttempts(email);
+  const over = await app.db.transaction().execute((trx) => countAttempt(trx, key, app.clock));
+  if (over === undefined) return;
+  const person = await app.db
+    .selectFrom('person')
+    .select('id')
+    .where('email', '=', email.toLowerCase())
+    .executeTakeFirst();
+  const from = request.headers.get(CLIENT_ADDRESS_HEADER);
+  app.log.warn(
+    { person: person?.id ?? 'nobody with this address', from, minutes: over.waitMinutes },
+    'An account was tried too often and lets nobody in for a while',
+  );
+  throw new AppError(
+    'too-many-attempts',
+    `Somebody tried to sign in with this e-mail address too often. ${waitWords(over.waitMinutes)} and try again, or ask the owner for a new link. Whoever is signed in already stays so.`,
+  );
 }
 
 /** Makes another person who is signed in at this browser the one who is active. */

@@ -1,10 +1,12 @@
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { POST as postSignIn } from '@/pages/api/auth/sign-in';
 import { POST as postSignOut } from '@/pages/api/auth/sign-out';
 import { POST as postSwitch } from '@/pages/api/auth/switch';
 import { GET as getMe } from '@/pages/api/me/index';
 import { POST as postPassword } from '@/pages/api/me/password';
-import { DAY } from '@/server/clock';
+import { POST as postLink } from '@/pages/api/people/[id]/password-link';
+import { POST as postSetPassword } from '@/pages/api/set-password';
+import { DAY, MINUTE } from '@/server/clock';
 import { openTestApp } from '../support/database';
 import { addTestPeople, newBrowser, signIn, TEST_PASSWORD } from '../support/requests';
 
@@ -37,15 +39,98 @@ describe('signing in', () => {
 
   it('is limited per address, whatever the browser says about itself', async () => {
     await addTestPeople(await openTestApp(), technicians);
-    const body = { email: 'nobody@witnessmark.example', password: 'guess after guess' };
     const statuses: number[] = [];
     for (let attempt = 0; attempt < 32; attempt += 1) {
+      const body = { email: `nobody${attempt}@witnessmark.example`, password: 'guess after guess' };
       const headers = { 'x-forwarded-for': `198.51.100.${attempt}` };
       statuses.push((await newBrowser().ask(postSignIn, { body, headers })).status);
     }
     expect(statuses.slice(0, 30)).toEqual(Array.from({ length: 30 }, () => 401));
     expect(statuses.slice(30)).toEqual([429, 429]);
   }, 30_000);
+
+  describe('is limited per account', () => {
+    const WRONG = 'guess after guess';
+
+    /** Tries an account from a new address each time, so that no limit on an address is met. */
+    const tryOften = async (email: string, times: number, password = WRONG) => {
+      const answers = [];
+      for (let n = 0; n < times; n += 1) {
+        const headers = { 'x-client-address': `198.51.100.${n}` };
+        answers.push(await newBrowser().ask(postSignIn, { body: { email, password }, headers }));
+      }
+      return answers;
+    };
+
+    it('from however many addresses, for a quarter of an hour, and says how long', async () => {
+      const app = await openTestApp();
+      const { ines } = await addTestPeople(app, technicians);
+      const warned = vi.spyOn(app.log, 'warn');
+      const first = await tryOften(ines.email, 10);
+      expect(first.map(({ status }) => status)).toEqual(Array.from({ length: 10 }, () => 401));
+      app.clock.advance(3 * MINUTE);
+      const [over] = await tryOften(ines.email.toUpperCase(), 1, TEST_PASSWORD);
+      expect(over).toMatchObject({ status: 429, body: { error: { code: 'too-many-attempts' } } });
+      expect(JSON.stringify(over!.body)).toContain('Wait 12 minutes and try again');
+      expect(warned).toHaveBeenCalledWith(
+        { person: ines.personId, from: '198.51.100.0', minutes: 12 },
+        expect.stringContaining('tried too often'),
+      );
+      app.clock.advance(12 * MINUTE);
+      expect(await tryOften(ines.email, 1, TEST_PASSWORD)).toMatchObject([{ status: 200 }]);
+    }, 30_000);
+
+    it('and tells nobody whether there is such an account', async () => {
+      const { ines } = await addTestPeople(await openTestApp(), technicians);
+      const here = await tryOften(ines.email, 12);
+      const nowhere = await tryOften('nobody@witnessmark.example', 12);
+      const told = (answers: typeof here) => answers.map(({ status, body }) => ({ status, body }));
+      expect(told(nowhere)).toEqual(told(here));
+      expect(here.at(-1)?.status).toBe(429);
+    }, 30_000);
+
+    it('and touches no other account; a right password begins anew', async () => {
+      const { ines, bram } = await addTestPeople(await openTestApp(), technicians);
+      await tryOften(ines.email, 9);
+      expect(await tryOften(ines.email, 1, TEST_PASSWORD)).toMatchObject([{ status: 200 }]);
+      expect((await tryOften(ines.email, 11)).map(({ status }) => status).slice(-2)).toEqual([401, 429]);
+      expect(await tryOften(bram.email, 1, TEST_PASSWORD)).toMatchObject([{ status: 200 }]);
+    }, 30_000);
+
+    it('also when many try at once', async () => {
+      const { ines } = await addTestPeople(await openTestApp(), technicians);
+      const answers = await Promise.all(
+        Array.from({ length: 15 }, (_, n) =>
+          newBrowser().ask(postSignIn, {
+            body: { email: ines.email, password: WRONG },
+            headers: { 'x-client-address': `198.51.100.${n}` },
+          }),
+        ),
+      );
+      expect(answers.filter(({ status }) => status === 401)).toHaveLength(10);
+      expect(answers.filter(({ status }) => status === 429)).toHaveLength(5);
+    }, 30_000);
+
+    it('and a new password by the owner’s link lets its person in at once', async () => {
+      const { owner, ines } = await addTestPeople(await openTestApp(), technicians);
+      await tryOften(ines.email, 11);
+      const office = await signIn(owner);
+      const { body } = await office.ask(postLink, { body: {}, params: { id: ines.personId } });
+      const token = new URL((body as { link: string }).link).searchParams.get('token');
+      const password = 'a fresh password';
+      await newBrowser().ask(postSetPassword, { body: { token, password } });
+      expect(await tryOften(ines.email, 1, password)).toMatchObject([{ status: 200 }]);
+    }, 30_000);
+
+    it('and keeps no trace of made-up accounts for longer than that', async () => {
+      const app = await openTestApp();
+      const { ines } = await addTestPeople(app, technicians);
+      for (let n = 0; n < 5; n += 1) await tryOften(`made-up-${n}@witnessmark.example`, 1);
+      app.clock.advance(15 * MINUTE);
+      await tryOften(ines.email, 1);
+      expect(await app.db.selectFrom('attempt_count').selectAll().execute()).toHaveLength(1);
+    }, 30_000);
+  });
 
   it('lets several people stay signed in side by side and changes who is active', async () => {
     const { ines, bram } = await addTestPeople(await openTestApp(), technicians);
