@@ -2,6 +2,7 @@ import astro from 'eslint-plugin-astro';
 import jsxA11y from 'eslint-plugin-jsx-a11y';
 import reactHooks from 'eslint-plugin-react-hooks';
 import tseslint from 'typescript-eslint';
+import { noOuterDatabase } from './db/no-outer-database.mjs';
 
 const typescriptFiles = ['**/*.ts', '**/*.tsx'];
 const testFiles = ['**/*.test.ts', '**/*.test.tsx', 'tests/**'];
@@ -112,6 +113,11 @@ export default tseslint.config(
     files: ['src/server/**', 'db/**'],
     ignores: testFiles,
     rules: { 'no-restricted-imports': ['error', { patterns: browserPackages }] },
+  },
+  {
+    files: typescriptFiles,
+    plugins: { local: { rules: { 'no-outer-database': noOuterDatabase } } },
+    rules: { 'local/no-outer-database': 'error' },
   },
   {
     files: ['src/**/*.tsx'],

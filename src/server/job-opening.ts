@@ -56,10 +56,12 @@ export async function openJob(
   const item = readItem(sent, 0);
   const { entry, fields } = requireOpened(item, actor);
   await requireKnownWorkshop(app, item, entry);
+  // The history is remembered by the database, and read by the transaction alone.
+  const { db: memory } = app;
   const { result, fold } = await app.db.transaction().execute(async (trx) => {
     const known = await findOpened(trx, item, entry);
     if (known !== undefined) return { result: { ...known, isNew: false }, fold: undefined };
-    const history = await readWorkshopHistory(app.db, trx);
+    const history = await readWorkshopHistory(memory, trx);
     await requireSigned(trx, item, entry);
     requireCommitted(identity, entry.data.commitments);
     await requirePlan(trx, entry);

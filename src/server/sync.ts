@@ -127,10 +127,12 @@ async function oneRound(
   device: Device,
   { body, items, verdicts, ...judgedBy }: Round,
 ): Promise<NeedsPin | Pulled> {
+  // The history is remembered by the database, and read by the transaction alone.
+  const { db: memory } = app;
   const { found, folds, result } = await app.db.transaction().execute(async (trx) => {
     // A write first, so that the transaction holds the write lock from its beginning.
     await noteHeardFrom(trx, device.id, app.clock);
-    const history = await readWorkshopHistory(app.db, trx);
+    const history = await readWorkshopHistory(memory, trx);
     const rest = items.filter(({ index }) => !verdicts.has(index));
     const receivedAt = stamp(app.clock);
     const batch = await beginBatch({ app, trx, history, device, receivedAt, ...judgedBy }, rest);
