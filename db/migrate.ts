@@ -3,6 +3,7 @@ import * as signIn from './migrations/0001-sign-in';
 import * as workshop from './migrations/0002-workshop';
 import * as jobs from './migrations/0003-jobs';
 import * as headsAndPhotos from './migrations/0004-heads-photos';
+import * as mail from './migrations/0005-mail';
 
 /** Frozen once merged: a change to the tables is a new file here, never an edit of an old one. */
 const migrations = {
@@ -10,6 +11,7 @@ const migrations = {
   '0002-workshop': workshop,
   '0003-jobs': jobs,
   '0004-heads-photos': headsAndPhotos,
+  '0005-mail': mail,
 };
 
 const provider: MigrationProvider = { getMigrations: () => Promise.resolve(migrations) };

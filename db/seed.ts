@@ -8,6 +8,7 @@ import { addFirstOwner, addPerson, hasPeople } from '@/server/people';
 import { hashNewPin, storePin } from '@/server/pins';
 import { addTool, type NewTool, recordCalibration } from '@/server/tools';
 import { releaseShippedIfNone } from '@/server/released-documents';
+import { setWitnessAddress } from '@/server/head-mail';
 import { setWorkshop } from '@/server/workshop';
 import { DEMO_DAYS, seedClock, seedDemoJobs } from './seed-jobs';
 
@@ -37,6 +38,8 @@ export const demoSignIns: readonly [DemoSignIn, ...DemoSignIn[]] = [
   demoPerson('Selma Quist', 'auditor', '917350', ['auditor']),
 ];
 
+/** Signed heads of the demo are mailed here; without a mail service the letters stay on this machine. */
+const WITNESS_ADDRESS = 'heads@notary.example';
 const WORKSHOP = { name: 'Lantern Yard Engines', zone: 'Europe/London' };
 
 interface DemoTool {
@@ -113,6 +116,7 @@ async function seedWorkshop(app: App, past: App): Promise<boolean> {
     if (first === undefined || (await hasPeople(trx))) return false;
     const owner = await addFirstOwner(trx, first, past);
     await setWorkshop(trx, owner, WORKSHOP, past);
+    await setWitnessAddress(trx, owner, WITNESS_ADDRESS, past);
     for (const person of others) {
       const id = await addPerson(trx, owner, person, past);
       const actor: Actor = { personId: id, name: person.name, roles: person.roles, sessionId: undefined };

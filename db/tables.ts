@@ -34,6 +34,7 @@ export interface Database {
   refused_entry: RefusedEntryTable;
   job_fold: JobFoldTable;
   photo: PhotoTable;
+  mail: MailTable;
 }
 
 export interface UserTable {
@@ -303,4 +304,21 @@ export type DeviceRow = Selectable<DeviceTable>;
 export type ToolRow = Selectable<ToolTable>;
 export type CalibrationRow = Selectable<CalibrationTable>;
 export type SigningPinRow = Selectable<SigningPinTable>;
+export interface MailTable {
+  id: Fixed<string>;
+  job_id: Fixed<string | null>;
+  purpose: Fixed<'head to witness' | 'heads of the day' | 'handover to customer' | 'trial'>;
+  address: Fixed<string>;
+  subject: Fixed<string>;
+  body: Fixed<string>;
+  made_at: Fixed<string>;
+  state: 'waiting' | 'sent' | 'failed';
+  attempts: number;
+  next_at: string;
+  sent_at: string | null;
+  via: 'service' | 'here' | null;
+  trouble: string | null;
+}
+
+export type MailRow = Selectable<MailTable>;
 export type NewJobEntryRow = Insertable<JobEntryTable>;

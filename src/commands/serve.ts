@@ -2,8 +2,11 @@ import { once } from 'node:events';
 import type { Server } from 'node:http';
 import path from 'node:path';
 import { pathToFileURL } from 'node:url';
-import { closeApp } from '@/server/compose';
+import { type App, closeApp } from '@/server/compose';
 import { keepHeadsSigned } from '@/server/daily-heads';
+import { startLocalMail } from '@/server/local-mail';
+import { serviceMailer } from '@/server/mail';
+import { keepMailSent } from '@/server/mail-queue';
 import { readSettings, SettingsError, type Settings } from '@/server/settings';
 import { greeting } from './greeting';
 import { createHttpServer, type PageHandler } from './http/http-server';
@@ -25,6 +28,7 @@ export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void>
   const built = path.join(root, 'dist');
   const app = await prepareApp(settings);
   const stopSigningHeads = keepHeadsSigned(app);
+  const mail = await startMail(app, settings);
   try {
     const entry = pathToFileURL(path.join(built, 'server', 'entry.mjs')).href;
     const { handler } = (await import(/* @vite-ignore */ entry)) as { handler: PageHandler };
@@ -36,8 +40,22 @@ export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void>
     await drain(server);
   } finally {
     await stopSigningHeads();
+    await mail.stop();
     await closeApp(app);
   }
+}
+
+/** Sends through the mail service, or to its fake on this machine where none is set. */
+async function startMail(app: App, settings: Settings): Promise<{ stop: () => Promise<void> }> {
+  if (settings.mail !== undefined) return { stop: keepMailSent(app, serviceMailer(settings.mail, 'service')) };
+  const local = await startLocalMail();
+  const stopSending = keepMailSent(app, serviceMailer(local, 'here'));
+  return {
+    stop: async () => {
+      await stopSending();
+      await local.stop();
+    },
+  };
 }
 
 async function listen(server: Server, settings: Settings): Promise<void> {

@@ -3,6 +3,7 @@ import { MINUTE } from './clock';
 import type { App } from './compose';
 import type { Db } from './database';
 import { signDueHeads } from './due-heads';
+import { queueDayMail } from './head-mail';
 import { signHead, WORKSHOP_TRAIL } from './signed-heads';
 import { getWorkshopDetails } from './workshop';
 
@@ -21,7 +22,12 @@ export async function signDailyHeads(app: App): Promise<number> {
   const jobs = await signEach(app, await listGrownJobs(app.db));
   // Last: a head of a job is told of in the workshop's trail, which grew by it.
   const own = await signEach(app, await listGrownWorkshop(app.db));
-  if (jobs.failed + own.failed === 0) await storeSignedOn(app.db, today);
+  if (jobs.failed + own.failed === 0) {
+    await app.db.transaction().execute(async (trx) => {
+      await queueDayMail(trx, app);
+      await storeSignedOn(trx, today);
+    });
+  }
   return jobs.signed + own.signed;
 }
 

@@ -3,6 +3,7 @@ import type { Recorded } from '@/domain/entry';
 import { parseKnownRoles } from './actor';
 import type { App } from './compose';
 import type { Db, Trx } from './database';
+import { queueHeadMail } from './head-mail';
 import { getPlan } from './plans';
 import { signHeadAt } from './signed-heads';
 
@@ -38,7 +39,8 @@ async function signDue(trx: Trx, { job, seq, hash, recorded }: Due, app: App): P
   const { by, author } = recorded;
   const roles = parseKnownRoles(author.roles);
   const signer = { personId: by, name: author.name, roles, sessionId: undefined };
-  await signHeadAt(trx, signer, { trail: job, seq, hash }, app);
+  const head = await signHeadAt(trx, signer, { trail: job, seq, hash }, app);
+  await queueHeadMail(trx, { head, job, ...(await milestoneOf(trx, recorded)) }, app);
 }
 
 /** Signatures and handovers past the last signed head of their job. */
@@ -74,4 +76,14 @@ async function findDue(db: Db, jobs: readonly string[] | undefined): Promise<Due
 async function isMilestone(db: Db, { kind, plan, step }: Recorded): Promise<boolean> {
   if (kind === 'handed-over') return true;
   return step !== undefined && findStep(await getPlan(db, plan), step)?.class === 'A';
+}
+
+async function milestoneOf(
+  db: Db,
+  { kind, plan, step }: Recorded,
+): Promise<{ reached: string; isHandover: boolean }> {
+  if (kind === 'handed-over') return { reached: 'the handover', isHandover: true };
+  const title = step === undefined ? undefined : findStep(await getPlan(db, plan), step)?.title;
+  const words = title === undefined ? 'a hold point' : `${title.charAt(0).toLowerCase()}${title.slice(1)}`;
+  return { reached: words, isHandover: false };
 }

@@ -15,6 +15,17 @@ export interface Settings {
   demo: boolean;
   /** The reverse proxies whose word about the client's address is taken. */
   trustedProxies: BlockList;
+  /** The mail service; without one mail stays on this machine. */
+  mail: MailSettings | undefined;
+}
+
+/** How the mail service is reached. */
+export interface MailSettings {
+  apiKey: string;
+  /** The sender, as `Workshop <record@workshop.example>`. */
+  from: string;
+  /** Another address of the service than its usual one. */
+  baseUrl: string | undefined;
 }
 
 /** A setting that cannot be used; its message says what to set. */
@@ -40,6 +51,7 @@ export function readSettings(env: Readonly<Record<string, string | undefined>>, 
     dataDir: path.resolve(root, env.DATA_DIR?.trim() || 'data'),
     demo: readDemo(env.DEMO, publicUrl),
     trustedProxies: readTrustedProxies(env.TRUST_PROXY),
+    mail: readMail(env),
   };
 }
 
@@ -95,6 +107,25 @@ function readDemo(text: string | undefined, publicUrl: URL): boolean {
     default:
       throw new SettingsError(`DEMO is "${text}". Set it to "on" or "off", or leave it out.`);
   }
+}
+
+function readMail(env: Readonly<Record<string, string | undefined>>): MailSettings | undefined {
+  const [apiKey, from, baseUrl] = [env.MAIL_API_KEY, env.MAIL_FROM, env.MAIL_BASE_URL].map((text) =>
+    text?.trim(),
+  );
+  if (!apiKey && !from) return undefined;
+  if (!apiKey) {
+    throw new SettingsError('MAIL_FROM is set without MAIL_API_KEY. Set both, or neither to send no mail.');
+  }
+  if (!from || !/^[^<>@\s]+@[^<>@\s]+$|^[^<>]+<[^<>@\s]+@[^<>@\s]+>$/.test(from)) {
+    throw new SettingsError(
+      `MAIL_FROM is "${from ?? ''}". Set it to the sender, for example Workshop <record@workshop.example>.`,
+    );
+  }
+  if (baseUrl && !URL.canParse(baseUrl)) {
+    throw new SettingsError(`MAIL_BASE_URL is "${baseUrl}", which is no address. Leave it out if in doubt.`);
+  }
+  return { apiKey, from, baseUrl: baseUrl || undefined };
 }
 
 function readTrustedProxies(text: string | undefined): BlockList {

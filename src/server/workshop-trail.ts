@@ -18,6 +18,7 @@ export type EntryData =
 
 export const WORKSHOP_KINDS = [
   'workshop-set',
+  'witness-address-changed',
   'person-added',
   'person-renamed',
   'roles-changed',

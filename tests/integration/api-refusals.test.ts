@@ -308,6 +308,7 @@ describe('every list of the API', { timeout: 60_000 }, () => {
       'GET /api/jobs',
       'GET /api/jobs/{id}/set-aside',
       'GET /api/keys',
+      'GET /api/mail',
       'GET /api/people',
       'GET /api/tools',
     ]);

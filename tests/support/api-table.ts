@@ -175,6 +175,11 @@ export async function openTable(): Promise<Table> {
     'GET /api/workshop': {},
     'PUT /api/workshop': { body: workshop },
     'GET /api/workshop/trail': {},
+    'GET /api/workshop/witness': {},
+    'PUT /api/workshop/witness': { body: { address: 'witness@witness.example' } },
+    // Refused until an address was chosen.
+    'POST /api/workshop/witness': { body: {} },
+    'GET /api/mail': {},
   };
   return { shop, tablet, job, sent };
 }

@@ -307,6 +307,6 @@ export function setClocks(tablet: TestTablet): void {
 }
 
 /** The rows of a job's trail, in order. */
-export async function trailOf(app: TestApp, job: string) {
+export async function trailOf(app: Pick<TestApp, 'db'>, job: string) {
   return app.db.selectFrom('job_entry').selectAll().where('job_id', '=', job).orderBy('seq').execute();
 }
