@@ -178,6 +178,19 @@ describe('the Host header', () => {
   });
 });
 
+describe('a method that no address takes', () => {
+  it('is answered 405 as JSON, and nothing behind is asked', async () => {
+    for (const method of ['TRACE', 'PROPFIND', 'PURGE']) {
+      for (const url of ['/api/me', '/floor', '/sw.js']) {
+        const { status, headers, text } = await ask(url, { method });
+        expect(status, `${method} ${url}`).toBe(405);
+        expect(headers.allow).toBe('GET, HEAD, POST, PUT, PATCH, DELETE, OPTIONS');
+        expect(JSON.parse(text)).toMatchObject({ error: { code: 'wrong-method' } });
+      }
+    }
+  });
+});
+
 describe('forwarded headers', () => {
   const claims = {
     forwarded: 'for=192.0.2.1',

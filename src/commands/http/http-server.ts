@@ -9,6 +9,8 @@ import { addSecurityHeaders } from './response-headers';
 import { serveNotFound, serveStatic, type StaticFiles } from './static-files';
 
 const FORWARDED_HEADERS = ['forwarded', 'x-real-ip', CLIENT_ADDRESS_HEADER];
+/** What any address may take; which of them one does take is said where it is answered. */
+const METHODS = ['GET', 'HEAD', 'POST', 'PUT', 'PATCH', 'DELETE', 'OPTIONS'];
 const MINUTE = 60_000;
 /** How long the rest of an oversized body is read and thrown away, so that the answer can be read first. */
 const DISCARD_MS = 2_000;
@@ -55,6 +57,16 @@ async function answer(doorway: Doorway, request: IncomingMessage, response: Serv
 
   if (!isAllowedHost(request.headers.host, settings.publicUrl, settings.port)) {
     sendError(response, 421, 'foreign-host', `This server answers at ${settings.publicUrl} only.`);
+    return;
+  }
+  if (!METHODS.includes(request.method ?? '')) {
+    response.setHeader('allow', METHODS.join(', '));
+    sendError(
+      response,
+      405,
+      'wrong-method',
+      `This server does not take ${request.method}. Nothing was changed.`,
+    );
     return;
   }
   const pathname = pathOf(request.url);
