@@ -52,18 +52,17 @@ function Running({ view, workshop, person }: { view: JobView; workshop: Workshop
   useWakeLock();
   useMainKeys(sheet === undefined);
   useLaterScreens();
-  if (mustTakeOver(view.state, person.id)) {
-    return (
-      <RunContext value={run}>
+  return (
+    <RunContext value={run}>
+      {mustTakeOver(view.state, person.id) ? (
         <Suspense fallback={<Opening />}>
           <TakeOverScreen />
         </Suspense>
-      </RunContext>
-    );
-  }
-  return (
-    <RunContext value={run}>
-      {step ? <StepScreen key={step.id} step={step} /> : <NothingToDo />}
+      ) : step ? (
+        <StepScreen key={step.id} step={step} />
+      ) : (
+        <NothingToDo />
+      )}
       {sheet !== undefined && (
         <Suspense fallback={null}>
           <RunSheets name={sheet} step={step} onClose={() => setSheet(undefined)} />

@@ -46,7 +46,7 @@ export function StartScreen() {
         note: person ? person.roles.join(', ') : signedIn.length === 0 ? 'sign in first' : 'touch your name',
       }}
     >
-      <div className="mx-auto grid max-w-5xl gap-6 pb-6">
+      <div className="mx-auto grid max-w-5xl gap-6">
         {!needsSignIn && !needsName && <h1 className="unseen">The Floor</h1>}
         {trouble !== undefined && <Notice tone="stop" title={trouble} isAlert />}
         {needsSignIn && (

@@ -1,12 +1,14 @@
 import { useState } from 'react';
 import { FloorFrame } from '@/components/FloorFrame';
 import { MainAction } from '@/components/MainAction';
+import { Notice } from '@/components/Notice';
 import { PinPad } from '@/components/PinPad';
 import { QuietButton } from '@/components/QuietButton';
 import { findKept } from '@/domain/job';
 import { dayAndTime } from '@/domain/time-words';
 import { capInHand, capWords } from './cap-in-hand';
 import { dataOf, doneWords } from './done-words';
+import { afterRefusal } from './refused-words';
 import { useRun } from './run-context';
 import { needsPin } from './shift';
 import { SheetRefusal } from './sheets/SheetRefusal';
@@ -21,6 +23,9 @@ export function TakeOverScreen() {
   const asksPin = needsPin(run.state, run.person.id, run.now());
   const last = lastEntry === undefined ? undefined : findKept(run.state, lastEntry);
   const cap = capInHand(run.state);
+  const refused = run.refused.findLast(
+    ({ entry }) => entry.kind === 'took-over' && entry.by === run.person.id,
+  );
   const note = last?.kind === 'took-over' ? dataOf(last, 'took-over').note : undefined;
   async function takeOver() {
     await run.record([
@@ -52,6 +57,11 @@ export function TakeOverScreen() {
         <div className="grid gap-5">
           <h1 className="floor-step">Take over from {working?.name ?? 'whoever worked last'}</h1>
           {run.refusal && <SheetRefusal {...run.refusal} />}
+          {refused && (
+            <Notice tone="stop" title="Your last take-over was refused">
+              {refused.reason} {afterRefusal(refused)}
+            </Notice>
+          )}
           {last && lastAt !== undefined && (
             <p className="floor-then">
               Last, {dayAndTime(lastAt, run.workshop.zone)}: {doneWords(last, plan)}

@@ -9,7 +9,7 @@ describe('what comes after a refusal', () => {
 
   it('is another change of person where that carried the wrong PIN', () => {
     expect(afterRefusal({ code: 'pin-wrong', entry: { kind: 'took-over' } })).toMatch(
-      /Change who is working/,
+      /Take the job over again/,
     );
   });
 

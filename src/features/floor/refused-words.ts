@@ -22,6 +22,6 @@ const NEXT: Record<string, string> = {
 /** What the author of a refused record does next, in words. */
 export function afterRefusal({ code, entry }: { code: string; entry: Pick<Entry, 'kind'> }): string {
   if (entry.kind === 'took-over' && code.startsWith('pin-'))
-    return 'Change who is working again, with the right PIN.';
+    return 'Take the job over again, with the right PIN.';
   return NEXT[code] ?? 'If it was really done, raise a deviation and say so; if unsure, ask the supervisor.';
 }

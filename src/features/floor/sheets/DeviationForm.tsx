@@ -92,7 +92,7 @@ export function DeviationForm({ step, onClose }: { step: PlanStep | undefined; o
             label="And the work"
             columns={2}
             choices={[
-              { value: 'blocks', label: 'waits', note: 'until a supervisor disposes of it' },
+              { value: 'blocks', label: 'waits', note: 'for its disposition' },
               { value: 'remark', label: 'goes on', note: 'a remark' },
             ]}
             value={blocks ? 'blocks' : 'remark'}

@@ -40,7 +40,7 @@ export function SyncSheet({ step, status, hasUpdate, onUpdate, onClose }: SyncSh
   }
   return (
     <Sheet title="Where the records are" onClose={onClose}>
-      <div className="grid items-start gap-x-10 gap-y-6 @4xl/sheet:grid-cols-2">
+      <div className="grid items-start gap-x-10 gap-y-6 @4xl/sheet:grid-cols-[2fr_3fr]">
         <div className="grid gap-6">
           <section className="grid gap-2 text-lg">
             <div className="grid gap-2" role="status">

@@ -149,7 +149,7 @@ describe('what the server refused', () => {
     expect(mine.getByText('Look at it as it stands now, and decide again.')).toBeVisible();
     expect(mine.getByText(/T\. Nician, .*; kept here/)).toBeVisible();
     const theirs = within(others!.closest('section')!);
-    expect(theirs.getByText('Change who is working again, with the right PIN.')).toBeVisible();
+    expect(theirs.getByText('Take the job over again, with the right PIN.')).toBeVisible();
   });
 
   it('leads to the step that it was about', async () => {
