@@ -1,4 +1,5 @@
 import { QuietButton } from '@/components/QuietButton';
+import { Sign } from '@/components/Sign';
 import type { JobRow } from '@/offline/database';
 import { dayWords } from '@/domain/time-words';
 
@@ -6,12 +7,14 @@ export interface JobRowsProps {
   jobs: JobRow[];
   working: string | null;
   isOnline: boolean;
+  /** How many records of a job the server refused. */
+  refused?: ReadonlyMap<string, number> | undefined;
   onOpen: (job: string) => void;
   onKeep: (job: string) => void;
 }
 
 /** The jobs as large rows, each with whether it works here without a network. */
-export function JobRows({ jobs, working, isOnline, onOpen, onKeep }: JobRowsProps) {
+export function JobRows({ jobs, working, isOnline, refused, onOpen, onKeep }: JobRowsProps) {
   return (
     <ul className="grid gap-3 pt-4">
       {jobs.map((job) => (
@@ -27,6 +30,7 @@ export function JobRows({ jobs, working, isOnline, onOpen, onKeep }: JobRowsProp
                 Job {job.number}, {job.engine}
               </span>
               <span className="block text-lg text-soft">{jobNote(job, working)}</span>
+              <RefusedWords count={refused?.get(job.id) ?? 0} />
             </span>
             <span className="text-lg font-bold">{placeWords(job, isOnline)}</span>
           </button>
@@ -41,6 +45,16 @@ export function JobRows({ jobs, working, isOnline, onOpen, onKeep }: JobRowsProp
         </li>
       ))}
     </ul>
+  );
+}
+
+function RefusedWords({ count }: { count: number }) {
+  if (count === 0) return null;
+  return (
+    <span className="flex items-center gap-2 text-lg font-bold text-outside">
+      <Sign name="cross" />
+      {count} refused: open it to see why
+    </span>
   );
 }
 

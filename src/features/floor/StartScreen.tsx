@@ -28,6 +28,12 @@ export function StartScreen() {
   const { act, isBusy, trouble } = useServerActs();
   const { offline, working, signedIn, tablet } = floor;
   const update = useUpdate();
+  const { refused } = floor.sync;
+  const { reload } = floor;
+  useEffect(() => {
+    // What the server refuses while this screen stands is told on its job's row.
+    void reload();
+  }, [reload, refused]);
   const isCalm = !isBusy && !isAdding && leaving === undefined;
   useEffect(() => {
     // Nobody is in the middle of anything here.
@@ -194,6 +200,7 @@ function JobList({ floor, isOnline, isBusy, act }: JobListProps) {
           jobs={mineFirst(floor.jobs, working)}
           working={working}
           isOnline={isOnline}
+          refused={floor.refused}
           onOpen={(job) => (location.hash = `job=${job}`)}
           onKeep={(job) => act(() => makeAvailableOffline(offline, job))}
         />

@@ -72,10 +72,19 @@ describe('the jobs of a tablet', () => {
     revision: 0,
   };
 
-  function show(jobs: JobRow[], isOnline: boolean) {
+  function show(jobs: JobRow[], isOnline: boolean, refused = new Map<string, number>()) {
     const onOpen = vi.fn();
     const onKeep = vi.fn();
-    render(<JobRows jobs={jobs} working="tech" isOnline={isOnline} onOpen={onOpen} onKeep={onKeep} />);
+    render(
+      <JobRows
+        jobs={jobs}
+        working="tech"
+        isOnline={isOnline}
+        refused={refused}
+        onOpen={onOpen}
+        onKeep={onKeep}
+      />,
+    );
     return {
       onOpen,
       onKeep,
@@ -107,6 +116,11 @@ describe('the jobs of a tablet', () => {
     const { user, onKeep } = show([{ ...row, availableOffline: false }], true);
     await user.click(screen.getByRole('button', { name: 'Make available offline' }));
     expect(onKeep).toHaveBeenCalledWith('j1');
+  });
+
+  it('say that something of theirs was refused', () => {
+    const { job } = show([row], true, new Map([['j1', 2]]));
+    expect(job).toHaveTextContent('2 refused: open it to see why');
   });
 
   it('say why nothing more can be recorded on them', () => {

@@ -33,6 +33,8 @@ export interface FloorState {
   signedIn: SignedInPerson[];
   working: string | null;
   jobs: JobRow[];
+  /** How many records of each job the server refused. */
+  refused: ReadonlyMap<string, number>;
   sync: SyncStatus;
   jobId: string | null;
   view?: JobView | undefined;
@@ -79,6 +81,7 @@ export function createFloorStore(offline: Offline): FloorStore {
       signedIn: [],
       working: null,
       jobs: [],
+      refused: new Map(),
       sync: offline.sync.status(),
       jobId: null,
       place: NOWHERE,
@@ -126,14 +129,21 @@ export function createFloorStore(offline: Offline): FloorStore {
 }
 
 async function reload(offline: Offline, set: Set): Promise<void> {
-  const [tablet, workshop, signedIn, working, jobs] = await Promise.all([
+  const [tablet, workshop, signedIn, working, jobs, refused] = await Promise.all([
     readTablet(offline),
     offline.db.workshop.get('workshop'),
     listSignedIn(offline),
     whoIsWorking(offline),
     listJobs(offline),
+    countRefused(offline),
   ]);
-  set({ tablet, workshop, signedIn, working, jobs, isReady: true });
+  set({ tablet, workshop, signedIn, working, jobs, refused, isReady: true });
+}
+
+async function countRefused({ db }: Offline): Promise<Map<string, number>> {
+  const counts = new Map<string, number>();
+  for (const { job } of await db.refused.toArray()) counts.set(job, (counts.get(job) ?? 0) + 1);
+  return counts;
 }
 
 async function openJob(offline: Offline, job: string, set: Set, get: Get): Promise<void> {
