@@ -10,11 +10,17 @@ import { readTrail } from '../support/e2e-trail';
 import { FloorDriver } from './floor-driver';
 import { openOnFloor, sendAll } from './on-floor';
 
+const SECOND = 1000;
+
 const ines = demoPerson('ines');
+const bram = demoPerson('bram');
 
 /** The final fit of the first cap in the order of the loop. */
 const firstFinalFit = ({ plan }: { plan: SeededJob['plan'] }): string | undefined =>
   plan.steps.find(({ id }) => id.startsWith('torque-angle.tighten'))?.id;
+
+/** Both torque passes of both bolts, which are one touch. */
+const BOTH_PASSES = 'Both at 8, then 25 N·m';
 
 const until = (plan: SeededJob['plan']) => firstFinalFit({ plan });
 
@@ -45,8 +51,12 @@ test('a reload in the middle of a cap asks whether the bolt was turned, and take
     await comeBack(page);
     await expectQuestion(page, '3B', 'Cycle 1 of 3, the angle pass');
     await floor.answer('Not sure');
-    await floor.runUntil(({ main }) => main === 'Both at 8 N·m');
-    await expectAction(page, '3A 3B tighten to 8 N·m', 'Cycle 1 of 3, the 8 N·m pass');
+    await floor.runUntil(({ main }) => main === BOTH_PASSES);
+    await expectAction(
+      page,
+      '3A 3B tighten to 8 N·m, then to 25 N·m',
+      'Cycle 1 of 3, the passes to 8 and 25 N·m',
+    );
     await sendAll(page);
     const started = readTrail(app, job.id).filter(({ kind }) => kind === 'started-again');
     expect(started.map(({ body }) => body.data.bolts)).toEqual([['3A', '3B']]);
@@ -57,6 +67,56 @@ test('a reload in the middle of a cap asks whether the bolt was turned, and take
     const step = firstFinalFit(job);
     return readTrail(app, job.id).filter((row) => row.kind === 'tightened' && row.step === step).length;
   }
+});
+
+test('another tool or another person within a cap asks whether the bolt was turned', async ({
+  app,
+  page,
+  browser,
+  viewport,
+}) => {
+  const job = await seedJob(app, { until, people: [ines, bram] });
+  await signInOnFirstScreen(page);
+  const floor = new FloorDriver(page, picture);
+  await openOnFloor(page, job.number);
+  await floor.runUntil(({ main }) => main === 'Turned 110°');
+  const sheet = page.getByRole('dialog');
+
+  await test.step('another torque wrench', async () => {
+    await page.getByRole('button', { name: 'Problem' }).tap();
+    await sheet.getByRole('button', { name: 'Another torque wrench' }).tap();
+    await sheet.getByRole('radio', { name: /20 to 100/ }).tap({ force: true });
+    await sheet.getByRole('button', { name: 'It is in my hand' }).tap();
+    await expectQuestion(page, '3A', 'Cycle 1 of 3, the angle pass');
+    // The touch that took the tool is over by then.
+    await floor.passTime(SECOND);
+    await floor.answer('Yes');
+    await expectAction(page, '3B turn through 110°', 'Cycle 1 of 3, the angle pass');
+  });
+  await test.step('the same one again asks nothing', async () => {
+    await page.getByRole('button', { name: 'Problem' }).tap();
+    await sheet.getByRole('button', { name: 'Another torque wrench' }).tap();
+    await sheet.getByRole('radio', { name: /20 to 100/ }).tap({ force: true });
+    await sheet.getByRole('button', { name: 'It is in my hand' }).tap();
+    await expect(sheet).toHaveCount(0);
+    await expectAction(page, '3B turn through 110°', 'Cycle 1 of 3, the angle pass');
+  });
+  await test.step('another person, at another tablet', async () => {
+    await sendAll(page);
+    const context = await browser.newContext({ viewport, hasTouch: true, baseURL: app.url });
+    const second = await context.newPage();
+    await second.goto('/floor');
+    await islandsReady(second);
+    await signInOnFloor(second, bram, { tablet: 'Bay 2' });
+    await openOnFloor(second, job.number);
+    await expect(second.getByRole('heading', { name: `Take over from ${ines.name}` })).toBeVisible();
+    for (const digit of bram.pin) await second.getByRole('button', { name: digit, exact: true }).tap();
+    await second.getByRole('button', { name: 'Take the job over' }).tap();
+    await expectQuestion(second, '3B', 'Cycle 1 of 3, the angle pass');
+    await second.getByRole('button', { name: 'No', exact: true }).tap();
+    await expectAction(second, '3B turn through 110°', 'Cycle 1 of 3, the angle pass');
+    await context.close();
+  });
 });
 
 test('a browser that is killed loses no entry whose screen had moved on, and comes back to the same pass', async ({
@@ -73,10 +133,9 @@ test('a browser that is killed loses no entry whose screen had moved on, and com
     await signInOnFirstScreen(page);
     const floor = new FloorDriver(page, picture);
     await openOnFloor(page, job.number);
-    await floor.runUntil(({ main }) => main === 'Both at 8 N·m');
+    await floor.runUntil(({ main }) => main === BOTH_PASSES);
     await first.setOffline(true);
-    await floor.runUntil(({ done, main }) => done.includes('released') && main === 'Both at 8 N·m');
-    await floor.press(await floor.look());
+    await floor.runUntil(({ done, main }) => done.includes('released') && main === BOTH_PASSES);
     await floor.press(await floor.look());
     await expectAction(page, '3A turn through 110°', 'Cycle 2 of 3, the angle pass');
     await floor.touch(floor.bottom('Turned 110°'));
