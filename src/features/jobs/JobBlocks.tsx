@@ -46,11 +46,11 @@ export function JobBlocks({ state, zone, waiting, missingPhotographs }: JobBlock
   return (
     <section className="part">
       <h2 className="part-title">What blocks it</h2>
-      {things.length === 0 ? <p>Nothing blocks it.</p> : <BlockList things={things} />}
+      {things.length === 0 ? <p>{nothingWords(state)}</p> : <BlockList things={things} />}
       {awaited.length > 0 && (
         <p className="mt-2 text-soft">
           Is a photograph lost? Take it again at its step on the Floor, or raise a deviation that names it (
-          <span className="figure">{awaited[0]?.name}</span>) and have it disposed of.
+          <b>{awaited[0]?.name}</b>) and have it disposed of.
         </p>
       )}
       {state.open.length > 0 && (
@@ -65,6 +65,11 @@ export function JobBlocks({ state, zone, waiting, missingPhotographs }: JobBlock
       )}
     </section>
   );
+}
+
+function nothingWords(state: JobState): string {
+  if (isOver(state)) return 'Nothing: the job is over.';
+  return state.phase === 'parked' ? 'Only that it is parked.' : 'Nothing blocks it.';
 }
 
 function isOver({ phase }: JobState): boolean {

@@ -206,8 +206,28 @@ describe('the page of a job', () => {
   });
 
   it('says that the engine of a job ended unfinished is not to be run', async () => {
-    await show(answerOf(new Journal(smallPlan()), { phase: 'ended unfinished', state: 'ended' }));
+    const journal = new Journal(smallPlan());
+    const data = { reason: 'the block is cracked', open: ['sump'], notToBeRun: true } as const;
+    journal.record('ended-unfinished', data, { by: 'sup' });
+    await show(answerOf(journal, { phase: 'ended unfinished', state: 'ended' }));
     expect(screen.getByText('Ended unfinished. The engine is not to be run.')).toBeVisible();
+    expect(screen.getByText(/^the block is cracked. Ended by S. Visor, 2 Jun, /)).toBeVisible();
+    expect(screen.getByText('Left open: sump.')).toBeVisible();
+    expect(part('What blocks it').getByText('Nothing: the job is over.')).toBeVisible();
+  });
+
+  it('says of a parked job who made it safe, when and why, and how it goes on', async () => {
+    const plan = smallPlan();
+    const safe = plan.steps.find(({ kind }) => kind === 'make-safe');
+    if (safe?.kind !== 'make-safe') throw new Error('the small job can be parked');
+    const journal = new Journal(plan);
+    const checks = safe.checks.map(({ id }) => ({ id, ok: true }));
+    journal.record('parked', { checks, note: 'waits for shells' }, { step: safe.id });
+    await show(answerOf(journal, { state: 'parked' }));
+    expect(screen.getByText(/^Parked, made safe by T. Nician, 2 Jun, /)).toBeVisible();
+    expect(screen.getByText('waits for shells')).toBeVisible();
+    expect(screen.getByText(/^It is resumed on the Floor/)).toBeVisible();
+    expect(part('What blocks it').getByText('Only that it is parked.')).toBeVisible();
   });
 
   it('says what the server said when the job does not come', async () => {

@@ -13,6 +13,7 @@ import { JobPhotos } from './JobPhotos';
 import { JobProgress } from './JobProgress';
 import { JobSetAside } from './JobSetAside';
 import { JobSignatures } from './JobSignatures';
+import { JobStanding } from './JobStanding';
 import { jobAnswer, type JobAnswer } from './job-answer';
 import { newQueryClient, useServer } from '@/offline/use-server';
 
@@ -73,6 +74,7 @@ function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & {
         </div>
       </div>
       <JobHeadFacts job={answer} zone={zone} />
+      <JobStanding state={jobState} zone={zone} />
       <JobProgress
         progress={answer.progress}
         phase={answer.phase}

@@ -28,9 +28,7 @@ export function JobProgress({ progress, phase, at, hasNext }: JobProgressProps) 
 
 function standingWords(phase: string, hasNext: boolean): string | undefined {
   if (phase === 'running') return hasNext ? undefined : 'Nothing can be done just now: see what blocks it.';
-  if (phase === 'parked') return 'Parked, made safe. It is resumed on the Floor.';
-  if (phase === 'handed over') return 'Handed over.';
-  return phase === 'ended unfinished' ? 'Ended unfinished. The engine is not to be run.' : undefined;
+  return phase === 'handed over' ? 'Handed over.' : undefined;
 }
 
 function stateOf(

@@ -38,7 +38,7 @@ export function Tablets({ zone }: { zone: string }) {
           isSoft: state === 'lost',
           cells: {
             name,
-            id: <span className="figure">{id.slice(0, 8)}</span>,
+            id: <span className="figure">{id.slice(-8)}</span>,
             enrolled: dayAndTime(enrolledAt, zone),
             heard: lastHeardAt === null ? 'never' : dayAndTime(lastHeardAt, zone),
             state,
