@@ -121,6 +121,11 @@ export interface RefusedRow {
   code: string;
   reason: string;
   refusedAt: string;
+  /**
+   * The `seq` of the trail's entry that tells of it. Null where the trail to its end does not: the server was
+   * restored to a time before, and has to hear of it again.
+   */
+  inTrail?: number | null | undefined;
 }
 
 /** Confirmed entries as they stood before the server was restored from a backup. */

@@ -155,6 +155,59 @@ describe('a server restored from a backup', () => {
     expect((await offline.db.setAside.toArray()).map(({ row }) => row.id)).toContain(last.id);
   });
 
+  it('hears again of what it refused, and then takes what waits behind it', async () => {
+    const backup = server.backup();
+    server.judge = () => ({ verdict: 'refused', code: 'overtaken', reason: 'Somebody was quicker.' });
+    const [refused] = await remarks({ from: 1, count: 1 });
+    must(await offline.sync.now());
+    server.judge = () => undefined;
+    const made = await remarks({ from: 2, count: 2 });
+    must(await offline.sync.now());
+    server.restore(backup);
+    must(await offline.sync.now());
+    expect(idsFromTablets(server, job)).toEqual(made.map(({ id }) => id));
+    expect(Object.keys(server.jobs.get(job)!.refused)).toEqual([refused!.id]);
+    expect(await offline.db.refused.toArray()).toMatchObject([{ id: refused!.id, code: 'overtaken' }]);
+    expect(await offline.db.outbox.count()).toBe(0);
+  });
+
+  it('hears again of what it refused last, although the tablet is ahead in nothing', async () => {
+    await remarks({ from: 1, count: 1 });
+    must(await offline.sync.now());
+    const backup = server.backup();
+    server.judge = () => ({ verdict: 'refused', code: 'overtaken', reason: 'Somebody was quicker.' });
+    server.lostReplies = 1;
+    const [refused] = await remarks({ from: 2, count: 1 });
+    expect(await offline.sync.now()).toMatchObject({ ok: false });
+    // The tablet hears the verdict, and the answer brings no more than that.
+    server.onAnswer = withRows(() => []);
+    must(await offline.sync.now());
+    server.onAnswer = (_path, answer) => answer;
+    server.restore(backup);
+    server.judge = () => undefined;
+    must(await offline.sync.now());
+    must(await offline.sync.now());
+    expect(Object.keys(server.jobs.get(job)!.refused)).toEqual([refused!.id]);
+    const made = await remarks({ from: 3, count: 1 });
+    must(await offline.sync.now());
+    expect(idsFromTablets(server, job)).toContain(made[0]!.id);
+  });
+
+  it('has the last word on what this tablet had as refused', async () => {
+    server.judge = () => ({ verdict: 'refused', code: 'overtaken', reason: 'Somebody was quicker.' });
+    const [made] = await remarks({ from: 1, count: 1 });
+    const backup = server.backup();
+    const [pushed] = await offline.db.outbox.toArray();
+    must(await offline.sync.now());
+    server.restore(backup);
+    server.judge = () => undefined;
+    const { entry, signature, key } = pushed!;
+    await server.receive({ entry, signature, key });
+    must(await offline.sync.now());
+    expect(await offline.db.refused.count()).toBe(0);
+    expect(await offline.db.entries.where('id').equals(made!.id).count()).toBe(1);
+  });
+
   it('gets photographs back too', async () => {
     const photo = picture('arrival');
     const backup = server.backup();

@@ -40,14 +40,19 @@ async function takePage(
   answer: JobAnswer,
 ): Promise<boolean> {
   const page = readPage(asked.id, asked.have, answer.entries);
-  return db.transaction('rw', [db.jobs, db.entries, db.outbox, db.counters, db.meta], async () => {
+  const tables = [db.jobs, db.entries, db.outbox, db.refused, db.counters, db.meta];
+  return db.transaction('rw', tables, async () => {
     const row = await db.jobs.get(asked.id);
     // Another tab was quicker: its page is already here, and this one starts from an older place.
     if (!row || row.have?.seq !== asked.have?.seq || row.have?.hash !== asked.have?.hash) return false;
     const taken = await takeRows(db, page.rows);
+    await dropRecorded(db, asked.id, page.rows.slice(0, taken));
     const stopped = taken === page.rows.length ? page.stopped : OTHER_CONTENT;
     const last = page.rows[taken - 1];
-    if (!answer.more && !stopped) await sendAgain(db, asked.id);
+    if (!answer.more && !stopped) {
+      await sendAgain(db, asked.id);
+      await lookForRefusals(db, asked.id);
+    }
     await noteTaken(db, row, { ...answer, last, plan: planMovedTo(page.rows.slice(0, taken)), stopped });
     return taken > 0;
   });
@@ -79,6 +84,25 @@ async function sendAgain(db: FloorDatabase, job: string): Promise<void> {
   await ofJob(db.outbox, job)
     .filter((row) => row.where === 'sent')
     .modify({ where: 'on this tablet' });
+}
+
+/** After a restore a copy of this tablet may have been quicker, and got another verdict: the trail is right. */
+async function dropRecorded(db: FloorDatabase, job: string, rows: readonly EntryRow[]): Promise<void> {
+  const refused = await db.refused.where('job').equals(job).toArray();
+  for (const { id, contentHash } of refused)
+    if (rows.some((row) => row.id === id && row.contentHash === contentHash)) await db.refused.delete(id);
+}
+
+/** A refusal that the trail to its end does not tell of was lost with a restore, and is told once more. */
+async function lookForRefusals(db: FloorDatabase, job: string): Promise<void> {
+  const refused = await db.refused.where('job').equals(job).toArray();
+  const untold = refused.filter(({ inTrail }) => typeof inTrail !== 'number');
+  if (untold.length === 0) return;
+  const told = new Map<string, number>();
+  await ofJob(db.entries, job).each(({ seq, recorded }) => {
+    if (recorded.kind === 'refused') told.set(recorded.data.content, seq);
+  });
+  for (const row of untold) await db.refused.put({ ...row, inTrail: told.get(row.contentHash) ?? null });
 }
 
 function planMovedTo(rows: readonly EntryRow[]): string | undefined {
@@ -129,7 +153,7 @@ async function takeRestored(
   at: string,
 ): Promise<boolean> {
   const page = readPage(asked.id, null, answer.entries);
-  const tables = [db.jobs, db.entries, db.outbox, db.setAside, db.photos];
+  const tables = [db.jobs, db.entries, db.outbox, db.refused, db.setAside, db.photos];
   return db.transaction('rw', tables, async () => {
     const row = await db.jobs.get(asked.id);
     if (!row || row.have?.hash !== asked.have?.hash) return false;
@@ -139,6 +163,7 @@ async function takeRestored(
     }
     const common = await lastCommon(db, page.rows);
     await putBack(db, row.id, common?.seq ?? 0, at);
+    await forgetTold(db, row.id, common?.seq ?? 0);
     await sendAgain(db, row.id);
     await db.photos.where('job').equals(row.id).modify({ sent: 0 });
     await changeJob(db, row.id, {
@@ -158,6 +183,15 @@ async function lastCommon(db: FloorDatabase, rows: readonly EntryRow[]): Promise
     common = own;
   }
   return common;
+}
+
+/** What the trail told of after the last common entry, it does not tell of any more. */
+async function forgetTold(db: FloorDatabase, job: string, after: number): Promise<void> {
+  await db.refused
+    .where('job')
+    .equals(job)
+    .filter(({ inTrail }) => typeof inTrail !== 'number' || inTrail > after)
+    .modify({ inTrail: null });
 }
 
 async function putBack(db: FloorDatabase, job: string, after: number, at: string): Promise<void> {

@@ -1,25 +1,35 @@
-import { changeJob, ofJob, type FloorDatabase, type OutboxRow } from './database';
+import { changeJob, ofJob, type FloorDatabase, type OutboxRow, type RefusedRow } from './database';
 import type { Verdicts } from './sync-answer';
 
 const MAX_ENTRIES = 200;
 /** The server reads 512 kB; the list of jobs and the brackets need some of it. */
 const MAX_BYTES = 480 * 1024;
 
+/** A record to be sent: one that has no verdict yet, or one whose refusal a restored server has lost. */
+export type Sendable = Pick<OutboxRow, 'job' | 'id' | 'entry' | 'signature' | 'key' | 'sealed'> & {
+  /** Where it is in the outbox. */
+  place?: number | undefined;
+  refused?: Pick<RefusedRow, 'code' | 'reason'> | undefined;
+};
+
 export interface Batch {
-  rows: OutboxRow[];
+  rows: Sendable[];
   /** There is more to send after this batch. */
   more: boolean;
 }
 
 /** The next records to send: each job's in order, none that was tried in this run or has arrived already. */
 export async function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): Promise<Batch> {
-  const jobs = new Set<string>();
+  const lost = await db.refused.filter(({ inTrail }) => inTrail === null).toArray();
+  const jobs = new Set(lost.map(({ job }) => job));
   await db.outbox.toCollection().eachPrimaryKey(([job]) => jobs.add(job));
-  const rows: OutboxRow[] = [];
+  const rows: Sendable[] = [];
   let bytes = 0;
   for (const job of jobs) {
-    for (const row of await ofJob(db.outbox, job).toArray()) {
-      if (row.where === 'sent' || tried.has(row.id)) continue;
+    const refused = lost.filter((row) => row.job === job).map(refusedBefore);
+    const made = await ofJob(db.outbox, job).toArray();
+    for (const row of [...refused, ...made.filter(({ where }) => where !== 'sent')]) {
+      if (tried.has(row.id)) continue;
       bytes += bytesOf(row);
       if (rows.length > 0 && (rows.length === MAX_ENTRIES || bytes > MAX_BYTES)) return { rows, more: true };
       rows.push(row);
@@ -28,12 +38,17 @@ export async function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): 
   return { rows, more: false };
 }
 
-/** A record as the server asks for it. */
-export function toWire({ entry, signature, key, sealed }: OutboxRow) {
-  return { entry, signature, key, ...(sealed ? { sealed } : {}) };
+/** A verdict is final: what was refused is refused again, in the words of then. */
+function refusedBefore({ job, id, entry, signature, key, code, reason }: RefusedRow): Sendable {
+  return { job, id, entry, signature, key, refused: { code, reason } };
 }
 
-function bytesOf(row: OutboxRow): number {
+/** A record as the server asks for it. */
+export function toWire({ entry, signature, key, sealed, refused }: Sendable) {
+  return { entry, signature, key, ...(sealed ? { sealed } : {}), ...(refused ? { refused } : {}) };
+}
+
+function bytesOf(row: Sendable): number {
   return new TextEncoder().encode(JSON.stringify(toWire(row))).length + 1;
 }
 
@@ -43,7 +58,7 @@ function bytesOf(row: OutboxRow): number {
  */
 export async function applyVerdicts(
   db: FloorDatabase,
-  sent: readonly OutboxRow[],
+  sent: readonly Sendable[],
   verdicts: Verdicts,
   at: string,
 ): Promise<void> {
@@ -52,6 +67,8 @@ export async function applyVerdicts(
     const changed = new Set<string>();
     for (const { job, place, id } of sent) {
       const verdict = byId.get(id);
+      // Of what was refused before, the trail says whether it is told of again.
+      if (place === undefined) continue;
       const row = await db.outbox.get([job, place]);
       if (!verdict || row?.id !== id) continue;
       if (await applyVerdict(db, row, verdict, at)) changed.add(job);

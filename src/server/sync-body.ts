@@ -40,6 +40,10 @@ export const carriedSchema = z.strictObject({
       ciphertext: z.string().regex(/^[A-Za-z0-9_-]{20,200}$/),
     })
     .optional(),
+  /** The tablet was told so before the server was restored to an earlier time, and the server lost it. */
+  refused: z
+    .strictObject({ code: z.string().regex(/^[a-z-]{1,60}$/), reason: z.string().min(1).max(1000) })
+    .optional(),
 });
 
 export type Carried = z.infer<typeof carriedSchema>;

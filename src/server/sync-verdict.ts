@@ -70,15 +70,19 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
   const proof = proveAuthor(batch, item, entry);
   if (!proof.ok) return refuse(batch, item, { ...proof, device: ownDevice });
   const { signature, key } = proof;
-  return judgeProved(batch, fold, {
-    ...item,
-    entry,
-    fields,
-    signature,
-    key,
-    isNumberReused: entry.deviceSeq <= heard,
-  });
+  const proved = { ...item, entry, fields, signature, key, isNumberReused: entry.deviceSeq <= heard };
+  const told = item.carried?.refused;
+  return told === undefined
+    ? judgeProved(batch, fold, proved)
+    : setAside(batch, proved, told.code, toldBefore(told.reason));
 }
+
+/** A restore took the refusal back, and a verdict is final: it is given again, and says on whose word. */
+function toldBefore(reason: string): string {
+  return reason.startsWith(TOLD_BEFORE) ? reason : `${TOLD_BEFORE} ${reason}`;
+}
+
+const TOLD_BEFORE = 'Its tablet was told before the server was restored:';
 
 /** A verdict is final for an id: the same entry gets the same answer however often it comes. */
 function finalVerdict(batch: Batch, item: ReadItem): EntryVerdict | undefined {

@@ -1,7 +1,8 @@
 import { beforeEach, describe, expect, it, vi } from 'vitest';
 import { GET as getExport } from '@/pages/api/jobs/[id]/export';
 import { POST as postJobs } from '@/pages/api/jobs/index';
-import { verifyTrail } from '@/domain/trail';
+import type { Entry, Recorded } from '@/domain/entry';
+import { contentOf, verifyTrail } from '@/domain/trail';
 import { nodeChecks } from '@/server/trail-checks';
 import { setWorkshop } from '@/server/workshop';
 import type { ScriptedEntry } from '@db/scripted-work';
@@ -73,6 +74,53 @@ describe('the note of a restore', () => {
     await asksWith(tablet, 50, 'b');
     await asksWith(tablet, 51, 'c');
     expect(await kinds()).toEqual(['opened', 'restored', 'deviation-raised', 'restored']);
+  });
+});
+
+describe('a refusal that a restore took back', () => {
+  const refused = { code: 'overtaken', reason: 'Somebody was quicker.' };
+
+  it('is given again on the word of the tablet that signed the record, and uses its number up', async () => {
+    await raise('one');
+    await raise('two');
+    const [one] = tablet.held(job.id).outbox;
+    Object.assign(one!, { refused });
+    expect(await tablet.sync()).toMatchObject([
+      { verdict: 'refused', code: 'overtaken', reason: expect.stringContaining('Somebody was quicker.') },
+      { verdict: 'recorded' },
+    ]);
+    const again = [{ ...one!, refused: undefined }, one!];
+    for (const entry of again) {
+      const body = { device: tablet.device, sentAt: new Date(tablet.now).toISOString(), jobs: [] };
+      const { verdicts } = await pushTo(tablet.credential, { ...body, entries: [entry] });
+      expect(verdicts).toMatchObject([{ verdict: 'refused', code: 'overtaken' }]);
+    }
+    const kinds = (await trailOf(shop.app, job.id)).map(({ kind }) => kind);
+    expect(kinds).toEqual(['opened', 'refused', 'deviation-raised']);
+    expect(await verify()).toMatchObject({ ok: true });
+  });
+
+  it('counts for nothing on a record that is in the trail, or whose signature is wrong', async () => {
+    await raise('one');
+    await tablet.sync();
+    await raise('two');
+    const [, row] = await trailOf(shop.app, job.id);
+    const entry = contentOf(JSON.parse(row!.body) as Recorded) as Entry;
+    const [two] = tablet.held(job.id).outbox;
+    const signature = row!.signature!;
+    const { verdicts } = await pushTo(tablet.credential, {
+      device: tablet.device,
+      sentAt: new Date(tablet.now).toISOString(),
+      jobs: [],
+      entries: [
+        Object.assign({ entry, signature, key: row!.key_id! }, { refused }),
+        Object.assign({ ...two!, signature }, { refused }),
+      ],
+    });
+    expect(verdicts).toMatchObject([
+      { verdict: 'already recorded' },
+      { verdict: 'refused', code: 'signature-wrong' },
+    ]);
   });
 });
 

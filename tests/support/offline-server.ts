@@ -25,6 +25,7 @@ interface Pushed {
   signature: string;
   key: string;
   sealed?: Sealed;
+  refused?: { code: string; reason: string };
 }
 
 interface Row {
@@ -268,7 +269,8 @@ export class OfflineServer {
     return { id, entries, more, head: headOf(job), ...(isKnown ? {} : { restored: true }) };
   }
 
-  private async receive(pushed: Pushed): Promise<Record<string, unknown>> {
+  /** Takes one record, as a push brings it. */
+  async receive(pushed: Pushed): Promise<Record<string, unknown>> {
     const { entry } = pushed;
     const job = this.jobs.get(entry.job);
     if (!job) return { verdict: 'refused', code: 'unknown-job', reason: 'There is no such job.' };
@@ -285,9 +287,10 @@ export class OfflineServer {
       };
     }
     const forged = await this.whyForged(pushed);
+    const told = pushed.refused && ({ verdict: 'refused', ...pushed.refused } as const);
     const judged =
       forged === undefined
-        ? this.judge(entry)
+        ? (told ?? this.judge(entry))
         : { verdict: 'refused' as const, code: 'not-the-author', reason: forged };
     if (judged?.verdict === 'waiting') return judged;
     const pin = await this.checkPin(pushed);
