@@ -84,6 +84,8 @@ const OWN_DONE_SCREEN = new Set<PlanStep['kind']>([
   'watch',
   'drive',
   'choose-shells',
+  // One that was lost is taken again.
+  'photograph',
 ]);
 
 function isSignedAlready(
