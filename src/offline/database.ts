@@ -109,6 +109,8 @@ export interface OutboxRow {
   where: Exclude<Whereabouts, 'refused'>;
   code?: string | undefined;
   reason?: string | undefined;
+  /** It was made on a trail of which a restore of the server took the end. */
+  restored?: true | undefined;
 }
 
 export interface RefusedRow {

@@ -155,6 +155,31 @@ describe('a server restored from a backup', () => {
     expect((await offline.db.setAside.toArray()).map(({ row }) => row.id)).toContain(last.id);
   });
 
+  it('hears which records were made on what it has lost', async () => {
+    const backup = server.backup();
+    await remarks({ from: 1, count: 1 });
+    must(await offline.sync.now());
+    server.isAway = true;
+    await remarks({ from: 2, count: 1 });
+    server.restore(backup);
+    server.isAway = false;
+    // Learns of the restore, and is cut off before it sends anything again.
+    server.onAnswer = (path, answer) => (path === '/api/sync' ? cutOffAfter(answer) : answer);
+    await offline.sync.now();
+    server.isAway = false;
+    server.onAnswer = (_path, answer) => answer;
+    await remarks({ from: 3, count: 1 });
+    must(await offline.sync.now());
+    const sent = server.requests.at(-1)!.body as {
+      entries: { entry: { deviceSeq: number }; restored?: true }[];
+    };
+    expect(sent.entries.map(({ entry, restored }) => [entry.deviceSeq, restored])).toEqual([
+      [1, true],
+      [2, true],
+      [3, undefined],
+    ]);
+  });
+
   it('hears again of what it refused, and then takes what waits behind it', async () => {
     const backup = server.backup();
     server.judge = () => ({ verdict: 'refused', code: 'overtaken', reason: 'Somebody was quicker.' });
@@ -281,6 +306,12 @@ describe('a tablet that the workshop no longer knows', () => {
     await arrived(made);
   });
 });
+
+/** Lets this answer through, and no request after it. */
+function cutOffAfter(answer: unknown): unknown {
+  server.isAway = true;
+  return answer;
+}
 
 /** Changes the rows of every trail that an answer carries. */
 function withRows(change: (rows: { recorded: object }[]) => { recorded: object }[]) {

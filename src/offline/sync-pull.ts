@@ -162,6 +162,7 @@ async function takeRestored(
       return false;
     }
     const common = await lastCommon(db, page.rows);
+    await ofJob(db.outbox, row.id).modify({ restored: true });
     await putBack(db, row.id, common?.seq ?? 0, at);
     await forgetTold(db, row.id, common?.seq ?? 0);
     await sendAgain(db, row.id);
@@ -223,5 +224,6 @@ function toOutbox(row: EntryRow): OutboxRow {
     place: seq - BEFORE_ALL,
     entry: entryOf(recorded),
     where: 'on this tablet',
+    restored: true,
   };
 }

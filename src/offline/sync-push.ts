@@ -6,7 +6,10 @@ const MAX_ENTRIES = 200;
 const MAX_BYTES = 480 * 1024;
 
 /** A record to be sent: one that has no verdict yet, or one whose refusal a restored server has lost. */
-export type Sendable = Pick<OutboxRow, 'job' | 'id' | 'entry' | 'signature' | 'key' | 'sealed'> & {
+export type Sendable = Pick<
+  OutboxRow,
+  'job' | 'id' | 'entry' | 'signature' | 'key' | 'sealed' | 'restored'
+> & {
   /** Where it is in the outbox. */
   place?: number | undefined;
   refused?: Pick<RefusedRow, 'code' | 'reason'> | undefined;
@@ -44,8 +47,13 @@ function refusedBefore({ job, id, entry, signature, key, code, reason }: Refused
 }
 
 /** A record as the server asks for it. */
-export function toWire({ entry, signature, key, sealed, refused }: Sendable) {
-  return { entry, signature, key, ...(sealed ? { sealed } : {}), ...(refused ? { refused } : {}) };
+export function toWire({ entry, signature, key, sealed, refused, restored }: Sendable) {
+  return {
+    ...{ entry, signature, key },
+    ...(sealed ? { sealed } : {}),
+    ...(refused ? { refused } : {}),
+    ...(restored ? { restored } : {}),
+  };
 }
 
 function bytesOf(row: Sendable): number {

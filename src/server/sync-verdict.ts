@@ -9,6 +9,7 @@ import { type Batch, foldOf, type ProvedItem, record, refuse } from './sync-batc
 import { isRevoked, isTrueToWorkshop, proveAuthor } from './sync-author';
 import type { EntryVerdict } from './sync-body';
 import type { ReadItem } from './sync-read';
+import { hasMetRestore } from './sync-restored';
 import { noteAct, tabletView, UNFORESEEN } from './tablet-view';
 
 /** A tablet's clock may be so far off before its people are told. */
@@ -112,8 +113,9 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
   if (wait !== undefined) return waiting(item, 'evidence-missing', wait);
   const times = timesOf(batch, item);
   const own = await ownVerdict(batch, fold, item, times);
-  if (!own.ok) return refuseIt(own.code, own.why);
-  const here = serverVerdict(batch, fold, item, times);
+  const isOnLostView = !own.ok && isActOnLostView(batch, fold, item, own.code);
+  if (!own.ok && !isOnLostView) return refuseIt(own.code, own.why);
+  const here = own.ok ? serverVerdict(batch, fold, item, times) : own;
   const isJudgement = isOneOf(judgementKinds, entry.kind);
   if (!here.ok && isJudgement) {
     return refuseIt('overtaken', `It was in order on the tablet, but not any more: ${here.why}`);
@@ -211,6 +213,19 @@ async function ownVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: 
   const isOther = item.isNumberReused || isBehind(fold, entry.device, entry.basis);
   return mayRecord(isOther ? await tabletView(batch, fold, entry) : fold.state, entry, workshop);
 }
+
+/**
+ * An act that was done after entries which a restore took back: whether its own tablet forbade it nobody can say
+ * any more, and it happened. The trail tells that this tablet met a restore; that alone is not taken on its word.
+ */
+function isActOnLostView(batch: Batch, fold: JobFold, { entry, carried }: ProvedItem, code: string): boolean {
+  if (carried?.restored !== true || batch.device === undefined) return false;
+  if (isOneOf(judgementKinds, entry.kind) || isOneOf(WHATEVER_IT_SAW, code)) return false;
+  return hasMetRestore(fold, batch.device.id);
+}
+
+/** Why something is not in order however the job stood. */
+const WHATEVER_IT_SAW = ['key-revoked', 'author-differs', 'unknown-person', 'inactive-person', 'role'];
 
 /** Is it in order by all that the server knows? */
 function serverVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Times): Verdict {

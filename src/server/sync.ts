@@ -23,6 +23,7 @@ import { maySee, pullJobs, type PulledJob } from './sync-pull';
 import { readKeys } from './sync-known';
 import { makeUpLost } from './lost-workshop';
 import { type ReadItem, readItem } from './sync-read';
+import { restoresMet } from './sync-restored';
 import { judgeItem, type NeedsPin } from './sync-verdict';
 import { readWorkshopHistory } from './workshop-history';
 
@@ -270,8 +271,5 @@ async function holds(trx: Trx, job: string, have: { seq: number; hash: string })
  */
 function isNoted(fold: JobFold, device: string): boolean {
   const { seq: lastOwn } = fold.heard.get(device) ?? UNHEARD;
-  return fold.state.unstepped.some(
-    ({ kind, data, seq = 0 }) =>
-      kind === 'restored' && 'reason' in data && data.reason?.includes(device) === true && seq > lastOwn,
-  );
+  return restoresMet(fold, device).some((seq) => seq > lastOwn);
 }

@@ -4,6 +4,8 @@ import { POST as postJobs } from '@/pages/api/jobs/index';
 import type { Entry, Recorded } from '@/domain/entry';
 import { contentOf, verifyTrail } from '@/domain/trail';
 import { nodeChecks } from '@/server/trail-checks';
+import { getFold } from '@/server/job-fold';
+import { setActive } from '@/server/people';
 import { setWorkshop } from '@/server/workshop';
 import type { ScriptedEntry } from '@db/scripted-work';
 import {
@@ -17,6 +19,7 @@ import {
   type Shop,
   type TestTablet,
   trailOf,
+  workshopOf,
 } from '../support/tablet';
 
 vi.setConfig({ testTimeout: 30_000, hookTimeout: 30_000 });
@@ -121,6 +124,51 @@ describe('a refusal that a restore took back', () => {
       { verdict: 'already recorded' },
       { verdict: 'refused', code: 'signature-wrong' },
     ]);
+  });
+});
+
+describe('an act on a view that a restore took back', () => {
+  const restored = true as const;
+  const unordered = { kind: 'done', step: 'strip.cap-off@rod1', data: {} } as const;
+  const judged = async (kind: Partial<ScriptedEntry>, by = shop.people.ann) => {
+    await tablet.record(job.id, kind as typeof unordered, { by, force: true });
+    Object.assign(tablet.held(job.id).outbox.at(-1)!, { restored });
+    const [verdict] = await tablet.sync();
+    return verdict;
+  };
+  const meetRestore = () =>
+    pushTo(tablet.credential, {
+      device: tablet.device,
+      sentAt: new Date(tablet.now).toISOString(),
+      jobs: [{ id: job.id, have: { seq: 40, hash: 'a'.repeat(64) } }],
+      entries: [],
+    });
+
+  it('is recorded with a conflict that blocks, whatever order it seems to be out of', async () => {
+    await meetRestore();
+    expect(await judged(unordered)).toMatchObject({ verdict: 'recorded', code: expect.any(String) });
+    const { state } = await getFold(shop.app.db, job.id);
+    expect(state.deviations).toMatchObject([{ blocks: true, step: unordered.step }]);
+  });
+
+  it('is refused where no restore is told of', async () => {
+    expect(await judged(unordered)).toMatchObject({ verdict: 'refused' });
+  });
+
+  it('is refused if its author could not have done it anyhow', async () => {
+    await meetRestore();
+    const { owner } = shop.people;
+    const { ann } = shop.people;
+    await shop.app.db.transaction().execute((trx) => setActive(trx, owner, ann.id, false, shop.app));
+    tablet.workshop = await workshopOf(shop.app);
+    expect(await judged(unordered)).toMatchObject({ verdict: 'refused', code: 'inactive-person' });
+  });
+
+  it('is no excuse for a judgement', async () => {
+    await meetRestore();
+    const data = { deviation: job.id, disposition: 'accept as is', reason: 'It was so.' } as const;
+    const verdict = await judged({ kind: 'deviation-disposed', data }, shop.people.supervisor);
+    expect(verdict).toMatchObject({ verdict: 'refused' });
   });
 });
 
