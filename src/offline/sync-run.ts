@@ -108,6 +108,8 @@ async function afterwards(
 ): Promise<Outcome> {
   if (device.mustEnrolAgain) await keepDevice(s.db, { ...device, mustEnrolAgain: undefined });
   if (clockOffsetMs !== undefined) await s.db.meta.put({ key: 'clock', value: clockOffsetMs });
+  // Whatever else fails: a handover waits at the server for photographs, and for nothing else of these.
+  const photos = await sendPhotos(s);
   const workshop = await s.db.workshop.get('workshop');
   if (!workshop || workshop.seq < workshopSeq) {
     const pulled = await pullWorkshop(s);
@@ -115,5 +117,5 @@ async function afterwards(
   }
   await extendSessionsHourly(s);
   const plans = await fetchMissingPlans(s);
-  return plans.ok ? sendPhotos(s) : plans;
+  return plans.ok ? photos : plans;
 }
