@@ -211,7 +211,7 @@ describe('the page of a job', () => {
     journal.record('ended-unfinished', data, { by: 'sup' });
     await show(answerOf(journal, { phase: 'ended unfinished', state: 'ended' }));
     expect(screen.getByText('Ended unfinished. The engine is not to be run.')).toBeVisible();
-    expect(screen.getByText(/^the block is cracked. Ended by S. Visor, 2 Jun, /)).toBeVisible();
+    expect(screen.getByText(/^Ended by S. Visor, 2 Jun, .*: the block is cracked\.$/)).toBeVisible();
     expect(screen.getByText('Left open: sump.')).toBeVisible();
     expect(part('What blocks it').getByText('Nothing: the job is over.')).toBeVisible();
   });

@@ -74,7 +74,9 @@ function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & {
         </div>
       </div>
       <JobHeadFacts job={answer} zone={zone} />
-      <JobStanding state={jobState} zone={zone} />
+      <div className="mt-4">
+        <JobStanding state={jobState} zone={zone} />
+      </div>
       <JobProgress
         progress={answer.progress}
         phase={answer.phase}

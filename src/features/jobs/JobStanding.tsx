@@ -21,8 +21,8 @@ export function JobStanding({ state, zone }: { state: JobState; zone: string }) 
   return (
     <Notice tone="stop" title="Ended unfinished. The engine is not to be run.">
       <p>
-        {reason !== undefined && `${reason}. `}
-        Ended{by(kept, zone)}.
+        Ended{by(kept, zone)}
+        {reason !== undefined && `: ${reason}`}.
       </p>
       {open.length > 0 && <p>Left open: {open.join(', ')}.</p>}
     </Notice>
