@@ -280,14 +280,8 @@ def _is_text(value):
 
 
 def _is_text_up_to(most):
-    """A text that is not empty and has at most so many UTF-16 code units."""
-
-    def check(value):
-        if not isinstance(value, str) or value == "":
-            return False
-        return len(value if value.isascii() else value.encode("utf-16-le", "surrogatepass")[::2]) <= most
-
-    return check
+    """A text that is not empty and has at most so many code points."""
+    return lambda value: isinstance(value, str) and 0 < len(value) <= most
 
 
 def _is_whole(value):
@@ -338,7 +332,7 @@ def _is_key_name(value):
 
 
 def _is_salt(value):
-    return isinstance(value, str) and re.fullmatch(r"(?:[0-9a-f]{2})+", value) is not None
+    return isinstance(value, str) and re.fullmatch(r"(?:[0-9a-f]{2}){16,64}", value) is not None
 
 
 def _is_time(value):
@@ -400,8 +394,8 @@ ENTRY = {
 ENTRY_MAY = {
     "step": _is_text_up_to(120),
     "afterwards": _is_record_of({"when": _is_text_up_to(60), "reason": _is_text_up_to(2000)}),
-    "pin": _is_record_of({"keyId": _is_text, "checkedAt": _is_time}),
-    "conflict": _is_record_of({"code": _is_text, "why": _is_text}),
+    "pin": _is_object,
+    "conflict": _is_object,
 }
 WORKSHOP_ITEM = {"recorded": _is_object, "hash": _is_hash}
 WORKSHOP_ENTRY = {"seq": _is_number, "prev": _is_hash, "kind": _is_text, "data": _is_object}
@@ -635,7 +629,7 @@ def _check_keys(body):
         if said != (one["publicKey"], one["person"], one["device"]):
             raise Broken(place, "The workshop's trail enrolled another key, person or tablet.")
         raw = bytes_of(one["publicKey"])
-        if raw is None or hashlib.sha256(raw).hexdigest()[:16] != one["id"]:
+        if raw is None or len(raw) != 65 or hashlib.sha256(raw).hexdigest()[:16] != one["id"]:
             raise Broken(place, "Its name is not that of its bytes.")
         if one["id"] in seen:
             raise Broken(place, "It is there twice.")
@@ -674,7 +668,7 @@ def _check_heads(body):
     }
     keys = {one["key"]: one["publicKey"] for one in body["workshopKeys"]}
     for one in body["heads"]:
-        place = "the head at entry %d" % one["seq"]
+        place = "the%s head at entry %d" % (" workshop's" if one["trail"] == "workshop" else "", one["seq"])
         if one["trail"] not in chains:
             raise Broken(place, "It is of another trail.")
         found = chains[one["trail"]].get(one["seq"])
@@ -724,8 +718,8 @@ def _check_photographs(body):
         entry = item["recorded"]
         if entry["kind"] == "photographed":
             photo = entry["data"].get("photo")
-            if isinstance(photo, str):
-                named[photo] = entry["data"].get("bytes")
+            # Something else than a text can't be in the list, and so is missing from it.
+            named[photo if isinstance(photo, str) else form(photo)] = entry["data"].get("bytes")
     erased = _erased(body, "photographs")
     listed = set()
     notes = []
@@ -735,7 +729,7 @@ def _check_photographs(body):
             raise Broken(place, "No entry took it.")
         if one["hash"] in listed:
             raise Broken(place, "It is there twice.")
-        if not _is_whole(named[one["hash"]]) or named[one["hash"]] != one["bytes"]:
+        if not _is_count(named[one["hash"]]) or named[one["hash"]] != one["bytes"]:
             raise Broken(place, "Its number of bytes is not the one in its entry.")
         if one["state"] == "erased":
             if one["hash"] not in erased:
@@ -772,7 +766,7 @@ def _compare_head(body, head):
     if head is None:
         return ["Head not compared."]
     if head not in hashes:
-        raise Broken("the head", "No entry has that hash: the trail was cut short or rewritten.")
+        raise Broken("the head that you hold", "No entry has that hash: the trail was cut short or rewritten.")
     seq = hashes.index(head) + 1
     return ["The head is entry %d; %d came after it." % (seq, len(hashes) - seq)]
 
