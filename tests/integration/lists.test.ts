@@ -4,7 +4,6 @@ import { GET as getSetAside } from '@/pages/api/jobs/[id]/set-aside';
 import { GET as getKeys } from '@/pages/api/keys/index';
 import { GET as getPeople } from '@/pages/api/people/index';
 import { GET as getTools } from '@/pages/api/tools/index';
-import type { Entry } from '@/domain/entry';
 import { THE_WORKSHOP } from '@/server/actor';
 import { enrolDevice } from '@/server/devices';
 import type { HandlerContext } from '@/server/http';

@@ -207,7 +207,7 @@ describe('the page of a job', () => {
 
   it('says that the engine of a job ended unfinished is not to be run', async () => {
     const journal = new Journal(smallPlan());
-    const data = { reason: 'the block is cracked', open: ['sump'], notToBeRun: true } as const;
+    const data = { reason: 'the block is cracked', open: ['sump'], notToBeRun: true as const };
     journal.record('ended-unfinished', data, { by: 'sup' });
     await show(answerOf(journal, { phase: 'ended unfinished', state: 'ended' }));
     expect(screen.getByText('Ended unfinished. The engine is not to be run.')).toBeVisible();
