@@ -5,6 +5,7 @@ import {
   clearanceFromParts,
   clearanceFromWidth,
   judge,
+  partsUncertainty,
   taper,
   type CardBand,
 } from '@/domain/clearance';
@@ -102,6 +103,13 @@ describe('clearanceFromParts', () => {
     for (const name of Object.keys(parts)) {
       expect(() => clearanceFromParts({ ...parts, [name]: -1 })).toThrow(RangeError);
     }
+  });
+});
+
+describe('partsUncertainty', () => {
+  it('is the root of the sum of four squares', () => {
+    expect(partsUncertainty(0.001)).toBeCloseTo(Math.sqrt(4 * 0.001 ** 2), 12);
+    expect(() => partsUncertainty(0)).toThrow(RangeError);
   });
 });
 

@@ -66,6 +66,15 @@ export function clearanceFromParts(parts: {
 }
 
 /**
+ * Uncertainty (mm) of a clearance by parts: the root of the sum of squares of four sizes that are each good to
+ * ± `each` mm, which is twice that. Common practice, no source.
+ */
+export function partsUncertainty(each: number): number {
+  requireLength(each, 'uncertainty of one size');
+  return 2 * each;
+}
+
+/**
  * Judges a value against its limits with the measurement's uncertainty U (all in one unit), by ISO 14253-1:
  * inside from low + U to high − U, outside below low − U or above high + U, and unsure between.
  */

@@ -73,14 +73,16 @@ function workWords(entry: Entry, plan: Plan): string | undefined {
 }
 
 function gaugedWords(entry: EntryOf<'gauged'>, plan: Plan): string {
-  const { end, by, width, clearance, unit, uncertainty, again } = entry.data;
+  const { end, by, width, clearance, unit, uncertainty, again, parts } = entry.data;
   const step = entry.step === undefined ? undefined : findStep(plan, entry.step);
   const how =
     by === 'band'
       ? 'by the card'
       : by === 'width'
         ? `from ${width ?? '?'} mm crushed width`
-        : 'from part sizes';
+        : parts === undefined
+          ? 'from part sizes'
+          : `from bore ${parts.housingBore}, less shells ${parts.upperWall} and ${parts.lowerWall}, less pin ${parts.journal}`;
   const repeat = again === 'first' ? '' : `, ${again}`;
   return `Rod ${step?.rod ?? '?'}, ${end}: ${clearance} ${unit} ± ${uncertainty} ${how}${repeat}`;
 }

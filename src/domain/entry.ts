@@ -91,8 +91,13 @@ export const entryData = {
     uncertainty: decimal,
     unit: z.literal('mm'),
     again: z.enum(['first', 'read again', 'measure again']),
-    threadLot: lot,
-    cardLot: lot,
+    /** The thread and its own card; none where it was measured by parts. */
+    threadLot: z.optional(lot),
+    cardLot: z.optional(lot),
+    /** By parts: the sizes that the clearance is the sum of, mm. */
+    parts: z.optional(
+      z.strictObject({ housingBore: decimal, upperWall: decimal, lowerWall: decimal, journal: decimal }),
+    ),
   }),
   /** New thread, one more tightening: the rod goes back to where its measurement began. */
   'measuring-again': z.strictObject({ reason: z.optional(note) }),

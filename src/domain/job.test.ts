@@ -214,6 +214,41 @@ describe('the measured number', () => {
     expect(journal.state.deviations.map(({ rule }) => rule)).toEqual(['clearance-unsure']);
   });
 
+  it('takes a clearance by parts only as the sum of its sizes, and a thread only with its lots', () => {
+    const journal = begin().performUntil(at);
+    const parts = { housingBore: '50.018', upperWall: '1.985', lowerWall: '1.985', journal: '46.000' };
+    const reading = {
+      end: 'front',
+      clearance: '0.048',
+      uncertainty: '0.002',
+      unit: 'mm',
+      again: 'first',
+    } as const;
+    const ask = (over: object) => journal.ask('gauged', { ...reading, by: 'parts', ...over }, { step: at });
+    expect(ask({ parts })).toEqual({ ok: true });
+    expect(ask({})).toMatchObject({ code: 'parts-missing' });
+    expect(ask({ parts: { ...parts, journal: '45.999' } })).toMatchObject({ code: 'sum-differs' });
+    expect(ask({ parts: { ...parts, upperWall: '0' } })).toMatchObject({ code: 'impossible' });
+    expect(ask({ by: 'band' })).toMatchObject({ code: 'lot-missing' });
+  });
+
+  it('knows the cap off from the first end on where the reading takes it off', () => {
+    const plan = smallPlan();
+    const steps = plan.steps.map((step) =>
+      step.id === at
+        ? { ...step, sets: { cap: 'off' as const } }
+        : step.id === 'strip.cap-off-again@rod2'
+          ? { ...step, sets: {} }
+          : step,
+    );
+    const journal = new Journal({ ...plan, steps }).performUntil(at);
+    expect(journal.state.rods[2]?.cap).toBe('on');
+    const { id } = journal.gaugeEnd(at, 'front', '0.048');
+    expect(journal.state.rods[2]?.cap).toBe('off');
+    journal.record('taken-back', { of: id, which: 'touched by mistake, not done' }, { step: at });
+    expect(journal.state.rods[2]?.cap).toBe('on');
+  });
+
   it('measures again from the thread on, with one more tightening', () => {
     const journal = begin().performUntil(at);
     journal.gaugeEnd(at, 'front', '0.067');
