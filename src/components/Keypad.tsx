@@ -19,6 +19,9 @@ export interface KeypadProps {
   onEnter?: (() => void) | undefined;
 }
 
+/** A longer number is set smaller, so that all of it shows. */
+const ROOMY_DIGITS = 5;
+
 const DIGITS = ['7', '8', '9', '4', '5', '6', '1', '2', '3'];
 
 /** A number pad for gloves, with the value large over it and its unit always beside it. */
@@ -43,7 +46,7 @@ export function Keypad(props: KeypadProps) {
       <label className="form-label" htmlFor={`${id}-value`}>
         {label}
       </label>
-      <div className="keypad-value">
+      <div className="keypad-value" data-long={value.length > ROOMY_DIGITS || undefined}>
         <input
           id={`${id}-value`}
           className="figure"

@@ -17,7 +17,7 @@ export interface VerdictProps {
   word?: string | undefined;
   /** What it means here: where it lies, what the other end reads. */
   children?: ReactNode;
-  size?: 'large' | 'small' | undefined;
+  size?: 'large' | 'band' | 'small' | undefined;
 }
 
 /** A verdict with its sign and its word beside its colour. */

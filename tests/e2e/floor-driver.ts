@@ -49,11 +49,10 @@ const READINGS: [asked: RegExp, value: string][] = [
   [/^Oil temperature/, '94'],
   [/^cloths/, '12'],
   [/^lamps and small tools/, '5'],
-  [/^Odometer before/, '143212'],
-  [/^Odometer after/, '143233'],
 ];
 
 const BAND = '0.046';
+const BLADE = '0.25 mm';
 
 export class FloorDriver {
   /** Touches of the glass, digits of PINs and numbers included; a scan of a label is none. */
@@ -91,15 +90,16 @@ export class FloorDriver {
   /** Does the one thing that this screen asks for. */
   async doNext(look: Look): Promise<void> {
     this.at = kindOf(look);
-    if (look.sheet !== undefined) return this.takeTool();
     if (!look.isBarred) {
       if (look.main === 'Take the photograph') return this.photograph();
-      if (/^Choose the (torque wrench|angle gauge)$/.test(look.main)) return this.openToolSheet(look.main);
       return this.press(look);
     }
+    if (look.words === 'touch the one in your hand') return this.takeTool(look);
     if (/lot of the .* is needed|the lot is needed/.test(look.words)) return this.giveLot(look);
     if (/^count them$|^key in /.test(look.words)) return this.keyIn(look);
     if (look.words.startsWith('touch a band')) return this.touch(this.button(BAND));
+    if (look.words === 'touch a blade') return this.touch(this.button(BLADE));
+    if (look.words === 'touch what the odometer shows') return this.readOdometer();
     if (/^next look at|^until the time is over/.test(look.words)) return this.passTime(WATCH_STEP_MS);
     if (look.words.startsWith('yes, no or not sure')) return this.answer('No');
     throw new Error(`Nobody would know what to do here: ${JSON.stringify(look)}`);
@@ -148,8 +148,7 @@ export class FloorDriver {
     this.at = 'hold';
     await this.press(await this.look());
     await this.touch(this.page.getByRole('radio', { name }));
-    await this.press(await this.look());
-    await this.touch(this.page.getByRole('radio', { name: 'At the vehicle' }));
+    await expect(this.bottom('I looked at the vehicle')).toBeVisible();
     await this.press(await this.look());
     if (count !== undefined) {
       await this.keyNumber(String(count));
@@ -180,20 +179,10 @@ export class FloorDriver {
     return this.page.getByRole('button', { name, exact: true });
   }
 
-  private async openToolSheet(name: string): Promise<void> {
-    await this.touch(this.bottom(name));
-    await expect(this.page.getByRole('dialog')).toBeVisible();
-  }
-
   /** The first tool that may be used, in hand. */
-  private async takeTool(): Promise<void> {
-    const sheet = this.page.getByRole('dialog');
-    const take = sheet.getByRole('button', { name: 'It is in my hand' });
-    if ((await take.getAttribute('aria-disabled')) === 'true') {
-      await this.touch(sheet.getByRole('radio', { disabled: false }).first());
-    }
-    await this.touch(take);
-    await expect(sheet).toHaveCount(0);
+  private async takeTool(look: Look): Promise<void> {
+    await this.touch(this.page.getByRole('group', { name: 'Tools that fit' }).getByRole('radio').first());
+    await expect(this.bottom(look.main)).toHaveCount(0);
     await this.passTime(PACE_MS);
   }
 
@@ -210,19 +199,26 @@ export class FloorDriver {
     await expect(this.bottom('Keep the photograph')).toBeVisible();
   }
 
-  /** Picks the lot that the kit check knows, else scans the label, as a scanner does: like a keyboard. */
-  private async giveLot({ heading, words }: Look): Promise<void> {
-    const half = /lot of the (upper|lower) shell/.exec(words)?.[1];
-    if (half !== undefined) await this.touch(this.button(`Lot of the ${half} shell`));
+  /** Picks the lot that the kit check knows, else scans the label; a scanner types it and ends with Enter. */
+  private async giveLot(look: Look): Promise<void> {
+    const half = /lot of the (upper|lower) shell/.exec(look.words)?.[1];
+    if (half !== undefined) return this.touch(this.button(`Lot of the ${half} shell`));
     const known = this.page.getByRole('group', { name: /^Lot of/ }).getByRole('radio');
-    if ((await known.count()) > 0) {
-      await this.touch(known.first());
-    } else {
-      this.scans += 1;
-      await this.touch(this.page.getByRole('textbox', { name: /^Lot of/ }));
-      await this.page.keyboard.insertText(lotOn(heading));
-    }
-    if (half !== undefined) await this.touch(this.page.getByRole('button', { name: /^Use lot/ }));
+    if ((await known.count()) > 0) return this.touch(known.first());
+    this.scans += 1;
+    await this.page.keyboard.type(lotOn(look.heading));
+    await this.page.keyboard.press('Enter');
+    await this.moved(look);
+  }
+
+  /** The vehicle was moved a little in the yard, and driven a little further than asked: the third of them. */
+  private readOdometer(): Promise<void> {
+    return this.touch(
+      this.page
+        .getByRole('group', { name: /^Odometer/ })
+        .getByRole('radio')
+        .nth(2),
+    );
   }
 
   private async keyIn({ words }: Look): Promise<void> {
@@ -259,7 +255,7 @@ function kindOf({ heading, main, sheet }: Look): string {
   if (sheet !== undefined || main.startsWith('Choose the')) return 'tool';
   if (/^Next|^Go on/.test(main)) return 'next';
   if (/photograph/i.test(main)) return 'photograph';
-  if (/tighten to|turn through|release|paint the|was it/.test(heading)) return 'tightening';
+  if (/tighten to|then to|turn through|release|paint the|was it/.test(heading)) return 'tightening';
   if (/, (front|rear)$/.test(heading)) return 'gauge';
   return 'step';
 }

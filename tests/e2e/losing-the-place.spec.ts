@@ -52,11 +52,7 @@ test('a reload in the middle of a cap asks whether the bolt was turned, and take
     await expectQuestion(page, '3B', 'Cycle 1 of 3, the angle pass');
     await floor.answer('Not sure');
     await floor.runUntil(({ main }) => main === BOTH_PASSES);
-    await expectAction(
-      page,
-      '3A 3B tighten to 8 N·m, then to 25 N·m',
-      'Cycle 1 of 3, the passes to 8 and 25 N·m',
-    );
+    await expectAction(page, '3A 3B to 8 N·m, then to 25 N·m', 'Cycle 1 of 3, the passes to 8 and 25 N·m');
     await sendAll(page);
     const started = readTrail(app, job.id).filter(({ kind }) => kind === 'started-again');
     expect(started.map(({ body }) => body.data.bolts)).toEqual([['3A', '3B']]);

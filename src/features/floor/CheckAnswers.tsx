@@ -9,65 +9,56 @@ export interface CheckAnswer {
   note?: string | undefined;
 }
 
-export type Answers = Record<string, CheckAnswer>;
+/** What was said to be not in order, by check; the main action says the others. */
+export type Exceptions = Record<string, { note?: string | undefined }>;
 
 export interface CheckAnswersProps {
   label: string;
   checks: PlanCheck[];
-  answers: Answers;
-  onChange: (answers: Answers) => void;
+  exceptions: Exceptions;
+  onChange: (exceptions: Exceptions) => void;
 }
 
-/** Each check with its two answers; what is not in order takes a few words. */
-export function CheckAnswers({ label, checks, answers, onChange }: CheckAnswersProps) {
-  const answer = (id: string, change: Partial<CheckAnswer>) =>
-    onChange({ ...answers, [id]: { ok: true, ...answers[id], id, ...change } });
+/** The checks that the main action says are in order; a touch says which one isn't, and takes a few words. */
+export function CheckAnswers({ label, checks, exceptions, onChange }: CheckAnswersProps) {
+  const bad = checks.filter(({ id }) => exceptions[id] !== undefined);
+  function toggle(id: string) {
+    const { [id]: present, ...others } = exceptions;
+    onChange(present === undefined ? { ...exceptions, [id]: {} } : others);
+  }
   return (
-    <ol aria-label={label} className="grid gap-3">
-      {checks.map(({ id, ask }) => (
-        <CheckLine
+    <div className="grid gap-4">
+      <ol
+        aria-label={label}
+        className={checks.length > 2 ? 'grid gap-3 @lg/floor-main:grid-cols-2' : 'grid gap-3'}
+      >
+        {checks.map(({ id, ask }) => (
+          <li key={id} className="grid">
+            <button
+              type="button"
+              className="check-line"
+              aria-pressed={exceptions[id] !== undefined}
+              onClick={() => toggle(id)}
+            >
+              <span>{ask}</span>
+              {exceptions[id] !== undefined && (
+                <span className="check-line-bad">
+                  <Sign name="cross" /> not in order
+                </span>
+              )}
+            </button>
+          </li>
+        ))}
+      </ol>
+      {bad.map(({ id, ask }) => (
+        <CheckNote
           key={id}
           ask={ask}
-          answer={answers[id]}
-          onAnswer={(ok) => answer(id, { ok })}
-          onNote={(note) => answer(id, { note: note === '' ? undefined : note })}
+          note={exceptions[id]?.note ?? ''}
+          onNote={(note) => onChange({ ...exceptions, [id]: note === '' ? {} : { note } })}
         />
       ))}
-    </ol>
-  );
-}
-
-interface CheckLineProps {
-  ask: string;
-  answer: CheckAnswer | undefined;
-  onAnswer: (ok: boolean) => void;
-  onNote: (note: string) => void;
-}
-
-function CheckLine({ ask, answer, onAnswer, onNote }: CheckLineProps) {
-  return (
-    <li className="grid gap-3 border-b border-rule pb-3">
-      <div role="group" aria-label={ask} className="flex flex-wrap items-center gap-3">
-        <p className="min-w-60 flex-1 text-xl font-semibold">{ask}</p>
-        <div className="flex gap-3">
-          <QuietButton
-            shape="wide"
-            sign="tick"
-            label="In order"
-            isPressed={answer?.ok === true}
-            onPress={() => onAnswer(true)}
-          />
-          <QuietButton
-            shape="wide"
-            sign="cross"
-            label="Not in order"
-            isPressed={answer?.ok === false}
-            onPress={() => onAnswer(false)}
-          />
-        </div>
-      </div>
-      {answer?.ok === false && <CheckNote ask={ask} note={answer.note ?? ''} onNote={onNote} />}
-    </li>
+    </div>
   );
 }
 
@@ -75,9 +66,9 @@ function CheckNote({ ask, note, onNote }: { ask: string; note: string; onNote: (
   const [isOpen, setOpen] = useState(false);
   if (!isOpen && note === '') {
     return (
-      <div className="flex items-center gap-3">
-        <p className="flex items-center gap-2 text-lg font-bold text-outside">
-          <Sign name="cross" />A deviation will be opened
+      <div className="flex flex-wrap items-center justify-between gap-3">
+        <p className="flex min-w-60 flex-1 items-center gap-2 text-lg font-bold text-outside">
+          <Sign name="cross" />A deviation will be opened: {ask}
         </p>
         <QuietButton shape="wide" label="Say what is wrong" onPress={() => setOpen(true)} />
       </div>
@@ -95,19 +86,17 @@ function CheckNote({ ask, note, onNote }: { ask: string; note: string; onNote: (
   );
 }
 
-/** All checks answered in order at once. */
-export function allInOrder(checks: PlanCheck[]): CheckAnswer[] {
-  return checks.map(({ id }) => ({ id, ok: true }));
+/** Every check with its answer, in their order. */
+export function answersOf(checks: PlanCheck[], exceptions: Exceptions): CheckAnswer[] {
+  return checks.map(({ id }) =>
+    exceptions[id] === undefined ? { id, ok: true } : { id, ok: false, ...exceptions[id] },
+  );
 }
 
-/** The answers in the order of the checks; undefined while one is missing. */
-export function completeAnswers(checks: PlanCheck[], answers: Answers): CheckAnswer[] | undefined {
-  const given = checks.flatMap(({ id }) => answers[id] ?? []);
-  return given.length === checks.length ? given : undefined;
-}
-
-/** How many checks have no answer yet, in words for a barred action. */
-export function missingWords(checks: PlanCheck[], answers: Answers): string {
-  const missing = checks.filter(({ id }) => !answers[id]).length;
-  return missing === 1 ? 'one check to answer' : `${missing} checks to answer`;
+/** What the main action says of the checks, as "Keep: 1 not in order, the others are"; undefined when all are. */
+export function exceptionWords(checks: PlanCheck[], exceptions: Exceptions): string | undefined {
+  const bad = checks.filter(({ id }) => exceptions[id] !== undefined).length;
+  if (bad === 0) return undefined;
+  if (bad === checks.length) return bad === 1 ? 'Keep: not in order' : 'Keep: none in order';
+  return `Keep: ${bad} not in order, ${checks.length - bad} in order`;
 }

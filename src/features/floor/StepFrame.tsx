@@ -10,8 +10,10 @@ import type { PlanStep } from '@/domain/plan';
 import { comingAfter } from './current-step';
 import { engineView } from '@/domain/engine-view';
 import { lastAct, lastActWords } from './last-act';
+import { lastReading } from './last-reading';
 import { useRun, type Run } from './run-context';
 import { useIsPortrait } from './use-is-portrait';
+import { VerdictBand } from './VerdictBand';
 
 const STANDING =
   'The vehicle maker’s instructions, local codes and licensed practice prevail over this sheet.';
@@ -62,7 +64,7 @@ export function StepFrame(props: StepFrameProps) {
       main={main}
     >
       <div className="flex min-h-full flex-col">
-        {!isResult && <LastAct run={run} isLoud={isLoud} />}
+        {!isResult && <Before run={run} isLoud={isLoud} />}
         <Refusal run={run} />
         <div data-prompt>{heading ?? <StepHeading step={step} />}</div>
         {children}
@@ -94,18 +96,24 @@ export function StepHeading({ step }: { step: PlanStep }) {
 export function StepDetails({ step }: { step: PlanStep }) {
   return (
     <>
-      {step.how.length > 0 && (
-        <ul className="grid max-w-[62ch] gap-1.5 text-lg">
-          {step.how.map((line) => (
-            <li key={line} className="grid grid-cols-[1.25rem_1fr]">
-              <span aria-hidden="true">–</span>
-              <span>{line}</span>
-            </li>
-          ))}
-        </ul>
-      )}
+      <HowLines how={step.how} />
       {step.why !== undefined && <p className="max-w-[62ch] text-lg text-soft">{step.why}</p>}
     </>
+  );
+}
+
+/** How a step is done, a line a sentence. */
+export function HowLines({ how }: { how: string[] }) {
+  if (how.length === 0) return null;
+  return (
+    <ul className="grid max-w-[62ch] gap-1.5 text-lg">
+      {how.map((line) => (
+        <li key={line} className="grid grid-cols-[1.25rem_1fr]">
+          <span aria-hidden="true">–</span>
+          <span>{line}</span>
+        </li>
+      ))}
+    </ul>
   );
 }
 
@@ -128,6 +136,12 @@ const CAUTION_LEVELS = {
   CAUTION: 'caution',
   NOTICE: 'notice',
 } as const;
+
+/** What was recorded last: a reading with its verdict, large; anything else in a line. */
+function Before({ run, isLoud }: { run: Run; isLoud: boolean }) {
+  const reading = lastReading(run.state);
+  return reading ? <VerdictBand reading={reading} /> : <LastAct run={run} isLoud={isLoud} />;
+}
 
 function LastAct({ run, isLoud }: { run: Run; isLoud: boolean }) {
   const acts = lastAct(run.state);

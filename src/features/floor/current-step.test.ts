@@ -40,10 +40,23 @@ describe('the step on the screen', () => {
     expect(currentStep(journal.state, NOWHERE)?.id).toBe('strip.resume');
   });
 
-  it('stays on a verdict and on a deviation, and moves on from what is simply done', () => {
+  it('moves on from what is done and inside, and stays where a deviation waits', () => {
     const journal = at('strip.strap');
     expect(staysAfter(journal.state, journal.step('strip.raise'))).toBe(false);
     const measured = at('strip.clean@rod1');
-    expect(staysAfter(measured.state, measured.step('strip.gauge@rod1'))).toBe(true);
+    expect(staysAfter(measured.state, measured.step('strip.gauge@rod1'))).toBe(false);
+    const outside = at('strip.gauge@rod1').gauge('strip.gauge@rod1', '0.048', '0.200');
+    expect(staysAfter(outside.state, outside.step('strip.gauge@rod1'))).toBe(true);
+  });
+
+  it('stays after a road test only where it was shorter than asked', () => {
+    const driven = (odometer: string) => {
+      const journal = at('build.drive');
+      journal.record('drive-started', { odometer: '1000', unit: 'km', checks: [] }, { step: 'build.drive' });
+      journal.record('drive-ended', { odometer, unit: 'km', checks: [] }, { step: 'build.drive' });
+      return staysAfter(journal.state, journal.step('build.drive'));
+    };
+    expect(driven('1004')).toBe(true);
+    expect(driven('1100')).toBe(false);
   });
 });

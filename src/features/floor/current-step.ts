@@ -5,7 +5,9 @@
 import { nextSteps, whyNot } from '@/domain/job';
 import { isBlocked } from '@/domain/job-deviation';
 import type { JobState } from '@/domain/job-state';
+import { lastOf } from '@/domain/job-kept';
 import { findStep, type PlanStep, type StepKind } from '@/domain/plan';
+import { distanceIn } from './odometer';
 
 /** Where the technician is on a job. */
 export interface FloorPlace {
@@ -18,15 +20,29 @@ export interface FloorPlace {
 
 export const NOWHERE: FloorPlace = { step: null, isVisit: false };
 
-/** Kinds that show a verdict or a signature after they are done, until the technician goes on. */
-const SHOWS_RESULT: readonly StepKind[] = ['read', 'gauge', 'hold', 'count', 'watch', 'drive', 'hand-over'];
+/**
+ * Kinds that show what came of them after they are done, until the technician goes on. A reading that is inside
+ * its limits is not one of them: its verdict stands over the next step's screen.
+ */
+const SHOWS_RESULT: readonly StepKind[] = ['hold', 'hand-over'];
 
 /** Whether the screen stays after this step was done. */
 export function staysAfter(state: JobState, step: PlanStep): boolean {
   const status = state.steps[step.id]?.status;
   if (status === 'waiting for a part') return false;
   if (status !== 'done' && status !== 'not applicable') return true;
-  return isBlocked(state, step.id) || (status === 'done' && SHOWS_RESULT.includes(step.kind));
+  if (isBlocked(state, step.id)) return true;
+  return status === 'done' && (SHOWS_RESULT.includes(step.kind) || isShortDrive(state, step));
+}
+
+/** A road test that was shorter than asked is no deviation, but whoever ends it is told. */
+function isShortDrive(state: JobState, step: PlanStep): boolean {
+  if (step.kind !== 'drive') return false;
+  const own = state.steps[step.id];
+  const started = lastOf(own, 'drive-started')?.data;
+  const ended = lastOf(own, 'drive-ended')?.data;
+  if (!started || !ended) return false;
+  return Number(ended.odometer) - Number(started.odometer) < distanceIn(step, ended.unit) - 1;
 }
 
 /** The step to show; undefined when nothing can be done now. */

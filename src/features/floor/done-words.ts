@@ -32,6 +32,9 @@ export function doneWords(kept: Kept, plan: Plan): string {
     }
     case 'read':
       return `${title}: ${dataOf(kept, 'read').value} ${dataOf(kept, 'read').unit}`;
+    case 'fitted':
+    case 'refitted':
+      return withLot(title, dataOf(kept, kept.kind).lot);
     case 'counted':
       return `${title}: ${dataOf(kept, 'counted').count}`;
     case 'filled':
@@ -59,6 +62,10 @@ export function doneWords(kept: Kept, plan: Plan): string {
     default:
       return title;
   }
+}
+
+function withLot(words: string, lot: string | undefined): string {
+  return lot === undefined ? words : `${words}, lot ${lot}`;
 }
 
 function tightenedWords({ bolt, target, how, value, outcome }: EntryData<'tightened'>): string {

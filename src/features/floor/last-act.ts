@@ -82,9 +82,11 @@ export function actWords(acts: Kept[], plan: JobState['plan']): string {
   const words = doneWords(newest, plan);
   const bolt = 'bolt' in newest.data && typeof newest.data.bolt === 'string' ? newest.data.bolt : undefined;
   if (bolt === undefined) return words;
-  const names = acts
-    .flatMap(({ data }) => ('bolt' in data && typeof data.bolt === 'string' ? [data.bolt] : []))
-    .reverse();
+  const names = [
+    ...new Set(
+      acts.flatMap(({ data }) => ('bolt' in data && typeof data.bolt === 'string' ? [data.bolt] : [])),
+    ),
+  ].reverse();
   return words
     .replace(`bolt ${bolt}`, bolt)
     .replace(bolt, names.length === 2 ? `bolts ${names.join(' and ')}` : `${names[0]} to ${names.at(-1)}`);

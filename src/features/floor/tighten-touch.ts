@@ -1,6 +1,8 @@
 /*
- * What one touch on a tightening step stands for. Releases of a cap and the lower torque passes of its bolts
- * are one touch together; an angle, a last pass and a mark never are.
+ * What one touch on a tightening step stands for. Releases of a cap are one touch together, and so are the lower
+ * torque passes of its bolts up to the pass that counts; an angle, a mark, and the last pass of a joint that stays
+ * never are, but that the paint on such a joint goes with its last pull. A measuring or interim fit comes off
+ * again, so all its torques are lower ones. The mark of a rod cap is always a touch of its own.
  */
 import { nextTightening, tighteningRecords } from '@/domain/job';
 import { entryForAction, programmeOf, tighteningsLeft } from '@/domain/job-tightening';
@@ -27,21 +29,53 @@ export interface TightenTouch {
   key: string;
 }
 
-/** The next touch of the step, or null when its programme is finished. */
-export function nextTouch(state: JobState, step: TightenStep): TightenTouch | null {
+/**
+ * The next touch of the step, or null when its programme is finished. The touch ends before an action whose tool
+ * is not known yet, so that each wrench is asked for by itself.
+ */
+export function nextTouch(
+  state: JobState,
+  step: TightenStep,
+  hasTool: (action: TighteningAction) => boolean = () => true,
+): TightenTouch | null {
   const first = nextTightening(state, step);
   const programme = programmeOf(state, step);
   if (!first || !programme) return null;
   const actions: TightenTouch['actions'] = [first];
   const key = `${step.id} ${actionKey(first)} ${tighteningRecords(state, step).length}`;
-  if (!isShared(programme, first)) return { actions, key };
+  if (!isShared(programme, step, first)) return withOwnMark(programme, step, { actions, key }, state);
   const records = [...tighteningRecords(state, step)];
   for (;;) {
     records.push(recordOf(programme, actions.at(-1) ?? first));
     const next = nextAction(programme, step.bolts, records);
-    if (!next || !isSameRound(first, next)) return { actions, key };
+    if (!next || !isSameRun(programme, step, first, next)) return { actions, key };
+    if (!isSameRound(first, next) && !hasTool(next)) return { actions, key };
     actions.push(next);
   }
+}
+
+function withOwnMark(
+  programme: Programme,
+  step: TightenStep,
+  touch: TightenTouch,
+  state: JobState,
+): TightenTouch {
+  const [action] = touch.actions;
+  if (step.fit !== 'joint' || isMark(action)) return touch;
+  const records = [...tighteningRecords(state, step), recordOf(programme, action)];
+  const next = nextAction(programme, step.bolts, records);
+  return next && isMark(next) && next.bolt === action.bolt ? { ...touch, actions: [action, next] } : touch;
+}
+
+/** Whether an action paints a mark. */
+export function isMark(action: TighteningAction): boolean {
+  return action.kind === 'stage' && action.spec.kind === 'mark';
+}
+
+/** The touch without the marks that go with it: what "yes, it was turned" says. */
+export function pullsOf(touch: TightenTouch): TightenTouch {
+  const [first, ...others] = touch.actions;
+  return { ...touch, actions: [first, ...others.filter((action) => !isMark(action))] };
 }
 
 /** What comes after a touch if it goes well; null when the programme is then finished. */
@@ -60,12 +94,13 @@ export function touchDrafts(
   state: JobState,
   step: TightenStep,
   touch: TightenTouch,
-  tool?: ToolInHand,
+  toolFor: (action: TighteningAction) => ToolInHand | undefined,
 ): Draft[] {
   return touch.actions.flatMap((action): Draft[] => {
     const entry = entryForAction(state, step, action);
     if (!entry) return [];
     if (entry.kind !== 'tightened') return [{ ...entry, step: step.id }];
+    const tool = toolFor(action);
     return [
       {
         kind: 'tightened',
@@ -120,11 +155,31 @@ export function actionWords(state: JobState, step: TightenStep, action: Tighteni
   }
 }
 
+/** The figures of a touch's passes in order, as "8" and "25", each once. */
+export function touchAmounts(state: JobState, step: TightenStep, { actions }: TightenTouch): string[] {
+  return [
+    ...new Set(
+      actions.flatMap((action) => (action.kind === 'stage' ? (stageAmount(state, step, action) ?? []) : [])),
+    ),
+  ];
+}
+
+/** The bolts of a touch, each once. */
+export function touchBolts({ actions }: TightenTouch): string[] {
+  return [...new Set(actions.map(({ bolt }) => bolt))];
+}
+
 /** Where in the programme, as "Cycle 2 of 3, the angle pass". */
-export function placeWords(state: JobState, step: TightenStep, action: TighteningAction): string {
+export function placeWords(state: JobState, step: TightenStep, touch: TightenTouch): string {
+  const [action] = touch.actions;
   const cycles = state.plan.programmes[step.programme]?.cycles.length ?? 1;
   if (action.kind !== 'stage') return 'The cap starts again at its first cycle';
-  const pass = passWords(state, step, action);
+  const amounts = touchAmounts(state, step, touch);
+  const isMarkedToo = !isMark(action) && touch.actions.some(isMark);
+  const pass =
+    amounts.length > 1
+      ? `the passes to ${amounts.map((amount) => amount.replace(/ N·m$/, '')).join(' and ')} N·m`
+      : `${passWords(state, step, action)}${isMarkedToo ? ', then its mark' : ''}`;
   return cycles === 1
     ? pass.charAt(0).toUpperCase() + pass.slice(1)
     : `Cycle ${action.cycle + 1} of ${cycles}, ${pass}`;
@@ -151,13 +206,34 @@ function actionKey(action: TighteningAction): string {
     : `${action.kind}.${action.bolt}`;
 }
 
-function isShared(programme: Programme, first: TighteningAction): boolean {
+function isShared(programme: Programme, step: TightenStep, first: TighteningAction): boolean {
   if (first.kind === 'release') return true;
   if (first.kind === 'replace') return false;
-  if (first.spec.kind === 'release') return true;
-  const stages = programme.cycles[first.cycle] ?? [];
-  const lastPass = stages.findLastIndex(({ kind }) => kind === 'torque' || kind === 'angle');
-  return first.spec.kind === 'torque' && first.stage < lastPass;
+  return first.spec.kind === 'release' || isLowerTorque(programme, step, first);
+}
+
+function isLowerTorque(programme: Programme, { fit }: TightenStep, action: StageAction): boolean {
+  if (action.spec.kind !== 'torque') return false;
+  if (fit === 'measuring' || fit === 'interim') return true;
+  const stages = programme.cycles[action.cycle] ?? [];
+  return action.stage < stages.findLastIndex(({ kind }) => kind === 'torque' || kind === 'angle');
+}
+
+/** The same act on every bolt of the cap, and the next lower torque after a lower one. */
+function isSameRun(
+  programme: Programme,
+  step: TightenStep,
+  first: TighteningAction,
+  next: TighteningAction,
+): boolean {
+  if (isSameRound(first, next)) return true;
+  return (
+    first.kind === 'stage' &&
+    next.kind === 'stage' &&
+    next.cycle === first.cycle &&
+    isLowerTorque(programme, step, first) &&
+    isLowerTorque(programme, step, next)
+  );
 }
 
 function isSameRound(first: TighteningAction, next: TighteningAction): boolean {

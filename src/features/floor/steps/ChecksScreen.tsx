@@ -1,14 +1,7 @@
 import { useState } from 'react';
 import type { PlanCheck, PlanStep } from '@/domain/plan';
 import type { Draft } from '@/offline/record';
-import {
-  allInOrder,
-  CheckAnswers,
-  completeAnswers,
-  missingWords,
-  type Answers,
-  type CheckAnswer,
-} from '../CheckAnswers';
+import { answersOf, CheckAnswers, exceptionWords, type CheckAnswer, type Exceptions } from '../CheckAnswers';
 import { RecordAction } from '../RecordAction';
 import { StepFrame } from '../StepFrame';
 
@@ -24,23 +17,21 @@ export interface ChecksScreenProps {
 
 /** The checks of a step and the action that keeps the answers. */
 export function ChecksScreen({ step, checks, draft, allLabel = 'All in order', why }: ChecksScreenProps) {
-  const [answers, setAnswers] = useState<Answers>({});
-  const isBegun = Object.keys(answers).length > 0;
-  const complete = isBegun ? completeAnswers(checks, answers) : allInOrder(checks);
-  const bad = complete?.filter(({ ok }) => !ok).length ?? 0;
-  const label = bad > 0 ? `Keep, ${bad} not in order` : isBegun ? 'Keep the answers' : allLabel;
+  const [exceptions, setExceptions] = useState<Exceptions>({});
+  const bad = exceptionWords(checks, exceptions);
   return (
     <StepFrame
       step={step}
       main={
         <RecordAction
-          label={label}
-          why={why ?? (complete ? undefined : missingWords(checks, answers))}
-          drafts={() => [draft(complete ?? [])]}
+          label={bad ?? allLabel}
+          next={bad === undefined ? 'or touch what isn’t' : undefined}
+          why={why}
+          drafts={() => [draft(answersOf(checks, exceptions))]}
         />
       }
     >
-      <CheckAnswers label="Checks" checks={checks} answers={answers} onChange={setAnswers} />
+      <CheckAnswers label="Checks" checks={checks} exceptions={exceptions} onChange={setExceptions} />
     </StepFrame>
   );
 }

@@ -1,5 +1,6 @@
 import { useState } from 'react';
 import { ChoiceRows } from '@/components/ChoiceRows';
+import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
 import { addExact, exactOf, exactToNumber, formatDecimal, subtractExact } from '@/domain/decimal';
 
@@ -107,9 +108,9 @@ function AskLot({ step, half, grade, value, onLot, onClose }: AskLotProps) {
       heading={<h1 className="floor-step pb-3">Lot of the {half} shell</h1>}
       quiet={<QuietButton label="Back" onPress={onClose} />}
       main={
-        <QuietButton
-          shape="wide"
-          label={value === '' ? 'No lot yet' : `Use lot ${value}`}
+        <MainAction
+          label={value === '' ? 'Use this lot' : `Use lot ${value}`}
+          why={value === '' ? 'the lot is needed' : undefined}
           onPress={onClose}
         />
       }

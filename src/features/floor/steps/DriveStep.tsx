@@ -1,26 +1,19 @@
 import { useState } from 'react';
+import { ChoiceRows } from '@/components/ChoiceRows';
 import { Keypad } from '@/components/Keypad';
 import { QuietButton } from '@/components/QuietButton';
 import { lastOf } from '@/domain/job-kept';
 import type { PlanCheck, StepOf } from '@/domain/plan';
-import { convert } from '@/domain/units';
 import type { Draft } from '@/offline/record';
-import {
-  allInOrder,
-  CheckAnswers,
-  completeAnswers,
-  missingWords,
-  type Answers,
-  type CheckAnswer,
-} from '../CheckAnswers';
+import { answersOf, CheckAnswers, type CheckAnswer, type Exceptions } from '../CheckAnswers';
 import { NextAction } from '../NextAction';
 import { RecordAction } from '../RecordAction';
 import { StepFrame } from '../StepFrame';
 import { decimalText, isNumber } from '../numbers';
+import { distanceIn, likelyAfter, likelyBefore, type DistanceUnit } from '../odometer';
 import { useRun } from '../run-context';
 
 type DrivePlan = StepOf<'drive'>;
-type DistanceUnit = 'km' | 'mi';
 
 /** The road test: looks and odometer before, the drive, looks and odometer after. */
 export function DriveStep({ step }: { step: DrivePlan }) {
@@ -39,6 +32,7 @@ export function DriveStep({ step }: { step: DrivePlan }) {
         checks={step.before}
         unit={unit}
         label="Start the road test"
+        likely={likelyBefore(state.odometer?.value)}
         draft={(odometer, checks) => ({
           kind: 'drive-started',
           step: step.id,
@@ -55,6 +49,7 @@ export function DriveStep({ step }: { step: DrivePlan }) {
       unit={unit}
       label="End the road test"
       from={started.data.odometer}
+      likely={likelyAfter(step, unit, started.data.odometer)}
       draft={(odometer, checks) => ({ kind: 'drive-ended', step: step.id, data: { odometer, unit, checks } })}
     />
   );
@@ -66,26 +61,27 @@ interface DriveHalfProps {
   unit: DistanceUnit;
   label: string;
   from?: string;
+  /** Readings that are likely here; any other is keyed in. */
+  likely: string[];
   draft: (odometer: string, checks: CheckAnswer[]) => Draft;
 }
 
-function DriveHalf({ step, checks, unit, label, from, draft }: DriveHalfProps) {
+function DriveHalf({ step, checks, unit, label, from, likely, draft }: DriveHalfProps) {
   const [odometer, setOdometer] = useState('');
-  const [answers, setAnswers] = useState<Answers>({});
+  const [exceptions, setExceptions] = useState<Exceptions>({});
   const [isOnPad, setOnPad] = useState(true);
-  const complete = Object.keys(answers).length === 0 ? allInOrder(checks) : completeAnswers(checks, answers);
-  const why = !isNumber(odometer)
-    ? 'key in the odometer'
-    : isOnPad
-      ? undefined
-      : complete
-        ? undefined
-        : missingWords(checks, answers);
+  const [isTyping, setTyping] = useState(likely.length === 0);
+  const bad = Object.keys(exceptions).length;
+  const why = isNumber(odometer)
+    ? undefined
+    : isTyping
+      ? 'key in the odometer'
+      : 'touch what the odometer shows';
   return (
     <StepFrame
       step={step}
       side={
-        isOnPad ? (
+        !isOnPad ? null : isTyping ? (
           <Keypad
             label={from === undefined ? 'Odometer before' : 'Odometer after'}
             unit={unit}
@@ -93,7 +89,25 @@ function DriveHalf({ step, checks, unit, label, from, draft }: DriveHalfProps) {
             value={odometer}
             onChange={setOdometer}
           />
-        ) : null
+        ) : (
+          <div className="grid gap-3">
+            <ChoiceRows
+              label={`Odometer ${from === undefined ? 'before' : 'after'}, ${unit}: touch what it shows`}
+              columns={2}
+              choices={likely.map((reading) => ({ value: reading, label: grouped(reading) }))}
+              value={odometer}
+              onChoose={setOdometer}
+            />
+            <QuietButton
+              shape="wide"
+              label="Another reading"
+              onPress={() => {
+                setOdometer('');
+                setTyping(true);
+              }}
+            />
+          </div>
+        )
       }
       heading={
         <h1 className="floor-step pb-3">
@@ -104,9 +118,15 @@ function DriveHalf({ step, checks, unit, label, from, draft }: DriveHalfProps) {
       main={
         <RecordAction
           label={label}
-          next={from === undefined ? 'all in order' : drivenWords(from, odometer, unit)}
-          why={why ?? (complete ? undefined : missingWords(checks, answers))}
-          drafts={() => [draft(decimalText(odometer), complete ?? [])]}
+          next={
+            bad > 0
+              ? `${bad} not in order`
+              : from === undefined
+                ? 'all in order'
+                : drivenWords(from, odometer, unit)
+          }
+          why={why}
+          drafts={() => [draft(decimalText(odometer), answersOf(checks, exceptions))]}
         />
       }
     >
@@ -136,10 +156,15 @@ function DriveHalf({ step, checks, unit, label, from, draft }: DriveHalfProps) {
           <p className="text-soft">Something is not? Touch “Checks”.</p>
         </div>
       ) : (
-        <CheckAnswers label="Checks" checks={checks} answers={answers} onChange={setAnswers} />
+        <CheckAnswers label="Checks" checks={checks} exceptions={exceptions} onChange={setExceptions} />
       )}
     </StepFrame>
   );
+}
+
+/** "143 212": thousands apart, so that digits are compared in threes. */
+function grouped(reading: string): string {
+  return reading.replaceAll(/\B(?=(\d{3})+$)/g, '\u00A0');
 }
 
 function drivenWords(from: string, to: string, unit: DistanceUnit): string | undefined {
@@ -149,7 +174,7 @@ function drivenWords(from: string, to: string, unit: DistanceUnit): string | und
 
 function Driven({ step, from, to, unit }: { step: DrivePlan; from: string; to: string; unit: DistanceUnit }) {
   const driven = Number(to) - Number(from);
-  const asked = askedIn(step, unit);
+  const asked = distanceIn(step, unit);
   return (
     <StepFrame
       step={step}
@@ -169,9 +194,4 @@ function Driven({ step, from, to, unit }: { step: DrivePlan; from: string; to: s
       </p>
     </StepFrame>
   );
-}
-
-function askedIn({ distance, distanceUnit }: DrivePlan, unit: DistanceUnit): number {
-  const asked = Number(distance);
-  return distanceUnit === 'mi' || distanceUnit === 'km' ? convert(asked, distanceUnit, unit) : asked;
 }

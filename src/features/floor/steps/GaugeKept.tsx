@@ -6,6 +6,7 @@ import { Reading } from '@/components/Reading';
 import { Verdict } from '@/components/Verdict';
 import type { ClearanceReading, JobState, RodState } from '@/domain/job-state';
 import { rodsOf, type PlanLimit, type StepOf } from '@/domain/plan';
+import { dataOf } from '../done-words';
 import { NextAction } from '../NextAction';
 import { StepFrame } from '../StepFrame';
 import { limitOnScale, onScale, taperWords, targetWords, type End } from '../gauge-reading';
@@ -18,10 +19,12 @@ interface GaugeKeptProps {
   kept: ClearanceReading;
   onRear: () => void;
   onReadAgain: (end: End) => void;
+  /** The finer way, by micrometer and bore gauge. */
+  onByParts: (end: End) => void;
 }
 
 /** A reading that is kept, its verdict, and all rods together on one scale. */
-export function GaugeKept({ step, rod, kept, onRear, onReadAgain }: GaugeKeptProps) {
+export function GaugeKept({ step, rod, kept, onRear, onReadAgain, onByParts }: GaugeKeptProps) {
   const { state, workshop } = useRun();
   const limit = state.plan.limits[step.limit];
   const deviations = state.deviations.filter((d) => d.step === step.id && !d.disposed && d.blocks);
@@ -29,7 +32,11 @@ export function GaugeKept({ step, rod, kept, onRear, onReadAgain }: GaugeKeptPro
   return (
     <StepFrame
       step={step}
-      side={<PickedBand state={state} clearance={kept.clearance} end={kept.end} rod={step.rod} />}
+      side={
+        isByParts(state, step, kept) ? undefined : (
+          <PickedBand state={state} clearance={kept.clearance} end={kept.end} rod={step.rod} />
+        )
+      }
       heading={
         <div className="flex flex-wrap items-end justify-between gap-x-8 gap-y-4 pb-4">
           <Reading label={`Rod ${rod.rod}, ${kept.end}`} value={kept.clearance} unit={limit.unit} />
@@ -37,6 +44,15 @@ export function GaugeKept({ step, rod, kept, onRear, onReadAgain }: GaugeKeptPro
             <Verdict kind={kept.verdict === 'no limit known' ? 'none' : kept.verdict}>
               <VerdictWords rod={rod} kept={kept} limit={limit} />
             </Verdict>
+            {kept.verdict === 'unsure' && deviations.length === 0 && (
+              <div className="pt-3">
+                <QuietButton
+                  shape="wide"
+                  label={`Measure the ${kept.end} by its parts`}
+                  onPress={() => onByParts(kept.end)}
+                />
+              </div>
+            )}
           </div>
         </div>
       }
@@ -59,13 +75,18 @@ export function GaugeKept({ step, rod, kept, onRear, onReadAgain }: GaugeKeptPro
           isBarred={deviations.length > 0}
           note={`kept ${clockTime(kept.at, workshop.zone)}`}
           onRear={onRear}
-          onReadAgain={onReadAgain}
+          onByParts={onByParts}
         />
       }
     >
       <AllRods state={state} limit={limit} rod={step.rod} />
     </StepFrame>
   );
+}
+
+function isByParts(state: JobState, step: StepOf<'gauge'>, { entry }: ClearanceReading): boolean {
+  const kept = state.steps[step.id]?.entries.find(({ id }) => id === entry);
+  return kept !== undefined && dataOf(kept, 'gauged').by === 'parts';
 }
 
 function VerdictWords({ rod, kept, limit }: { rod: RodState; kept: ClearanceReading; limit: PlanLimit }) {
@@ -89,7 +110,7 @@ function verdictText(kept: ClearanceReading, limit: PlanLimit): string {
     case 'inside':
       return targetWords(kept, limit);
     case 'unsure':
-      return `nearer to a limit than ± ${kept.uncertainty} ${limit.unit} can tell: read or measure again, by a finer way if there is one`;
+      return `nearer to a limit than ± ${kept.uncertainty} ${limit.unit} can tell: a finer way tells`;
     case 'outside':
       return `allowed is ${limit.low ?? '–'} to ${limit.high ?? '–'} ${limit.unit}`;
     case 'no limit known':
@@ -97,13 +118,13 @@ function verdictText(kept: ClearanceReading, limit: PlanLimit): string {
   }
 }
 
-interface AfterReadingProps extends Omit<GaugeKeptProps, 'rod'> {
+interface AfterReadingProps extends Omit<GaugeKeptProps, 'rod' | 'onReadAgain'> {
   rod: RodState;
   isBarred: boolean;
   note: string;
 }
 
-function AfterReading({ step, rod, kept, isBarred, note, onRear, onReadAgain }: AfterReadingProps) {
+function AfterReading({ step, rod, kept, isBarred, note, onRear, onByParts }: AfterReadingProps) {
   const run = useRun();
   if (!rod.rear || !rod.front)
     return <MainAction label="Next: rear" next={note} isBusy={run.isBusy} onPress={onRear} />;
@@ -113,10 +134,10 @@ function AfterReading({ step, rod, kept, isBarred, note, onRear, onReadAgain }: 
   if (unsure && run.state.steps[step.id]?.status !== 'done') {
     return (
       <MainAction
-        label={`Read again: ${unsure.end}`}
+        label={`By its parts: ${unsure.end}`}
         next={kept.end === unsure.end ? note : undefined}
         isBusy={run.isBusy}
-        onPress={() => onReadAgain(unsure.end)}
+        onPress={() => onByParts(unsure.end)}
       />
     );
   }

@@ -24,11 +24,12 @@ interface GaugeReadProps {
   end: End;
   lots: ThreadLots;
   onOtherThread: () => void;
+  onByParts: () => void;
   onKept: () => void;
 }
 
 /** One end of the crankpin against the card; nothing is judged before it is kept. */
-export function GaugeRead({ step, rod, end, lots, onOtherThread, onKept }: GaugeReadProps) {
+export function GaugeRead({ step, rod, end, lots, onOtherThread, onByParts, onKept }: GaugeReadProps) {
   const { state } = useRun();
   const [band, setBand] = useState<string>();
   const [width, setWidth] = useState<string>();
@@ -77,17 +78,22 @@ export function GaugeRead({ step, rod, end, lots, onOtherThread, onKept }: Gauge
             Rod {step.rod}, {end}
           </h1>
           <p className="pt-1 text-lg text-soft">
-            Read the thread where it is widest, in place, against its own card.
+            {end === 'front' &&
+              (step.sets?.cap === 'off' ? 'Cap off straight down, thread left where it sticks. ' : '')}
+            Read it where it is widest, in place, against its own card.
           </p>
         </div>
       }
-      then={end === 'front' ? 'then the rear end of the same journal' : 'then the verdict on both ends'}
+      then={end === 'front' ? 'then the rear end of the same journal' : undefined}
       foot={
-        <div className="flex items-center justify-between gap-4">
+        <div className="flex flex-wrap items-center justify-between gap-x-4 gap-y-2">
           <p>
             {thread}, lot {lots.thread}, card {lots.card}
           </p>
-          <QuietButton shape="wide" label="Other thread" onPress={onOtherThread} />
+          <div className="flex flex-none gap-3">
+            <QuietButton shape="wide" label="By its parts" onPress={onByParts} />
+            <QuietButton shape="wide" label="Other thread" onPress={onOtherThread} />
+          </div>
         </div>
       }
       quiet={

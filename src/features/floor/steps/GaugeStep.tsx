@@ -8,17 +8,23 @@ import { dataOf } from '../done-words';
 import { endToRead, type End, type ThreadLots } from '../gauge-reading';
 import { useRun, type Run } from '../run-context';
 import { GaugeKept } from './GaugeKept';
+import { GaugeParts } from './GaugeParts';
 import { GaugeRead } from './GaugeRead';
 
-/** The oil clearance of one rod: front, then rear, each read off the card and judged after it is kept. */
+/**
+ * The oil clearance of one rod: front, then rear, each read off the card and judged after it is kept. An end that
+ * is inside goes over to the next screen with its verdict; one that isn't has a screen of its own.
+ */
 export function GaugeStep({ step }: { step: StepOf<'gauge'> }) {
   const run = useRun();
   const rod = step.rod === undefined ? undefined : run.state.rods[step.rod];
   const [lots, setLots] = useState(() => lotsInUse(run));
   const [again, setAgain] = useState<End>();
-  const [keptEnd, setKeptEnd] = useState<End | undefined>(rod?.rear ? 'rear' : undefined);
+  const [byParts, setByParts] = useState(false);
+  const [keptEnd, setKeptEnd] = useState<End | undefined>(() => endToShow(run, step));
   const kept = keptEnd !== undefined && again === undefined ? rod?.[keptEnd] : undefined;
-  if (kept && rod) {
+  const isPassing = kept?.verdict === 'inside' && (!rod?.front || !rod.rear);
+  if (kept && rod && !isPassing) {
     return (
       <GaugeKept
         step={step}
@@ -26,11 +32,32 @@ export function GaugeStep({ step }: { step: StepOf<'gauge'> }) {
         kept={kept}
         onRear={() => setKeptEnd(undefined)}
         onReadAgain={(end) => setAgain(end)}
+        onByParts={(end) => {
+          setAgain(end);
+          setByParts(true);
+        }}
+      />
+    );
+  }
+  const end = endToRead(rod, again);
+  function settleKept() {
+    setAgain(undefined);
+    setByParts(false);
+    setKeptEnd(end);
+  }
+  if (byParts) {
+    return (
+      <GaugeParts
+        key={end}
+        step={step}
+        rod={rod}
+        end={end}
+        onThread={() => setByParts(false)}
+        onKept={settleKept}
       />
     );
   }
   if (!lots) return <AskThread step={step} onLots={setLots} />;
-  const end = endToRead(rod, again);
   return (
     <GaugeRead
       key={`${end} ${again ?? ''}`}
@@ -39,12 +66,17 @@ export function GaugeStep({ step }: { step: StepOf<'gauge'> }) {
       end={end}
       lots={lots}
       onOtherThread={() => setLots(undefined)}
-      onKept={() => {
-        setAgain(undefined);
-        setKeptEnd(end);
-      }}
+      onByParts={() => setByParts(true)}
+      onKept={settleKept}
     />
   );
+}
+
+/** The end whose own screen comes first: the rear once it is read, else a front that isn't inside. */
+function endToShow({ state }: Run, { rod }: StepOf<'gauge'>): End | undefined {
+  const present = rod === undefined ? undefined : state.rods[rod];
+  if (present?.rear) return 'rear';
+  return present?.front && present.front.verdict !== 'inside' ? 'front' : undefined;
 }
 
 /** Thread and card as last used on this job, else the only lot of the kit check. */
@@ -52,11 +84,10 @@ function lotsInUse({ state }: Run): ThreadLots | undefined {
   const gauged = Object.values(state.steps)
     .flatMap(({ entries }) => entries.filter(({ kind }) => kind === 'gauged'))
     .sort((a, b) => a.at.localeCompare(b.at))
-    .at(-1);
-  if (gauged) {
-    const { threadLot, cardLot } = dataOf(gauged, 'gauged');
-    return { thread: threadLot, card: cardLot };
-  }
+    .map((kept) => dataOf(kept, 'gauged'))
+    .findLast(({ threadLot }) => threadLot !== undefined);
+  if (gauged?.threadLot !== undefined && gauged.cardLot !== undefined)
+    return { thread: gauged.threadLot, card: gauged.cardLot };
   const known = knownLots(state, 'gauging thread');
   const [only] = known;
   return known.length === 1 && only !== undefined ? { thread: only, card: only } : undefined;

@@ -1,5 +1,4 @@
 import { useState } from 'react';
-import { ChoiceRows } from '@/components/ChoiceRows';
 import { Keypad } from '@/components/Keypad';
 import { MainAction } from '@/components/MainAction';
 import { PinPad } from '@/components/PinPad';
@@ -92,7 +91,7 @@ export function HoldSign({ step, signer, covers, onBack }: HoldSignProps) {
     else setAt(at - 1);
   };
   const next = { step, signer, back, onNext: () => setAt(at + 1) };
-  if (stage === 'look') return <Look {...next} presence={presence} onPresence={setPresence} />;
+  if (stage === 'look') return <Look {...next} onPresence={setPresence} />;
   if (stage === 'count') return <OwnCount {...next} count={count} onCount={setCount} />;
   if (stage === 'reason') return <SecondLook {...next} reason={reason} onReason={setReason} />;
   return (
@@ -146,9 +145,12 @@ function Look({
   signer,
   back,
   onNext,
-  presence,
   onPresence,
-}: StageProps & { presence: Presence | undefined; onPresence: (presence: Presence) => void }) {
+}: StageProps & { onPresence: (presence: Presence) => void }) {
+  const looked = (presence: Presence) => {
+    onPresence(presence);
+    onNext();
+  };
   return (
     <StepFrame
       step={step}
@@ -156,29 +158,24 @@ function Look({
       quiet={<QuietButton label="Back" onPress={back} />}
       main={
         <MainAction
-          label="I have looked"
-          why={presence === undefined ? 'where did you look?' : undefined}
-          onPress={onNext}
+          label="I looked at the vehicle"
+          next="it says so in the record"
+          onPress={() => looked('at the vehicle')}
         />
       }
     >
-      <ChoiceRows
-        label="Where you looked"
-        columns={2}
-        choices={[
-          { value: 'at the vehicle', label: 'At the vehicle' },
-          {
-            value: 'from photographs',
-            label: 'From photographs',
-            why: step.presence === 'vehicle' ? 'this one is signed at the vehicle only' : undefined,
-          },
-        ]}
-        value={presence}
-        onChoose={(value) => onPresence(value === 'at the vehicle' ? value : 'from photographs')}
-      />
-      <div className="pt-5">
-        <HoldEvidence step={step} />
+      <div className="pb-5">
+        {step.presence === 'vehicle' ? (
+          <p className="text-xl">This one is signed at the vehicle only.</p>
+        ) : (
+          <QuietButton
+            shape="wide"
+            label="I looked at photographs only"
+            onPress={() => looked('from photographs')}
+          />
+        )}
       </div>
+      <HoldEvidence step={step} />
     </StepFrame>
   );
 }

@@ -22,10 +22,9 @@ interface SignerChoiceProps {
   onBack: () => void;
 }
 
-/** Who signs: those who may, and why the others may not. */
+/** Who signs: those who may, a touch on the name says it; and why the others may not. */
 export function SignerChoice({ step, onSigner, onBack }: SignerChoiceProps) {
   const run = useRun();
-  const [chosen, choose] = useState<string>();
   const keyTroubles = useKeyTroubles(run.workshop.people, run.canSign);
   const authors = step.class === 'A' ? authorsUnder(run.state, step) : [];
   const people = run.workshop.people.filter(
@@ -34,40 +33,24 @@ export function SignerChoice({ step, onSigner, onBack }: SignerChoiceProps) {
   const choices = people
     .map((person): Choice => choiceFor(person, step, authors, keyTroubles[person.id]))
     .sort((a, b) => Number(a.why !== undefined) - Number(b.why !== undefined));
-  const signer = people.find(({ id }) => id === chosen);
+  function choose(id: string) {
+    const signer = people.find((person) => person.id === id);
+    if (!signer) return;
+    const { name, roles } = signer;
+    onSigner({ id, name, roles, isAuthor: authors.includes(id) });
+  }
   return (
     <StepFrame
       step={step}
       heading={<h1 className="floor-step pb-2">Hand the tablet over. Who signs?</h1>}
       quiet={<QuietButton label="Back" onPress={onBack} />}
-      main={
-        <MainAction
-          label={signer ? `I am ${signer.name}` : 'Who signs?'}
-          why={signer ? undefined : 'touch a name'}
-          onPress={() =>
-            signer &&
-            onSigner({
-              id: signer.id,
-              name: signer.name,
-              roles: signer.roles,
-              isAuthor: authors.includes(signer.id),
-            })
-          }
-        />
-      }
+      main={<MainAction label="Who signs?" why="touch your name" onPress={() => undefined} />}
     >
       <p className="pb-4 text-lg text-soft">
         {step.class === 'A' ? 'Class A: someone who had no hand in this work.' : ''} Signed by:{' '}
         {step.roles.join(' or ')}.
       </p>
-      <ChoiceRows
-        label="Signer"
-        isLabelUnseen
-        columns={2}
-        choices={choices}
-        value={chosen}
-        onChoose={choose}
-      />
+      <ChoiceRows label="Signer" isLabelUnseen columns={2} choices={choices} onChoose={choose} />
     </StepFrame>
   );
 }

@@ -7,21 +7,26 @@ import { following } from '../current-step';
 import { boltName } from '../done-words';
 import { NextAction } from '../NextAction';
 import { RecordAction } from '../RecordAction';
-import { StepCautions, StepFrame } from '../StepFrame';
+import { HowLines, StepCautions, StepFrame } from '../StepFrame';
 import { useRun, type Run } from '../run-context';
 import {
   actionWords,
   afterTouch,
+  isMark,
   nextTouch,
   placeWords,
   stageAmount,
+  touchAmounts,
+  touchBolts,
   touchDrafts,
   wornBolt,
   type TightenTouch,
 } from '../tighten-touch';
-import { fitToolInHand, toolWords, wantedFor, type Hand } from '../tool-choice';
+import { handOf, toolOf, wantedOf } from '../tighten-tool';
+import { toolWords, type Hand } from '../tool-choice';
 import { ReplaceBolt } from './ReplaceBolt';
 import { TightenDrawings } from './TightenDrawings';
+import { ToolToTake } from './ToolToTake';
 import { TypedReading } from './TypedReading';
 import { WasItTurned } from './WasItTurned';
 
@@ -30,7 +35,11 @@ type TightenStepPlan = StepOf<'tighten'>;
 /** The programme of one cap or joint, an action a touch. */
 export function TightenStep({ step }: { step: TightenStepPlan }) {
   const run = useRun();
-  const touch = nextTouch(run.state, step);
+  const touch = nextTouch(
+    run.state,
+    step,
+    (next) => handOf(next) === undefined || toolOf(run, step, next) !== undefined,
+  );
   const isPass = touch?.actions[0].kind === 'stage' && isTorqueOrAngle(touch);
   const asksAbout = isPass && run.askAbout === touch.key;
   const { showAction } = run;
@@ -58,8 +67,8 @@ function TightenAction({ step, touch }: { step: TightenStepPlan; touch: TightenT
   const run = useRun();
   const [isTyping, setTyping] = useState(false);
   const [action] = touch.actions;
-  const hand = handFor(touch);
-  const tool = hand && fitToolInHand(run.state, run.workshop, hand, toolUse(step, touch, hand), run.now());
+  const hand = handOf(action);
+  const tool = toolOf(run, step, action);
   const needsTool = hand !== undefined && step.class === 'A' && !tool;
   if (isTyping && action.kind === 'stage') {
     return <TypedReading step={step} action={action} tool={tool} onClose={() => setTyping(false)} />;
@@ -70,24 +79,28 @@ function TightenAction({ step, touch }: { step: TightenStepPlan; touch: TightenT
       isLoud
       heading={<ActionHeading step={step} touch={touch} run={run} />}
       then={thenWords(run, step, touch)}
-      foot={tool ? <p>{toolWords(tool)}</p> : undefined}
+      foot={needsTool ? undefined : <ToolsWords run={run} step={step} touch={touch} />}
       quiet={<SecondQuiet hand={hand} needsTool={needsTool} onType={() => setTyping(true)} />}
       main={
         needsTool ? (
           <MainAction
             label={hand === 'angle' ? 'Choose the angle gauge' : 'Choose the torque wrench'}
-            next={run.state.tools[hand] ? 'the one in hand doesn’t fit' : 'class A names its tool'}
-            onPress={() => run.openSheet(hand === 'angle' ? 'angle tool' : 'torque tool')}
+            why="touch the one in your hand"
+            onPress={() => undefined}
           />
         ) : (
           <RecordAction
             label={mainLabel(run, step, touch)}
-            drafts={() => touchDrafts(run.state, step, touch, tool)}
+            drafts={() => touchDrafts(run.state, step, touch, (one) => toolOf(run, step, one))}
           />
         )
       }
     >
-      {showsCautions(step, touch) ? null : <TightenDrawings step={step} touch={touch} />}
+      {needsTool ? (
+        <ToolToTake hand={hand} use={wantedOf(step, action, hand)} />
+      ) : isAtHead(step, touch) ? null : (
+        <TightenDrawings step={step} touch={touch} />
+      )}
     </StepFrame>
   );
 }
@@ -102,21 +115,25 @@ function SecondQuiet({
   onType: () => void;
 }): ReactNode {
   const run = useRun();
-  if (hand !== undefined && !needsTool) {
+  if (hand !== undefined && needsTool) {
+    const sheet = hand === 'angle' ? 'angle tool' : 'torque tool';
+    return <QuietButton label="All tools" onPress={() => run.openSheet(sheet)} />;
+  }
+  if (hand !== undefined) {
     return <QuietButton label={hand === 'angle' ? 'Enter angle' : 'Enter torque'} onPress={onType} />;
   }
   return <QuietButton label="Steps" onPress={() => run.openSheet('steps')} />;
 }
 
-/** Cautions stand at the head of the programme; from the second touch on the drawings take their room. */
-function showsCautions(step: TightenStepPlan, { actions: [action] }: TightenTouch): boolean {
-  return step.cautions.length > 0 && action.kind === 'stage' && action.cycle === 0 && action.stage === 0;
+/** Cautions and conditions stand at the head of the programme; from the second touch on the drawings take their room. */
+function isAtHead(step: TightenStepPlan, { actions: [action] }: TightenTouch): boolean {
+  const hasWords = step.cautions.length > 0 || step.how.length > 0;
+  return hasWords && action.kind === 'stage' && action.cycle === 0 && action.stage === 0;
 }
 
 /** Which bolt and how much, equally loud; the name of a joint that is no cap is a heading. */
 function ActionHeading({ step, touch, run }: { step: TightenStepPlan; touch: TightenTouch; run: Run }) {
-  const [action] = touch.actions;
-  const names = touch.actions.map(({ bolt }) => bolt);
+  const names = touchBolts(touch);
   const isShort = names.every((name) => name.length <= 3);
   const { words, figure, unit } = loudWords(run, step, touch);
   return (
@@ -128,30 +145,42 @@ function ActionHeading({ step, touch, run }: { step: TightenStepPlan; touch: Tig
           words={words}
           figure={figure}
           unit={unit}
-          step={placeWords(run.state, step, action)}
+          step={headWords(step, touch) ?? placeWords(run.state, step, touch)}
         />
       </div>
-      {showsCautions(step, touch) && (
+      {isAtHead(step, touch) && (
         <div className="grid gap-3 pt-3">
           <StepCautions step={step} />
+          {step.cautions.length === 0 && <HowLines how={step.how} />}
         </div>
       )}
     </div>
   );
 }
 
+/** At the head of a programme of one cycle stands what the whole step is, rather than which pass comes. */
+function headWords(step: TightenStepPlan, touch: TightenTouch): string | undefined {
+  if (step.sets === undefined || !isAtHead(step, touch)) return undefined;
+  const words = step.title.replace(/^Rod \d+: /, '');
+  return words.charAt(0).toUpperCase() + words.slice(1);
+}
+
 function loudWords(
   run: Run,
   step: TightenStepPlan,
-  { actions: [action] }: TightenTouch,
+  touch: TightenTouch,
 ): { words: string; figure?: string; unit?: string } {
+  const [action] = touch.actions;
   if (action.kind === 'release') return { words: `release: ${releaseReasons[action.because]}` };
   if (action.kind === 'replace') return { words: 'replace' };
   const amount = stageAmount(run.state, step, action);
   switch (action.spec.kind) {
     case 'torque': {
-      const [figure = '', unit = ''] = amount?.split(' ') ?? [];
-      return { words: 'tighten to', figure, unit };
+      const amounts = touchAmounts(run.state, step, touch);
+      const [figure = '', unit = ''] = amounts.at(-1)?.split(' ') ?? [];
+      const lower = amounts.slice(0, -1);
+      const words = lower.length === 0 ? 'tighten to' : `to ${lower.join(', then to ')}, then to`;
+      return { words, figure, unit };
     }
     case 'angle':
       return { words: 'turn through', ...(amount === undefined ? {} : { figure: amount }) };
@@ -169,16 +198,21 @@ const releaseReasons = {
 } as const;
 
 function mainLabel(run: Run, step: TightenStepPlan, touch: TightenTouch): string {
-  const [action, ...others] = touch.actions;
-  if (action.kind !== 'stage') return `Released ${touch.actions.map(({ bolt }) => bolt).join(' and ')}`;
-  const amount = stageAmount(run.state, step, action) ?? '';
+  const [action] = touch.actions;
+  const [, ...others] = touchBolts(touch);
+  if (action.kind !== 'stage') return `Released ${touchBolts(touch).join(' and ')}`;
+  const andMarked = touch.actions.some(isMark) ? ' and marked' : '';
+  const amounts = touchAmounts(run.state, step, touch);
+  const amount = amounts
+    .map((one, i) => (i < amounts.length - 1 ? one.replace(/ N·m$/, '') : one))
+    .join(', then ');
   switch (action.spec.kind) {
     case 'torque':
       return others.length === 0
-        ? `Tightened to ${amount}`
+        ? `Tightened to ${amount}${andMarked}`
         : `${others.length === 1 ? 'Both' : 'All'} at ${amount}`;
     case 'angle':
-      return `Turned ${amount}`;
+      return `Turned ${amount}${andMarked}`;
     case 'release':
       return others.length === 0 ? 'Released' : `${others.length === 1 ? 'Both' : 'All'} released`;
     case 'mark':
@@ -195,15 +229,9 @@ function thenWords(run: Run, step: TightenStepPlan, touch: TightenTouch): string
     : `then ${boltName(step.bolts[0] ?? '')} is finished`;
 }
 
-/** Which tool a touch needs; none for a release or a mark. */
-export function handFor({ actions: [action] }: TightenTouch): Hand | undefined {
-  if (action.kind !== 'stage') return undefined;
-  if (action.spec.kind === 'angle') return 'angle';
-  return action.spec.kind === 'torque' ? 'torque' : undefined;
-}
-
-/** What the touch asks of its tool. */
-export function toolUse(step: TightenStepPlan, { actions: [action] }: TightenTouch, hand: Hand) {
-  const torque = action.kind === 'stage' && action.spec.kind === 'torque' ? action.spec.target : undefined;
-  return wantedFor(hand, step.class, torque);
+/** The tools that a touch is recorded with, each once. */
+function ToolsWords({ run, step, touch }: { run: Run; step: TightenStepPlan; touch: TightenTouch }) {
+  const tools = touch.actions.flatMap((action) => toolOf(run, step, action) ?? []);
+  const words = [...new Set(tools.map(toolWords))];
+  return words.length === 0 ? null : <p>{words.join('; ')}</p>;
 }

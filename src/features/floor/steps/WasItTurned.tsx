@@ -4,25 +4,30 @@ import { QuietButton } from '@/components/QuietButton';
 import type { StepOf } from '@/domain/plan';
 import { useRun } from '../run-context';
 import { StepFrame } from '../StepFrame';
-import { placeWords, stageAmount, touchDrafts, type TightenTouch } from '../tighten-touch';
-import { fitToolInHand, wantedFor } from '../tool-choice';
+import { toolOf } from '../tighten-tool';
+import {
+  placeWords,
+  pullsOf,
+  touchAmounts,
+  touchBolts,
+  touchDrafts,
+  type TightenTouch,
+} from '../tighten-touch';
 
 /** On coming back: what became of the action that stood on the screen. */
 export function WasItTurned({ step, touch }: { step: StepOf<'tighten'>; touch: TightenTouch }) {
   const run = useRun();
   const [action] = touch.actions;
-  const names = touch.actions.map(({ bolt }) => bolt);
+  const names = touchBolts(touch);
   const spec = action.kind === 'stage' ? action.spec : undefined;
-  const amount = action.kind === 'stage' ? stageAmount(run.state, step, action) : undefined;
+  // Lower passes of one touch are asked about by their last: short of it, the answer is No.
+  const amount = touchAmounts(run.state, step, touch).at(-1);
   const question =
     spec?.kind === 'angle'
       ? 'was it turned?'
       : names.length > 1
         ? 'were they tightened?'
         : 'was it tightened?';
-  const hand = spec?.kind === 'angle' ? 'angle' : 'torque';
-  const torque = spec?.kind === 'torque' ? spec.target : undefined;
-  const tool = fitToolInHand(run.state, run.workshop, hand, wantedFor(hand, step.class, torque), run.now());
   const unsure = {
     kind: 'started-again' as const,
     step: step.id,
@@ -42,7 +47,7 @@ export function WasItTurned({ step, touch }: { step: StepOf<'tighten'>; touch: T
             words={question}
             figure={amount?.split(' ')[0]}
             unit={amount?.split(' ')[1]}
-            step={placeWords(run.state, step, action)}
+            step={placeWords(run.state, step, touch)}
           />
         </div>
       }
@@ -54,7 +59,9 @@ export function WasItTurned({ step, touch }: { step: StepOf<'tighten'>; touch: T
           shape="wide"
           sign="tick"
           label="Yes"
-          onPress={() => void run.record(touchDrafts(run.state, step, touch, tool))}
+          onPress={() =>
+            void run.record(touchDrafts(run.state, step, pullsOf(touch), (one) => toolOf(run, step, one)))
+          }
         />
         <QuietButton shape="wide" sign="cross" label="No" onPress={run.settleAction} />
         <QuietButton

@@ -21,9 +21,8 @@ async function handToSigner({ isOnline = true } = {}) {
 
 async function lookAndCount(count: string) {
   await userEvent.setup().click(screen.getByRole('radio', { name: /^S. Visor/ }));
-  await press(/^I am S. Visor/);
-  await userEvent.setup().click(screen.getByRole('radio', { name: 'At the vehicle' }));
-  await press(/^I have looked/);
+  expect(screen.queryByRole('button', { name: /photographs only/ })).toBeNull();
+  await press(/^I looked at the vehicle/);
   expect(main()).toHaveTextContent('your own count');
   await key(count);
   await press(new RegExp(`^I counted ${count}`));

@@ -93,11 +93,10 @@ describe('a step on the Floor', () => {
 
   it('takes a check that is not in order with its words, and stays for the deviation', async () => {
     const { user, journal, last } = await runAt('strip.shell-look@1U');
-    const check = within(screen.getByRole('group', { name: 'Is shell 1U sound?' }));
-    await user.click(check.getByRole('button', { name: 'Not in order' }));
+    await user.click(screen.getByRole('button', { name: 'Is shell 1U sound?' }));
     await user.click(screen.getByRole('button', { name: 'Say what is wrong' }));
     await user.type(screen.getByRole('textbox', { name: /^What is wrong/ }), 'copper shows');
-    await user.click(screen.getByRole('button', { name: /^Keep, 1 not in order/ }));
+    await user.click(screen.getByRole('button', { name: /^Keep: not in order/ }));
     expect(last()).toMatchObject({ data: { checks: [{ ok: false, note: 'copper shows' }] } });
     expect(journal.state.deviations.at(-1)).toMatchObject({ rule: 'not-in-order' });
     expect(screen.getByText(/A deviation is open on this step/)).toBeVisible();
@@ -175,19 +174,70 @@ describe('a step on the Floor', () => {
 
   it('drives the road test with the odometer before and after', async () => {
     const { user, last } = await runAt('build.drive');
-    await screen.findByRole('button', { name: '1' });
+    await user.click(await screen.findByRole('button', { name: 'Another reading' }));
     await key(user, '1000');
     await user.click(screen.getByRole('button', { name: /^Start the road test/ }));
     expect(last()).toMatchObject({ kind: 'drive-started', data: { odometer: '1000', unit: 'km' } });
+    await user.click(screen.getByRole('button', { name: 'Another reading' }));
     await key(user, '0990');
     await user.click(screen.getByRole('button', { name: /^End the road test/ }));
     expect(screen.getByRole('alert')).toHaveTextContent('An odometer does not run backwards.');
     for (let i = 0; i < 3; i += 1)
       await user.click(screen.getByRole('button', { name: 'erase the last digit' }));
-    await key(user, '1020');
+    await key(user, '1001');
     await user.click(screen.getByRole('button', { name: /^End the road test/ }));
-    expect(last()).toMatchObject({ kind: 'drive-ended', data: { odometer: '1020' } });
-    expect(screen.getByText('20')).toBeVisible();
+    expect(last()).toMatchObject({ kind: 'drive-ended', data: { odometer: '1001' } });
+    expect(screen.getByText(/That is less than asked/)).toBeVisible();
+  });
+
+  it('offers what the odometer is likely to show, and moves on from a road test that was long enough', async () => {
+    const { user, journal, last } = await runAt('build.drive');
+    const [likely] = await screen.findAllByRole('radio');
+    await user.click(likely!);
+    await user.click(screen.getByRole('button', { name: /^Start the road test/ }));
+    expect(last()).toMatchObject({ data: { odometer: journal.state.odometer!.value } });
+    await user.click(screen.getAllByRole('radio')[0]!);
+    expect(main()).toHaveTextContent(/ km driven/);
+    await user.click(screen.getByRole('button', { name: /^End the road test/ }));
+    expect(screen.getByRole('heading', { name: 'Hand over' })).toBeVisible();
+  });
+
+  it('keeps a gap by the blade that passes at two touches, and has keys for another value', async () => {
+    const plan = smallPlan();
+    const sideClearance = { ...plan.limits.sideClearance!, low: '0.15', high: '0.30' };
+    const journal = new Journal({ ...plan, limits: { ...plan.limits, sideClearance } });
+    const step = plan.steps.find(({ kind }) => kind === 'read')!.id;
+    render(<FixtureRun journal={journal.performUntil(step)} start={{ step, isVisit: false }} />);
+    const user = userEvent.setup();
+    const last = () => journal.entries.at(-1);
+    await waitFor(() => expect(main()).toHaveTextContent('touch a blade'));
+    await user.click(screen.getByRole('button', { name: 'Other value' }));
+    await key(user, '0.23');
+    expect(main()).toHaveTextContent('Keep 0.23 mm');
+    await user.click(screen.getByRole('button', { name: 'By blade' }));
+    await user.click(screen.getByRole('button', { name: '0.20 mm' }));
+    expect(screen.queryByText('Inside')).toBeNull();
+    await user.click(screen.getByRole('button', { name: /^Keep 0.20 mm/ }));
+    expect(last()).toMatchObject({ kind: 'read', data: { value: '0.20', unit: 'mm', how: 'typed' } });
+    const verdict = within(screen.getByRole('region', { name: 'The reading just kept' }));
+    expect(verdict.getByText('Inside')).toBeVisible();
+  });
+
+  it('takes a lot from a scanner that types it and ends with Enter, without a touch', async () => {
+    const { user, last } = await runAt('strip.old-shell-kit');
+    await user.keyboard('r-77');
+    expect(screen.getByRole('textbox')).toHaveValue('R-77');
+    await user.keyboard('{Enter}');
+    expect(last()).toMatchObject({ kind: 'fitted', data: { lot: 'R-77' } });
+    expect(screen.getByText(/Shells on the trolley, lot R-77$/)).toBeVisible();
+  });
+
+  it('lets a second scan replace the first', async () => {
+    const { user } = await runAt('strip.old-shell-kit');
+    await user.keyboard('A1');
+    screen.getByRole('textbox').blur();
+    await user.keyboard('B2');
+    expect(screen.getByRole('textbox')).toHaveValue('B2');
   });
 
   it('lets whoever may witness a point say so', async () => {

@@ -51,9 +51,14 @@ function hold(name: RegExp) {
 describe('the tightening programme', () => {
   it('asks for the tool before the first pass of class A, and for nothing else', async () => {
     const { onSheet, made } = runCap(0, { tools: false });
-    await press(/^Choose the torque wrench/);
+    expect(main()).toHaveTextContent('touch the one in your hand');
+    await press(/^All tools/);
     expect(onSheet).toHaveBeenCalledWith('torque tool');
     expect(made()).toEqual([]);
+    await userEvent.setup().click(screen.getByRole('radio', { name: torqueTool.name }));
+    expect(made()).toMatchObject([{ kind: 'tool-taken', data: { use: 'torque', tool: torqueTool } }]);
+    await press(/^Both at /);
+    expect(made().at(-1)).toMatchObject({ kind: 'tightened', data: { tool: { serial: torqueTool.serial } } });
   });
 
   it('records a lower torque pass on both bolts at one touch, each with its tool', async () => {
