@@ -1,4 +1,4 @@
-import type { TrailChecks } from './trail';
+import type { TrailChecks } from './trail-checks';
 import { isMadeByServer } from './trail-chain';
 import { requireWhole, type TrailBody } from './trail-export';
 import { identityCommitment } from './trail-hash';

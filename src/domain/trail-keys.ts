@@ -1,4 +1,4 @@
-import type { TrailChecks } from './trail';
+import type { TrailChecks } from './trail-checks';
 import { requireBytes, requireWhole, type TrailExport } from './trail-export';
 import { keyMessage } from './trail-hash';
 

@@ -1,5 +1,5 @@
 import { createPublicKey, type KeyObject, verify } from 'node:crypto';
-import type { TrailChecks, VerifySignature } from '@/domain/trail';
+import type { TrailChecks, VerifySignature } from '@/domain/trail-checks';
 import { sha256Hex } from './crypto';
 import { hmacSha256 } from './job-identity';
 

@@ -19,9 +19,9 @@ import {
   headMessage,
   identityCommitment,
   keyMessage,
-  type TrailChecks,
 } from '@/domain/trail';
 import { NO_PREVIOUS } from '@/domain/trail-chain';
+import type { TrailChecks } from '@/domain/trail-checks';
 import type { TrailBody } from '@/domain/trail-export';
 
 /*

@@ -1,7 +1,7 @@
 import { hmac } from '@noble/hashes/hmac.js';
 import { sha256 } from '@noble/hashes/sha2.js';
 import { bytesToHex } from '@noble/hashes/utils.js';
-import type { TrailChecks, VerifySignature } from '@/domain/trail';
+import type { TrailChecks, VerifySignature } from '@/domain/trail-checks';
 
 const ECDSA = { name: 'ECDSA', namedCurve: 'P-256' };
 
