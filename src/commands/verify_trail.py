@@ -221,7 +221,7 @@ def ed25519_holds(public_key, message, signature):
 
 
 def _ed_point(coded):
-    """The point of 32 bytes by RFC 8032 section 5.1.3, in extended coordinates (x, y, z, t); None if there is none."""
+    """The point of 32 bytes by RFC 8032 section 5.1.3, as (x, y, z, t) with t = xy/z; None if there is none."""
     y = int.from_bytes(coded, "little")
     odd, y = y >> 255, y & (2**255 - 1)
     if y >= ED_P:
@@ -833,21 +833,28 @@ def main(arguments=None):
         with open(asked.file, "rb") as file:
             data = file.read()
         report = verify(data, asked.head, asked.key, asked.photographs)
-    except (OSError, ValueError) as error:
-        print("It can't be read: %s" % _plain(str(error)), file=sys.stderr)
+    except OSError as error:
+        what = asked.file if error.filename is None else str(error.filename)
+        _say(sys.stderr, "%s can't be read: %s." % (what, error.strerror or "no reason was given"))
         return 2
     if report.outcome == "whole":
-        print("Whole: %s" % _plain(asked.file))
-        for note in report.notes:
-            print(_plain(note[0].upper() + note[1:]))
+        _say(sys.stdout, "Whole: %s" % asked.file, *(note[0].upper() + note[1:] for note in report.notes))
         return 0
     if report.outcome == "broken":
-        print("Broken: %s" % _plain(asked.file))
-        print("At %s: %s" % (_plain(report.place), _plain(report.why)))
+        _say(sys.stdout, "Broken: %s" % asked.file, "At %s: %s" % (report.place, report.why))
         return 1
-    print("Not a trail: %s" % _plain(asked.file))
-    print(_plain(report.why))
+    _say(sys.stdout, "Not a trail: %s" % asked.file, report.why)
     return 2
+
+
+def _say(stream, *lines):
+    """Prints lines; a reader who has seen enough and went away changes nothing about the verdict."""
+    try:
+        stream.write("".join(_plain(line) + "\n" for line in lines))
+        stream.flush()
+    except BrokenPipeError:
+        # Python would try once more as it ends.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), stream.fileno())
 
 
 def _read_arguments(arguments):

@@ -1,5 +1,6 @@
 import { generateKeyPairSync, type KeyPairKeyObjectResult, sign } from 'node:crypto';
 import { canonicalJson, hashJson } from '@/domain/canonical';
+import { contentOf } from '@/domain/trail';
 import type { TrailBody, TrailExport } from '@/domain/trail-export';
 import { sha256, workshopKeyOf } from './sealed-trail';
 
@@ -174,9 +175,8 @@ export function replaceAuthorKey(body: TrailBody, id: string): string {
     own,
   );
   for (const entry of body.entries.filter(({ key }) => key === id)) {
-    const { seq, recordedAt, prev, clockOffsetMs, pin, conflict, ...content } = entry.recorded;
     const key = { key: forgedAuthor.privateKey, dsaEncoding: 'ieee-p1363' as const };
-    const message = Buffer.from(hashJson(content, sha256));
+    const message = Buffer.from(hashJson(contentOf(entry.recorded), sha256));
     entry.signature = sign('sha256', message, key).toString('base64url');
     entry.key = own.id;
   }
