@@ -1,4 +1,4 @@
-import { bytesOf, type Sha256 } from '@/domain/canonical';
+import { bytesOf } from '@/domain/canonical';
 import {
   type ChainedEntry,
   isMadeByServer,
