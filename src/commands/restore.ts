@@ -6,14 +6,15 @@ import { readSettings } from '@/server/settings';
 import { readPassphrase } from './passphrase';
 
 /*
- * npm run restore -- FILE [--even-if-broken]
+ * npm run restore -- FILE [--erasures FILE] [--even-if-broken]
  *
  * Makes the data folder anew from a backup, after checking the database, every chain and every photograph.
  * DATA_DIR must be empty or not there. Exit 0 restored, 1 not.
  */
 
-const USAGE = `Use it like this: npm run restore -- FILE [--even-if-broken]
+const USAGE = `Use it like this: npm run restore -- FILE [--erasures FILE] [--even-if-broken]
   FILE  an archive that npm run backup has written
+  --erasures  erasures.jsonl of the data folder that is replaced, so that what was erased since stays erased
 The passphrase is asked for, or taken from BACKUP_PASSPHRASE.`;
 
 /** Restores and prints what was checked. */
@@ -21,7 +22,7 @@ export async function main(args: string[], cwd: string): Promise<number> {
   try {
     const { values, positionals } = parseArgs({
       args,
-      options: { 'even-if-broken': { type: 'boolean', default: false } },
+      options: { 'even-if-broken': { type: 'boolean', default: false }, erasures: { type: 'string' } },
       allowPositionals: true,
     });
     const [name, ...more] = positionals;
@@ -31,6 +32,7 @@ export async function main(args: string[], cwd: string): Promise<number> {
     const restored = await restoreBackup(path.resolve(cwd, name), dataDir, passphrase, {
       clock: systemClock,
       evenIfBroken: values['even-if-broken'],
+      erasures: values.erasures === undefined ? undefined : path.resolve(cwd, values.erasures),
     });
     const { jobs, entries, heads, breaks } = restored.check;
     console.log(`Restored: ${dataDir}, as it was at ${restored.madeAt}.`);

@@ -9,6 +9,8 @@ export interface JobPhoto {
   from: 'camera here' | 'from file';
   at: string;
   step?: string | undefined;
+  /** It shows who the customer is or which vehicle, so that an erasure may take it. */
+  identity?: true | undefined;
   /** The tablet that took it, on which its bytes are until they are sent. */
   device: string;
 }
@@ -54,5 +56,8 @@ function isDisposedOf(state: JobState, { hash }: JobPhoto): boolean {
 function asPhoto({ id, at, data, step, device }: Kept): JobPhoto[] {
   if (!('photo' in data)) return [];
   const { photo, subject, from } = data;
-  return [{ entry: id, hash: photo, subject, from, at, device, ...(step === undefined ? {} : { step }) }];
+  const marked = data.identity === true ? { identity: true as const } : {};
+  return [
+    { entry: id, hash: photo, subject, from, at, device, ...marked, ...(step === undefined ? {} : { step }) },
+  ];
 }

@@ -1,4 +1,14 @@
-import { mkdir, mkdtemp, readdir, readFile, rename, rm, writeFile } from 'node:fs/promises';
+import {
+  constants,
+  copyFile,
+  mkdir,
+  mkdtemp,
+  readdir,
+  readFile,
+  rename,
+  rm,
+  writeFile,
+} from 'node:fs/promises';
 import path from 'node:path';
 import SqliteDatabase from 'better-sqlite3';
 import pino from 'pino';
@@ -8,6 +18,7 @@ import { THE_WORKSHOP } from './actor';
 import { BACKUP_FORMAT, BackupError, describe, toDisk } from './backup';
 import type { Clock } from './clock';
 import { closeApp, openApp } from './compose';
+import { ERASURES_FILE, readErasures } from './erasure';
 import { checkRecord, type RecordCheck } from './record-check';
 import { openKeyFiles } from './sealed-keys';
 import { appendWorkshopEntry } from './workshop-trail';
@@ -45,7 +56,11 @@ export async function restoreBackup(
   file: string,
   dataDir: string,
   passphrase: string,
-  { clock, evenIfBroken = false }: { clock: Clock; evenIfBroken?: boolean },
+  {
+    clock,
+    evenIfBroken = false,
+    erasures,
+  }: { clock: Clock; evenIfBroken?: boolean; erasures?: string | undefined },
 ): Promise<Restored> {
   await requireEmpty(dataDir);
   await mkdir(path.dirname(dataDir), { recursive: true });
@@ -59,6 +74,7 @@ export async function restoreBackup(
     const missing = await checkPhotographs(made);
     const check = await openAndNote(made, manifest.madeAt, clock, evenIfBroken);
     for (const name of ['manifest.json', 'keys.sealed']) await rm(path.join(made, name));
+    if (erasures !== undefined) await takeErasures(erasures, made);
     await toDisk(made);
     await rm(dataDir, { recursive: true, force: true });
     await rename(made, dataDir);
@@ -67,6 +83,21 @@ export async function restoreBackup(
   } catch (error) {
     await rm(made, { recursive: true, force: true });
     throw error;
+  }
+}
+
+/** What was erased since the backup is erased again at the next start. */
+async function takeErasures(file: string, folder: string): Promise<void> {
+  try {
+    await readErasures(file);
+    await copyFile(file, path.join(folder, ERASURES_FILE), constants.COPYFILE_EXCL);
+  } catch (error) {
+    throw new BackupError(
+      `${file} could not be taken over as the erasures: ${words(error)}. Nothing was changed.`,
+      {
+        cause: error,
+      },
+    );
   }
 }
 

@@ -179,7 +179,9 @@ export function record(
 
 type ServersOwn =
   | { id: string; kind: 'refused'; data: EntryData<'refused'> }
-  | { id: string; kind: 'restored'; data: EntryData<'restored'> };
+  | { id: string; kind: 'restored'; data: EntryData<'restored'> }
+  | { id: string; kind: 'tablet-lost'; data: EntryData<'tablet-lost'> }
+  | { id: string; kind: 'erased'; data: EntryData<'erased'> };
 
 /** An entry that the server makes for the record itself. */
 export function recordByServer(batch: Batch, fold: JobFold, made: ServersOwn): Recorded {

@@ -180,6 +180,11 @@ export async function openTable(): Promise<Table> {
     // Refused until an address was chosen.
     'POST /api/workshop/witness': { body: {} },
     'GET /api/mail': {},
+    // Refused while the job is running.
+    'POST /api/jobs/{id}/erase': {
+      params: { id: job.id },
+      body: { fields: ['customerName'], photographs: [], reason: 'asked for' },
+    },
   };
   return { shop, tablet, job, sent };
 }
