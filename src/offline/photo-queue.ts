@@ -26,6 +26,18 @@ export async function sendPhotos(s: Surroundings): Promise<Outcome> {
   return trouble ?? { ok: true };
 }
 
+/**
+ * A restore takes back what was sent after the backup, also where the trail has nothing missing. Once for each
+ * restore; a photograph that is there is taken again without harm.
+ */
+export async function sendPhotosAgain({ db }: Surroundings, restoredAt: string): Promise<void> {
+  await db.transaction('rw', db.meta, db.photos, async () => {
+    if ((await db.meta.get('restoredAt'))?.value === restoredAt) return;
+    await db.photos.toCollection().modify({ sent: 0 });
+    await db.meta.put({ key: 'restoredAt', value: restoredAt });
+  });
+}
+
 async function sendPhoto(s: Surroundings, { hash, type }: PhotoRow, bytes: ArrayBuffer): Promise<Outcome> {
   const answer = await callServer(s, {
     method: 'PUT',

@@ -40,6 +40,8 @@ export const syncAnswer = z.object({
     }),
   ),
   workshop: z.int(),
+  /** When the server was last restored from a backup. */
+  restoredAt: z.nullish(z.string()),
   /** The tablet's clock minus the server's. */
   clockOffsetMs: z.optional(z.int()),
 });

@@ -245,6 +245,23 @@ describe('a server restored from a backup', () => {
   });
 });
 
+describe('photographs that a restore took back', () => {
+  it('are sent again although their record was in the backup', async () => {
+    const photo = picture('arrival');
+    recorded(await recordEntries(offline, job, [photographed(photo)], { by: 'tech', photos: [photo] }));
+    must(await offline.sync.now());
+    const backup = server.backup();
+    server.restore(backup);
+    expect(server.photos.size).toBe(0);
+    must(await offline.sync.now());
+    expect([...server.photos.keys()]).toEqual([photo.hash]);
+    const sent = () => server.requests.filter(({ path }) => path.startsWith('/api/photos')).length;
+    const before = sent();
+    must(await offline.sync.now());
+    expect(sent()).toBe(before);
+  });
+});
+
 describe('photographs', () => {
   it('go after the records, and wait for a network as they do', async () => {
     server.isAway = true;

@@ -5,7 +5,7 @@
  */
 import type { JobRow } from './database';
 import { keepDevice, readDevice, type Device } from './device';
-import { sendPhotos } from './photo-queue';
+import { sendPhotos, sendPhotosAgain } from './photo-queue';
 import { fetchMissingPlans, pullWorkshop } from './prefetch';
 import { callServer, type Outcome, type Trouble } from './server-call';
 import { instantOf, type Surroundings } from './surroundings';
@@ -104,11 +104,12 @@ async function applyJobs(
 async function afterwards(
   s: Surroundings,
   device: Device,
-  { workshop: workshopSeq, clockOffsetMs }: SyncAnswer,
+  { workshop: workshopSeq, clockOffsetMs, restoredAt }: SyncAnswer,
 ): Promise<Outcome> {
   if (device.mustEnrolAgain) await keepDevice(s.db, { ...device, mustEnrolAgain: undefined });
   if (clockOffsetMs !== undefined) await s.db.meta.put({ key: 'clock', value: clockOffsetMs });
   // Whatever else fails: a handover waits at the server for photographs, and for nothing else of these.
+  if (restoredAt) await sendPhotosAgain(s, restoredAt);
   const photos = await sendPhotos(s);
   const workshop = await s.db.workshop.get('workshop');
   if (!workshop || workshop.seq < workshopSeq) {

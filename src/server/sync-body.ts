@@ -87,6 +87,8 @@ export const syncAnswerSchema = z.strictObject({
     }),
   ),
   workshop: z.int(),
+  /** When the server was last restored from a backup: photographs that were sent before may be lost again. */
+  restoredAt: instant.nullable(),
   /** Tablet clock minus server clock; more than five minutes is told to the person. */
   clockOffsetMs: z.int(),
 });

@@ -25,7 +25,7 @@ import { makeUpLost } from './lost-workshop';
 import { type ReadItem, readItem } from './sync-read';
 import { restoresMet } from './sync-restored';
 import { judgeItem, type NeedsPin } from './sync-verdict';
-import { readWorkshopHistory } from './workshop-history';
+import { readWorkshopHistory, type WorkshopHistory } from './workshop-history';
 
 /*
  * One round trip of a tablet: what it recorded goes in, what others recorded comes back. Every entry gets its
@@ -37,6 +37,7 @@ export interface SyncResult {
   verdicts: EntryVerdict[];
   jobs: PulledJob[];
   workshop: number;
+  restoredAt: string | null;
   clockOffsetMs: number;
 }
 
@@ -90,6 +91,7 @@ function newestNamed(items: readonly ReadItem[], proofs: ReadonlyMap<number, boo
 interface Pulled {
   jobs: PulledJob[];
   workshop: number;
+  restoredAt: string | null;
 }
 
 /** An entry tripped a rule up while states were changed in place: nothing is kept, and all is judged again. */
@@ -146,7 +148,7 @@ async function oneRound(
     return {
       found: judged.verdicts,
       folds: changed,
-      result: judged.needsPin ?? (await pull(trx, device, body)),
+      result: judged.needsPin ?? (await pull(trx, device, body, history)),
     };
   });
   rememberFolds(app.db, folds);
@@ -158,7 +160,12 @@ async function oneRound(
   return result;
 }
 
-async function pull(trx: Trx, device: Device, body: SyncBody): Promise<Pulled> {
+async function pull(
+  trx: Trx,
+  device: Device,
+  body: SyncBody,
+  { restoredAt }: WorkshopHistory,
+): Promise<Pulled> {
   const jobs = await pullJobs(trx, device, body.jobs);
   const last = await trx
     .selectFrom('workshop_entry')
@@ -166,7 +173,7 @@ async function pull(trx: Trx, device: Device, body: SyncBody): Promise<Pulled> {
     .orderBy('seq', 'desc')
     .limit(1)
     .executeTakeFirst();
-  return { jobs, workshop: last?.seq ?? 0 };
+  return { jobs, workshop: last?.seq ?? 0, restoredAt };
 }
 
 /** Judges entries in the order in which they came; those that wait are tried again when others went in. */

@@ -20,6 +20,8 @@ export interface WorkshopHistory {
   at(seq: number): Workshop;
   /** The last entry that was there at a time, RFC 3339 UTC in milliseconds. */
   seqAt(time: string): number;
+  /** When the server was last restored from a backup, as far as the trail tells. */
+  restoredAt: string | null;
 }
 
 interface Remembered {
@@ -27,6 +29,7 @@ interface Remembered {
   /** When each entry was made; entry `n` is at index `n − 1`. */
   times: string[];
   calibratedOn: Map<string, string>;
+  restoredAt: string | null;
 }
 
 /** What a database's trail came to when it was last read; entries are never changed, so it only grows. */
@@ -52,16 +55,18 @@ export async function readWorkshopHistory(db: Db, reader: Db = db): Promise<Work
     seq,
     at: (wanted) => ({ ...momentAt(moments, wanted).workshop, seq: Math.min(wanted, seq) }),
     seqAt: (time) => countUpTo(times, time),
+    restoredAt: memory.restoredAt,
   };
 }
 
 function begin(): Remembered {
   const workshop = { seq: 0, zone: 'UTC', people: [], tools: [] };
-  return { moments: [{ seq: 0, workshop }], times: [], calibratedOn: new Map() };
+  return { moments: [{ seq: 0, workshop }], times: [], calibratedOn: new Map(), restoredAt: null };
 }
 
 function remember(memory: Remembered, row: { seq: number; kind: string; at: string; body: string }): void {
   memory.times.push(row.at);
+  if (row.kind === 'restored') memory.restoredAt = row.at;
   const before = momentAt(memory.moments, row.seq).workshop;
   const { data } = JSON.parse(row.body) as { data: Data };
   const after = applyWorkshopEntry(before, row.kind, data, memory.calibratedOn);

@@ -4,9 +4,11 @@ import { POST as postJobs } from '@/pages/api/jobs/index';
 import type { Entry, Recorded } from '@/domain/entry';
 import { contentOf, verifyTrail } from '@/domain/trail';
 import { nodeChecks } from '@/server/trail-checks';
+import { THE_WORKSHOP } from '@/server/actor';
 import { getFold } from '@/server/job-fold';
 import { setActive } from '@/server/people';
 import { setWorkshop } from '@/server/workshop';
+import { appendWorkshopEntry } from '@/server/workshop-trail';
 import type { ScriptedEntry } from '@db/scripted-work';
 import {
   ask,
@@ -169,6 +171,25 @@ describe('an act on a view that a restore took back', () => {
     const data = { deviation: job.id, disposition: 'accept as is', reason: 'It was so.' } as const;
     const verdict = await judged({ kind: 'deviation-disposed', data }, shop.people.supervisor);
     expect(verdict).toMatchObject({ verdict: 'refused' });
+  });
+});
+
+describe('the time of the last restore', () => {
+  it('is told to every tablet that syncs', async () => {
+    const sync = () =>
+      pushTo(tablet.credential, {
+        device: tablet.device,
+        sentAt: new Date(tablet.now).toISOString(),
+        jobs: [],
+        entries: [],
+      });
+    expect(await sync()).toMatchObject({ restoredAt: null });
+    const { app } = shop;
+    const data = { backupMadeAt: app.clock.now().toISOString(), breaks: 0 };
+    await app.db
+      .transaction()
+      .execute((trx) => appendWorkshopEntry(trx, THE_WORKSHOP, { kind: 'restored', data }, app));
+    expect(await sync()).toMatchObject({ restoredAt: app.clock.now().toISOString() });
   });
 });
 

@@ -75,6 +75,7 @@ export class OfflineServer {
   judge: Judge = () => undefined;
   /** Changes an answer on its way. */
   onAnswer: (path: string, answer: unknown) => unknown = (_path, answer) => answer;
+  private restoredAt: string | null = null;
   private devices = new Map<string, string>();
   private keys = new Map<string, { person: string; device: string; point: Uint8Array<ArrayBuffer> }>();
   private plans = new Map<string, Plan>();
@@ -133,6 +134,8 @@ export class OfflineServer {
   }
 
   restore(backup: string): void {
+    this.clock += 1000;
+    this.restoredAt = this.stamp();
     this.jobs.clear();
     for (const job of JSON.parse(backup) as JobRecord[]) this.jobs.set(job.id, job);
     this.photos.clear();
@@ -256,7 +259,10 @@ export class OfflineServer {
     for (const pushed of body.entries)
       verdicts.push({ id: pushed.entry.id, ...(await this.receive(pushed)) });
     const jobs = body.jobs.map(({ id, have }) => this.pageOf(id, have));
-    return [200, { at: this.stamp(), verdicts, jobs, workshop: this.workshop.seq }];
+    return [
+      200,
+      { at: this.stamp(), verdicts, jobs, workshop: this.workshop.seq, restoredAt: this.restoredAt },
+    ];
   }
 
   private pageOf(id: string, have: { seq: number; hash: string } | null): unknown {
