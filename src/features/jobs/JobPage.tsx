@@ -6,6 +6,7 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { engineView } from '@/domain/engine-view';
 import { JobBlocks } from './JobBlocks';
 import { JobClearances } from './JobClearances';
+import { JobErasure } from './JobErasure';
 import { JobFacts, JobHeadFacts } from './JobFacts';
 import { JobNext } from './JobNext';
 import { JobPeople } from './JobPeople';
@@ -25,7 +26,11 @@ export interface JobPageProps {
   /** May this person run jobs on the Floor? */
   canRun: boolean;
   canReadTrail: boolean;
+  /** May this person erase who the customer was? */
+  canErase?: boolean | undefined;
 }
+
+const HAS_ENDED: readonly string[] = ['handed over', 'ended unfinished'];
 
 /** One job: how far it is, what blocks it, who works on it, and what is known of it. */
 export function JobPage(props: JobPageProps) {
@@ -51,7 +56,14 @@ function LoadedJob(props: JobPageProps) {
   return <p role="status">Reading the job</p>;
 }
 
-function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & { answer: JobAnswer }) {
+function Job({
+  answer,
+  zone,
+  canAssign,
+  canRun,
+  canReadTrail,
+  canErase = false,
+}: JobPageProps & { answer: JobAnswer }) {
   const { jobState } = answer;
   const next = answer.next && jobState.plan.steps.find(({ id }) => id === answer.next?.step);
   return (
@@ -103,6 +115,7 @@ function Job({ answer, zone, canAssign, canRun, canReadTrail }: JobPageProps & {
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
           <JobSignatures state={jobState} zone={zone} />
           <JobPhotos state={jobState} zone={zone} missing={answer.missingPhotographs} />
+          {canErase && HAS_ENDED.includes(jobState.phase) && <JobErasure job={answer} />}
         </div>
         <JobFacts job={answer} />
       </div>
