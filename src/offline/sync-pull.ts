@@ -6,6 +6,7 @@ import { officeKinds, type EntryKind } from '@/domain/entry';
 import { NO_PREVIOUS } from '@/domain/trail-chain';
 import { changeJob, ofJob, type EntryRow, type FloorDatabase, type JobRow, type OutboxRow } from './database';
 import { findDevice } from './device';
+import { forgetErased, forgetGone } from './forget';
 import { entryOf } from './hashing';
 import { readPage, type JobAnswer } from './sync-answer';
 
@@ -17,7 +18,10 @@ export async function applyJobAnswer(
   at: string,
 ): Promise<boolean> {
   if (answer.gone) {
-    await db.transaction('rw', db.jobs, () => noteStopped(db, asked.id, GONE));
+    await db.transaction('rw', [db.jobs, db.outbox, db.photos, db.photoBytes], async () => {
+      await noteStopped(db, asked.id, GONE);
+      await forgetGone(db, asked.id);
+    });
     return false;
   }
   return answer.restored ? takeRestored(db, asked, answer, at) : takePage(db, asked, answer);
@@ -40,13 +44,14 @@ async function takePage(
   answer: JobAnswer,
 ): Promise<boolean> {
   const page = readPage(asked.id, asked.have, answer.entries);
-  const tables = [db.jobs, db.entries, db.outbox, db.refused, db.counters, db.meta];
+  const tables = [db.jobs, db.entries, db.outbox, db.refused, db.counters, db.meta, db.photos, db.photoBytes];
   return db.transaction('rw', tables, async () => {
     const row = await db.jobs.get(asked.id);
     // Another tab was quicker: its page is already here, and this one starts from an older place.
     if (!row || row.have?.seq !== asked.have?.seq || row.have?.hash !== asked.have?.hash) return false;
     const taken = await takeRows(db, page.rows);
     await dropRecorded(db, asked.id, page.rows.slice(0, taken));
+    await forgetErased(db, asked.id, page.rows.slice(0, taken));
     const stopped = taken === page.rows.length ? page.stopped : OTHER_CONTENT;
     const last = page.rows[taken - 1];
     if (!answer.more && !stopped) {

@@ -123,6 +123,14 @@ export class OfflineServer {
     job.plan = to;
   }
 
+  /** The office erases personal data of a job. */
+  erase(jobId: string, data: { fields: string[]; photographs: string[] }): void {
+    const job = this.jobs.get(jobId)!;
+    const told = { ...data, reason: 'asked for', decidedBy: 'own' };
+    this.append(job, { entry: this.officeEntry(job, 'erased', told), signature: null, key: null });
+    for (const hash of data.photographs) this.photos.delete(hash);
+  }
+
   /** The entries of a job as they were made, in the order of the trail. */
   entriesOf(job: string): Row['recorded'][] {
     return this.jobs.get(job)!.rows.map(({ recorded }) => recorded);
@@ -362,7 +370,11 @@ export class OfflineServer {
     return row;
   }
 
-  private officeEntry(job: JobRecord, kind: 'opened' | 'plan-moved' | 'refused', data: object): Entry {
+  private officeEntry(
+    job: JobRecord,
+    kind: 'opened' | 'plan-moved' | 'refused' | 'erased',
+    data: object,
+  ): Entry {
     const number = (job.numbers.office ?? 0) + 1;
     job.numbers.office = number;
     const isOpening = kind !== 'refused';
