@@ -1,0 +1,131 @@
+/* A run from its seed to its verdict. */
+import 'fake-indexeddb/auto';
+import { chooseHappenings } from './happenings';
+import type { Rows } from './disk';
+import { checkAll, checkTablet } from './invariants';
+import { Run, wordsOf } from './run';
+
+const HOUR = 3_600_000;
+/** The last events that are shown of a run that broke. */
+const SHOWN = 30;
+
+export interface Result {
+  seed: number;
+  /** What did not hold, in words; undefined if all did. */
+  broken?: string | undefined;
+  /** Everything that happened, in order. */
+  events: string[];
+  /** How many records were told to be on a tablet. */
+  told: number;
+}
+
+/** What is to be read of a run that broke. */
+export function wordsOfResult({ seed, broken = 'Everything held.', events }: Result): string {
+  const shown = events.slice(-SHOWN).map((event) => `  ${event}`);
+  return [
+    `Seed ${seed}: ${broken}`,
+    `The last ${shown.length} of ${events.length} events:`,
+    ...shown,
+    `Again: npm run simulate -- --from ${seed} --seeds 1`,
+  ].join('\n');
+}
+
+/** Runs one seed. */
+export async function simulate(seed: number): Promise<Result> {
+  const run = await Run.open(seed);
+  let broken: string | undefined;
+  try {
+    await live(run);
+    await comeToRest(run);
+    await checkAll(run);
+    run.complain();
+  } catch (error) {
+    broken = wordsOf(error);
+  } finally {
+    await run.close();
+  }
+  return { seed, broken, events: run.log, told: run.told.size };
+}
+
+async function live(run: Run): Promise<void> {
+  const { chance, beginning } = run;
+  const [one, other] = [chance.pick(beginning.jobs), chance.pick(beginning.jobs)];
+  run.jobs = chance.happens(0.2) && one !== other ? [one, other] : [one];
+  for (const disk of beginning.disks)
+    await run.addTablet(ofJobs(disk, run.jobs), run.jobs, chance.happens(0.8));
+  const happen = chooseHappenings(run);
+  const events = chance.between(30, 90);
+  for (let n = 0; n < events; n += 1) {
+    await happen(run);
+    await run.turns.take(
+      chance.weigh([
+        [3, 5],
+        [3, 40],
+        [2, 200],
+      ] as const),
+    );
+    if (chance.happens(0.04)) await lookAround(run);
+    run.complain();
+  }
+}
+
+/** What of a disk these jobs need. */
+function ofJobs(disk: Rows, jobs: readonly string[]): Rows {
+  const only = (table: string, by: 'job' | 'id') =>
+    (disk.get(table) as { job: string; id: string }[]).filter((row) => jobs.includes(row[by]));
+  return new Map(disk).set('entries', only('entries', 'job')).set('jobs', only('jobs', 'id'));
+}
+
+/** Lets what is put off on the tablets come to its end, and looks at their records. */
+async function lookAround(run: Run): Promise<void> {
+  await run.turns.rest();
+  for (const { tabs } of run.tablets) {
+    const tab = tabs.find(({ offline }) => offline.db.isOpen());
+    if (tab) await checkTablet(run, tab);
+  }
+}
+
+/** The faults end, every tablet is opened once, and all of them sync until nothing moves any more. */
+async function comeToRest(run: Run): Promise<void> {
+  run.note('from here on nothing goes wrong');
+  const { network, turns } = run;
+  for (const call of network.echoes) await network.arriveAgain(call);
+  for (const call of [...network.there, ...network.back]) network.lose(call);
+  for (const tablet of run.tablets) {
+    tablet.isAway = false;
+    tablet.fill(false);
+    await turns.rest();
+    for (const tab of [...tablet.tabs]) tab.kill(true);
+    tablet.openTab();
+  }
+  let before = '';
+  for (let round = 0; round < 15; round += 1) {
+    for (const { tabs, name } of run.tablets) {
+      const [tab] = tabs;
+      if (!tab) throw new Error(`${name} has no page.`);
+      const outcome = await run.finish(tab.offline.sync.now(), { network: true });
+      if (!outcome.ok) run.note(`${name}: ${outcome.why} (${outcome.code})`);
+    }
+    const now = await standOf(run);
+    if (now === before) return;
+    before = now;
+    // A lock on somebody's PIN ends.
+    run.clock.now += 25 * HOUR;
+  }
+  throw new Error('The tablets never came to rest.');
+}
+
+/** Where everything stands, to see whether it still moves. */
+async function standOf(run: Run): Promise<string> {
+  const parts: unknown[] = [];
+  for (const { tabs } of run.tablets) {
+    const db = tabs[0]!.offline.db;
+    const rows = await run.finish(db.outbox.toArray());
+    const jobs = await run.finish(db.jobs.toArray());
+    parts.push(
+      rows.map(({ id, where }) => [id, where]),
+      jobs.map(({ have }) => have),
+    );
+  }
+  return JSON.stringify(parts);
+}
