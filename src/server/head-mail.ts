@@ -1,3 +1,4 @@
+import { headCode } from '@/domain/head-code';
 import type { SignedHead } from '@/domain/trail-export';
 import { dayAndTime } from '@/domain/time-words';
 import { type Actor, requireRole } from './actor';
@@ -50,11 +51,6 @@ export async function sendTrialLetter(trx: Trx, actor: Actor, app: Making): Prom
   const subject = `${name}: a trial letter`;
   const body = `Signed heads of ${name} will come to this address. Keep every letter: with it you can find out later whether a trail was cut short or written anew.\n`;
   await queueMail(trx, { purpose: 'trial', job: null, address, subject, body }, app);
-}
-
-/** A head as a line that can be printed, scanned, and compared letter by letter. */
-export function headCode({ trail, seq, hash, at, key, signature }: SignedHead): string {
-  return ['witnessmark-head', '1', trail, seq, hash, at, key, signature].join(' ');
 }
 
 interface HeadOfJob {

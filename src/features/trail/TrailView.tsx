@@ -1,6 +1,7 @@
 import { useCallback, useDeferredValue, useMemo, useState } from 'react';
 import { TrailStrip } from '@/components/TrailStrip';
 import { dayOf } from '@/domain/time-words';
+import { HeadCode } from './HeadCode';
 import { JobAsItStood } from './JobAsItStood';
 import { Ledger } from './Ledger';
 import { VerificationNote } from './VerificationNote';
@@ -49,7 +50,7 @@ export function TrailView({ job, trail, zone }: TrailViewProps) {
             </span>
           )}
         </h1>
-        <VerificationNote job={job} trail={trail} />
+        <VerificationNote job={job} trail={trail} zone={zone} />
       </header>
       <TrailStrip
         total={total}
@@ -61,6 +62,9 @@ export function TrailView({ job, trail, zone }: TrailViewProps) {
       <div className="trail-both">
         <Ledger lines={lines} position={shown} onPick={setPosition} onWalk={walk} />
         {entry && <JobAsItStood state={stateAt(shown)} entry={entry} zone={zone} />}
+      </div>
+      <div className="print-only">
+        <HeadCode trail={trail} zone={zone} />
       </div>
     </div>
   );

@@ -5,7 +5,9 @@ import { readTrail } from './read-trail';
 import { VerificationNote } from './VerificationNote';
 
 function show(text: string) {
-  render(<VerificationNote job="0147" trail={readTrail(new TextEncoder().encode(text))} />);
+  render(
+    <VerificationNote zone="Europe/Lisbon" job="0147" trail={readTrail(new TextEncoder().encode(text))} />,
+  );
 }
 
 describe('what the reader’s own browser says of a trail', () => {
@@ -29,6 +31,16 @@ describe('what the reader’s own browser says of a trail', () => {
     show(seal(buildTrailBody(4)));
     expect(await screen.findByText(/can’t check the workshop’s signatures/)).toBeVisible();
     expect(screen.queryByText(/Unbroken/)).not.toBeInTheDocument();
+  });
+
+  it('comes with the newest signed head as a code to scan and a line to keep', () => {
+    const body = buildTrailBody(4);
+    show(seal(body));
+    const { hash, signature } = body.heads.at(-1)!;
+    expect(screen.getByRole('img', { name: 'Signed head at entry 4' })).toBeInTheDocument();
+    expect(
+      screen.getByText(new RegExp(`^witnessmark-head 1 .* 4 ${hash} .* ${signature}$`)),
+    ).toBeInTheDocument();
   });
 
   it('comes with the way to check it without the workshop', () => {

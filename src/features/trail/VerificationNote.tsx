@@ -1,18 +1,20 @@
 import { useEffect, useState } from 'react';
 import { Verdict } from '@/components/Verdict';
 import { verifyTrail, type TrailVerdict } from '@/domain/trail';
+import { HeadCode } from './HeadCode';
 import { browserChecks, canCheckHere } from './browser-checks';
 import type { ReadTrail } from './read-trail';
 
 export interface VerificationNoteProps {
   job: string;
   trail: ReadTrail;
+  zone: string;
 }
 
 type Outcome = TrailVerdict | 'checking' | 'not here';
 
 /** What this very browser found when it checked the trail, entry by entry, and how to do it elsewhere. */
-export function VerificationNote({ job, trail }: VerificationNoteProps) {
+export function VerificationNote({ job, trail, zone }: VerificationNoteProps) {
   const [outcome, setOutcome] = useState<Outcome>('checking');
   useEffect(() => {
     let isGone = false;
@@ -49,6 +51,7 @@ export function VerificationNote({ job, trail }: VerificationNoteProps) {
               ))}
             </>
           )}
+          <HeadCode trail={trail} zone={zone} />
         </details>
       </div>
     </div>

@@ -3,14 +3,14 @@ import { bytesToHex } from '@noble/hashes/utils.js';
 import { hashJson } from '@/domain/canonical';
 import type { Recorded } from '@/domain/entry';
 import type { Plan } from '@/domain/plan';
-import type { TrailExport } from '@/domain/trail-export';
+import type { SignedHead, TrailExport } from '@/domain/trail-export';
 
 /** A trail as the page shows it. */
 export interface ReadTrail {
   number: string;
   plans: Map<string, Plan>;
   entries: { recorded: Recorded; hash: string }[];
-  heads: { seq: number; at: string }[];
+  heads: SignedHead[];
   /** The bytes as the server signed them, for verification. */
   bytes: Uint8Array<ArrayBuffer>;
 }
@@ -53,7 +53,7 @@ export function readTrail(bytes: Uint8Array<ArrayBuffer>): ReadTrail {
     plans,
     // An entry of a newer form than this page knows is shown by its kind alone; see trail-lines.ts.
     entries: body.entries.map(({ recorded, hash }) => ({ recorded: recorded as unknown as Recorded, hash })),
-    heads: body.heads.filter(({ trail }) => trail === body.job.id).map(({ seq, at }) => ({ seq, at })),
+    heads: body.heads.filter(({ trail }) => trail === body.job.id),
     bytes,
   };
 }
