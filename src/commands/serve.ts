@@ -47,7 +47,8 @@ export async function serve(env: NodeJS.ProcessEnv, root: string): Promise<void>
 
 /** Sends through the mail service, or to its fake on this machine where none is set. */
 async function startMail(app: App, settings: Settings): Promise<{ stop: () => Promise<void> }> {
-  if (settings.mail !== undefined) return { stop: keepMailSent(app, serviceMailer(settings.mail, 'service')) };
+  if (settings.mail !== undefined)
+    return { stop: keepMailSent(app, serviceMailer(settings.mail, 'service')) };
   const local = await startLocalMail();
   const stopSending = keepMailSent(app, serviceMailer(local, 'here'));
   return {
