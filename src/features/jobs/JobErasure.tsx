@@ -31,8 +31,8 @@ export function JobErasure({ job }: { job: JobAnswer }) {
     <section className="part no-print">
       <h2 className="part-title">Personal data</h2>
       <p className="page-words">
-        The trail holds no names: it stays whole when they go. What is erased can&rsquo;t be brought back, not
-        from a backup either.
+        The trail holds nothing of the customer but proofs: it stays whole when this goes. What is erased
+        can&rsquo;t be brought back, not from a backup either.
       </p>
       <Button look="quiet" onClick={() => setOpen(true)}>
         Erase personal data
@@ -92,23 +92,30 @@ function ErasureDialog({ job, left, photographs, onClose }: ErasureDialogProps) 
         </Button>
       }
     >
-      {left.map(([field, label]) => (
-        <Checkbox key={field} label={label} checked={fields.includes(field)} onChange={() => toggle(field)} />
-      ))}
-      {photographs.length > 0 && (
-        <Checkbox
-          label={`${photographs.length} ${photographs.length === 1 ? 'photograph' : 'photographs'} marked “shows identity”`}
-          checked={withPictures}
-          onChange={() => setWithPictures(!withPictures)}
+      <div className="grid gap-3">
+        {left.map(([field, label]) => (
+          <Checkbox
+            key={field}
+            label={label}
+            checked={fields.includes(field)}
+            onChange={() => toggle(field)}
+          />
+        ))}
+        {photographs.length > 0 && (
+          <Checkbox
+            label={`${photographs.length} ${photographs.length === 1 ? 'photograph' : 'photographs'} marked “shows identity”`}
+            checked={withPictures}
+            onChange={() => setWithPictures(!withPictures)}
+          />
+        )}
+        <TextField
+          label="Reason"
+          value={reason}
+          maxLength={500}
+          onChange={(event) => setReason(event.target.value)}
+          hint="It stays in the trail, so write no name into it."
         />
-      )}
-      <TextField
-        label="Reason"
-        value={reason}
-        maxLength={500}
-        onChange={(event) => setReason(event.target.value)}
-        hint="It stays in the trail, so write no name into it."
-      />
+      </div>
       {trouble !== undefined && (
         <ErrorNote happened={trouble} kept="Nothing was erased." next="Mend it and try again." />
       )}

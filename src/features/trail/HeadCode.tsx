@@ -12,9 +12,7 @@ export function HeadCode({ trail, zone }: { trail: ReadTrail; zone: string }) {
     <section className="trail-code">
       <ScanCode text={code} label={`Signed head at entry ${head.seq}`} />
       <div>
-        <h2 className="part-title">
-          Signed head at entry <span className="figure">{head.seq}</span>
-        </h2>
+        <h2 className="part-title">{`Signed head at entry ${head.seq}`}</h2>
         <p>
           Signed {dayAndTime(head.at, zone)}. Print it or keep the line below: with it anybody can find out
           later whether this trail was cut short or written anew.
