@@ -228,9 +228,6 @@ export const judgementKinds = [
   'revoked',
 ] as const satisfies EntryKind[];
 
-/** Kinds after which a sealed PIN travels beside the entry. */
-export const pinKinds = ['signed', 'countersigned', 'took-over'] as const satisfies EntryKind[];
-
 export const envelopeSchema = z.strictObject({
   v: z.literal(1),
   id: uuid,

@@ -8,9 +8,6 @@ export type Db = Kysely<Database>;
 /** An open transaction; a function that must be atomic asks for it in its type. */
 export type Trx = Transaction<Database>;
 
-/** Anything that can be read from; a transaction is one too. */
-export type Reader = Db;
-
 /** SQLite can change its tables inside a transaction, so that a migration happens whole or not at all. */
 class TransactionalSqliteAdapter extends SqliteAdapter {
   override get supportsTransactionalDdl(): boolean {
