@@ -19,7 +19,7 @@ export interface RunningApp {
   kill(): Promise<void>;
   /** Asks the server to stop, waits, and gives its exit code. */
   stop(): Promise<number | null>;
-  /** Starts the server again on the same port and data folder. */
+  /** Starts the server again on the same port and data folder; it may be killed while it starts. */
   restart(): Promise<void>;
   /** Stops the server and deletes its data folder. */
   dispose(): Promise<void>;
@@ -30,9 +30,10 @@ export async function startApp(env: Record<string, string> = {}): Promise<Runnin
   const port = await freePort();
   const dataDir = await mkdtemp(path.join(tmpdir(), 'witnessmark-'));
   let printed = '';
-  let child = await launch();
+  let child = launch();
+  await readiness(child, () => printed);
 
-  async function launch(): Promise<ChildProcess> {
+  function launch(): ChildProcess {
     const started = spawn(process.execPath, ['src/commands/serve.mjs'], {
       cwd: ROOT,
       env: { ...process.env, PORT: String(port), DATA_DIR: dataDir, DEMO: 'on', ...env },
@@ -43,7 +44,6 @@ export async function startApp(env: Record<string, string> = {}): Promise<Runnin
     };
     started.stdout.on('data', remember);
     started.stderr.on('data', remember);
-    await readiness(started, () => printed);
     return started;
   }
 
@@ -67,7 +67,8 @@ export async function startApp(env: Record<string, string> = {}): Promise<Runnin
     restart: async () => {
       await end('SIGKILL');
       printed = '';
-      child = await launch();
+      child = launch();
+      await readiness(child, () => printed);
     },
     dispose: async () => {
       await end('SIGKILL');
