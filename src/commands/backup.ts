@@ -20,14 +20,19 @@ export async function main(args: string[], cwd: string): Promise<number> {
   const [name, ...more] = args;
   if (name === undefined || name.startsWith('-') || more.length > 0) return say(`Name one file.\n${USAGE}`);
   try {
-    const { dataDir } = readSettings(process.env, process.cwd());
+    const { dataDir, bucket } = readSettings(process.env, process.cwd());
     const passphrase = await readPassphrase(process.env, { twice: true });
     const file = path.resolve(cwd, name);
-    const { database, photographs, missing } = await writeBackup(dataDir, file, passphrase, systemClock);
+    const { database, photographs, missing } = await writeBackup(dataDir, file, passphrase, {
+      clock: systemClock,
+      hasBucket: bucket !== undefined,
+    });
     console.log(`Written: ${file}`);
     console.log(
       `Database of ${Math.ceil(database.bytes / 1000)} kB, ${photographs} picture files, and the keys.`,
     );
+    if (bucket !== undefined)
+      console.log(`Photographs lie in the bucket ${bucket.bucket}: back it up there.`);
     for (const hash of missing) console.log(`Photograph ${hash} was not in the data folder.`);
     console.log('Keep the passphrase elsewhere: without it the keys are lost.');
     return 0;

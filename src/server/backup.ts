@@ -23,6 +23,8 @@ export interface Manifest {
   database: { bytes: number; hash: string };
   keys: { hash: string };
   photographs: number;
+  /** They lie in a bucket, and are backed up there. */
+  elsewhere: boolean;
   /** Photographs that a row names and whose bytes were not there. */
   missing: string[];
 }
@@ -38,7 +40,7 @@ export async function writeBackup(
   dataDir: string,
   file: string,
   passphrase: string,
-  clock: Clock,
+  { clock, hasBucket = false }: { clock: Clock; hasBucket?: boolean },
 ): Promise<Manifest> {
   await requireAbsent(file);
   const staging = await mkdtemp(`${file}.`);
@@ -46,7 +48,9 @@ export async function writeBackup(
   try {
     await copyDatabase(path.join(dataDir, 'witnessmark.db'), path.join(staging, 'witnessmark.db'));
     await writeFile(path.join(staging, 'keys.sealed'), await sealKeys(dataDir, passphrase));
-    const { present, missing } = await findPhotographs(dataDir, path.join(staging, 'witnessmark.db'));
+    const { present, missing } = hasBucket
+      ? { present: [], missing: [] }
+      : await findPhotographs(dataDir, path.join(staging, 'witnessmark.db'));
     const manifest: Manifest = {
       v: 1,
       format: BACKUP_FORMAT,
@@ -54,6 +58,7 @@ export async function writeBackup(
       database: await describe(path.join(staging, 'witnessmark.db')),
       keys: { hash: (await describe(path.join(staging, 'keys.sealed'))).hash },
       photographs: present.length,
+      elsewhere: hasBucket,
       missing,
     };
     await writeFile(path.join(staging, 'manifest.json'), JSON.stringify(manifest, undefined, 2));

@@ -21,7 +21,8 @@ export interface App {
 }
 
 /** The part of the settings that the program inside the server needs. */
-export type AppSettings = Pick<Settings, 'dataDir' | 'publicUrl' | 'demo'>;
+export type AppSettings = Pick<Settings, 'dataDir' | 'publicUrl' | 'demo'> &
+  Partial<Pick<Settings, 'bucket'>>;
 
 export interface OpenOptions {
   clock?: Clock;

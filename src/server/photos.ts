@@ -5,6 +5,7 @@ import { type App } from './compose';
 import { stamp } from './clock';
 import { sha256Hex } from './crypto';
 import { type Asker, isDevice } from './asker';
+import { bucketStorage } from './bucket-storage';
 import type { Db } from './database';
 import type { Device } from './devices';
 import { AppError, notFound } from './errors';
@@ -27,9 +28,16 @@ const LIMIT_PIXELS = 50_000_000;
 
 const THUMBNAIL_EDGE = 480;
 
-/** The photographs' place in the data folder. */
+const storages = new WeakMap<App, Storage>();
+
+/** Where photographs lie: in the bucket that is set, else in the data folder. */
 export function photoStorage(app: App): Storage {
-  return folderStorage(path.join(app.settings.dataDir, 'photos'));
+  const { bucket, dataDir } = app.settings;
+  const known = storages.get(app);
+  if (known !== undefined) return known;
+  const opened = bucket === undefined ? folderStorage(path.join(dataDir, 'photos')) : bucketStorage(bucket);
+  storages.set(app, opened);
+  return opened;
 }
 
 /** Keeps a photograph under its hash; the same one sent again does no harm. */

@@ -40,6 +40,7 @@ const manifestSchema = z.strictObject({
   database: z.strictObject({ bytes: z.int(), hash }),
   keys: z.strictObject({ hash }),
   photographs: z.int(),
+  elsewhere: z.boolean(),
   missing: z.array(hash),
 });
 
@@ -71,7 +72,7 @@ export async function restoreBackup(
     await checkFiles(made, manifest);
     await openKeysInto(made, passphrase);
     checkDatabase(path.join(made, 'witnessmark.db'));
-    const missing = await checkPhotographs(made);
+    const missing = manifest.elsewhere ? [] : await checkPhotographs(made);
     const check = await openAndNote(made, manifest.madeAt, clock, evenIfBroken);
     for (const name of ['manifest.json', 'keys.sealed']) await rm(path.join(made, name));
     if (erasures !== undefined) await takeErasures(erasures, made);

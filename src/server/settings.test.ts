@@ -55,4 +55,31 @@ describe('readSettings', () => {
     expect(trustedProxies.check('10.2.0.1')).toBe(false);
     expect(read({}).trustedProxies.check('127.0.0.1')).toBe(false);
   });
+
+  it.each([
+    [{ MAIL_FROM: 'Workshop <a@b.example>' }, /MAIL_API_KEY/],
+    [{ MAIL_API_KEY: 'k', MAIL_FROM: 'nobody' }, /MAIL_FROM is "nobody"/],
+    [{ MAIL_API_KEY: 'k', MAIL_FROM: 'a@b.example', MAIL_BASE_URL: 'there' }, /MAIL_BASE_URL/],
+    [{ S3_BUCKET: 'photos', S3_REGION: 'eu' }, /S3_ACCESS_KEY_ID is not set/],
+    [
+      { S3_BUCKET: 'p', S3_REGION: 'e', S3_ACCESS_KEY_ID: 'k', S3_SECRET_ACCESS_KEY: 's', S3_ENDPOINT: 'x' },
+      /S3_ENDPOINT/,
+    ],
+  ])('says what to set for services that are set by half: %o', (env, words) => {
+    expect(() => readSettings(env, '/srv')).toThrow(words);
+  });
+
+  it('reads the mail service and the bucket', () => {
+    expect(readSettings({ MAIL_API_KEY: 'k', MAIL_FROM: 'Workshop <a@b.example>' }, '/srv').mail).toEqual({
+      apiKey: 'k',
+      from: 'Workshop <a@b.example>',
+      baseUrl: undefined,
+    });
+    const bucket = { S3_BUCKET: 'p', S3_REGION: 'e', S3_ACCESS_KEY_ID: 'k', S3_SECRET_ACCESS_KEY: 's' };
+    expect(readSettings(bucket, '/srv').bucket).toMatchObject({
+      bucket: 'p',
+      region: 'e',
+      endpoint: undefined,
+    });
+  });
 });

@@ -17,6 +17,18 @@ export interface Settings {
   trustedProxies: BlockList;
   /** The mail service; without one mail stays on this machine. */
   mail: MailSettings | undefined;
+  /** The bucket that photographs lie in; without one they lie in the data folder. */
+  bucket: BucketSettings | undefined;
+}
+
+/** An object store that speaks S3, and who asks it. */
+export interface BucketSettings {
+  bucket: string;
+  region: string;
+  /** Another store than that of the region. */
+  endpoint: string | undefined;
+  keyId: string;
+  secret: string;
 }
 
 /** How the mail service is reached. */
@@ -52,6 +64,7 @@ export function readSettings(env: Readonly<Record<string, string | undefined>>, 
     demo: readDemo(env.DEMO, publicUrl),
     trustedProxies: readTrustedProxies(env.TRUST_PROXY),
     mail: readMail(env),
+    bucket: readBucket(env),
   };
 }
 
@@ -107,6 +120,26 @@ function readDemo(text: string | undefined, publicUrl: URL): boolean {
     default:
       throw new SettingsError(`DEMO is "${text}". Set it to "on" or "off", or leave it out.`);
   }
+}
+
+function readBucket(env: Readonly<Record<string, string | undefined>>): BucketSettings | undefined {
+  const given = (name: string) => env[name]?.trim() || undefined;
+  const bucket = given('S3_BUCKET');
+  if (bucket === undefined) return undefined;
+  const [region, keyId, secret] = ['S3_REGION', 'S3_ACCESS_KEY_ID', 'S3_SECRET_ACCESS_KEY'].map((name) => {
+    const value = given(name);
+    if (value !== undefined) return value;
+    throw new SettingsError(
+      `S3_BUCKET is "${bucket}", and ${name} is not set. Set it, or leave S3_BUCKET out to keep photographs in the data folder.`,
+    );
+  }) as [string, string, string];
+  const endpoint = given('S3_ENDPOINT');
+  if (endpoint !== undefined && !URL.canParse(endpoint)) {
+    throw new SettingsError(
+      `S3_ENDPOINT is "${endpoint}", which is no address. Set it to that of the store, for example https://objects.example.`,
+    );
+  }
+  return { bucket, region, endpoint, keyId, secret };
 }
 
 function readMail(env: Readonly<Record<string, string | undefined>>): MailSettings | undefined {

@@ -25,10 +25,15 @@ export function folderStorage(folder: string): Storage {
   };
 }
 
+/** A key as it was given, if it is one: nothing else names a place anywhere. */
+export function requireKey(key: string): string {
+  if (!KEY.test(key)) throw new RangeError(`"${key}" is no storage key.`);
+  return key;
+}
+
 /** Two levels of folders, so that none of them grows to a hundred thousand files. */
 function fileOf(folder: string, key: string): string {
-  if (!KEY.test(key)) throw new RangeError(`"${key}" is no storage key.`);
-  const [kind = '', name = ''] = key.split('/');
+  const [kind = '', name = ''] = requireKey(key).split('/');
   return path.join(folder, kind, name.slice(0, 2), name);
 }
 

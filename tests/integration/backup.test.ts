@@ -66,7 +66,7 @@ async function raise(words: string): Promise<void> {
 const archive = () => path.join(folder, 'workshop.tar');
 const target = () => path.join(folder, 'restored');
 const backUp = (passphrase = PASSPHRASE) =>
-  writeBackup(shop.app.settings.dataDir, archive(), passphrase, shop.app.clock);
+  writeBackup(shop.app.settings.dataDir, archive(), passphrase, { clock: shop.app.clock });
 const restore = (options: { passphrase?: string; evenIfBroken?: boolean } = {}) =>
   restoreBackup(archive(), target(), options.passphrase ?? PASSPHRASE, {
     clock: shop.app.clock,
@@ -134,6 +134,13 @@ describe('a backup', () => {
     expect(bytes.includes(keys[0]!.privateKey)).toBe(false);
     await expect(restore({ passphrase: 'another passphrase' })).rejects.toThrow('does not open the keys');
     expect(readdirSync(folder)).toEqual(['workshop.tar']);
+  });
+
+  it('leaves photographs that lie in a bucket to the bucket', async () => {
+    const { clock, settings } = shop.app;
+    const manifest = await writeBackup(settings.dataDir, archive(), PASSPHRASE, { clock, hasBucket: true });
+    expect(manifest).toMatchObject({ photographs: 0, elsewhere: true, missing: [] });
+    expect((await restore()).missing).toEqual([]);
   });
 
   it('is never written over another', async () => {

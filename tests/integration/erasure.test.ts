@@ -120,7 +120,7 @@ describe('an erasure after handover', () => {
       const archive = path.join(folder, 'workshop.tar');
       const target = path.join(folder, 'restored');
       const { dataDir } = shop.app.settings;
-      await writeBackup(dataDir, archive, PASSPHRASE, shop.app.clock);
+      await writeBackup(dataDir, archive, PASSPHRASE, { clock: shop.app.clock });
       await erase({ photographs: [MARKED] });
       await restoreBackup(archive, target, PASSPHRASE, {
         clock: shop.app.clock,
