@@ -1,6 +1,6 @@
 import { generateKeyPairSync, type KeyObject, sign } from 'node:crypto';
 import { hashJson } from '@/domain/canonical';
-import type { Entry, Recorded } from '@/domain/entry';
+import type { Entry, EntryData, Recorded } from '@/domain/entry';
 import { applyEntry, emptyJob, evidenceFor, mayRecord, nextSteps } from '@/domain/job';
 import type { JobState, Workshop } from '@/domain/job-state';
 import { findStep, type Plan, type PlanStep, type StepOf } from '@/domain/plan';
@@ -8,6 +8,8 @@ import { authorKeyId, contentHash, contentOf } from '@/domain/trail';
 import { sha256Hex } from '@/server/crypto';
 import { sealingSuite } from '@/server/sealing';
 import { evidenceDigest } from '@/domain/job-evidence';
+import { unsignedUnder } from '@/domain/job-signing-rules';
+import { phaseToSign, unsignedWork } from '@/domain/job-work';
 import type { EntryVerdict } from '@/server/sync-body';
 import { type Kit, nextScripted, type ScriptedEntry, scriptedSignature } from './scripted-work';
 
@@ -155,11 +157,15 @@ export class ScriptedTablet {
     return entry;
   }
 
-  /** Signs a hold point over exactly the evidence that this tablet holds. */
-  sign(job: string, holdStep: string, options: RecordOptions): Promise<Entry> {
-    const { plan, state } = this.held(job);
-    const step = findStep(plan, holdStep);
+  /** Signs a hold point over exactly the evidence that this tablet holds, once its authors signed for their work. */
+  async sign(job: string, holdStep: string, options: RecordOptions): Promise<Entry> {
+    const step = findStep(this.held(job).plan, holdStep);
     if (step?.kind !== 'hold') throw new RangeError(`"${holdStep}" is no hold point.`);
+    for (const { by } of unsignedUnder(this.held(job).state, step, this.workshop)) {
+      const author = this.workshop.people.find(({ id }) => id === by);
+      if (author && this.keys.has(by)) await this.signWork(job, author);
+    }
+    const { state } = this.held(job);
     const data = { ...scriptedSignature(state, step, options.by), covers: this.coverage(job, step) };
     const pin = options.pin ?? options.by.pin;
     return this.record(
@@ -169,12 +175,27 @@ export class ScriptedTablet {
     );
   }
 
-  private coverage(
+  /** A person signs for all that they have recorded and not signed for yet; false where there is nothing. */
+  async signWork(job: string, by: ScriptedPerson, options: Omit<RecordOptions, 'by'> = {}): Promise<boolean> {
+    const own = unsignedWork(this.held(job).state, by.id);
+    if (own.length === 0) return false;
+    await this.record(
+      job,
+      { kind: 'work-signed', data: { covers: this.coverageOf(job, own) } },
+      { ...options, by, with: [] },
+    );
+    return true;
+  }
+
+  private coverage(job: string, step: StepOf<'hold'>): EntryData<'signed'>['covers'] {
+    return this.coverageOf(job, evidenceFor(this.held(job).state, step.id));
+  }
+
+  private coverageOf(
     job: string,
-    step: StepOf<'hold'>,
-  ): { upTo: Record<string, number>; count: number; digest: string } {
-    const { state, hashes } = this.held(job);
-    const evidence = evidenceFor(state, step.id);
+    evidence: readonly { id: string; device: string; deviceSeq: number }[],
+  ): EntryData<'signed'>['covers'] {
+    const { hashes } = this.held(job);
     const upTo: Record<string, number> = {};
     for (const { device, deviceSeq } of evidence) upTo[device] = Math.max(upTo[device] ?? 0, deviceSeq);
     const digest = evidenceDigest(
@@ -207,6 +228,9 @@ export class ScriptedTablet {
       const blocked = step ?? blockedStep(state);
       if (blocked === undefined || blocked.id === until.step || made === until.entries) return made;
       await until.between?.(blocked);
+      for (const by of Object.values(people)) {
+        if (phaseToSign(state, by.id) !== undefined) await this.signWork(job, by);
+      }
       const next = nextScripted(this.held(job).state, blocked, { ...kit, workshop: this.workshop });
       if (next !== undefined) {
         const afterMs = next.afterMs < SLOW_MS ? next.afterMs : next.afterMs * (until.pace ?? 1);

@@ -1,5 +1,6 @@
 import type { EntryData } from './entry';
 import { raiseDeviation } from './job-deviation';
+import { asGround } from './job-kept';
 import { judgeLimit } from './job-limit';
 import type { ClearanceReading, JobState, Kept, RodState } from './job-state';
 import type { StepOf } from './plan';
@@ -24,7 +25,7 @@ export function settleClearance(state: JobState, step: StepOf<'gauge'>): JobStat
     const readings = kept.filter((entry) => gaugedData(entry).end === end);
     next = judgeEnd(next, rod.rod, end, readings);
   }
-  return judgeTogether(next, step, rod.rod, kept.at(-1));
+  return judgeTogether(next, step, rod.rod, newestGround(kept));
 }
 
 function gaugedData(kept: Kept): EntryData<'gauged'> {
@@ -43,7 +44,17 @@ function presentReadings(
     if (!entry || !limit) return undefined;
     const { clearance, uncertainty } = gaugedData(entry);
     const { verdict, place } = judgeLimit(limit, clearance, uncertainty);
-    return { entry: entry.id, end, clearance, uncertainty, verdict, place, at: entry.at };
+    const correction = entry.valueFrom?.id;
+    return {
+      entry: entry.id,
+      ...(correction === undefined ? {} : { correction }),
+      end,
+      clearance,
+      uncertainty,
+      verdict,
+      place,
+      at: entry.at,
+    };
   };
   return { front: reading('front'), rear: reading('rear') };
 }
@@ -51,11 +62,12 @@ function presentReadings(
 function judgeEnd(state: JobState, rod: number, end: 'front' | 'rear', readings: Kept[]): JobState {
   const last = readings.at(-1);
   const reading = state.rods[rod]?.[end];
-  if (!last || !reading || reading.verdict === 'inside') return withdrawSuperseded(state, readings);
+  if (!last || !reading || reading.verdict === 'inside') return state;
+  const ground = asGround(last);
   const { clearance, unit } = gaugedData(last);
   const words = `Rod ${rod}, ${end}: ${clearance} ${unit}`;
   if (reading.verdict === 'outside') {
-    return raiseDeviation(state, last, {
+    return raiseDeviation(state, ground, {
       rule: 'clearance-outside',
       class: 'A',
       words: `${words} is outside the limits`,
@@ -64,7 +76,7 @@ function judgeEnd(state: JobState, rod: number, end: 'front' | 'rear', readings:
     });
   }
   if (reading.verdict === 'no limit known') {
-    return raiseDeviation(state, last, {
+    return raiseDeviation(state, ground, {
       rule: 'no-limit-known',
       class: 'A',
       words: `${words}: no limit is known, the supervisor judges`,
@@ -74,7 +86,7 @@ function judgeEnd(state: JobState, rod: number, end: 'front' | 'rear', readings:
   }
   const before = readings.at(-2);
   if (!before || !agree(before, last)) return state;
-  return raiseDeviation(state, last, {
+  return raiseDeviation(state, ground, {
     rule: 'clearance-unsure',
     class: 'A',
     words: `${words} was read twice, too near a limit to tell`,
@@ -93,19 +105,10 @@ function agree(one: Kept, other: Kept): boolean {
   );
 }
 
-/** A deviation on a reading that was corrected into its limits no longer stands for anything. */
-function withdrawSuperseded(state: JobState, readings: Kept[]): JobState {
-  const corrected = new Set(readings.filter((kept) => kept.correctedBy !== undefined).map((kept) => kept.id));
-  if (corrected.size === 0) return state;
-  return {
-    ...state,
-    deviations: state.deviations.map((deviation) => {
-      const [entry, rule] = deviation.id.split(':');
-      if (rule === undefined || entry === undefined || !corrected.has(entry) || deviation.disposed)
-        return deviation;
-      return { ...deviation, blocks: false };
-    }),
-  };
+/** The newest of what the readings of a rod come from: a correction of either, else the last reading. */
+function newestGround(readings: Kept[]): Kept | undefined {
+  const corrected = readings.filter(({ valueFrom }) => valueFrom !== undefined).map(asGround);
+  return corrected.toSorted((a, b) => a.at.localeCompare(b.at)).at(-1) ?? readings.at(-1);
 }
 
 /** Taper along one journal and spread across the rods, where the sheet sets a limit. */

@@ -1,69 +1,29 @@
-import { clearanceFromParts } from './clearance';
-import type { EntryData, EntryKind, EntryOf } from './entry';
+import { correctableKinds, correctionClass } from './correction-class';
+import type { EntryKind, EntryOf } from './entry';
+import { whyNotInItsPlace } from './job-correction-form';
 import { activeEntries, findKept, stepOfEntry } from './job-kept';
 import type { JobState, Kept, Verdict, Workshop } from './job-state';
+import { findStep } from './plan';
+
+const OK: Verdict = { ok: true };
 
 function no(code: string, why: string, unlock?: string): Verdict {
   return { ok: false, code, why, ...(unlock === undefined ? {} : { unlock }) };
 }
 
-/** Kinds whose value can be superseded; every other kind is an act or a judgement. */
-const correctable = new Set<EntryKind>([
-  'done',
-  'removed',
-  'refitted',
-  'counted',
-  'inspected',
-  'read',
-  'chose-shells',
-  'gauged',
-  'tightened',
-  'bolt-replaced',
-  'fitted',
-  'filled',
-  'watch-checked',
-  'drive-started',
-  'drive-ended',
-]);
-
 /** Only the author, or a supervisor with the author shown, corrects or takes back. */
-function whyNotWhose(kept: Kept, by: string, workshop: Workshop): Verdict {
-  const roles = workshop.people.find(({ id }) => id === by)?.roles ?? [];
+export function whyNotWhose(kept: Kept, by: string, { people }: Pick<Workshop, 'people'>): Verdict {
+  const roles = people.find(({ id }) => id === by)?.roles ?? [];
   return kept.by === by || roles.includes('supervisor')
-    ? { ok: true }
+    ? OK
     : no('not-author', `${kept.name} recorded this.`, 'They correct it, or a supervisor does.');
 }
 
-/** Figures that their form lets in and that nothing can have; also a correction may not bring them in. */
-export function whyImpossible(kind: EntryKind, data: object): Verdict {
-  if (kind === 'gauged') {
-    const gauged = data as EntryData<'gauged'>;
-    if (!(Number(gauged.clearance) > 0)) return no('impossible', 'A clearance is more than nothing.');
-    if (Number(gauged.uncertainty) < 0) return no('impossible', 'An uncertainty is not less than nothing.');
-    return gauged.by === 'parts' ? whyNotParts(gauged) : whyNotThread(gauged);
-  }
-  if (kind === 'tightened' && Number((data as EntryData<'tightened'>).value ?? '0') < 0)
-    return no('impossible', 'A torque or an angle is not less than nothing.', 'Read it again.');
-  return { ok: true };
-}
-
-/** A clearance by parts is the sum of its sizes, so that whoever reads it can add them up again. */
-function whyNotParts({ clearance, parts }: EntryData<'gauged'>): Verdict {
-  if (!parts) return no('parts-missing', 'A clearance by parts names the sizes of its parts.');
-  const sizes = { housingBore: 0, upperWall: 0, lowerWall: 0, journal: 0 };
-  for (const name of ['housingBore', 'upperWall', 'lowerWall', 'journal'] as const) {
-    sizes[name] = Number(parts[name]);
-    if (!(sizes[name] > 0)) return no('impossible', 'A part is larger than nothing.', 'Measure it again.');
-  }
-  return clearanceFromParts(sizes) === Number(clearance)
-    ? { ok: true }
-    : no('sum-differs', 'The clearance is not the sum of its parts.', 'Add them up again.');
-}
-
-function whyNotThread({ threadLot, cardLot }: EntryData<'gauged'>): Verdict {
-  return threadLot === undefined || cardLot === undefined
-    ? no('lot-missing', 'A thread is read by the lot of its packet and its card.', 'Say which thread it is.')
-    : { ok: true };
+/** What is said about an entry stands on that entry's own step or on none, so that no other step is touched by it. */
+function whyNotItsStep(kept: Kept, step: string | undefined): Verdict {
+  return step === undefined || step === kept.step
+    ? OK
+    : no('wrong-step', 'This is about an entry of another step.');
 }
 
 /** A value may be superseded, with a reason, by data of the same kind. */
@@ -73,17 +33,64 @@ export function whyNotCorrected(
   workshop: Workshop,
   isDataOf: (kind: EntryKind, data: unknown) => boolean,
 ): Verdict {
-  const kept = findKept(state, entry.data.of);
+  const { of, data } = entry.data;
+  const kept = findKept(state, of);
   if (!kept) return no('unknown-entry', 'The entry to correct is not there.');
-  if (!correctable.has(kept.kind))
-    return no('not-correctable', 'This is taken back or revoked, not corrected.');
-  if (kept.takenBack !== undefined) return no('taken-back', 'This was taken back already.');
-  if (!isDataOf(kept.kind, entry.data.data))
+  const can = whyNotCorrectable(kept);
+  if (!can.ok) return can;
+  const step = whyNotItsStep(kept, entry.step);
+  if (!step.ok) return step;
+  if (!isDataOf(kept.kind, data))
     return no('malformed', 'The correction does not have the form of what it corrects.');
-  const possible = whyImpossible(kept.kind, entry.data.data);
-  if (!possible.ok) return possible;
-  return whyNotWhose(kept, entry.by, workshop);
+  const whose = whyNotWhose(kept, entry.by, workshop);
+  if (!whose.ok) return whose;
+  const isClass = correctionClass(kept.data, data);
+  if (isClass === undefined) return no('no-change', 'This is what stands there already.');
+  if (isClass === 'substantive' && entry.data.class === 'clerical') {
+    return no(
+      'not-clerical',
+      'This changes what was measured, done or fitted: it is no slip of the pen.',
+      'Correct it as substantive; a hold point over it opens again.',
+    );
+  }
+  const plan = kept.step === undefined ? undefined : findStep(state.plan, kept.step);
+  return whyNotInItsPlace(state, plan, kept, data, workshop);
 }
+
+/** May the value of this entry be superseded at all, by whoever may? */
+export function whyNotCorrectable(kept: Kept): Verdict {
+  if (kept.kind === 'signed' || kept.kind === 'deviation-disposed')
+    return no('not-correctable', 'A signature or a disposition is revoked, not corrected.');
+  if (!correctableKinds.has(kept.kind))
+    return no('not-correctable', 'This has no value to correct: it is taken back.');
+  if (kept.takenBack !== undefined) return no('taken-back', 'This was taken back already.');
+  if (kept.voided !== undefined) return no('void', `This no longer counts: ${kept.voided}.`);
+  return OK;
+}
+
+/** Kinds that are said, signed or arranged: revoked, disposed of or said anew, never taken back as an act. */
+const notActs: ReadonlySet<EntryKind> = new Set<EntryKind>([
+  'opened',
+  'took-over',
+  'tool-taken',
+  'witnessed',
+  'work-signed',
+  'countersigned',
+  'deviation-raised',
+  'corrected',
+  'taken-back',
+  'revoked',
+  'plan-moved',
+  'extra-work',
+  'parked',
+  'resumed',
+  'ended-unfinished',
+  'handed-over',
+  'refused',
+  'tablet-lost',
+  'restored',
+  'erased',
+]);
 
 /** An act may be taken back only while nothing later depends on it. */
 export function whyNotTakenBack(state: JobState, entry: EntryOf<'taken-back'>, workshop: Workshop): Verdict {
@@ -91,7 +98,12 @@ export function whyNotTakenBack(state: JobState, entry: EntryOf<'taken-back'>, w
   if (!kept) return no('unknown-entry', 'The entry to take back is not there.');
   if (kept.kind === 'signed' || kept.kind === 'deviation-disposed')
     return no('revoke', 'A signature or a disposition is revoked.');
+  if (kept.kind === 'deviation-raised')
+    return no('not-an-act', 'A deviation is disposed of, not taken back.', 'The supervisor disposes of it.');
+  if (notActs.has(kept.kind)) return no('not-an-act', 'This is not an act that can be taken back.');
   if (kept.takenBack !== undefined) return no('taken-back', 'This was taken back already.');
+  const own = whyNotItsStep(kept, entry.step);
+  if (!own.ok) return own;
   const stepId = stepOfEntry(state, kept.id);
   if (stepId !== undefined && dependsOn(state, stepId, kept)) {
     return no('depended-on', 'Later work stands on this.', 'Raise a deviation instead.');
@@ -112,9 +124,25 @@ function dependsOn(state: JobState, stepId: string, kept: Kept): boolean {
 /** Signatures and dispositions are revoked, never corrected. */
 export function whyNotRevoked(state: JobState, entry: EntryOf<'revoked'>): Verdict {
   const { of } = entry.data;
-  const isSignature = state.signatures.some((s) => s.entry === of && s.reopened === undefined);
+  const signature = state.signatures.find((s) => s.entry === of);
+  if (signature?.reopened !== undefined)
+    return no('already-open', 'This signature no longer stands.', 'Sign the hold point again.');
   const isDisposition = state.deviations.some((d) => d.disposed?.entry === of);
-  return isSignature || isDisposition
-    ? { ok: true }
+  return signature !== undefined || isDisposition
+    ? OK
     : no('unknown-entry', 'There is no signature or disposition to revoke.');
+}
+
+/** A clerical correction under a signature is countersigned once, by somebody with no hand in it or in its step. */
+export function whyNotCountersigned(state: JobState, entry: EntryOf<'countersigned'>): Verdict {
+  const asked = state.countersigns.find(({ correction }) => correction === entry.data.of);
+  if (!asked) return no('unknown-entry', 'There is no correction that asks for this countersign.');
+  if (asked.countersignedBy !== undefined)
+    return no('already-signed', 'This correction is countersigned already.');
+  if (asked.by === entry.by)
+    return no('own-work', 'Nobody countersigns their own correction.', 'Someone else does.');
+  const step = findStep(state.plan, asked.step);
+  return step?.class === 'A' && state.authors[asked.step]?.includes(entry.by) === true
+    ? no('own-work', 'The signer had a hand in this work.', 'Someone who did none of it countersigns.')
+    : OK;
 }

@@ -83,3 +83,8 @@ export function findKept(state: JobState, id: string): Kept | undefined {
   const among = stepId === undefined ? state.unstepped : (state.steps[stepId]?.entries ?? []);
   return among.find((kept) => kept.id === id);
 }
+
+/** The entry as a deviation names it: by the correction that its value comes from, where there is one. */
+export function asGround(kept: Kept): Kept {
+  return kept.valueFrom ? { ...kept, ...kept.valueFrom } : kept;
+}

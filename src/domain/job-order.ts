@@ -3,7 +3,7 @@
  * done yet says why, and what would unlock it.
  */
 import { isBlocked } from './job-deviation';
-import { uncheckedSignatures } from './job-evidence';
+import { findSignature, stepsPast, uncheckedSignatures } from './job-evidence';
 import type { JobState, OpenItem, Verdict } from './job-state';
 import { findStep, type Gate, type Plan, type PlanStep } from './plan';
 
@@ -55,6 +55,8 @@ export function whyNot(state: JobState, stepId: string): Verdict {
   if (!running.ok) return running;
   const missing = step.needs.find((need) => !isSatisfied(state, need));
   if (missing !== undefined) return whyNeedIsMissing(state, missing);
+  const past = whyNotPast(state, step);
+  if (!past.ok) return past;
   if (step.kind === 'turn') return whyNotTurn(state);
   if (step.moves === true) return whyItemsBar(state, 'move', 'The vehicle may not be lowered or moved');
   if (step.kind === 'hold') return whyNotHold(state, step);
@@ -77,6 +79,24 @@ function whyNotRunning(state: JobState, step: PlanStep): Verdict {
     case 'running':
       return step.kind === 'resume' ? no('not-parked', 'The job is running.') : OK;
   }
+}
+
+/** Nothing new is begun behind a hold point that was opened again; what was begun there may be brought to its end. */
+function whyNotPast(state: JobState, step: PlanStep): Verdict {
+  if (step.onDemand === true || state.steps[step.id]?.status === 'begun') return OK;
+  const open = state.signatures.find(
+    (signature) =>
+      signature.reopened !== undefined &&
+      stepsPast(state.plan, signature.step).has(step.id) &&
+      !findSignature(state, signature.step),
+  );
+  if (!open) return OK;
+  const title = findStep(state.plan, open.step)?.title ?? open.holdPoint;
+  return no(
+    'unsigned',
+    `The hold point "${title}" was opened again and is not signed.`,
+    'It must be signed again first.',
+  );
 }
 
 function whyNeedIsMissing(state: JobState, needId: string): Verdict {

@@ -5,8 +5,11 @@
 import { entryData, type Entry, type EntryKind, type EntryOf } from './entry';
 import * as z from 'zod/mini';
 import { whyNotTighten } from './job-tightening-rules';
-import { whyImpossible, whyNotCorrected, whyNotRevoked, whyNotTakenBack } from './job-correction-rules';
+import { whyNotGrades } from './job-correction-form';
+import { whyNotCorrected, whyNotCountersigned, whyNotRevoked, whyNotTakenBack } from './job-correction-rules';
+import { whyImpossible } from './job-figures';
 import { whyNotSigned } from './job-signing-rules';
+import { whyNotWorkSigned } from './job-work';
 import { whyNot } from './job-order';
 import type { JobState, Verdict, Workshop } from './job-state';
 import { findStep, type PlanStep, type StepKind } from './plan';
@@ -140,6 +143,8 @@ function whyNotOnStep(state: JobState, entry: Entry, workshop: Workshop): Verdic
       return whyNotRevoked(state, entry);
     case 'countersigned':
       return whyNotCountersigned(state, entry);
+    case 'work-signed':
+      return whyNotWorkSigned(state, entry);
     case 'deviation-disposed':
       return whyNotDisposed(state, entry);
     case 'not-applicable':
@@ -170,7 +175,7 @@ function whyNotStepEntry(state: JobState, step: PlanStep, entry: Entry, workshop
     return no('already-done', `"${step.title}" is done.`, 'Take it back first if it was wrong.');
   switch (entry.kind) {
     case 'signed':
-      return whyNotSigned(state, step, entry);
+      return whyNotSigned(state, step, entry, workshop);
     case 'gauged':
       return whyNotGauged(state, step, entry);
     case 'chose-shells':
@@ -222,9 +227,8 @@ function whyNotGauged(state: JobState, step: PlanStep, entry: EntryOf<'gauged'>)
 }
 
 function whyNotChosen(state: JobState, step: PlanStep, entry: EntryOf<'chose-shells'>): Verdict {
-  const grades = state.plan.engine.shells.grades.map(({ grade }) => grade);
-  const unknown = [entry.data.upper, entry.data.lower].find(({ grade }) => !grades.includes(grade));
-  if (unknown) return no('unknown-grade', `The engine sheet has no shell grade "${unknown.grade}".`);
+  const grades = whyNotGrades(state, entry.data);
+  if (!grades.ok) return grades;
   const rod = step.rod === undefined ? undefined : state.rods[step.rod];
   const isAfterReading = rod !== undefined && (rod.front !== undefined || rod.rear !== undefined);
   const isPast = state.plan.steps.some(
@@ -279,14 +283,6 @@ function whyNotDriveEnded(state: JobState, step: PlanStep, entry: EntryOf<'drive
     return no('not-started', 'The road test has not been started.');
   return Number(entry.data.odometer) < Number(started.data.odometer)
     ? no('impossible', 'An odometer does not run backwards.', 'Read it again.')
-    : OK;
-}
-
-function whyNotCountersigned(state: JobState, entry: EntryOf<'countersigned'>): Verdict {
-  const asked = state.countersigns.find(({ correction }) => correction === entry.data.of);
-  if (!asked) return no('unknown-entry', 'There is no correction that asks for this countersign.');
-  return asked.by === entry.by
-    ? no('own-work', 'Nobody countersigns their own correction.', 'Someone else does.')
     : OK;
 }
 

@@ -6,7 +6,7 @@ import type { EntryData } from './entry';
 import { settleClearance } from './job-clearance';
 import { isBlocked, raiseDeviation } from './job-deviation';
 import { isPassed } from './job-evidence';
-import { activeEntries, lastOf } from './job-kept';
+import { activeEntries, asGround, lastOf } from './job-kept';
 import { judgeLimit } from './job-limit';
 import type { JobState, Kept, StepState, StepStatus } from './job-state';
 import { writable } from './job-tables';
@@ -170,7 +170,9 @@ function isGauged(state: JobState, step: StepOf<'gauge'>): boolean {
     (reading) =>
       reading.verdict === 'inside' ||
       state.deviations.some(
-        (d) => d.id.startsWith(`${reading.entry}:`) && d.disposed?.disposition === 'accept as is',
+        (d) =>
+          d.id.startsWith(`${reading.correction ?? reading.entry}:`) &&
+          d.disposed?.disposition === 'accept as is',
       ),
   );
 }
@@ -183,7 +185,7 @@ function settleCount(state: JobState, step: StepOf<'count'>): JobState {
     step.side === 'out' ? { ...present, out: counted.data.count } : { ...present, in: counted.data.count };
   const next = { ...state, tallies: { ...state.tallies, [step.tally]: tally } };
   if (step.side === 'out' || tally.in === tally.out) return next;
-  return raiseDeviation(next, counted, {
+  return raiseDeviation(next, asGround(counted), {
     rule: 'count-differs',
     class: 'A',
     words: `${step.what}: ${tally.out} went out, ${counted.data.count} came back`,
@@ -203,7 +205,7 @@ function settleChecks(
     const ask = asked.find(({ id }) => id === check.id)?.ask ?? check.id;
     return `Not in order: ${ask}${check.note === undefined ? '' : ` (${check.note})`}`;
   });
-  return raiseDeviation(state, kept, {
+  return raiseDeviation(state, asGround(kept), {
     rule: 'not-in-order',
     class: step.class,
     words: words.join('; '),
@@ -218,7 +220,7 @@ function settleRead(state: JobState, step: StepOf<'read'>): JobState {
   const { verdict } = judgeLimit(limit, kept.data.value, limit.uncertainty ?? '0');
   if (verdict === 'inside') return state;
   const { value, unit } = kept.data;
-  return raiseDeviation(state, kept, {
+  return raiseDeviation(state, asGround(kept), {
     rule: verdict === 'outside' ? 'limit-outside' : verdict === 'unsure' ? 'limit-unsure' : 'no-limit-known',
     class: step.class,
     words: `${limit.title}: ${value} ${unit} is ${verdict === 'no limit known' ? 'read, and no limit is known' : verdict}`,
@@ -243,7 +245,12 @@ function settleWatch(state: JobState, step: StepOf<'watch'>): JobState {
       (check.limit === undefined ? data.check : next.plan.limits[check.limit]?.title) ??
       data.check;
     const words = `${check.stop === true ? 'Stop: ' : ''}${what}${data.value === undefined ? '' : `, ${data.value} ${data.unit ?? ''}`}`;
-    next = raiseDeviation(next, kept, { rule: 'watch-bad', class: step.class, words, blocks: true });
+    next = raiseDeviation(next, asGround(kept), {
+      rule: 'watch-bad',
+      class: step.class,
+      words,
+      blocks: true,
+    });
   }
   if (ended?.data.early === true) {
     const words = `Ended early: ${ended.data.reason ?? 'no reason given'}`;

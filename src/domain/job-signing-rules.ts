@@ -1,5 +1,7 @@
 import type { EntryOf } from './entry';
-import type { JobState, Verdict } from './job-state';
+import { evidenceKept } from './job-evidence';
+import type { JobState, Kept, Verdict, Workshop } from './job-state';
+import { isUnsignedWork, unsignedWords } from './job-work';
 import type { PlanStep } from './plan';
 
 const SECOND_LOOK_MINUTES = 30;
@@ -9,7 +11,12 @@ function no(code: string, why: string, unlock?: string): Verdict {
 }
 
 /** May this person sign this hold point? The digest and the PIN are the server's to check. */
-export function whyNotSigned(state: JobState, step: PlanStep, entry: EntryOf<'signed'>): Verdict {
+export function whyNotSigned(
+  state: JobState,
+  step: PlanStep,
+  entry: EntryOf<'signed'>,
+  workshop: Pick<Workshop, 'people'>,
+): Verdict {
   if (step.kind !== 'hold') return no('wrong-step', 'Only a hold point is signed.');
   if (entry.data.holdPoint !== step.holdPoint)
     return no('wrong-step', 'The signature names another hold point.');
@@ -32,7 +39,44 @@ export function whyNotSigned(state: JobState, step: PlanStep, entry: EntryOf<'si
       'Count again at the vehicle; if a mark is missing, raise a deviation.',
     );
   }
-  return { ok: true };
+  return whyNotOverUnsigned(state, step, workshop);
+}
+
+/** A class A hold point is not signed over work that nobody has put their own name to. */
+function whyNotOverUnsigned(
+  state: JobState,
+  step: PlanStep & { kind: 'hold' },
+  workshop: Pick<Workshop, 'people'>,
+): Verdict {
+  const [first] = unsignedUnder(state, step, workshop);
+  return first === undefined
+    ? { ok: true }
+    : no(
+        'unsigned-work',
+        unsignedWords(first.name, first.entries.length),
+        `${first.name} signs for it first, on any tablet: touch the name at the top.`,
+      );
+}
+
+/**
+ * Whose work a class A hold point covers that they have not signed as theirs. Somebody who has left the workshop
+ * can't sign any more, and their entries carry the signature of their key all the same.
+ */
+export function unsignedUnder(
+  state: JobState,
+  step: PlanStep & { kind: 'hold' },
+  { people }: Pick<Workshop, 'people'>,
+): { by: string; name: string; entries: Kept[] }[] {
+  if (step.class !== 'A') return [];
+  const authors = new Map<string, { by: string; name: string; entries: Kept[] }>();
+  for (const kept of evidenceKept(state, step.id)) {
+    if (!isUnsignedWork(state, kept)) continue;
+    if (people.find(({ id }) => id === kept.by)?.active === false) continue;
+    const author = authors.get(kept.by) ?? { by: kept.by, name: kept.name, entries: [] };
+    author.entries.push(kept);
+    authors.set(kept.by, author);
+  }
+  return [...authors.values()];
 }
 
 /** How many heads carry their mark by the record. */

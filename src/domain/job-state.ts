@@ -22,6 +22,8 @@ export interface Kept {
   afterwards?: { when: string; reason: string } | undefined;
   /** The entry that corrected it; `data` is then what the correction says. */
   correctedBy?: string | undefined;
+  /** The substantive correction that its value comes from, by whom and when. */
+  valueFrom?: { id: string; by: string; name: string; at: string } | undefined;
   takenBack?: 'touched by mistake, not done' | 'done, but wrong' | undefined;
   /** Why it no longer counts: reading voided, rod started again, plan moved. */
   voided?: string | undefined;
@@ -48,6 +50,8 @@ export interface ShellFitted {
 
 export interface ClearanceReading {
   entry: string;
+  /** The substantive correction that it comes from. */
+  correction?: string | undefined;
   end: 'front' | 'rear';
   clearance: string;
   uncertainty: string;
@@ -130,6 +134,8 @@ export interface Signature {
   notIndependent?: string | undefined;
   /** Why it no longer stands. */
   reopened?: string | undefined;
+  /** The steps that were done past it before it was opened again: they stay as they were recorded. */
+  donePast?: string[] | undefined;
 }
 
 export interface ToolInHand {
@@ -176,6 +182,8 @@ export interface JobState {
   /** Who had a hand in each step, helpers and correctors included. */
   authors: Record<string, string[]>;
   people: Record<string, string>;
+  /** Up to which number of each tablet a person has signed their entries as their own work. */
+  workSigned?: Record<string, Record<string, number>> | undefined;
   /** Who is working now, and the last entry of each author. */
   working?: { by: string; name: string; since: string; device: string } | undefined;
   /** Things to ask about: impossible pace, a tablet that repeats numbers. */

@@ -1,5 +1,5 @@
-import type { Entry, EntryOf } from './entry';
-import { whyImpossible } from './job-correction-rules';
+import type { Entry, EntryData, EntryOf } from './entry';
+import { whyImpossible } from './job-figures';
 import { nextTightening, startsAgain, tighteningsLeft } from './job-tightening';
 import type { JobState, Verdict, Workshop } from './job-state';
 import type { PlanStage, StepOf } from './plan';
@@ -50,7 +50,7 @@ export function whyNotTighten(
   if (!kind.ok) return kind;
   const left = whyNotStart(state, step);
   if (!left.ok) return left;
-  return entry.kind === 'tightened' ? whyNotTool(step, entry, workshop) : OK;
+  return entry.kind === 'tightened' ? whyNotTool(step, entry.data, entry.at, workshop) : OK;
 }
 
 /** A bolt is replaced when it was turned too far, or when it can't last through the programme again. */
@@ -79,7 +79,7 @@ function whyNotStage(
   if (entry.kind === 'released')
     return planned?.kind === 'release' ? OK : no('order', 'Nothing is released here.');
   if (entry.kind === 'marked') return planned?.kind === 'mark' ? OK : no('order', 'No mark is due here.');
-  const { target, value, outcome } = entry.data;
+  const { target } = entry.data;
   if (planned?.kind !== 'torque' && planned?.kind !== 'angle')
     return no('order', 'No torque or angle is due here.');
   if (
@@ -89,9 +89,16 @@ function whyNotStage(
   ) {
     return no('target-differs', 'The target is not the one of the plan.');
   }
-  if (value === undefined) return OK;
   const possible = whyImpossible(entry.kind, entry.data);
-  if (!possible.ok) return possible;
+  return possible.ok ? whyNotOutcome(planned, entry.data) : possible;
+}
+
+/** A value that was read says itself what came of the pass. */
+export function whyNotOutcome(
+  planned: Extract<PlanStage, { target: string }>,
+  { value, outcome }: EntryData<'tightened'>,
+): Verdict {
+  if (value === undefined) return OK;
   const spec = { kind: planned.kind, target: Number(planned.target), tolerance: Number(planned.tolerance) };
   const judged = judgeReading(spec, Number(value));
   const said = outcome === 'done' ? 'ok' : outcome === 'over' ? 'over' : 'under';
@@ -114,9 +121,14 @@ export function whyNotStart(state: JobState, step: StepOf<'tighten'>): Verdict {
       );
 }
 
-function whyNotTool(step: StepOf<'tighten'>, entry: EntryOf<'tightened'>, workshop: Workshop): Verdict {
+/** The tool of a class A pass: known, of the right kind, in range, and in date on the day of the pass. */
+export function whyNotTool(
+  step: StepOf<'tighten'>,
+  { tool: used, target }: EntryData<'tightened'>,
+  at: string,
+  workshop: Workshop,
+): Verdict {
   if (step.class !== 'A') return OK;
-  const { tool: used, target } = entry.data;
   if (!used) return no('tool-missing', 'A class A step names its tool.', 'Choose the tool in hand.');
   const tool = workshop.tools.find(({ id }) => id === used.id);
   if (!tool) return no('unknown-tool', 'The workshop does not know this tool.', 'Choose another tool.');
@@ -128,7 +140,7 @@ function whyNotTool(step: StepOf<'tighten'>, entry: EntryOf<'tightened'>, worksh
       criticalClass: 'A',
       ...(isAngle ? {} : { value: Number(target.target), unit: 'N·m' }),
     },
-    dayIn(workshop.zone, entry.at),
+    dayIn(workshop.zone, at),
   );
   return fit ? OK : no('tool-unfit', `${tool.name}: ${reasons.join('; ')}.`, 'Choose another tool.');
 }

@@ -91,6 +91,8 @@ function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
     }
     case 'released': {
       const data = kept.data as EntryData<'released'>;
+      // Done, but wrong: nobody knows what the bolt holds now, so the cap starts again.
+      if (kept.takenBack === 'done, but wrong') return [{ kind: 'released', bolt: data.bolt, unsure: true }];
       if (data.because !== undefined) return [{ kind: 'released', bolt: data.bolt, unsure: false }];
       return programme.cycles[data.cycle]?.[data.stage]
         ? [recordStage(programme, data, { outcome: 'done' })]
@@ -98,6 +100,8 @@ function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
     }
     case 'marked': {
       const data = kept.data as EntryData<'marked'>;
+      // A mark that was wrong is wiped off and drawn anew; so is a wrong bolt taken out for another.
+      if (kept.takenBack !== undefined) return [];
       return programme.cycles[data.cycle]?.[data.stage]
         ? [recordStage(programme, data, { outcome: 'done' })]
         : [];
@@ -107,7 +111,9 @@ function toRecords(programme: Programme, kept: Kept): TighteningRecord[] {
       return data.bolts.map((bolt) => ({ kind: 'released', bolt, unsure: true }));
     }
     case 'bolt-replaced':
-      return [{ kind: 'replaced', bolt: (kept.data as EntryData<'bolt-replaced'>).bolt }];
+      return kept.takenBack !== undefined
+        ? []
+        : [{ kind: 'replaced', bolt: (kept.data as EntryData<'bolt-replaced'>).bolt }];
     default:
       return [];
   }
@@ -186,7 +192,7 @@ function settleBolt(state: JobState, step: TightenStep, set: BoltSet, present: B
     condemned: isCondemned ? 'turned too far: to be replaced' : undefined,
     lot: lotOf(state, step, bolt) ?? present.lot,
     cyclesDone: isReleased || own.length === 0 ? 0 : cyclesDone(state, step, bolt, next),
-    marked: step.fit === 'final' ? markOf(state, step, bolt) : present.marked,
+    marked: step.fit !== 'final' ? present.marked : isReleased ? undefined : markOf(state, step, bolt),
   };
 }
 
@@ -224,12 +230,12 @@ function markOf(state: JobState, step: TightenStep, bolt: string): BoltState['ma
     (kept) =>
       kept.kind === 'started-again' ||
       kept.kind === 'bolt-replaced' ||
-      kept.takenBack === 'done, but wrong' ||
+      (kept.takenBack === 'done, but wrong' && kept.kind !== 'marked') ||
       (kept.kind === 'tightened' && (kept.data as EntryData<'tightened'>).outcome === 'over') ||
       (kept.kind === 'released' && (kept.data as EntryData<'released'>).because !== undefined),
   );
   const mark = entries.slice(restart + 1).findLast((kept) => {
-    if (kept.kind !== 'marked') return false;
+    if (kept.kind !== 'marked' || kept.takenBack !== undefined) return false;
     const data = kept.data as EntryData<'marked'>;
     const lastPass = (programme.cycles[lastCycle] ?? []).findLastIndex(
       (s) => s.kind === 'torque' || s.kind === 'angle',

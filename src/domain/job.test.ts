@@ -561,7 +561,7 @@ describe('signing', () => {
     expect(early.ask('signed', early.signedData(hold), { by: 'sup', step: hold })).toMatchObject({
       ok: false,
     });
-    const journal = begin().performUntil(hold);
+    const journal = begin().performUntil(hold).signWorkUnder(hold);
     expect(
       journal.ask('signed', journal.signedData(hold, { count: 7 }), { by: 'sup', step: hold }),
     ).toMatchObject({ code: 'count-differs' });
@@ -581,7 +581,8 @@ describe('signing', () => {
     const journal = begin()
       .performUntil('build.tighten@rod3')
       .tighten('build.tighten@rod3', { with: ['sup'] })
-      .performUntil(hold);
+      .performUntil(hold)
+      .signWorkUnder(hold);
     expect(journal.ask('signed', journal.signedData(hold), { by: 'sup', step: hold })).toMatchObject({
       code: 'own-work',
     });

@@ -4,13 +4,17 @@
  * here everything is taken as having happened. A state is never changed in place: screens keep old ones.
  */
 import type { Entry, EntryOf, Recorded } from './entry';
+import { applyCorrection, applyRevocation, applyTakeBack, coverCorrections } from './job-corrections';
 import { raiseDeviation, remark } from './job-deviation';
+import { noteAuthor } from './job-authors';
 import { reopenSignatures } from './job-evidence';
 import { settleSteps } from './job-settle';
-import { keep, patchEntry, stepOfEntry } from './job-kept';
+import { keep } from './job-kept';
 import type { JobState, Kept, RodState, StepState } from './job-state';
 import { writable } from './job-tables';
 import { checkPace } from './job-tightening';
+import { voidMeasurement, voidReadings, voidSteps } from './job-void';
+import { signWork } from './job-work';
 import { findStep, rodsOf, type Plan, type PlanStep } from './plan';
 
 export { findKept } from './job-kept';
@@ -87,7 +91,10 @@ export function applyEntry(state: JobState, entry: Entry | Recorded): JobState {
   next = keepOn(next, step, kept);
   next = reopenSignatures(next, kept);
   next = applyKind(next, entry, kept, step);
-  if ('conflict' in entry && entry.conflict) {
+  if ('conflict' in entry && entry.conflict && entry.kind === 'work-signed') {
+    // What its author claims and what came here differ: nothing of the work itself hangs on that.
+    next = remark(next, kept, 'work-signed', entry.conflict.why);
+  } else if ('conflict' in entry && entry.conflict) {
     next = raiseDeviation(next, kept, {
       rule: 'conflict',
       class: 'A',
@@ -96,30 +103,6 @@ export function applyEntry(state: JobState, entry: Entry | Recorded): JobState {
     });
   }
   return checkPace(next, kept);
-}
-
-/** Who did it, who helped, and who is at work now. */
-function noteAuthor(state: JobState, kept: Kept): JobState {
-  if (kept.by === 'workshop') return state;
-  const people =
-    state.people[kept.by] === kept.name ? state.people : { ...state.people, [kept.by]: kept.name };
-  const isWork = kept.kind !== 'signed' && kept.kind !== 'witnessed' && kept.kind !== 'countersigned';
-  const working =
-    isWork && (state.working?.by !== kept.by || state.working.device !== kept.device)
-      ? { by: kept.by, name: kept.name, since: kept.at, device: kept.device }
-      : state.working;
-  const next = { ...state, people, lastAt: kept.at, lastEntry: kept.id, ...(working ? { working } : {}) };
-  return kept.step !== undefined && isWork ? addAuthors(next, kept.step, [kept.by, ...kept.with]) : next;
-}
-
-function addAuthors(state: JobState, step: string, who: string[]): JobState {
-  // A step that the plan doesn't have may have any name, also one that every object knows.
-  const present = Object.hasOwn(state.authors, step) ? (state.authors[step] ?? []) : [];
-  const added = who.filter((person) => !present.includes(person));
-  if (added.length === 0) return state;
-  const authors = writable(state, state.authors);
-  authors[step] = [...present, ...added];
-  return { ...state, authors };
 }
 
 function keepOn(state: JobState, step: PlanStep | undefined, kept: Kept): JobState {
@@ -147,6 +130,8 @@ function applyKind(state: JobState, entry: Entry, kept: Kept, step: PlanStep | u
       return step?.kind === 'gauge'
         ? reopenRange(state, step, step.measureAgainFrom, 'measured again')
         : state;
+    case 'signed':
+      return step ? coverCorrections(settleSteps(state, [step.id]), step, kept) : state;
     case 'chose-shells':
       return step ? voidMeasurement(settleSteps(state, [step.id]), step) : state;
     default:
@@ -185,6 +170,8 @@ function applyToJob(state: JobState, entry: Entry, kept: Kept): JobState | undef
       );
       return { ...state, countersigns };
     }
+    case 'work-signed':
+      return signWork(state, entry);
     case 'ended-unfinished':
       return { ...state, phase: 'ended unfinished' };
     case 'tablet-lost':
@@ -205,66 +192,8 @@ function applyToJob(state: JobState, entry: Entry, kept: Kept): JobState | undef
   }
 }
 
-function applyCorrection(state: JobState, entry: EntryOf<'corrected'>, kept: Kept): JobState {
-  const { of, data } = entry.data;
-  const stepId = stepOfEntry(state, of);
-  // The data was checked against its kind before it was recorded; the fold takes what stands there.
-  let next = patchEntry(state, of, { data, correctedBy: kept.id });
-  if (stepId === undefined) return next;
-  if (entry.data.class === 'clerical' && isUnderSignature(state, stepId)) {
-    const asked = { correction: kept.id, step: stepId, reason: entry.data.reason, by: kept.by };
-    next = { ...next, countersigns: [...next.countersigns, asked] };
-  }
-  next = settleSteps(addAuthors(next, stepId, [kept.by, ...kept.with]), [stepId]);
-  const step = findStep(next.plan, stepId);
-  const isOtherShells = step?.kind === 'choose-shells' && entry.data.class === 'substantive';
-  return isOtherShells ? voidMeasurement(next, step) : next;
-}
-
-function isUnderSignature(state: JobState, stepId: string): boolean {
-  return state.signatures.some((signature) => {
-    const hold = findStep(state.plan, signature.step);
-    return signature.reopened === undefined && hold?.kind === 'hold' && hold.covers.includes(stepId);
-  });
-}
-
-function applyTakeBack(state: JobState, entry: EntryOf<'taken-back'>, kept: Kept): JobState {
-  const { of, which } = entry.data;
-  const stepId = stepOfEntry(state, of);
-  let next = patchEntry(state, of, { takenBack: which });
-  if (stepId === undefined) return next;
-  next = {
-    ...next,
-    effects: which === 'done, but wrong' ? next.effects : next.effects.filter((e) => e.entry !== of),
-  };
-  next = settleSteps(addAuthors(next, stepId, [kept.by]), [stepId]);
-  const step = findStep(next.plan, stepId);
-  if (which === 'done, but wrong' && step?.kind !== 'tighten') {
-    next = raiseDeviation(
-      next,
-      { ...kept, step: stepId },
-      {
-        rule: 'done-wrong',
-        class: step?.class ?? 'C',
-        words: `Done, but wrong: ${step?.title ?? stepId}`,
-        blocks: true,
-      },
-    );
-  }
-  return next;
-}
-
-function applyRevocation(state: JobState, entry: EntryOf<'revoked'>, kept: Kept): JobState {
-  const { of, reason } = entry.data;
-  let next = patchEntry(state, of, { revokedBy: kept.id });
-  next = {
-    ...next,
-    signatures: next.signatures.map((s) => (s.entry === of ? { ...s, reopened: `revoked: ${reason}` } : s)),
-    deviations: next.deviations.map((d) => (d.disposed?.entry === of ? { ...d, disposed: undefined } : d)),
-  };
-  const stepId = stepOfEntry(state, of);
-  return stepId === undefined ? next : settleSteps(next, [stepId]);
-}
+/** Where the rules already say what is to be done again, a disposition voids nothing more. */
+const SETTLED_BY_ITSELF = new Set(['conflict', 'corrected-outside', 'shells-differ']);
 
 function applyDisposition(state: JobState, entry: EntryOf<'deviation-disposed'>, kept: Kept): JobState {
   const { deviation: id, disposition, reason } = entry.data;
@@ -281,7 +210,8 @@ function applyDisposition(state: JobState, entry: EntryOf<'deviation-disposed'>,
   if (disposition === 'accept as is') return settleSteps(next, [step.id]);
   if (step.kind === 'gauge') return reopenRange(next, step, step.reworkFrom, `${disposition}: ${reason}`);
   // A hold point or a conflict is not done again by being disposed of; an act outside its limits is.
-  if (deviation.rule === undefined || deviation.rule === 'conflict') return settleSteps(next, [step.id]);
+  if (deviation.rule === undefined || SETTLED_BY_ITSELF.has(deviation.rule))
+    return settleSteps(next, [step.id]);
   return voidSteps(next, [step.id], `${disposition}: ${reason}`);
 }
 
@@ -296,52 +226,6 @@ function reopenRange(state: JobState, gauge: PlanStep, fromStep: string, why: st
     order.slice(from, to + 1).map((step) => step.id),
     why,
   );
-}
-
-/** Other shells than those measured: the readings are void and the rod is measured again. */
-function voidMeasurement(state: JobState, choose: PlanStep): JobState {
-  const rod = choose.rod === undefined ? undefined : state.rods[choose.rod];
-  if (!rod || (!rod.front && !rod.rear)) return state;
-  const order = state.plan.steps.filter((step) => step.rod === choose.rod && step.phase === choose.phase);
-  const from = order.findIndex((step) => step.id === choose.id);
-  const to = order.findIndex((step) => step.kind === 'gauge');
-  const why = 'other shells were chosen';
-  return voidSteps(
-    voidReadings(state, choose.rod, why),
-    order.slice(from + 1, to + 1).map((s) => s.id),
-    why,
-  );
-}
-
-function voidReadings(state: JobState, rod: number | undefined, why: string): JobState {
-  const present = rod === undefined ? undefined : state.rods[rod];
-  if (!present) return state;
-  const voided = [present.front, present.rear].flatMap((reading) => (reading ? [{ ...reading, why }] : []));
-  return {
-    ...state,
-    rods: {
-      ...state.rods,
-      [present.rod]: {
-        ...present,
-        front: undefined,
-        rear: undefined,
-        voidReadings: [...present.voidReadings, ...voided],
-      },
-    },
-  };
-}
-
-function voidSteps(state: JobState, stepIds: string[], why: string): JobState {
-  const steps = { ...state.steps };
-  for (const id of stepIds) {
-    const step = steps[id];
-    if (!step) continue;
-    steps[id] = {
-      ...step,
-      entries: step.entries.map((kept) => (kept.voided ? kept : { ...kept, voided: why })),
-    };
-  }
-  return settleSteps({ ...state, steps }, stepIds);
 }
 
 /** Takes the job to a newer plan: what was recorded stays on the steps that both plans have. */

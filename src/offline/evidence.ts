@@ -1,5 +1,6 @@
 import { evidenceFor } from '@/domain/job';
 import { evidenceDigest } from '@/domain/job-evidence';
+import { unsignedWork } from '@/domain/job-work';
 import { sha256OfBytes } from './hashing';
 import type { JobView } from './job-store';
 import type { Surroundings } from './surroundings';
@@ -14,6 +15,11 @@ export interface Coverage {
 /** Exactly the evidence of a hold point that this view shows: sign with it what was looked at, nothing later. */
 export async function coverageOf({ db }: Surroundings, view: JobView, holdStepId: string): Promise<Coverage> {
   return coverEntries(db, view, evidenceFor(view.state, holdStepId));
+}
+
+/** What one person recorded on the job and has not signed as their own work yet. */
+export async function coverWork({ db }: Surroundings, view: JobView, person: string): Promise<Coverage> {
+  return coverEntries(db, view, unsignedWork(view.state, person));
 }
 
 /** The coverage of any set of a job's entries, such as one author's unsigned work. */

@@ -17,6 +17,7 @@ import {
 } from '../support/offline-tablet';
 import { smallPlan } from '../support/small-documents';
 import { Journal } from '../support/journal';
+import { signWorkUnder } from '../support/sign-work';
 import { coverageOf } from '@/offline/evidence';
 import { contentHashOf, sha256OfBytes } from '@/offline/hashing';
 import type { Offline } from '@/offline/offline';
@@ -49,6 +50,8 @@ async function workUpToHold(): Promise<void> {
     );
     ids.set(id, entry!.id);
   }
+  tablet.now += 5000;
+  await signWorkUnder(offline, job, HOLD);
 }
 
 async function sign(pin: string) {

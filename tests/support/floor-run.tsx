@@ -2,6 +2,7 @@
 import { useState, type ReactNode } from 'react';
 import { vi } from 'vitest';
 import { mayRecord } from '@/domain/job';
+import { unsignedWork } from '@/domain/job-work';
 import type { PlanStep } from '@/domain/plan';
 import type { RefusedRow, WorkshopRow } from '@/offline/database';
 import type { Draft } from '@/offline/record';
@@ -143,7 +144,14 @@ function foldAll(journal: Journal, drafts: Draft[], by: string) {
   return { ok: true as const };
 }
 
-function fixtureParts(journal: Journal, { now, onSheet }: FixtureOptions) {
+function coverOwn(journal: Journal, person: string) {
+  const entries = unsignedWork(journal.state, person);
+  const upTo: Record<string, number> = {};
+  for (const { device, deviceSeq } of entries) upTo[device] = Math.max(upTo[device] ?? 0, deviceSeq);
+  return { upTo, count: entries.length, digest: 'e'.repeat(64) };
+}
+
+function fixtureParts(journal: Journal, { now, onSheet, person = technician }: FixtureOptions) {
   const cell = (label: string, note?: string) => ({ label, note, onPress: () => undefined });
   return {
     cells: {
@@ -157,6 +165,7 @@ function fixtureParts(journal: Journal, { now, onSheet }: FixtureOptions) {
     openSheet: (name: SheetName) => onSheet?.(name),
     showAction: () => undefined,
     coverage: async (holdStepId: string) => journal.signedData(holdStepId).covers,
+    ownWork: async () => coverOwn(journal, person.id),
     photoUrl: async () => undefined,
     canSign: async () => ({ ok: true as const }),
     syncNow: async () => undefined,

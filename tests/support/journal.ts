@@ -12,9 +12,10 @@ import {
   nextTightening,
   whyNot,
 } from '@/domain/job';
-import { markCount } from '@/domain/job-signing-rules';
+import { markCount, unsignedUnder } from '@/domain/job-signing-rules';
 import type { JobState, Verdict, Workshop } from '@/domain/job-state';
 import { entryForAction } from '@/domain/job-tightening';
+import { unsignedWork } from '@/domain/job-work';
 import { findStep, type Plan, type PlanStep } from '@/domain/plan';
 
 /** The workshop of the tests: a technician, another, a supervisor, a quality lead, and two tools in date. */
@@ -350,8 +351,28 @@ export class Journal {
     };
   }
 
-  /** Signed, and its PIN checked by the server. */
+  /** A person signs for all that they have recorded and not signed for yet; nothing where there is nothing. */
+  signWork(by = 'tech', options: Options = {}): this {
+    const entries = unsignedWork(this.state, by);
+    if (entries.length === 0) return this;
+    const upTo: Record<string, number> = {};
+    for (const { device, deviceSeq } of entries) upTo[device] = Math.max(upTo[device] ?? 0, deviceSeq);
+    const covers = { upTo, count: entries.length, digest: 'e'.repeat(64) };
+    this.record('work-signed', { covers }, { ...options, by });
+    return this;
+  }
+
+  /** Everybody whose work a hold point covers signs for it. */
+  signWorkUnder(stepId: string): this {
+    const step = this.step(stepId);
+    if (step.kind !== 'hold') throw new Error(`${stepId} is no hold point`);
+    for (const { by } of unsignedUnder(this.state, step, this.workshop)) this.signWork(by);
+    return this;
+  }
+
+  /** Signed, and its PIN checked by the server; before that its authors have signed for their work. */
   sign(stepId: string, options: Options & { checked?: boolean } = {}): Entry {
+    this.signWorkUnder(stepId);
     const { checked = true, ...rest } = options;
     const entry = this.draft('signed', this.signedData(stepId), { by: 'sup', ...rest, step: stepId });
     const verdict = mayRecord(this.state, entry, this.workshop);

@@ -4,6 +4,7 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { FloorFrame } from '@/components/FloorFrame';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
+import { phaseToSign } from '@/domain/job-work';
 import type { JobView } from '@/offline/job-store';
 import type { WorkshopRow } from '@/offline/database';
 import { currentStep } from './current-step';
@@ -20,6 +21,9 @@ import { useWatchfulness } from './use-watchfulness';
 
 const RunSheets = lazy(() => import('./sheets/RunSheets').then((m) => ({ default: m.RunSheets })));
 const TakeOverScreen = lazy(() => import('./TakeOverScreen').then((m) => ({ default: m.TakeOverScreen })));
+const WorkToSignScreen = lazy(() =>
+  import('./WorkToSignScreen').then((m) => ({ default: m.WorkToSignScreen })),
+);
 
 const LATER_MS = 4000;
 
@@ -48,6 +52,8 @@ function Running({ view, workshop, person }: { view: JobView; workshop: Workshop
   const [sheet, setSheet] = useState<SheetName>();
   const step = currentStep(view.state, place);
   const run = useRunOf({ view, workshop, person, step, isOnline, openSheet: setSheet });
+  // Whoever goes to a step themselves is let go there; the question comes back after.
+  const signable = place.isVisit ? undefined : phaseToSign(view.state, person.id);
   useWatchfulness();
   useWakeLock();
   useMainKeys(sheet === undefined);
@@ -57,6 +63,10 @@ function Running({ view, workshop, person }: { view: JobView; workshop: Workshop
       {mustTakeOver(view.state, person.id) ? (
         <Suspense fallback={<Opening />}>
           <TakeOverScreen />
+        </Suspense>
+      ) : signable ? (
+        <Suspense fallback={<Opening />}>
+          <WorkToSignScreen phase={signable.name} entries={signable.entries} />
         </Suspense>
       ) : step ? (
         <StepScreen key={step.id} step={step} />
@@ -79,6 +89,7 @@ function useLaterScreens() {
       fetchLaterScreens();
       // Asked for again when a sheet opens, if it does not come now.
       import('./sheets/RunSheets').catch(() => undefined);
+      import('./WorkToSignScreen').catch(() => undefined);
     }, LATER_MS);
     return () => clearTimeout(timer);
   }, []);

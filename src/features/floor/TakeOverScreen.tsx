@@ -5,6 +5,7 @@ import { Notice } from '@/components/Notice';
 import { PinPad } from '@/components/PinPad';
 import { QuietButton } from '@/components/QuietButton';
 import { findKept } from '@/domain/job';
+import { unsignedWords, unsignedWork } from '@/domain/job-work';
 import { dayAndTime } from '@/domain/time-words';
 import { capInHand, capWords } from './cap-in-hand';
 import { dataOf, doneWords } from './done-words';
@@ -23,6 +24,7 @@ export function TakeOverScreen() {
   const asksPin = needsPin(run.state, run.person.id, run.now());
   const last = lastEntry === undefined ? undefined : findKept(run.state, lastEntry);
   const cap = capInHand(run.state);
+  const unsigned = working ? unsignedWork(run.state, working.by).length : 0;
   const refused = run.refused.findLast(
     ({ entry }) => entry.kind === 'took-over' && entry.by === run.person.id,
   );
@@ -65,6 +67,12 @@ export function TakeOverScreen() {
           {last && lastAt !== undefined && (
             <p className="floor-then">
               Last, {dayAndTime(lastAt, run.workshop.zone)}: {doneWords(last, plan)}
+            </p>
+          )}
+          {working && unsigned > 0 && (
+            <p className="max-w-[62ch] text-xl">
+              {unsignedWords(working.name, unsigned)} They do so on any tablet, before a class A hold point
+              over it is signed.
             </p>
           )}
           {note !== undefined && <p className="text-xl">“{note}”</p>}

@@ -79,6 +79,8 @@ export interface Run {
   /** The technician answered what became of the action. */
   settleAction: () => void;
   coverage: (holdStepId: string) => Promise<Coverage>;
+  /** What the person who works here has not signed as their own work yet. */
+  ownWork: () => Promise<Coverage>;
   photoUrl: (hash: string) => Promise<string | undefined>;
   /** Whether a person can sign on this tablet. */
   canSign: (person: string) => Promise<Verdict>;

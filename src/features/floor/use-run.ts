@@ -1,6 +1,6 @@
 import { useMemo } from 'react';
 import { syncWords } from '@/components/sync-words';
-import { coverageOf } from '@/offline/evidence';
+import { coverageOf, coverWork } from '@/offline/evidence';
 import type { JobView } from '@/offline/job-store';
 import { photoUrl } from '@/offline/photo';
 import { canSignWithPin } from '@/offline/tablet';
@@ -64,18 +64,20 @@ function stableParts(get: () => FloorState) {
     goOn,
     showAction,
     settleAction,
-    coverage: async (holdStepId: string) => {
-      const { jobId } = get();
-      const view = jobId === null ? undefined : offline.jobs.get(jobId);
-      if (!view) throw new Error('The job is not open on this page.');
-      return coverageOf(offline, view, holdStepId);
-    },
+    coverage: async (holdStepId: string) => coverageOf(offline, openView(get()), holdStepId),
+    ownWork: async () => coverWork(offline, openView(get()), get().working ?? ''),
     photoUrl: (hash: string) => photoUrl(offline, hash),
     canSign: (id: string) => canSignWithPin(offline, id),
     syncNow: async () => {
       await offline.sync.now();
     },
   };
+}
+
+function openView({ offline, jobId }: FloorState): JobView {
+  const view = jobId === null ? undefined : offline.jobs.get(jobId);
+  if (!view) throw new Error('The job is not open on this page.');
+  return view;
 }
 
 function whereIs(view: JobView, id: string): Whereabouts {

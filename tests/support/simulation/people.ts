@@ -1,9 +1,10 @@
 /* What people do on a tablet: mostly what is next, now and then something else. */
 import type { EntryKind } from '@/domain/entry';
 import { nextSteps } from '@/domain/job';
+import { unsignedUnder } from '@/domain/job-signing-rules';
 import type { JobState, Kept } from '@/domain/job-state';
 import type { PlanStep, StepOf } from '@/domain/plan';
-import { coverageOf } from '@/offline/evidence';
+import { coverageOf, coverWork } from '@/offline/evidence';
 import type { JobView } from '@/offline/job-store';
 import type { Offline } from '@/offline/offline';
 import type { PreparedPhoto } from '@/offline/photo';
@@ -188,6 +189,13 @@ function signSomething(scene: Scene): Promise<Deed | undefined> | undefined {
 }
 
 async function sign(scene: Scene, step: StepOf<'hold'>): Promise<Deed | undefined> {
+  const [unsigned] = unsignedUnder(scene.view.state, step, scene.kit.workshop);
+  const author = Object.values(scene.beginning.people).find(({ id }) => id === unsigned?.by);
+  // Mostly the author says first that it is their work; a signature over what nobody answers for is refused.
+  if (author && scene.chance.happens(0.9)) {
+    const covers = await coverWork(scene.offline, scene.view, author.id);
+    return { drafts: [{ kind: 'work-signed', data: { covers } }], by: author, photos: [] };
+  }
   const by = handOf(scene, 'supervisor');
   const pin = pinOf(scene);
   const covers = await coverageOf(scene.offline, scene.view, step.id);

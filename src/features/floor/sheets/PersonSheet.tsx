@@ -4,9 +4,11 @@ import { ChoiceRows } from '@/components/ChoiceRows';
 import { MainAction } from '@/components/MainAction';
 import { PinPad } from '@/components/PinPad';
 import { QuietButton } from '@/components/QuietButton';
+import { unsignedWork } from '@/domain/job-work';
 import type { PlanStep } from '@/domain/plan';
 import type { SignedInPerson } from '../floor-store';
 import { NoteField } from '../NoteField';
+import { SignWork } from '../SignWork';
 import { needsPin } from '../shift';
 import { useRun, type Worker } from '../run-context';
 import { isMidCycle } from '../tighten-touch';
@@ -52,6 +54,7 @@ export function PersonSheet(props: PersonSheetProps) {
         <p className="text-xl">
           <b>{run.person.name}</b> works here now.
         </p>
+        <SignWork />
         {isMid && (
           <p className="text-lg font-bold">
             {step.bolts.join(' and ')} are in the middle of a cycle. Finish the cycle first; whoever takes
@@ -121,6 +124,7 @@ function TakeOver({ next, step, isMid, onBack, onClose, onChanged }: TakeOverPro
   const [hasNote, setHasNote] = useState(false);
   const [startsAgain, setStartsAgain] = useState<'wait' | 'again'>();
   const asksPin = needsPin(run.state, next.person, run.now());
+  const unsigned = unsignedWork(run.state, run.person.id).length;
   const why =
     isMid && startsAgain !== 'again'
       ? 'not in the middle of a cycle'
@@ -171,6 +175,15 @@ function TakeOver({ next, step, isMid, onBack, onClose, onChanged }: TakeOverPro
     >
       <div className={asksPin ? 'grid items-start gap-6 @4xl/sheet:grid-cols-[1fr_25rem]' : 'grid gap-6'}>
         <div className="grid gap-5">
+          {unsigned > 0 && (
+            <div className="grid gap-2">
+              <SignWork />
+              <p className="text-lg text-soft">
+                Before the tablet changes hands. If {run.person.name} has gone already, they sign later, on
+                any tablet.
+              </p>
+            </div>
+          )}
           {isMid && (
             <ChoiceRows
               label={`${step?.kind === 'tighten' ? step.bolts.join(' and ') : 'The bolts'}: in the middle of a cycle`}

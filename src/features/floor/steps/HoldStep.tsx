@@ -3,7 +3,8 @@ import { MainAction } from '@/components/MainAction';
 import { Notice } from '@/components/Notice';
 import { SignatureStamp } from '@/components/SignatureStamp';
 import { findSignature, isPassed } from '@/domain/job-evidence';
-import { authorsUnder } from '@/domain/job-signing-rules';
+import { unsignedUnder } from '@/domain/job-signing-rules';
+import { myWorkWords, unsignedWords, unsignedWork } from '@/domain/job-work';
 import type { Signature } from '@/domain/job-state';
 import type { StepOf } from '@/domain/plan';
 import type { Coverage } from '@/offline/evidence';
@@ -40,11 +41,13 @@ export function HoldStep({ step }: { step: HoldPlan }) {
       />
     );
   }
+  const own = unsignedWork(run.state, run.person.id).length;
+  const [other] = unsignedUnder(run.state, step, run.workshop).filter(({ by }) => by !== run.person.id);
   /** What is on the screen is what is signed: the coverage is taken as the tablet is handed over. */
   async function handOver() {
-    if (authorsUnder(run.state, step).includes(run.person.id)) {
-      const own = await run.coverage(step.id);
-      if (!(await run.record([{ kind: 'work-signed', step: step.id, data: { covers: own } }]))) return;
+    if (own > 0) {
+      const covered = await run.ownWork();
+      if (!(await run.record([{ kind: 'work-signed', with: [], data: { covers: covered } }]))) return;
     }
     setCovers(await run.coverage(step.id));
     setStage('signer');
@@ -61,16 +64,29 @@ export function HoldStep({ step }: { step: HoldPlan }) {
       main={
         <MainAction
           label="Hand it to the signer"
-          next={authorsUnder(run.state, step).includes(run.person.id) ? 'this is my work' : undefined}
+          next={own > 0 ? lowerFirst(myWorkWords(own)) : undefined}
+          why={other && `${other.name} signs for their work first`}
           isBusy={run.isBusy}
           onPress={() => void handOver()}
         />
       }
     >
       <RefusedSignature step={step} />
+      {other && (
+        <div className="pb-4">
+          <Notice tone="unsure" title={unsignedWords(other.name, other.entries.length)}>
+            A class A hold point is not signed over work that its author has not signed for. Touch the name at
+            the top: {other.name} takes over and signs; then change back.
+          </Notice>
+        </div>
+      )}
       <HoldEvidence step={step} />
     </StepFrame>
   );
+}
+
+function lowerFirst(words: string): string {
+  return words.charAt(0).toLowerCase() + words.slice(1);
 }
 
 /** A signature that the server did not take: it is kept, and the reason is said. */

@@ -1,0 +1,27 @@
+import type { JobState, Kept } from './job-state';
+import { writable } from './job-tables';
+
+/** Who did it, who helped, and who is at work now. */
+export function noteAuthor(state: JobState, kept: Kept): JobState {
+  if (kept.by === 'workshop') return state;
+  const people =
+    state.people[kept.by] === kept.name ? state.people : { ...state.people, [kept.by]: kept.name };
+  const isWork = kept.kind !== 'signed' && kept.kind !== 'witnessed' && kept.kind !== 'countersigned';
+  const working =
+    isWork && (state.working?.by !== kept.by || state.working.device !== kept.device)
+      ? { by: kept.by, name: kept.name, since: kept.at, device: kept.device }
+      : state.working;
+  const next = { ...state, people, lastAt: kept.at, lastEntry: kept.id, ...(working ? { working } : {}) };
+  return kept.step !== undefined && isWork ? addAuthors(next, kept.step, [kept.by, ...kept.with]) : next;
+}
+
+/** Whoever had a hand in a step: its own authors, helpers, and whoever corrects it. */
+export function addAuthors(state: JobState, step: string, who: string[]): JobState {
+  // A step that the plan doesn't have may have any name, also one that every object knows.
+  const present = Object.hasOwn(state.authors, step) ? (state.authors[step] ?? []) : [];
+  const added = who.filter((person) => !present.includes(person));
+  if (added.length === 0) return state;
+  const authors = writable(state, state.authors);
+  authors[step] = [...present, ...added];
+  return { ...state, authors };
+}
