@@ -49,6 +49,7 @@ const TOPICS: Readonly<Record<string, WorkshopTopic>> = {
   'tablet-renamed': 'tablets',
   'tablet-lost': 'tablets',
   'tablet-found': 'tablets',
+  'tablet-file-brought': 'tablets',
   'key-enrolled': 'tablets',
   'key-revoked': 'tablets',
   'tool-added': 'tools',
@@ -99,9 +100,11 @@ function wordsOf({ kind, data }: WorkshopRecord, names: ReadonlyMap<string, stri
     case 'tablet-renamed':
       return `Tablet ${text(data.from) ?? ''} is called ${text(data.to) ?? ''} from here on`;
     case 'tablet-lost':
-      return `Tablet ${named(data.tablet)} declared lost`;
+      return `Tablet ${named(data.tablet)} declared lost${because(data.reason)}`;
     case 'tablet-found':
       return `Tablet ${named(data.tablet)} found again`;
+    case 'tablet-file-brought':
+      return `File of tablet ${named(data.tablet)} brought in: ${String(data.recorded)} recorded, ${String(data.refused)} refused`;
     case 'key-enrolled':
       return `Key ${text(data.key) ?? ''} of ${named(data.person)} on ${named(data.tablet)}`;
     case 'key-revoked':
@@ -160,6 +163,10 @@ function text(value: unknown): string | undefined {
 
 function list(value: unknown): string {
   return Array.isArray(value) && value.length > 0 ? value.map(String).join(', ') : 'nobody';
+}
+
+function because(reason: unknown): string {
+  return typeof reason === 'string' ? `: ${reason}` : '';
 }
 
 function due(day: unknown): string {

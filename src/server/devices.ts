@@ -4,7 +4,7 @@ import { type Clock, type Ids, stamp } from './clock';
 import { isSameDigest, newSecret, sha256Hex } from './crypto';
 import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
-import { AppError, notFound } from './errors';
+import { AppError } from './errors';
 import { appendWorkshopEntry } from './workshop-trail';
 
 /** A browser that was enrolled as a tablet. */
@@ -105,32 +105,19 @@ export async function listDevices(
   return { devices: rows.map(toDevice), ...next };
 }
 
-/** Renames a tablet, declares it lost, or takes it back into use. */
-export async function changeDevice(
-  trx: Trx,
-  actor: Actor,
-  id: string,
-  change: { name?: string | undefined; state?: 'active' | 'lost' | undefined },
-  app: { clock: Clock; ids: Ids },
-): Promise<Device> {
-  requireRole(actor, 'owner', 'supervisor');
-  const row = await trx.selectFrom('device').selectAll().where('id', '=', id).executeTakeFirst();
-  if (row === undefined) throw notFound('This tablet');
-  const next = { ...row, name: change.name ?? row.name, state: change.state ?? row.state };
-  if (next.name !== row.name) {
-    await appendWorkshopEntry(
-      trx,
-      actor,
-      { kind: 'tablet-renamed', data: { tablet: id, from: row.name, to: next.name } },
-      app,
-    );
-  }
-  if (next.state !== row.state) {
-    const kind = next.state === 'lost' ? 'tablet-lost' : 'tablet-found';
-    await appendWorkshopEntry(trx, actor, { kind, data: { tablet: id, name: next.name } }, app);
-  }
-  await trx.updateTable('device').set({ name: next.name, state: next.state }).where('id', '=', id).execute();
-  return toDevice(next);
+/** Writes a tablet's row as it is, which takes the write lock at the beginning of a transaction. */
+export async function lockDevice(trx: Trx, id: string): Promise<void> {
+  await trx
+    .updateTable('device')
+    .set((eb) => ({ name: eb.ref('name') }))
+    .where('id', '=', id)
+    .execute();
+}
+
+/** One tablet by its id, whoever asks; undefined if the workshop never had it. */
+export async function findDevice(db: Db, id: string): Promise<Device | undefined> {
+  const row = await db.selectFrom('device').selectAll().where('id', '=', id).executeTakeFirst();
+  return row === undefined ? undefined : toDevice(row);
 }
 
 /** Notes that a tablet was heard from; call it inside the transaction that the tablet caused. */
@@ -142,7 +129,8 @@ export async function noteHeardFrom(trx: Trx, deviceId: string, clock: Clock): P
     .execute();
 }
 
-function toDevice(row: DeviceRow): Device {
+/** A tablet as the modules pass it on. */
+export function toDevice(row: DeviceRow): Device {
   return {
     id: row.id,
     name: row.name,

@@ -116,7 +116,6 @@ export function beginFold(job: string, planHash: string, plan: Plan): JobFold {
 export function foldNext(fold: JobFold, recorded: Recorded, hash: string): JobFold {
   const { device, deviceSeq, seq } = recorded;
   const heard = fold.heard.get(device) ?? UNHEARD;
-  const isNext = deviceSeq === heard.number + 1;
   return {
     ...fold,
     state: applyEntry(fold.state, recorded),
@@ -124,7 +123,8 @@ export function foldNext(fold: JobFold, recorded: Recorded, hash: string): JobFo
     hash,
     heard: new Map(fold.heard).set(
       device,
-      skipAhead({ ...heard, number: isNext ? deviceSeq : heard.number, seq }),
+      // Past a gap only where the numbers between are lost for good.
+      skipAhead({ ...heard, number: Math.max(heard.number, deviceSeq), seq }),
     ),
   };
 }

@@ -6,6 +6,7 @@ import type { App } from './compose';
 import { sha256Hex } from './crypto';
 import { AppError } from './errors';
 import { type JobFold, UNHEARD } from './job-fold';
+import { findLost } from './lost-tablets';
 import { checkPin } from './pins';
 import { openSealed } from './sealing';
 import type { Batch, PinResult, ProvedItem } from './sync-batch';
@@ -16,14 +17,44 @@ import type { Batch, PinResult, ProvedItem } from './sync-batch';
  * could not stand anyway.
  */
 
-/** Why a signature has to wait: something that it covers has not come in yet. */
-export function whyWaitForEvidence(fold: JobFold, entry: Entry): string | undefined {
+/** Why a signature has to wait: something that it covers has not come in yet and may still come. */
+export async function whyWaitForEvidence(
+  batch: Batch,
+  fold: JobFold,
+  entry: Entry,
+): Promise<string | undefined> {
   if (entry.kind !== 'signed') return undefined;
-  const missing = Object.entries(entry.data.covers.upTo).find(
+  const missing = notHeard(fold, entry);
+  const lost = await findLost(
+    batch.trx,
+    missing.map(([device]) => device),
+  );
+  const awaited = missing.find(([device]) => !lost.has(device));
+  if (awaited === undefined) return undefined;
+  return `The signature covers records of a tablet up to number ${awaited[1]} that have not come in yet. It waits for them.`;
+}
+
+/** The tablets whose records a signature reaches further than they were heard, with the number that it reaches. */
+function notHeard(fold: JobFold, { data }: EntryOf<'signed'>): [device: string, number: number][] {
+  return Object.entries(data.covers.upTo).filter(
     ([device, number]) => (fold.heard.get(device) ?? UNHEARD).number < number,
   );
-  if (missing === undefined) return undefined;
-  return `The signature covers records of a tablet up to number ${missing[1]} that have not come in yet. It waits for them.`;
+}
+
+/** Why a signature can't stand whose evidence was on a tablet that is lost. */
+async function whyLost(batch: Batch, fold: JobFold, entry: EntryOf<'signed'>): Promise<string | undefined> {
+  const missing = notHeard(fold, entry);
+  const lost = await findLost(
+    batch.trx,
+    missing.map(([device]) => device),
+  );
+  const [first] = missing;
+  if (first === undefined) return undefined;
+  const [device, number] = first;
+  const name = lost.get(device) ?? 'a tablet';
+  const from = (fold.heard.get(device) ?? UNHEARD).number + 1;
+  const which = from === number ? `record ${from}` : `records ${from} to ${number}`;
+  return `It covers ${which} of ${name}, which was declared lost: they never came. Look at what there is, have done again what is missing, and sign again.`;
 }
 
 /** Why a signature does not cover what the server holds as evidence for its hold point. */
@@ -32,6 +63,8 @@ export async function whyNotCovered(
   fold: JobFold,
   entry: EntryOf<'signed'>,
 ): Promise<string | undefined> {
+  const lost = await whyLost(batch, fold, entry);
+  if (lost !== undefined) return lost;
   const { covers } = entry.data;
   const evidence = evidenceFor(fold.state, entry.step ?? '');
   const outside = evidence.filter(({ device, deviceSeq }) => deviceSeq > (covers.upTo[device] ?? 0));

@@ -47,13 +47,15 @@ export interface ProvedItem extends ReadItem {
   key: KeyRow;
   /** The number was used before by another entry: this tablet was copied or restored. */
   isNumberReused: boolean;
+  /** Its tablet was declared lost, and later numbers of it were taken before it came. */
+  isLate: boolean;
 }
 
 export interface Batch {
   app: App;
   trx: Trx;
   history: WorkshopHistory;
-  /** The tablet that pushes; none when a job is opened. */
+  /** The tablet that pushes, or whose file is brought in; none when a job is opened. */
   device: Device | undefined;
   receivedAt: string;
   clockOffsetMs: number;

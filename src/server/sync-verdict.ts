@@ -2,12 +2,14 @@ import { type Entry, judgementKinds, officeKinds } from '@/domain/entry';
 import { mayRecord } from '@/domain/job';
 import type { Verdict } from '@/domain/job-state';
 import { MINUTE } from './clock';
-import { hadPlan, isBehind, type JobFold, SERVER_DEVICE, UNHEARD } from './job-fold';
+import { conflictWords } from './conflict-words';
+import { hadPlan, isBehind, type JobFold, SERVER_DEVICE } from './job-fold';
 import { whyWaitForPhotographs } from './photos-missing';
 import { whyNotCovered, whyWaitForEvidence } from './signing';
 import { type Batch, foldOf, type ProvedItem, record, refuse } from './sync-batch';
 import { isRevoked, isTrueToWorkshop, proveAuthor } from './sync-author';
 import type { EntryVerdict } from './sync-body';
+import { placeOf } from './sync-numbers';
 import type { ReadItem } from './sync-read';
 import { hasMetRestore } from './sync-restored';
 import { noteAct, tabletView, UNFORESEEN } from './tablet-view';
@@ -60,18 +62,22 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
       device: ownDevice,
     });
   }
-  const heard = (fold.heard.get(entry.device) ?? UNHEARD).number;
-  if (entry.deviceSeq > heard + 1) {
+  const place = await placeOf(batch, fold, entry);
+  if (place.kind === 'waiting') {
     return waiting(
       item,
       'earlier-missing',
-      `Record ${heard + 1} of this tablet has not come yet. It goes first.`,
+      `Record ${place.for} of this tablet has not come yet. It goes first.`,
     );
   }
   const proof = proveAuthor(batch, item, entry);
   if (!proof.ok) return refuse(batch, item, { ...proof, device: ownDevice });
   const { signature, key } = proof;
-  const proved = { ...item, entry, fields, signature, key, isNumberReused: entry.deviceSeq <= heard };
+  const proved = {
+    ...{ ...item, entry, fields, signature, key },
+    isNumberReused: place.kind === 'reused',
+    isLate: place.kind === 'late',
+  };
   const told = item.carried?.refused;
   return told === undefined
     ? judgeProved(batch, fold, proved)
@@ -109,7 +115,7 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
   if (entry.kind === 'plan-moved' && !(await isPlanKept(batch, entry.data.to))) {
     return refuseIt('plan-unknown', 'The plan that the job is to move to is not known.');
   }
-  const wait = whyWaitForEvidence(fold, entry);
+  const wait = await whyWaitForEvidence(batch, fold, entry);
   if (wait !== undefined) return waiting(item, 'evidence-missing', wait);
   const times = timesOf(batch, item);
   const own = await ownVerdict(batch, fold, item, times);
@@ -131,7 +137,9 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
   if ('code' in pin) {
     return pin.code === 'pin-locked' ? waiting(item, pin.code, pin.reason) : refuseIt(pin.code, pin.reason);
   }
-  const conflict = here.ok ? undefined : { code: here.code, why: here.why };
+  const conflict = here.ok
+    ? undefined
+    : { code: here.code, why: await conflictWords(batch, fold, entry, here) };
   return keep(batch, fold, item, { pin: pin.pin, conflict });
 }
 
@@ -210,7 +218,7 @@ async function ownVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: 
       'The name, the roles or the tool written on it are not those that the workshop had.',
     );
   }
-  const isOther = item.isNumberReused || isBehind(fold, entry.device, entry.basis);
+  const isOther = item.isNumberReused || item.isLate || isBehind(fold, entry.device, entry.basis);
   return mayRecord(isOther ? await tabletView(batch, fold, entry) : fold.state, entry, workshop);
 }
 
@@ -236,6 +244,8 @@ function serverVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Tim
       'This tablet used the same number for another record: it was copied or restored. Enrol it anew.',
     );
   }
+  if (item.isLate)
+    return no('late', 'Its tablet was declared lost, and later records of it were taken before this came.');
   if (isRevoked(batch, item.key, times.held))
     return no('key-revoked', "The author's key was revoked meanwhile.");
   const workshop = batch.history.at(times.held);

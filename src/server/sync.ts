@@ -53,30 +53,56 @@ export async function syncTablet(app: App, device: Device, body: SyncBody): Prom
   }
   const received = app.clock.now();
   const clockOffsetMs = Date.parse(body.sentAt) - received.getTime();
-  const items = body.entries.map(readItem);
+  const { verdicts, ended } = await judgePush(app, {
+    device,
+    entries: body.entries,
+    clockOffsetMs,
+    begin: (trx) => noteHeardFrom(trx, device.id, app.clock),
+    beforeAll: (batch) => noteRestores(batch, body),
+    atEnd: ({ trx, history }) => pull(trx, device, body, history),
+  });
+  return { at: received.toISOString(), verdicts, ...ended, clockOffsetMs };
+}
+
+/** Entries of a tablet however they came, and what else is to be done in the transactions that judge them. */
+export interface Push<T> {
+  device: Device;
+  entries: readonly unknown[];
+  /** The tablet's clock minus the server's. */
+  clockOffsetMs: number;
+  /** Writes something, so that each transaction holds the write lock from its beginning. */
+  begin: (trx: Trx) => Promise<void>;
+  beforeAll?: ((batch: Batch) => Promise<void>) | undefined;
+  /** In each transaction that recorded or refused something, after that: how many entries of each. */
+  onKept?: ((batch: Batch, kept: { recorded: number; refused: number }) => Promise<void>) | undefined;
+  /** In the last transaction, after all else. */
+  atEnd: (batch: Batch) => Promise<T>;
+}
+
+/** Judges entries; the verdicts are in the order of the entries. */
+export async function judgePush<T>(
+  app: App,
+  push: Push<T>,
+): Promise<{ verdicts: EntryVerdict[]; items: ReadItem[]; ended: T }> {
+  const items = push.entries.map(readItem);
   const verdicts = new Map<number, EntryVerdict>();
   const pins = new Map<string, PinResult>();
   const proofs = await proveSignatures(app.db, items);
-  await makeUpLost(app, device.id, newestNamed(items, proofs));
-  let pulled: Pulled | undefined;
+  await makeUpLost(app, push.device.id, newestNamed(items, proofs));
   let isCareful = false;
-  while (pulled === undefined) {
+  for (;;) {
     try {
-      const round = { body, items, verdicts, pins, proofs, clockOffsetMs, isCareful };
-      const ended = await oneRound(app, device, round);
-      if ('needsPin' in ended) pins.set(ended.needsPin.contentHash, await tryPin(app, ended.needsPin));
-      else pulled = ended;
+      const round = await oneRound(app, push, { items, verdicts, pins, proofs, isCareful });
+      if (!('needsPin' in round)) {
+        const inOrder = items.map(({ index, id }) => verdicts.get(index) ?? unexpected(id));
+        return { verdicts: inOrder, items, ended: round.ended };
+      }
+      pins.set(round.needsPin.contentHash, await tryPin(app, round.needsPin));
     } catch (error) {
       if (!(error instanceof TrippedError)) throw error;
       isCareful = true;
     }
   }
-  return {
-    at: received.toISOString(),
-    verdicts: items.map(({ index, id }) => verdicts.get(index) ?? unexpected(id)),
-    ...pulled,
-    clockOffsetMs,
-  };
 }
 
 /** The newest workshop entry that an entry of a known author names. */
@@ -100,13 +126,11 @@ class TrippedError extends Error {
 }
 
 interface Round {
-  body: SyncBody;
   items: readonly ReadItem[];
   /** Verdicts of earlier rounds, which are final; this round adds its own once it is committed. */
   verdicts: Map<number, EntryVerdict>;
   pins: ReadonlyMap<string, PinResult>;
   proofs: ReadonlyMap<number, boolean>;
-  clockOffsetMs: number;
   isCareful: boolean;
 }
 
@@ -125,31 +149,34 @@ async function proveSignatures(db: Db, items: readonly ReadItem[]): Promise<Read
 }
 
 /** One transaction: as far as the next PIN that has to be tried, or to the end. */
-async function oneRound(
+async function oneRound<T>(
   app: App,
-  device: Device,
-  { body, items, verdicts, ...judgedBy }: Round,
-): Promise<NeedsPin | Pulled> {
+  push: Push<T>,
+  { items, verdicts, ...judgedBy }: Round,
+): Promise<NeedsPin | { ended: T }> {
   // The history is remembered by the database, and read by the transaction alone.
   const { db: memory } = app;
+  const { device, clockOffsetMs } = push;
   const { found, folds, result } = await app.db.transaction().execute(async (trx) => {
-    // A write first, so that the transaction holds the write lock from its beginning.
-    await noteHeardFrom(trx, device.id, app.clock);
+    await push.begin(trx);
     const history = await readWorkshopHistory(memory, trx);
     const rest = items.filter(({ index }) => !verdicts.has(index));
     const receivedAt = stamp(app.clock);
-    const batch = await beginBatch({ app, trx, history, device, receivedAt, ...judgedBy }, rest);
-    if (verdicts.size === 0) await noteRestores(batch, body);
+    const batch = await beginBatch(
+      { app, trx, history, device, receivedAt, clockOffsetMs, ...judgedBy },
+      rest,
+    );
+    if (verdicts.size === 0) await push.beforeAll?.(batch);
+    const refusedBefore = new Set([...batch.refused.values()].flat().map(({ contentHash }) => contentHash));
     const judged = await judgeAll(batch, rest);
     await flush(batch);
     const changed = changedFolds(batch);
     await closeStates(trx, changed);
     await storeFolds(trx, changed);
-    return {
-      found: judged.verdicts,
-      folds: changed,
-      result: judged.needsPin ?? (await pull(trx, device, body, history)),
-    };
+    const kept = countKept(rest, judged.verdicts, refusedBefore);
+    if (kept.recorded + kept.refused > 0) await push.onKept?.(batch, kept);
+    const ended = judged.needsPin ?? { ended: await push.atEnd(batch) };
+    return { found: judged.verdicts, folds: changed, result: ended };
   });
   rememberFolds(app.db, folds);
   await signDueHeads(
@@ -158,6 +185,24 @@ async function oneRound(
   );
   for (const [index, verdict] of found) verdicts.set(index, verdict);
   return result;
+}
+
+/** How many entries are newly recorded, and newly refused: what was known before is answered and not kept again. */
+function countKept(
+  items: readonly ReadItem[],
+  verdicts: ReadonlyMap<number, EntryVerdict>,
+  refusedBefore: ReadonlySet<string | null>,
+): { recorded: number; refused: number } {
+  const judged = items.map(({ index, contentHash }) => ({
+    contentHash,
+    verdict: verdicts.get(index)?.verdict,
+  }));
+  return {
+    recorded: judged.filter(({ verdict }) => verdict === 'recorded').length,
+    refused: judged.filter(
+      ({ verdict, contentHash }) => verdict === 'refused' && !refusedBefore.has(contentHash),
+    ).length,
+  };
 }
 
 async function pull(

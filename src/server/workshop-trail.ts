@@ -29,6 +29,7 @@ export const WORKSHOP_KINDS = [
   'tablet-renamed',
   'tablet-lost',
   'tablet-found',
+  'tablet-file-brought',
   'key-enrolled',
   'key-revoked',
   'tool-added',

@@ -78,7 +78,8 @@ describe('a tablet', () => {
     const { ines, sup } = await addTestPeople(await openTestApp(), staff);
     const tablet = await enrol(await signIn(ines));
     const office = await signIn(sup);
-    const lose = { method: 'PATCH', params: { id: TABLET.id }, body: { state: 'lost' } };
+    const loss = { state: 'lost', reason: 'left in a van' };
+    const lose = { method: 'PATCH', params: { id: TABLET.id }, body: loss };
     expect((await tablet.ask(patchDevice, lose)).status).toBe(403);
     expect(await office.ask(patchDevice, lose)).toMatchObject({ status: 200, body: { state: 'lost' } });
     tablet.cookies.clear();

@@ -81,6 +81,12 @@ export async function openTable(): Promise<Table> {
   await tablet.record(job.id, { kind: 'photographed', data: photographed }, { by: ann });
   await tablet.sync();
   const opening = await prepareOpening(tablet, owner);
+  await tablet.record(
+    job.id,
+    { kind: 'deviation-raised', data: { class: 'C', words: 'in a file', blocks: false } },
+    { by: ann },
+  );
+  const inFile = tablet.held(job.id).outbox.splice(0);
   const tool = shop.kit.workshop.tools[0]?.id ?? '';
   const day = { on: '2031-05-01', dueOn: '2032-05-01' };
   const { publicKey } = tablet.makeKey('spare');
@@ -101,6 +107,16 @@ export async function openTable(): Promise<Table> {
     'POST /api/auth/switch': { body: { person: ann.id } },
     'GET /api/devices': {},
     'POST /api/devices': { body: { id: shop.app.ids.next(), name: 'Bay 9' } },
+    'POST /api/devices/file': {
+      body: {
+        v: 1,
+        format: 'witnessmark-tablet',
+        tablet: tablet.device,
+        savedAt: '2031-05-06T07:00:00.000Z',
+        clockOffsetMs: 0,
+        entries: inFile,
+      },
+    },
     'PATCH /api/devices/{id}': { params: { id: tablet.device }, body: { name: 'Bay 3', state: 'active' } },
     'POST /api/first-owner': {
       body: {
