@@ -70,6 +70,22 @@ describe('the lines of the ledger', () => {
     expect(line?.what).not.toBe('');
   });
 
+  it('say what stands there since a correction, and what stood there before', () => {
+    const journal = begun();
+    const counted = journal.entries.find(({ kind }) => kind === 'counted')!;
+    const { seq } = linesOf(readTrailOf(journal), ZONE).find(({ id }) => id === counted.id)!;
+    const reason = 'one lay under the bench';
+    const data = { count: 13 };
+    journal.record('corrected', { of: counted.id, class: 'substantive', reason, data });
+    const lines = linesOf(readTrailOf(journal), ZONE);
+    const before = lines[seq - 1]!;
+    expect(before.what).toMatch(/: 12$/);
+    expect(before.superseded).toBe(`corrected by entry ${lines.length}`);
+    expect(lines.at(-1)!.what).toContain(
+      `${reason}. Entry ${seq} reads since: ${before.what.replace('12', '13')}`,
+    );
+  });
+
   it('show a conflict in the words that it was recorded with', () => {
     const trail = readTrailOf(begun(), (entry) =>
       entry.seq === 3 ? { ...entry, conflict: { code: 'done-already', why: 'Done on tablet 2.' } } : entry,

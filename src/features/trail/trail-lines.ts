@@ -1,3 +1,4 @@
+import type { Recorded } from '@/domain/entry';
 import { wordsOf } from '@/domain/entry-words';
 import { findStep, type Plan } from '@/domain/plan';
 import { clockSeconds, clockTime, dayOf, shortDay } from '@/domain/time-words';
@@ -42,6 +43,7 @@ export function linesOf({ entries, plans }: ReadTrail, zone: string): TrailLine[
   const names = new Map(entries.map(({ recorded }) => [recorded.by, recorded.author.name]));
   const tablets = tabletNames(entries.map(({ recorded }) => recorded.device));
   const superseded = supersededBy(entries);
+  const byId = new Map(entries.map(({ recorded }) => [recorded.id, recorded]));
   let lastDay = '';
   return entries.map(({ recorded, hash }) => {
     const plan = plans.get(recorded.plan);
@@ -58,7 +60,7 @@ export function linesOf({ entries, plans }: ReadTrail, zone: string): TrailLine[
       who: recorded.author.name,
       withWhom: recorded.with.map((id) => names.get(id) ?? id),
       tablet: tablets.get(recorded.device) ?? recorded.device,
-      what: plan ? wordsOf(recorded, plan) : recorded.kind,
+      what: plan ? whatWords(recorded, plan, byId) : recorded.kind,
       isSignature: recorded.kind === 'signed',
       pinChecked: recorded.pin && clockSeconds(recorded.pin.checkedAt, zone),
       conflict: recorded.conflict?.why,
@@ -66,6 +68,16 @@ export function linesOf({ entries, plans }: ReadTrail, zone: string): TrailLine[
       hash,
     };
   });
+}
+
+/** A correction says its reason and what stands there since; what stood there before keeps its own line. */
+function whatWords(recorded: Recorded, plan: Plan, byId: ReadonlyMap<string, Recorded>): string {
+  const words = wordsOf(recorded, plan);
+  const earlier = recorded.kind === 'corrected' ? byId.get(recorded.data.of) : undefined;
+  if (recorded.kind !== 'corrected' || earlier === undefined) return words;
+  // The rules took the correction only because its data has the form of what it corrects.
+  const since = { ...earlier, data: recorded.data.data } as Recorded;
+  return `${words}. Entry ${earlier.seq} reads since: ${wordsOf(since, plan)}`;
 }
 
 function recordedWords(
