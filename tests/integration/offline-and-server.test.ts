@@ -28,6 +28,7 @@ import type { HandlerContext } from '@/server/http';
 import { changeDevice } from '@/server/device-changes';
 import { nextScripted, scriptedSignature, type Kit } from '@db/scripted-work';
 import sharp from 'sharp';
+import { signWorkOf, signWorkUnder } from '../support/sign-work';
 import { must, recorded } from '../support/offline-tablet';
 import { ask, commitTo, openShop, PIN, testIdentity, trailOf, type Hand, type Shop } from '../support/tablet';
 
@@ -190,6 +191,7 @@ async function doNext(browser: Browser, job: string, technician: Hand, signs = t
   }
   if (step.kind !== 'hold' || !signs) return false;
   browser.pass(4 * 60_000);
+  await signWorkUnder(offline, job, step.id);
   const covers = await coverageOf(offline, view, step.id);
   const data = { ...scriptedSignature(view.state, step, supervisor), covers };
   const draft: Draft = { kind: 'signed', step: step.id, data, pin: PIN };
@@ -229,6 +231,7 @@ describe('a tablet and the server', () => {
 
     tablet.isAway = true;
     await doMany(tablet, job, ann, 40);
+    await signWorkOf(tablet.offline, job, ann.id);
     await forgetSignIn(tablet.offline, ann.id);
     tablet.session = undefined;
     while (await doNext(tablet, job, ben)) {
@@ -276,6 +279,7 @@ describe('a tablet and the server', () => {
     const view = tablet.offline.jobs.get(job)!;
     const step = nextStep(view.state)!;
     if (step.kind !== 'hold') throw new Error(`${step.id} is no hold point`);
+    await signWorkUnder(tablet.offline, job, step.id);
     const data = {
       ...scriptedSignature(view.state, step, supervisor),
       covers: await coverageOf(tablet.offline, view, step.id),
