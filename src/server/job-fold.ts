@@ -20,11 +20,13 @@ export interface Heard {
   seq: number;
   /** The `seq` at which the trail last tells of a refusal of this tablet's; 0 if none. */
   refusedSeq: number;
+  /** The last `seq` at which an entry of this tablet has a conflict, which the tablet did not know of; 0 if none. */
+  conflictSeq: number;
   /** Numbers refused ahead of their turn, which need not be waited for. */
   ahead: ReadonlySet<number>;
 }
 
-export const UNHEARD: Heard = { number: 0, seq: 0, refusedSeq: 0, ahead: new Set() };
+export const UNHEARD: Heard = { number: 0, seq: 0, refusedSeq: 0, conflictSeq: 0, ahead: new Set() };
 
 /** The name under which the server's own entries stand in a trail. */
 export const SERVER_DEVICE = 'server';
@@ -116,6 +118,7 @@ export function beginFold(job: string, planHash: string, plan: Plan): JobFold {
 export function foldNext(fold: JobFold, recorded: Recorded, hash: string): JobFold {
   const { device, deviceSeq, seq } = recorded;
   const heard = fold.heard.get(device) ?? UNHEARD;
+  const conflictSeq = recorded.conflict === undefined ? heard.conflictSeq : seq;
   return {
     ...fold,
     state: applyEntry(fold.state, recorded),
@@ -124,7 +127,7 @@ export function foldNext(fold: JobFold, recorded: Recorded, hash: string): JobFo
     heard: new Map(fold.heard).set(
       device,
       // Past a gap only where the numbers between are lost for good.
-      skipAhead({ ...heard, number: Math.max(heard.number, deviceSeq), seq }),
+      skipAhead({ ...heard, number: Math.max(heard.number, deviceSeq), seq, conflictSeq }),
     ),
   };
 }
@@ -264,6 +267,10 @@ async function readHeard(reader: Db, jobId: string): Promise<ReadonlyMap<string,
   const heard = new Map<string, Heard>(
     recorded.map((row) => [row.device_id ?? SERVER_DEVICE, { ...UNHEARD, number: row.number, seq: row.seq }]),
   );
+  for (const { device, seq } of await readConflicts(reader, jobId)) {
+    const before = heard.get(device);
+    if (before !== undefined) heard.set(device, { ...before, conflictSeq: seq });
+  }
   const refused = await reader
     .selectFrom('refused_entry')
     .leftJoin('job_entry', (join) =>
@@ -287,6 +294,18 @@ async function readHeard(reader: Db, jobId: string): Promise<ReadonlyMap<string,
   return heard;
 }
 
+/** The last entry with a conflict of each tablet. In canonical JSON only the field itself can read like this. */
+async function readConflicts(reader: Db, jobId: string): Promise<{ device: string; seq: number }[]> {
+  const rows = await reader
+    .selectFrom('job_entry')
+    .select(({ fn }) => ['device_id', fn.max('seq').as('seq')])
+    .where('job_id', '=', jobId)
+    .where('body', 'like', '%"conflict":{%')
+    .groupBy('device_id')
+    .execute();
+  return rows.map(({ device_id, seq }) => ({ device: device_id ?? SERVER_DEVICE, seq }));
+}
+
 function memoryOf(db: Db): Map<string, JobFold> {
   const memory = memories.get(db) ?? new Map<string, JobFold>();
   memories.set(db, memory);
@@ -296,8 +315,12 @@ function memoryOf(db: Db): Map<string, JobFold> {
 /** Whether anything came into the trail after `basis` that this tablet did not do itself. */
 export function isBehind(fold: JobFold, device: string, basis: number): boolean {
   for (const [other, heard] of fold.heard) {
-    if (other === device ? heard.refusedSeq > basis : other !== SERVER_DEVICE && heard.seq > basis)
-      return true;
+    if (other === device ? isUnlike(heard, basis) : other !== SERVER_DEVICE && heard.seq > basis) return true;
   }
   return false;
+}
+
+/** Whether the trail holds something of a tablet after `basis` otherwise than the tablet itself has it. */
+function isUnlike({ refusedSeq, conflictSeq }: Heard, basis: number): boolean {
+  return refusedSeq > basis || conflictSeq > basis;
 }

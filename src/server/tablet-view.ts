@@ -1,6 +1,7 @@
 import type { Entry, Recorded } from '@/domain/entry';
 import { applyEntry, emptyJob, replay } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
+import { contentOf } from '@/domain/trail-hash';
 import type { JobFold } from './job-fold';
 import { getPlan } from './plans';
 import type { Batch, TabletView } from './sync-batch';
@@ -99,7 +100,8 @@ async function readOwnAfter(batch: Batch, { job, device, basis, deviceSeq }: Ent
     .where('job_entry.seq', '>', basis)
     .execute();
   return [
-    ...recorded.map(({ body }) => JSON.parse(body) as Recorded),
+    // As the tablet made them: of a conflict that the server saw in one it did not know.
+    ...recorded.map(({ body }) => contentOf(JSON.parse(body) as Recorded) as Entry),
     ...refused.map(({ body }) => (JSON.parse(body) as { entry: Entry }).entry),
   ].sort((one, other) => one.deviceSeq - other.deviceSeq);
 }
