@@ -12,7 +12,7 @@ export type Sendable = Pick<
 > & {
   /** Where it is in the outbox. */
   place?: number | undefined;
-  refused?: Pick<RefusedRow, 'code' | 'reason'> | undefined;
+  refused?: Pick<RefusedRow, 'reason'> | undefined;
 };
 
 export interface Batch {
@@ -42,8 +42,8 @@ export async function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): 
 }
 
 /** A verdict is final: what was refused is refused again, in the words of then. */
-function refusedBefore({ job, id, entry, signature, key, code, reason }: RefusedRow): Sendable {
-  return { job, id, entry, signature, key, refused: { code, reason } };
+function refusedBefore({ job, id, entry, signature, key, reason }: RefusedRow): Sendable {
+  return { job, id, entry, signature, key, refused: { reason } };
 }
 
 /** A record as the server asks for it. */

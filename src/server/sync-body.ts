@@ -41,9 +41,7 @@ export const carriedSchema = z.strictObject({
     })
     .optional(),
   /** The tablet was told so before the server was restored to an earlier time, and the server lost it. */
-  refused: z
-    .strictObject({ code: z.string().regex(/^[a-z-]{1,60}$/), reason: z.string().min(1).max(1000) })
-    .optional(),
+  refused: z.strictObject({ reason: z.string().min(1).max(1000) }).optional(),
   /** It was made on a trail of which a restore took the end, so what its tablet saw can't be had any more. */
   restored: z.literal(true).optional(),
 });

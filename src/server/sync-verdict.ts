@@ -81,10 +81,13 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
   const told = item.carried?.refused;
   return told === undefined
     ? judgeProved(batch, fold, proved)
-    : setAside(batch, proved, told.code, toldBefore(told.reason));
+    : setAside(batch, proved, 'told-before', toldBefore(told.reason));
 }
 
-/** A restore took the refusal back, and a verdict is final: it is given again, and says on whose word. */
+/**
+ * A restore took the refusal back, and a verdict is final: it is given again, and says on whose word. The tablet had
+ * heard of it, so it is no part of what the tablet saw afterwards; that is why it has a code of its own.
+ */
 function toldBefore(reason: string): string {
   return reason.startsWith(TOLD_BEFORE) ? reason : `${TOLD_BEFORE} ${reason}`;
 }

@@ -83,7 +83,7 @@ describe('the note of a restore', () => {
 });
 
 describe('a refusal that a restore took back', () => {
-  const refused = { code: 'overtaken', reason: 'Somebody was quicker.' };
+  const refused = { reason: 'Somebody was quicker.' };
 
   it('is given again on the word of the tablet that signed the record, and uses its number up', async () => {
     await raise('one');
@@ -91,18 +91,32 @@ describe('a refusal that a restore took back', () => {
     const [one] = tablet.held(job.id).outbox;
     Object.assign(one!, { refused });
     expect(await tablet.sync()).toMatchObject([
-      { verdict: 'refused', code: 'overtaken', reason: expect.stringContaining('Somebody was quicker.') },
+      { verdict: 'refused', code: 'told-before', reason: expect.stringContaining('Somebody was quicker.') },
       { verdict: 'recorded' },
     ]);
     const again = [{ ...one!, refused: undefined }, one!];
     for (const entry of again) {
       const body = { device: tablet.device, sentAt: new Date(tablet.now).toISOString(), jobs: [] };
       const { verdicts } = await pushTo(tablet.credential, { ...body, entries: [entry] });
-      expect(verdicts).toMatchObject([{ verdict: 'refused', code: 'overtaken' }]);
+      expect(verdicts).toMatchObject([{ verdict: 'refused', code: 'told-before' }]);
     }
     const kinds = (await trailOf(shop.app, job.id)).map(({ kind }) => kind);
     expect(kinds).toEqual(['opened', 'refused', 'deviation-raised']);
     expect(await verify()).toMatchObject({ ok: true });
+  });
+
+  it('is no part of what its tablet saw afterwards', async () => {
+    const { ann, supervisor } = shop.people;
+    await tablet.perform(job.id, { technician: ann, supervisor }, shop.kit, { entries: 1 });
+    const [first] = tablet.held(job.id).outbox;
+    Object.assign(first!, { refused });
+    const { kind, step, data } = first!.entry;
+    await tablet.record(job.id, { kind, step, data } as ScriptedEntry, { by: ann, force: true });
+    const verdicts = await tablet.sync();
+    expect(verdicts.map(({ verdict, code }) => [verdict, code])).toEqual([
+      ['refused', 'told-before'],
+      ['recorded', undefined],
+    ]);
   });
 
   it('counts for nothing on a record that is in the trail, or whose signature is wrong', async () => {

@@ -25,7 +25,7 @@ interface Pushed {
   signature: string;
   key: string;
   sealed?: Sealed;
-  refused?: { code: string; reason: string };
+  refused?: { reason: string };
 }
 
 interface Row {
@@ -301,7 +301,7 @@ export class OfflineServer {
       };
     }
     const forged = await this.whyForged(pushed);
-    const told = pushed.refused && ({ verdict: 'refused', ...pushed.refused } as const);
+    const told = pushed.refused && ({ verdict: 'refused', code: 'told-before', ...pushed.refused } as const);
     const judged =
       forged === undefined
         ? (told ?? this.judge(entry))
