@@ -57,6 +57,7 @@ export function whyNot(state: JobState, stepId: string): Verdict {
   if (missing !== undefined) return whyNeedIsMissing(state, missing);
   const past = whyNotPast(state, step);
   if (!past.ok) return past;
+  if (step.kind === 'tighten') return whyNotDisputed(state, step);
   if (step.kind === 'turn') return whyNotTurn(state);
   if (step.moves === true) return whyItemsBar(state, 'move', 'The vehicle may not be lowered or moved');
   if (step.kind === 'hold') return whyNotHold(state, step);
@@ -99,6 +100,14 @@ function whyNotPast(state: JobState, step: PlanStep): Verdict {
   );
 }
 
+/** What two tablets did to the same bolts is looked at before anybody turns one of them further. */
+function whyNotDisputed(state: JobState, step: PlanStep): Verdict {
+  const open = state.deviations.find((d) => d.rule === 'conflict' && !d.disposed && d.step === step.id);
+  return open
+    ? no('deviation-open', `A deviation is open here: ${sentence(open.words)}`, 'The supervisor disposes of it.')
+    : OK;
+}
+
 function whyNeedIsMissing(state: JobState, needId: string): Verdict {
   const need = findStep(state.plan, needId);
   const title = need?.title ?? needId;
@@ -109,7 +118,7 @@ function whyNeedIsMissing(state: JobState, needId: string): Verdict {
   if (deviation) {
     return no(
       'deviation-open',
-      `A deviation is open on "${title}": ${deviation.words}.`,
+      `A deviation is open on "${title}": ${sentence(deviation.words)}`,
       'The supervisor disposes of it.',
     );
   }
@@ -161,7 +170,7 @@ function whyNotHold(state: JobState, step: PlanStep & { kind: 'hold' }): Verdict
   if (!barred.ok || step.gate !== 'start') return barred;
   const open = openBlockers(state).find((d) => d.class !== 'C');
   return open
-    ? no('deviation-open', `A deviation is open: ${open.words}.`, 'The supervisor disposes of it.')
+    ? no('deviation-open', `A deviation is open: ${sentence(open.words)}`, 'The supervisor disposes of it.')
     : OK;
 }
 
@@ -185,7 +194,7 @@ function whyNotHandOver(state: JobState): Verdict {
   }
   const [open] = openBlockers(state);
   if (open)
-    return no('deviation-open', `A deviation is open: ${open.words}.`, 'The supervisor disposes of it.');
+    return no('deviation-open', `A deviation is open: ${sentence(open.words)}`, 'The supervisor disposes of it.');
   const missing = state.plan.steps.find((s) => s.kind !== 'hand-over' && !isSatisfied(state, s.id));
   return missing ? whyNeedIsMissing(state, missing.id) : OK;
 }
@@ -193,4 +202,9 @@ function whyNotHandOver(state: JobState): Verdict {
 /** Deviations that block and wait for a disposition. */
 export function openBlockers(state: JobState): JobState['deviations'] {
   return state.deviations.filter((deviation) => deviation.blocks && !deviation.disposed);
+}
+
+/** Words with a full stop at their end, if they have none. */
+export function sentence(words: string): string {
+  return /[.!?]$/.test(words) ? words : `${words}.`;
 }

@@ -53,6 +53,14 @@ export interface WorkshopRow extends Workshop {
   sealingKey: { id: string; publicKey: string };
 }
 
+/** A tablet that has a part in a job, and when the server last heard of it. */
+export interface JobTablet {
+  id: string;
+  name: string;
+  lastHeardAt: string | null;
+  lastRecordedAt: string;
+}
+
 export interface JobRow {
   id: string;
   number: string;
@@ -64,6 +72,8 @@ export interface JobRow {
   phase: string;
   people: string[];
   promisedOn?: string | undefined;
+  /** The tablets that had recorded in the job when the list of jobs was last brought, the last first. */
+  tablets?: JobTablet[] | undefined;
   /** Where the server's trail stood when it was last heard. */
   head: TrailPoint;
   /** Where this tablet's copy of the trail stands; null before the first entry. */

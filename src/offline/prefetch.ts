@@ -66,6 +66,16 @@ const jobsAnswer = z.object({
       head: z.nullish(z.object({ seq: z.int(), hash: z.string() })),
       people: z.array(z.string()),
       promisedOn: z.nullish(z.string()),
+      tablets: z.optional(
+        z.array(
+          z.object({
+            id: z.string(),
+            name: z.string(),
+            lastHeardAt: z.nullable(z.string()),
+            lastRecordedAt: z.string(),
+          }),
+        ),
+      ),
     }),
   ),
 });

@@ -7,6 +7,14 @@ const hash = z.string().regex(/^[0-9a-f]{64}$/);
 const personName = z.strictObject({ id: z.string(), name: z.string() });
 export const jobState = z.enum(['open', 'parked', 'handed over', 'ended']);
 
+const jobTablet = z.strictObject({
+  id: z.string(),
+  name: z.string(),
+  state: z.enum(['active', 'lost']),
+  lastHeardAt: z.string().nullable(),
+  lastRecordedAt: z.string(),
+});
+
 const lineShape = {
   id: z.string(),
   number: z.string(),
@@ -62,6 +70,8 @@ export const jobSummaryAnswer = z.strictObject({
       isAwaited: z.boolean(),
     }),
   ),
+  /** The tablets that recorded in the job, the last first. */
+  tablets: z.array(jobTablet),
   /** The folded state, with its plan. */
   jobState: z.looseObject({ plan: z.looseObject({}), phase: z.string(), seq: z.int() }),
 });
@@ -78,6 +88,8 @@ export const floorJobAnswer = z.strictObject({
   /** Ids of the people on the job. */
   people: z.array(z.string()),
   promisedOn: z.string().optional(),
+  /** The tablets that recorded in the job, the last first. */
+  tablets: z.array(jobTablet),
 });
 
 const identityValue = z.strictObject({

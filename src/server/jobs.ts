@@ -10,6 +10,7 @@ import { getVisibleJob, selectVisibleJobs } from './job-access';
 import { getFold } from './job-fold';
 import { readIdentity, readRegistrations } from './job-identity';
 import type { JobRow } from './job-rows';
+import { type JobTablet, listJobTablets } from './job-tablets';
 import { listMissingPhotographs, type MissingPhotograph } from './photos-missing';
 
 const PAGE = 25;
@@ -87,6 +88,8 @@ export interface JobSummary extends JobLine {
   withheld: string[];
   /** Photographs of the record whose bytes have not come. */
   missingPhotographs: MissingPhotograph[];
+  /** The tablets that recorded in the job, the last first. */
+  tablets: JobTablet[];
   jobState: JobState;
 }
 
@@ -109,6 +112,7 @@ export async function getJob(app: App, actor: Actor, id: string): Promise<JobSum
     identity: Object.fromEntries(Object.entries(known).map(([field, { value }]) => [field, value])),
     withheld,
     missingPhotographs: await listMissingPhotographs(app, state),
+    tablets: (await listJobTablets(db, [id])).get(id) ?? [],
     jobState: state,
   };
 }

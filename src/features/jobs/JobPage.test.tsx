@@ -47,6 +47,7 @@ function answerOf(journal: Journal, over: Partial<JobAnswer> = {}): JobAnswer {
     identity: { registration: 'TW71 ABC' },
     withheld: ['customerName'],
     missingPhotographs: [],
+    tablets: [],
     jobState: state,
     ...over,
   };

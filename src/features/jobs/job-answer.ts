@@ -51,6 +51,7 @@ export const jobAnswer = z.object({
       isAwaited: z.boolean(),
     }),
   ),
+  tablets: z.array(z.object({ id: z.string(), name: z.string() })),
   jobState: z.custom<JobState>(
     (value: unknown) => typeof value === 'object' && value !== null && 'steps' in value,
   ),

@@ -1,6 +1,7 @@
 import * as z from 'zod';
 import { endpoint } from '@/server/http';
 import { floorJobAnswer } from '@/server/job-answers';
+import { listJobTablets } from '@/server/job-tablets';
 import { listOpenJobs } from '@/server/jobs';
 
 export const GET = endpoint(
@@ -11,12 +12,20 @@ export const GET = endpoint(
     who: 'session or tablet',
     answer: z.strictObject({ jobs: z.array(floorJobAnswer) }),
   },
-  async ({ app, asker }) => ({
-    jobs: (await listOpenJobs(app.db, asker)).map(
-      ({ id, number, label, engine, registration, plan, phase, head, people, promisedOn }) => ({
-        ...{ id, number, label, engine, registration, plan, phase, head, promisedOn },
-        people: people.map((person) => person.id),
-      }),
-    ),
-  }),
+  async ({ app, asker }) => {
+    const jobs = await listOpenJobs(app.db, asker);
+    const tablets = await listJobTablets(
+      app.db,
+      jobs.map(({ id }) => id),
+    );
+    return {
+      jobs: jobs.map(
+        ({ id, number, label, engine, registration, plan, phase, head, people, promisedOn }) => ({
+          ...{ id, number, label, engine, registration, plan, phase, head, promisedOn },
+          people: people.map((person) => person.id),
+          tablets: tablets.get(id) ?? [],
+        }),
+      ),
+    };
+  },
 );
