@@ -182,7 +182,11 @@ function settleBolt(state: JobState, step: TightenStep, set: BoltSet, present: B
   const all = fits.flatMap((fit) => physicalRecords(state, fit));
   const own = tighteningRecords(state, step);
   const next = nextTightening(state, step);
-  const isCondemned = next?.kind === 'replace' && next.bolt === bolt;
+  // From the moment that it went over, also while the bolt beside it still waits to be let off.
+  const fate = own.findLast(
+    (record) => record.bolt === bolt && (record.kind === 'replaced' || isOver(record)),
+  );
+  const isCondemned = fate !== undefined && isOver(fate);
   const isReleased = next?.kind === 'release' || next?.kind === 'replace';
   return {
     ...present,
@@ -194,6 +198,10 @@ function settleBolt(state: JobState, step: TightenStep, set: BoltSet, present: B
     cyclesDone: isReleased || own.length === 0 ? 0 : cyclesDone(state, step, bolt, next),
     marked: step.fit !== 'final' ? present.marked : isReleased ? undefined : markOf(state, step, bolt),
   };
+}
+
+function isOver(record: TighteningRecord): boolean {
+  return record.kind === 'stage' && record.outcome === 'over';
 }
 
 function lotOf(state: JobState, step: TightenStep, bolt: string): string | undefined {
