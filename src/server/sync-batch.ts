@@ -82,6 +82,8 @@ export interface Batch {
   newRefusals: Insertable<RefusedEntryTable>[];
   /** How many tightenings each tool did in this push. */
   toolUses: Map<string, number>;
+  /** Jobs of which the tablet says in this push that it holds what a restore took back. */
+  lostViews: Set<string>;
 }
 
 /** Gathers what the entries of a push are judged by. */
@@ -108,6 +110,7 @@ export async function beginBatch(
     newEntries: [],
     newRefusals: [],
     toolUses: new Map(),
+    lostViews: new Set(),
   };
 }
 

@@ -230,7 +230,8 @@ async function ownVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: 
  * any more, and it happened. The trail tells that this tablet met a restore; that alone is not taken on its word.
  */
 function isActOnLostView(batch: Batch, fold: JobFold, { entry, carried }: ProvedItem, code: string): boolean {
-  if (carried?.restored !== true || batch.device === undefined) return false;
+  const isSaid = carried?.restored === true || batch.lostViews.has(entry.job);
+  if (!isSaid || batch.device === undefined) return false;
   if (isOneOf(judgementKinds, entry.kind) || isOneOf(WHATEVER_IT_SAW, code)) return false;
   return hasMetRestore(fold, batch.device.id);
 }

@@ -58,7 +58,7 @@ export async function syncTablet(app: App, device: Device, body: SyncBody): Prom
     entries: body.entries,
     clockOffsetMs,
     begin: (trx) => noteHeardFrom(trx, device.id, app.clock),
-    beforeAll: (batch) => noteRestores(batch, body),
+    beforeAll: (batch, isFirstRound) => noteRestores(batch, body, isFirstRound),
     atEnd: ({ trx, history }) => pull(trx, device, body, history),
   });
   return { at: received.toISOString(), verdicts, ...ended, clockOffsetMs };
@@ -72,7 +72,7 @@ export interface Push<T> {
   clockOffsetMs: number;
   /** Writes something, so that each transaction holds the write lock from its beginning. */
   begin: (trx: Trx) => Promise<void>;
-  beforeAll?: ((batch: Batch) => Promise<void>) | undefined;
+  beforeAll?: ((batch: Batch, isFirstRound: boolean) => Promise<void>) | undefined;
   /** In each transaction that recorded or refused something, after that: how many entries of each. */
   onKept?: ((batch: Batch, kept: { recorded: number; refused: number }) => Promise<void>) | undefined;
   /** In the last transaction, after all else. */
@@ -166,7 +166,7 @@ async function oneRound<T>(
       { app, trx, history, device, receivedAt, clockOffsetMs, ...judgedBy },
       rest,
     );
-    if (verdicts.size === 0) await push.beforeAll?.(batch);
+    await push.beforeAll?.(batch, verdicts.size === 0);
     const refusedBefore = new Set([...batch.refused.values()].flat().map(({ contentHash }) => contentHash));
     const judged = await judgeAll(batch, rest);
     await flush(batch);
@@ -292,7 +292,7 @@ function unexpected(id: string | null): EntryVerdict {
 }
 
 /** A tablet that holds what the server does not: the server was restored from a backup, and says so once. */
-async function noteRestores(batch: Batch, body: SyncBody): Promise<void> {
+async function noteRestores(batch: Batch, body: SyncBody, isFirstRound: boolean): Promise<void> {
   const { device, trx } = batch;
   if (device === undefined) return;
   for (const { id, have } of body.jobs) {
@@ -300,7 +300,8 @@ async function noteRestores(batch: Batch, body: SyncBody): Promise<void> {
     const fold = await foldOf(batch, id);
     if (fold === undefined || (await holds(trx, id, have))) continue;
     // A job that the tablet may not see tells it nothing, and keeps no trace of its asking.
-    if (isNoted(fold, device.id) || !(await maySee(trx, device, id))) continue;
+    batch.lostViews.add(id);
+    if (!isFirstRound || isNoted(fold, device.id) || !(await maySee(trx, device, id))) continue;
     const reason = `The tablet ${device.name} (${device.id}) holds entry ${have.seq} (${have.hash.slice(0, 16)}), and the server does not.`;
     const data = { after: fold.seq, reason };
     recordByServer(batch, fold, { id: batch.app.ids.next(), kind: 'restored', data });

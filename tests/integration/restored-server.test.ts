@@ -167,6 +167,17 @@ describe('an act on a view that a restore took back', () => {
     expect(state.deviations).toMatchObject([{ blocks: true, step: unordered.step }]);
   });
 
+  it('is recorded in the very push in which the tablet first learns of the restore', async () => {
+    await tablet.record(job.id, unordered, { by: shop.people.ann, force: true });
+    const { verdicts } = await pushTo(tablet.credential, {
+      device: tablet.device,
+      sentAt: new Date(tablet.now).toISOString(),
+      jobs: [{ id: job.id, have: { seq: 40, hash: 'a'.repeat(64) } }],
+      entries: tablet.held(job.id).outbox,
+    });
+    expect(verdicts).toMatchObject([{ verdict: 'recorded', code: expect.any(String) }]);
+  });
+
   it('is refused where no restore is told of', async () => {
     expect(await judged(unordered)).toMatchObject({ verdict: 'refused' });
   });
