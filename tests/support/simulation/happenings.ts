@@ -1,5 +1,6 @@
 /* What happens to the tablets, the network, the server and the people, one thing at a time. */
 import { readRows } from './disk';
+import { checkDisk } from './invariants';
 import type { Run } from './run';
 import type { SimTablet, Tab } from './tablet';
 
@@ -136,12 +137,13 @@ function changeReach(run: Run): void {
   if (!tablet.isAway) for (const tab of tablet.tabs) tab.tellOnline();
 }
 
-function killTab(run: Run): void {
+async function killTab(run: Run): Promise<void> {
   const tab = someTab(run);
   if (!tab) return;
   const isTakenBack = run.chance.happens(0.6);
   run.note(`${tab.tablet.name}: a page is killed${tab.isBusy ? ' in the middle of a record' : ''}`);
   tab.kill(isTakenBack);
+  if (run.chance.happens(0.4)) await checkDisk(run, tab.tablet);
 }
 
 function openSecondTab(run: Run): void {

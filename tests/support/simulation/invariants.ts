@@ -1,5 +1,6 @@
 /* What must hold: of a tablet at any moment of rest, and of everything once it is quiet. */
 import { isDeepStrictEqual } from 'node:util';
+import { judgementKinds, type Entry } from '@/domain/entry';
 import { replay } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
 import { NO_PREVIOUS } from '@/domain/trail-chain';
@@ -11,7 +12,18 @@ import type { SimTablet, Tab } from './tablet';
 
 /** A tablet's own records at rest: each in one place, and no gap in what it has of a trail. */
 export async function checkTablet(run: Run, { tablet, offline }: Tab): Promise<void> {
-  const { entries, outbox, refused, jobs, counters } = await run.finish(readAll(offline.db));
+  checkRows(run, tablet, await run.finish(readAll(offline.db)));
+}
+
+/** The same of a tablet whose pages were killed: whatever they were in the middle of. */
+export async function checkDisk(run: Run, tablet: SimTablet): Promise<void> {
+  checkRows(run, tablet, await run.onDisk(tablet, readAll));
+}
+
+type AllRows = Awaited<ReturnType<typeof readAll>>;
+
+function checkRows(run: Run, tablet: SimTablet, rows: AllRows): void {
+  const { entries, outbox, refused, jobs, counters } = rows;
   const places = new Map<string, string[]>();
   const note = (id: string, place: string) => places.set(id, [...(places.get(id) ?? []), place]);
   for (const { id } of entries) note(id, 'entries');
@@ -117,11 +129,35 @@ async function checkTold(run: Run, waiting: ReadonlySet<string>): Promise<void> 
       );
     }
   }
+  await checkActs(run);
   for (const [id, { isRecorded, restores }] of run.verdicts) {
     const isThere = (isRecorded ? recorded : refused).some((row) => row.id === id);
     if (isThere || (restores < run.restores && run.lost.length > 0)) continue;
     throw new Breach(`${id} was acknowledged as ${isRecorded ? 'recorded' : 'refused'} and is not there.`);
   }
+}
+
+/**
+ * What was in order on its tablet happened: it is in the trail, whatever others did meanwhile. Of a copied tablet
+ * nobody can say what it saw, since two of them count.
+ */
+async function checkActs(run: Run): Promise<void> {
+  if (run.hasCopy) return;
+  const { db } = run.server.app;
+  const refused = await run.turns.outside(() =>
+    db.selectFrom('refused_entry').select(['entry_id', 'code', 'message']).execute(),
+  );
+  for (const { entry_id, code, message } of refused) {
+    const told = run.told.get(entry_id ?? '');
+    if (!told || isJudged(told.entry)) continue;
+    throw new Breach(
+      `${told.entry.kind} ${entry_id} was in order on its tablet and is refused: ${message} (${code})`,
+    );
+  }
+}
+
+function isJudged({ kind }: Entry): boolean {
+  return kind === 'took-over' || judgementKinds.some((judgement) => judgement === kind);
 }
 
 /** Each tablet's numbers of a job come without a gap, and twice only from a copied tablet. */

@@ -52,7 +52,7 @@ async function live(run: Run): Promise<void> {
   const [one, other] = [chance.pick(beginning.jobs), chance.pick(beginning.jobs)];
   run.jobs = chance.happens(0.2) && one !== other ? [one, other] : [one];
   for (const disk of beginning.disks)
-    await run.addTablet(ofJobs(disk, run.jobs), run.jobs, chance.happens(0.8));
+    await run.addTablet(ofJobs(disk, run.jobs), run.jobs, chance.happens(0.6));
   const happen = chooseHappenings(run);
   const events = chance.between(30, 90);
   for (let n = 0; n < events; n += 1) {
