@@ -40,6 +40,8 @@ const SECOND = 1000;
 const PACE_MS = 6 * SECOND;
 const WATCH_STEP_MS = 15 * SECOND;
 const LONGEST_RUN = 900;
+const HOLD_MS = 1500;
+const IS_MY_WORK = /^Th(is|ese) \d+ entr(y is|ies are) my work$/;
 
 /** What the gauges and the dial show, by what the keypad asks for. */
 const READINGS: [asked: RegExp, value: string][] = [
@@ -91,6 +93,7 @@ export class FloorDriver {
   async doNext(look: Look): Promise<void> {
     this.at = kindOf(look);
     if (!look.isBarred) {
+      if (IS_MY_WORK.test(look.main)) return this.signWork(look);
       if (look.main === 'Take the photograph') return this.photograph();
       return this.press(look);
     }
@@ -118,6 +121,20 @@ export class FloorDriver {
     await this.moved(look);
   }
 
+  /** The end of a phase: the author holds the block at the bottom until it is signed. */
+  private async signWork(look: Look): Promise<void> {
+    await this.hold(this.bottom(look.main));
+    await this.moved(look);
+  }
+
+  /** Presses with a finger and holds; the page's clock runs on meanwhile. */
+  private async hold(target: Locator): Promise<void> {
+    await target.dispatchEvent('pointerdown', { isPrimary: true, button: 0, pointerType: 'touch' });
+    await this.passTime(HOLD_MS);
+    this.taps += 1;
+    this.tapsBy.set(this.at, (this.tapsBy.get(this.at) ?? 0) + 1);
+  }
+
   /** Answers what became of the action that was on the screen. */
   async answer(answer: 'Yes' | 'No' | 'Not sure'): Promise<void> {
     const before = await this.look();
@@ -136,6 +153,12 @@ export class FloorDriver {
     await this.touch(this.page.getByRole('button', { name: /change who is working/ }));
     const sheet = this.page.getByRole('dialog');
     await this.touch(sheet.getByRole('button', { name: `${name} takes over` }));
+    const own = sheet.getByRole('button', { name: IS_MY_WORK });
+    if ((await own.count()) > 0) {
+      await this.hold(own);
+      await expect(own).toHaveCount(0);
+      await this.passTime(PACE_MS);
+    }
     if (pin !== undefined) await this.keyPin(pin);
     await this.touch(sheet.getByRole('button', { name: 'Take over', exact: true }));
     await expect(this.page.getByRole('dialog')).toHaveCount(0);

@@ -15,6 +15,7 @@ export type SheetName =
   | 'sign out'
   | 'problem'
   | 'take back'
+  | 'correct'
   | 'deviation'
   | 'not applicable'
   | 'waiting for a part'

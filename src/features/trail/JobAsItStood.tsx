@@ -6,17 +6,28 @@ import type { JobState } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
 import { signatureView } from '@/domain/signature-view';
 import { EntryFacts } from './EntryFacts';
+import { RelatedEntries } from './RelatedEntries';
 import type { ReadTrail } from './read-trail';
+import type { Related } from './related';
 
 export interface JobAsItStoodProps {
   state: JobState;
   /** The entry looked at. */
   entry: ReadTrail['entries'][number];
   zone: string;
+  /** What other entries say about it. */
+  related: Related[];
+  onGo: (seq: number) => void;
 }
 
 /** What the record said of the engine, the open things and the signatures once this entry was in it. */
-export const JobAsItStood = memo(function JobAsItStood({ state, entry, zone }: JobAsItStoodProps) {
+export const JobAsItStood = memo(function JobAsItStood({
+  state,
+  entry,
+  zone,
+  related,
+  onGo,
+}: JobAsItStoodProps) {
   const { recorded, hash } = entry;
   const { seq } = recorded;
   const step = recorded.step === undefined ? undefined : findStep(state.plan, recorded.step);
@@ -32,6 +43,7 @@ export const JobAsItStood = memo(function JobAsItStood({ state, entry, zone }: J
       <div className="trail-state-both">
         <EngineBelow {...engineView(state, step, zone)} />
         <div className="trail-state-words">
+          <RelatedEntries related={related} onGo={onGo} />
           {/* The newest signature is the one that the work stands on: it comes first. */}
           {[...state.signatures].reverse().map((signature, i) => {
             const { words, covers, ...stamp } = signatureView(signature, zone);

@@ -93,6 +93,26 @@ describe('the page of a trail', () => {
   });
 });
 
+describe('an entry that was corrected', () => {
+  it('says old and new value, who, when and why, and leads both ways', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.clean@rod2');
+    const at = journal.entries.findIndex(({ kind }) => kind === 'gauged') + 1;
+    const reading = journal.entries[at - 1]!;
+    const data = { ...reading.data, clearance: '0.052' };
+    journal.record('corrected', { of: reading.id, class: 'substantive', reason: 'misread', data });
+    const last = journal.entries.length;
+    await show(readTrailOf(journal));
+    const about = () => within(screen.getByRole('list', { name: 'Entries about this one' }));
+    await userEvent.click(about().getByRole('button', { name: `Corrects entry ${at}` }));
+    expect(current()).toBe(String(at));
+    expect(about().getByText(/0\.048 mm/)).toBeVisible();
+    expect(about().getByText(/^After: .*0\.052 mm/)).toBeVisible();
+    expect(about().getByText(/T\. Nician, .*: misread/)).toBeVisible();
+    await userEvent.click(about().getByRole('button', { name: `Corrected by entry ${last}` }));
+    expect(current()).toBe(String(last));
+  });
+});
+
 describe('the job as it stood', () => {
   const whole = new Journal(smallPlan()).performUntil(null);
   const signed = whole.entries.findIndex(({ kind }) => kind === 'signed') + 1;

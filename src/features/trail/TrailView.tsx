@@ -6,6 +6,7 @@ import { JobAsItStood } from './JobAsItStood';
 import { Ledger } from './Ledger';
 import { VerificationNote } from './VerificationNote';
 import type { ReadTrail } from './read-trail';
+import { relatedTo } from './related';
 import { statesAlong } from './states-along';
 import { linesOf, phasesOf } from './trail-lines';
 
@@ -36,6 +37,7 @@ export function TrailView({ job, trail, zone }: TrailViewProps) {
   // The strip follows the finger at once; ledger and engine come after it.
   const shown = useDeferredValue(position);
   const entry = trail.entries[shown - 1];
+  const related = useMemo(() => relatedTo(trail, shown, zone), [trail, shown, zone]);
   const at = trail.entries[position - 1]?.recorded.at;
   return (
     <div className="trail-page">
@@ -61,7 +63,15 @@ export function TrailView({ job, trail, zone }: TrailViewProps) {
       />
       <div className="trail-both">
         <Ledger lines={lines} position={shown} onPick={setPosition} onWalk={walk} />
-        {entry && <JobAsItStood state={stateAt(shown)} entry={entry} zone={zone} />}
+        {entry && (
+          <JobAsItStood
+            state={stateAt(shown)}
+            entry={entry}
+            zone={zone}
+            related={related}
+            onGo={setPosition}
+          />
+        )}
       </div>
       <div className="print-only">
         <HeadCode trail={trail} zone={zone} />

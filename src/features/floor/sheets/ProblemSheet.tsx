@@ -5,6 +5,7 @@ import { entryForAction } from '@/domain/job-tightening';
 import type { PlanStep, StepOf } from '@/domain/plan';
 import { useRun, type SheetName } from '../run-context';
 import { toolUsed } from '../tighten-touch';
+import { correctableOn } from './correct-fields';
 import { Sheet } from './Sheet';
 
 interface ProblemSheetProps {
@@ -25,6 +26,9 @@ export function ProblemSheet({ step, onClose }: ProblemSheetProps) {
         <div className="grid gap-3 @container sm:grid-cols-2 [&_.quiet-button]:justify-start [&_.quiet-button]:text-xl">
           <QuietButton shape="wide" label="Raise a deviation" onPress={open('deviation')} />
           <QuietButton shape="wide" label="Take back the last act" onPress={open('take back')} />
+          {correctableOn(run.state, step).length > 0 && (
+            <QuietButton shape="wide" label="Correct a record of this step" onPress={open('correct')} />
+          )}
           {step && step.kind !== 'hold' && (
             <QuietButton
               shape="wide"

@@ -2,6 +2,7 @@ import { useEffect, useMemo, useRef, useState } from 'react';
 import { Sign, type SignName } from '@/components/Sign';
 import { progressOf, whyNot } from '@/domain/job';
 import { isBlocked } from '@/domain/job-deviation';
+import { DONE_PAST, donePast } from '@/domain/job-evidence';
 import type { JobState } from '@/domain/job-state';
 import { findStep, type PlanStep } from '@/domain/plan';
 import { useRun } from '../run-context';
@@ -118,7 +119,9 @@ function StepLine({ step, isCurrent, onPick }: { step: PlanStep; isCurrent: bool
 function standing(state: JobState, step: PlanStep): { sign: SignName; words: string; why?: string } {
   const status = state.steps[step.id]?.status ?? 'open';
   if (isBlocked(state, step.id)) return { sign: 'cross', words: 'deviation open' };
-  if (status === 'done') return { sign: 'tick', words: 'done' };
+  const past = donePast(state, step.id);
+  const why = past && `${DONE_PAST}: ${past.holdPoint}`;
+  if (status === 'done') return { sign: 'tick', words: 'done', ...(why === undefined ? {} : { why }) };
   if (status === 'not applicable') return { sign: 'minus', words: 'not applicable' };
   if (status === 'waiting for a part') return { sign: 'ring', words: 'waiting for a part' };
   const verdict = whyNot(state, step.id);

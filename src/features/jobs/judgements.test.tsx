@@ -1,0 +1,132 @@
+import { QueryClient, QueryClientProvider } from '@tanstack/react-query';
+import { render, screen, within } from '@testing-library/react';
+import userEvent from '@testing-library/user-event';
+import { beforeEach, describe, expect, it, vi } from 'vitest';
+import type { Outcome } from '@/offline/server-call';
+import { Journal } from '../../../tests/support/journal';
+import { smallPlan } from '../../../tests/support/small-documents';
+import { JobCorrections } from './JobCorrections';
+import { JobSignatures } from './JobSignatures';
+import type { Judge } from './JudgementDialog';
+
+const recordAtDesk = vi.hoisted(() => vi.fn<(...asked: unknown[]) => Promise<Outcome>>());
+vi.mock('@/offline/desk-record', () => ({ recordAtDesk }));
+vi.mock('@/offline/offline', () => ({ offlineOfThisPage: () => 'this browser' }));
+
+beforeEach(() => {
+  recordAtDesk.mockReset();
+  recordAtDesk.mockResolvedValue({ ok: true });
+});
+
+const lead: Judge = { job: 'job-1', id: 'lead', name: 'Q. Lead' };
+const HOLD = 'build.caps-marked';
+
+/** Signed, gone on, and a lot mended under the signature. */
+function clerical(): Journal {
+  const journal = new Journal(smallPlan()).performUntil('build.sump-on');
+  const chosen = journal.entries.find((one) => one.kind === 'chose-shells')!;
+  const data = { ...chosen.data, upper: { grade: 'blue', lot: 'S-7' } };
+  journal.record('corrected', { of: chosen.id, class: 'clerical', reason: 'misread label', data });
+  return journal;
+}
+
+function show(journal: Journal, judge: Judge | null = lead) {
+  const parts = { state: journal.state, zone: 'Europe/Lisbon', judge: judge ?? undefined };
+  render(
+    <QueryClientProvider client={new QueryClient()}>
+      <JobCorrections {...parts} />
+      <JobSignatures {...parts} />
+    </QueryClientProvider>,
+  );
+  return userEvent.setup();
+}
+
+const dialog = () => within(screen.getByRole('dialog'));
+
+describe('a clerical correction under a signature', () => {
+  it('is countersigned with a PIN by somebody else, who sees what it changed', async () => {
+    const journal = clerical();
+    const user = show(journal);
+    expect(screen.getByText('Countersign due before handover')).toBeVisible();
+    await user.click(screen.getByRole('button', { name: 'Countersign' }));
+    expect(dialog().getByText(/lot S-7/)).toBeVisible();
+    expect(dialog().getByText(/Corrected by T. Nician, .*: misread label/)).toBeVisible();
+    const sign = dialog().getByRole('button', { name: 'Countersign' });
+    expect(sign).toBeDisabled();
+    await user.type(dialog().getByLabelText('Your PIN'), '604392');
+    await user.click(sign);
+    const of = journal.entries.at(-1)!.id;
+    const data = { of, name: 'Q. Lead' };
+    expect(recordAtDesk).toHaveBeenCalledWith(
+      'this browser',
+      'job-1',
+      { kind: 'countersigned', data, pin: '604392' },
+      'lead',
+    );
+    expect(screen.queryByRole('dialog')).toBeNull();
+  });
+
+  it('offers nothing to whoever made it', () => {
+    show(clerical(), { ...lead, id: 'tech' });
+    expect(screen.queryByRole('button', { name: 'Countersign' })).toBeNull();
+  });
+
+  it('stays open with the words when it was refused', async () => {
+    recordAtDesk.mockResolvedValue({ ok: false, code: 'pin-wrong', why: 'The PIN was wrong. Sign again.' });
+    const user = show(clerical());
+    await user.click(screen.getByRole('button', { name: 'Countersign' }));
+    await user.type(dialog().getByLabelText('Your PIN'), '111111');
+    await user.click(dialog().getByRole('button', { name: 'Countersign' }));
+    expect(dialog().getByText(/The PIN was wrong/)).toBeVisible();
+    expect(dialog().getByLabelText('Your PIN')).toHaveValue('');
+  });
+});
+
+describe('a signature or a disposition', () => {
+  it('is revoked with a reason', async () => {
+    const journal = new Journal(smallPlan()).performUntil(HOLD);
+    const { id } = journal.sign(HOLD);
+    const user = show(journal);
+    await user.click(screen.getAllByRole('button', { name: 'Revoke' })[0]!);
+    const revoke = dialog().getByRole('button', { name: 'Revoke it' });
+    expect(revoke).toBeDisabled();
+    await user.type(dialog().getByLabelText('Reason'), 'the wrong vehicle');
+    await user.click(revoke);
+    expect(recordAtDesk).toHaveBeenCalledWith(
+      'this browser',
+      'job-1',
+      { kind: 'revoked', data: { of: id, reason: 'the wrong vehicle' } },
+      'lead',
+    );
+  });
+
+  it('names the disposition that is revoked', async () => {
+    const journal = new Journal(smallPlan()).performUntil(HOLD);
+    const disposed = journal.state.deviations.find((one) => one.disposed)!;
+    const user = show(journal);
+    const line = within(screen.getAllByText(disposed.words)[0]!.closest('li')!);
+    await user.click(line.getByRole('button', { name: 'Revoke' }));
+    await user.type(dialog().getByLabelText('Reason'), 'looked at again');
+    await user.click(dialog().getByRole('button', { name: 'Revoke it' }));
+    expect(recordAtDesk.mock.calls[0]?.[2]).toEqual({
+      kind: 'revoked',
+      data: { of: disposed.disposed!.entry, reason: 'looked at again' },
+    });
+  });
+
+  it('is not offered for revoking to somebody who may not', () => {
+    const journal = new Journal(smallPlan()).performUntil(HOLD);
+    journal.sign(HOLD);
+    show(journal, null);
+    expect(screen.queryByRole('button', { name: 'Revoke' })).toBeNull();
+  });
+
+  it('that was opened again says how many steps were done past it', () => {
+    const journal = new Journal(smallPlan()).performUntil('build.sump-on');
+    const { entry } = journal.state.signatures.find(({ step }) => step === HOLD)!;
+    journal.record('revoked', { of: entry, reason: 'the wrong vehicle' }, { by: 'lead' });
+    show(journal);
+    expect(screen.getByText(/steps were done past a hold point that was opened again/)).toBeVisible();
+    expect(screen.getByText('not signed again yet')).toBeVisible();
+  });
+});
