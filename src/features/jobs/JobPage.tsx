@@ -1,23 +1,23 @@
-import { QueryClientProvider } from "@tanstack/react-query";
-import { useState } from "react";
-import { ButtonLink } from "@/components/ButtonLink";
-import { EngineBelow } from "@/components/EngineBelow";
-import { ErrorNote } from "@/components/ErrorNote";
-import { engineView } from "@/domain/engine-view";
-import { JobBlocks } from "./JobBlocks";
-import { JobClearances } from "./JobClearances";
-import { JobErasure } from "./JobErasure";
-import { JobCorrections } from "./JobCorrections";
-import { JobFacts, JobHeadFacts } from "./JobFacts";
-import { JobNext } from "./JobNext";
-import { JobPeople } from "./JobPeople";
-import { JobPhotos } from "./JobPhotos";
-import { JobProgress } from "./JobProgress";
-import { JobSetAside } from "./JobSetAside";
-import { JobSignatures } from "./JobSignatures";
-import { JobStanding } from "./JobStanding";
-import { jobAnswer, type JobAnswer } from "./job-answer";
-import { newQueryClient, useServer } from "@/offline/use-server";
+import { QueryClientProvider } from '@tanstack/react-query';
+import { useState } from 'react';
+import { ButtonLink } from '@/components/ButtonLink';
+import { EngineBelow } from '@/components/EngineBelow';
+import { ErrorNote } from '@/components/ErrorNote';
+import { engineView } from '@/domain/engine-view';
+import { JobBlocks } from './JobBlocks';
+import { JobClearances } from './JobClearances';
+import { JobErasure } from './JobErasure';
+import { JobCorrections } from './JobCorrections';
+import { JobFacts, JobHeadFacts } from './JobFacts';
+import { JobNext } from './JobNext';
+import { JobPeople } from './JobPeople';
+import { JobPhotos } from './JobPhotos';
+import { JobProgress } from './JobProgress';
+import { JobSetAside } from './JobSetAside';
+import { JobSignatures } from './JobSignatures';
+import { JobStanding } from './JobStanding';
+import { jobAnswer, type JobAnswer } from './job-answer';
+import { newQueryClient, useServer } from '@/offline/use-server';
 
 export interface JobPageProps {
   job: string;
@@ -33,7 +33,7 @@ export interface JobPageProps {
   canErase?: boolean | undefined;
 }
 
-const HAS_ENDED: readonly string[] = ["handed over", "ended unfinished"];
+const HAS_ENDED: readonly string[] = ['handed over', 'ended unfinished'];
 
 /** One job: how far it is, what blocks it, who works on it, and what is known of it. */
 export function JobPage(props: JobPageProps) {
@@ -70,15 +70,12 @@ function Job({
 }: JobPageProps & { answer: JobAnswer }) {
   const { jobState } = answer;
   const onThisJob = judge && { ...judge, job: answer.id };
-  const next =
-    answer.next &&
-    jobState.plan.steps.find(({ id }) => id === answer.next?.step);
+  const next = answer.next && jobState.plan.steps.find(({ id }) => id === answer.next?.step);
   return (
     <>
       <div className="page-head">
         <h1 className="page-title">
-          Job <span className="figure">{answer.number}</span>,{" "}
-          {answer.registration ?? "registration erased"}
+          Job <span className="figure">{answer.number}</span>, {answer.registration ?? 'registration erased'}
         </h1>
         <div className="form-actions no-print">
           {canReadTrail && (
@@ -123,14 +120,8 @@ function Job({
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
           <JobCorrections state={jobState} zone={zone} judge={onThisJob} />
           <JobSignatures state={jobState} zone={zone} judge={onThisJob} />
-          <JobPhotos
-            state={jobState}
-            zone={zone}
-            missing={answer.missingPhotographs}
-          />
-          {canErase && HAS_ENDED.includes(jobState.phase) && (
-            <JobErasure job={answer} />
-          )}
+          <JobPhotos state={jobState} zone={zone} missing={answer.missingPhotographs} />
+          {canErase && HAS_ENDED.includes(jobState.phase) && <JobErasure job={answer} />}
         </div>
         <JobFacts job={answer} />
       </div>

@@ -1,25 +1,25 @@
-import type { PlanStep } from "@/domain/plan";
-import { setWorking } from "@/offline/tablet";
-import { useFloor, useFloorStore } from "../floor-context";
-import { useUpdate } from "../use-update";
-import { useRun, type SheetName, type Worker } from "../run-context";
-import { SignOutSheet } from "../SignOutSheet";
-import { CorrectSheet } from "./CorrectSheet";
-import { DeviationForm } from "./DeviationForm";
-import { JobSheet } from "./JobSheet";
-import { PersonSheet } from "./PersonSheet";
-import { ProblemSheet } from "./ProblemSheet";
-import { StepsSheet } from "./StepsSheet";
-import { SyncSheet } from "./SyncSheet";
-import { TakeBackSheet } from "./TakeBackSheet";
-import { ToolSheet } from "./ToolSheet";
+import type { PlanStep } from '@/domain/plan';
+import { setWorking } from '@/offline/tablet';
+import { useFloor, useFloorStore } from '../floor-context';
+import { useUpdate } from '../use-update';
+import { useRun, type SheetName, type Worker } from '../run-context';
+import { SignOutSheet } from '../SignOutSheet';
+import { CorrectSheet } from './CorrectSheet';
+import { DeviationForm } from './DeviationForm';
+import { JobSheet } from './JobSheet';
+import { PersonSheet } from './PersonSheet';
+import { ProblemSheet } from './ProblemSheet';
+import { StepsSheet } from './StepsSheet';
+import { SyncSheet } from './SyncSheet';
+import { TakeBackSheet } from './TakeBackSheet';
+import { ToolSheet } from './ToolSheet';
 import {
   AfterwardsSheet,
   EndUnfinishedSheet,
   ExtraWorkSheet,
   NotApplicableSheet,
   WaitingForPartSheet,
-} from "./WordsSheets";
+} from './WordsSheets';
 
 interface RunSheetsProps {
   name: SheetName;
@@ -35,13 +35,11 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
   const status = useFloor((floor) => floor.sync);
   const update = useUpdate();
   switch (name) {
-    case "steps":
+    case 'steps':
       return <StepsSheet current={step} onClose={onClose} />;
-    case "job":
-      return (
-        <JobSheet onClose={onClose} onLeave={() => (location.hash = "")} />
-      );
-    case "sync":
+    case 'job':
+      return <JobSheet onClose={onClose} onLeave={() => (location.hash = '')} />;
+    case 'sync':
       return (
         <SyncSheet
           step={step}
@@ -51,7 +49,7 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
           onClose={onClose}
         />
       );
-    case "person":
+    case 'person':
       return (
         <PersonSheet
           step={step}
@@ -59,37 +57,35 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
           onClose={onClose}
           onHelpers={store.getState().setHelpers}
           onChanged={(person) => changePerson(store.getState(), person)}
-          onSignOut={() => run.openSheet("sign out")}
+          onSignOut={() => run.openSheet('sign out')}
         />
       );
-    case "sign out":
+    case 'sign out':
       return (
         <SignOutSheet
           person={run.person}
           isOnline={run.isOnline}
-          onClose={() => run.openSheet("person")}
+          onClose={() => run.openSheet('person')}
           onLeft={() => {
-            location.hash = "";
+            location.hash = '';
           }}
         />
       );
-    case "problem":
+    case 'problem':
       return <ProblemSheet step={step} onClose={onClose} />;
-    case "take back":
+    case 'take back':
       return <TakeBackSheet onClose={onClose} />;
-    case "correct":
+    case 'correct':
       return <CorrectSheet step={step} onClose={onClose} />;
-    case "deviation":
+    case 'deviation':
       return <DeviationForm step={step} onClose={onClose} />;
-    case "not applicable":
+    case 'not applicable':
       return step ? <NotApplicableSheet step={step} onClose={onClose} /> : null;
-    case "waiting for a part":
-      return step ? (
-        <WaitingForPartSheet step={step} onClose={onClose} />
-      ) : null;
-    case "extra work":
+    case 'waiting for a part':
+      return step ? <WaitingForPartSheet step={step} onClose={onClose} /> : null;
+    case 'extra work':
       return <ExtraWorkSheet onClose={onClose} />;
-    case "recorded afterwards":
+    case 'recorded afterwards':
       return (
         <AfterwardsSheet
           onClose={onClose}
@@ -99,20 +95,20 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
           }}
         />
       );
-    case "end unfinished":
+    case 'end unfinished':
       return <EndUnfinishedSheet onClose={onClose} />;
-    case "torque tool":
+    case 'torque tool':
       return <ToolSheet hand="torque" step={step} onClose={onClose} />;
-    case "angle tool":
+    case 'angle tool':
       return <ToolSheet hand="angle" step={step} onClose={onClose} />;
-    case "measuring tool":
+    case 'measuring tool':
       return <ToolSheet hand="measuring" step={step} onClose={onClose} />;
   }
 }
 
 /** Someone else works here now; that they took over has already made the Floor ask about what was on the screen. */
 async function changePerson(
-  floor: ReturnType<ReturnType<typeof useFloorStore>["getState"]>,
+  floor: ReturnType<ReturnType<typeof useFloorStore>['getState']>,
   person: Worker,
 ): Promise<void> {
   await setWorking(floor.offline, person.id);
