@@ -4,6 +4,7 @@ import * as workshop from './migrations/0002-workshop';
 import * as jobs from './migrations/0003-jobs';
 import * as headsAndPhotos from './migrations/0004-heads-photos';
 import * as mail from './migrations/0005-mail';
+import * as noReplace from './migrations/0006-no-replace';
 
 /** Frozen once merged: a change to the tables is a new file here, never an edit of an old one. */
 const migrations = {
@@ -12,6 +13,7 @@ const migrations = {
   '0003-jobs': jobs,
   '0004-heads-photos': headsAndPhotos,
   '0005-mail': mail,
+  '0006-no-replace': noReplace,
 };
 
 const provider: MigrationProvider = { getMigrations: () => Promise.resolve(migrations) };

@@ -1,16 +1,19 @@
 import { headMessage } from '@/domain/trail';
 import { isMadeByServer, NO_PREVIOUS } from '@/domain/trail-chain';
+import type { SignedHead } from '@/domain/trail-export';
 import { contentHash, contentOf } from '@/domain/trail-hash';
 import type { Recorded } from '@/domain/entry';
+import { THE_WORKSHOP } from './actor';
 import { proveSignature } from './author-signature';
 import { sha256Hex } from './crypto';
 import type { Db } from './database';
+import { readPlans, whyNotKept, whyNotPlan } from './record-beside';
 import { nodeChecks } from './trail-checks';
 import { WORKSHOP_TRAIL } from './signed-heads';
 
 /*
- * Whether the database still says what was recorded: every chain, every author's signature and every signed head,
- * read from the tables alone. The triggers that refuse a change can be dropped by whoever holds the file; this
+ * Whether the database still says what was recorded: every chain, every author's signature, every signed head, and
+ * the plans and refused entries that the chains name, read from the tables alone. The triggers that refuse a change can be dropped by whoever holds the file; this
  * finds what was changed then.
  */
 
@@ -41,7 +44,8 @@ export async function checkRecord(
   const workshop = await checkWorkshop(db, breaks);
   const jobs = await db.selectFrom('job').select('id').orderBy('id').execute();
   const ends = new Map([[WORKSHOP_TRAIL, workshop]]);
-  for (const { id } of jobs) ends.set(id, await checkJob(db, id, breaks));
+  const plans = await readPlans(db);
+  for (const { id } of jobs) ends.set(id, await checkJob(db, id, plans, breaks));
   const heads = await checkHeads(db, new Map(workshopKeys.map((one) => [one.key, one.publicKey])), breaks);
   await checkRemembered(db, ends, breaks);
   const entries = [...ends.values()].reduce((sum, count) => sum + count, 0);
@@ -94,20 +98,33 @@ function checkWorkshop(db: Db, breaks: RecordBreak[]): Promise<number> {
     (after) =>
       db
         .selectFrom('workshop_entry')
-        .select(['seq', 'id', 'kind', 'body', 'hash'])
+        .select(['seq', 'id', 'kind', 'by_person', 'at', 'body', 'content_hash', 'hash'])
         .where('seq', '>', after)
         .orderBy('seq')
         .limit(PAGE)
         .execute(),
-    ({ id, kind }, recorded) =>
-      Promise.resolve(recorded.id === id && recorded.kind === kind ? undefined : OTHER_COLUMNS),
+    (row, recorded) => {
+      const { id, kind, by, at } = recorded;
+      const isRow =
+        id === row.id &&
+        kind === row.kind &&
+        by === (row.by_person ?? THE_WORKSHOP.personId) &&
+        at === row.at &&
+        contentHash(contentOf(recorded as unknown as Recorded), sha256Hex) === row.content_hash;
+      return Promise.resolve(isRow ? undefined : OTHER_COLUMNS);
+    },
     breaks,
   );
 }
 
 const OTHER_COLUMNS = 'Its row says something else than its content.';
 
-async function checkJob(db: Db, job: string, breaks: RecordBreak[]): Promise<number> {
+async function checkJob(
+  db: Db,
+  job: string,
+  plans: ReadonlyMap<string, boolean>,
+  breaks: RecordBreak[],
+): Promise<number> {
   return followChain(
     job,
     (after) =>
@@ -117,6 +134,7 @@ async function checkJob(db: Db, job: string, breaks: RecordBreak[]): Promise<num
         .select(['job_entry.seq', 'job_entry.id', 'job_entry.kind', 'job_entry.step', 'job_entry.body'])
         .select(['job_entry.hash', 'job_entry.content_hash', 'job_entry.signature', 'author_key.public_key'])
         .select(['author_key.person_id', 'author_key.device_id', 'job_entry.device_seq'])
+        .select(['job_entry.by_person', 'job_entry.device_id as made_on', 'job_entry.at', 'recorded_at'])
         .where('job_entry.job_id', '=', job)
         .where('job_entry.seq', '>', after)
         .orderBy('job_entry.seq')
@@ -124,14 +142,9 @@ async function checkJob(db: Db, job: string, breaks: RecordBreak[]): Promise<num
         .execute(),
     async (row, body) => {
       const recorded = body as unknown as Recorded;
-      const isRow =
-        recorded.id === row.id &&
-        recorded.job === job &&
-        recorded.kind === row.kind &&
-        (recorded.step ?? null) === row.step &&
-        recorded.deviceSeq === row.device_seq &&
-        contentHash(contentOf(recorded), sha256Hex) === row.content_hash;
-      if (!isRow) return OTHER_COLUMNS;
+      if (!isRowOf(row, job, recorded)) return OTHER_COLUMNS;
+      const beside = whyNotPlan(plans, recorded) ?? (await whyNotKept(db, job, recorded));
+      if (beside !== undefined) return beside;
       if (isMadeByServer(recorded)) return undefined;
       if (row.signature === null || row.public_key === null) return "It carries no author's signature.";
       const isAuthors = row.person_id === recorded.by && row.device_id === recorded.device;
@@ -140,6 +153,35 @@ async function checkJob(db: Db, job: string, breaks: RecordBreak[]): Promise<num
       return holds ? undefined : "Its author's signature does not hold.";
     },
     breaks,
+  );
+}
+
+interface JobColumns {
+  id: string;
+  kind: string;
+  step: string | null;
+  by_person: string | null;
+  made_on: string | null;
+  device_seq: number;
+  at: string;
+  recorded_at: string;
+  content_hash: string;
+}
+
+/** Do the columns of an entry say what its content says? */
+function isRowOf(row: JobColumns, job: string, recorded: Recorded): boolean {
+  const isServers = isMadeByServer(recorded);
+  return (
+    recorded.id === row.id &&
+    recorded.job === job &&
+    recorded.kind === row.kind &&
+    (recorded.step ?? null) === row.step &&
+    (isServers ? null : recorded.by) === row.by_person &&
+    (isServers ? null : recorded.device) === row.made_on &&
+    recorded.deviceSeq === row.device_seq &&
+    recorded.at === row.at &&
+    recorded.recordedAt === row.recorded_at &&
+    contentHash(contentOf(recorded), sha256Hex) === row.content_hash
   );
 }
 
@@ -181,13 +223,15 @@ async function checkRemembered(
 ): Promise<void> {
   const rows = await db
     .selectFrom('workshop_entry')
-    .select('body')
+    .select(['kind', 'body'])
     .where('kind', 'in', ['job-opened', 'head-signed'])
     .orderBy('seq')
     .execute();
   const reached = new Map<string, number>();
-  for (const { body } of rows) {
+  for (const { kind, body } of rows) {
     const data = readBody(body)?.data as { job?: unknown; trail?: unknown; seq?: unknown } | undefined;
+    if (kind === 'head-signed' && data !== undefined)
+      await checkTold(db, data as unknown as SignedHead, breaks);
     const trail = data?.job ?? data?.trail;
     const seq = typeof data?.seq === 'number' ? data.seq : 1;
     if (typeof trail === 'string') reached.set(trail, Math.max(seq, reached.get(trail) ?? 0));
@@ -196,4 +240,20 @@ async function checkRemembered(
     if ((ends.get(trail) ?? 0) < seq)
       breaks.push({ trail, seq, why: 'The workshop knew this entry, and it is gone.' });
   }
+}
+
+/** A head that the workshop tells of is kept as it was signed. */
+async function checkTold(
+  db: Db,
+  { trail, seq, signature }: SignedHead,
+  breaks: RecordBreak[],
+): Promise<void> {
+  const row = await db
+    .selectFrom('signed_head')
+    .select('signature')
+    .where('trail', '=', trail)
+    .where('seq', '=', seq)
+    .executeTakeFirst();
+  if (row?.signature !== signature)
+    breaks.push({ trail, seq, why: 'The head that was signed at this entry is gone.' });
 }
