@@ -104,7 +104,11 @@ function whyNotPast(state: JobState, step: PlanStep): Verdict {
 function whyNotDisputed(state: JobState, step: PlanStep): Verdict {
   const open = state.deviations.find((d) => d.rule === 'conflict' && !d.disposed && d.step === step.id);
   return open
-    ? no('deviation-open', `A deviation is open here: ${sentence(open.words)}`, 'The supervisor disposes of it.')
+    ? no(
+        'deviation-open',
+        `A deviation is open here: ${sentence(open.words)}`,
+        'The supervisor disposes of it.',
+      )
     : OK;
 }
 
@@ -194,7 +198,11 @@ function whyNotHandOver(state: JobState): Verdict {
   }
   const [open] = openBlockers(state);
   if (open)
-    return no('deviation-open', `A deviation is open: ${sentence(open.words)}`, 'The supervisor disposes of it.');
+    return no(
+      'deviation-open',
+      `A deviation is open: ${sentence(open.words)}`,
+      'The supervisor disposes of it.',
+    );
   const missing = state.plan.steps.find((s) => s.kind !== 'hand-over' && !isSatisfied(state, s.id));
   return missing ? whyNeedIsMissing(state, missing.id) : OK;
 }

@@ -42,7 +42,7 @@ export async function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): 
 }
 
 /** A verdict is final: what was refused is refused again, in the words of then. */
-function refusedBefore({ job, id, entry, signature, key, reason }: RefusedRow): Sendable {
+export function refusedBefore({ job, id, entry, signature, key, reason }: RefusedRow): Sendable {
   return { job, id, entry, signature, key, refused: { reason } };
 }
 

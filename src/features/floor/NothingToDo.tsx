@@ -2,7 +2,7 @@ import { FloorFrame } from '@/components/FloorFrame';
 import { EngineBelow } from '@/components/EngineBelow';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
-import { openBlockers } from '@/domain/job-order';
+import { openBlockers, sentence } from '@/domain/job-order';
 import { findSignature } from '@/domain/job-evidence';
 import { whyNot } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
@@ -97,7 +97,7 @@ const SHOWN = 6;
 function waitingFor(state: JobState): { title: string; why: string }[] {
   const deviations = openBlockers(state).map(({ words }) => ({
     title: 'Deviation',
-    why: `${words}. The supervisor disposes of it.`,
+    why: `${sentence(words)} The supervisor disposes of it.`,
   }));
   const parts = state.plan.steps
     .filter(({ id }) => state.steps[id]?.status === 'waiting for a part')

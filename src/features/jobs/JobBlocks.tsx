@@ -1,4 +1,5 @@
 import { nextSteps, whyNot } from '@/domain/job';
+import { guideTo } from '@/domain/deviation-guide';
 import { openBlockers } from '@/domain/job-order';
 import type { JobState } from '@/domain/job-state';
 import { dayAndTime } from '@/domain/time-words';
@@ -10,10 +11,13 @@ export interface JobBlocksProps {
   zone: string;
   waiting: { step: string; holdPoint: string; title: string }[];
   missingPhotographs: MissingPhotograph[];
+  /** The tablets that recorded in the job. */
+  tablets: { id: string; name: string }[];
 }
 
 /** What stands in the way: signatures that are due, open deviations, parts, and what is still open. */
-export function JobBlocks({ state, zone, waiting, missingPhotographs }: JobBlocksProps) {
+export function JobBlocks({ state, zone, waiting, missingPhotographs, tablets }: JobBlocksProps) {
+  const names = new Map(tablets.map(({ id, name }) => [id, name]));
   const awaited = isOver(state) ? [] : missingPhotographs.filter(({ isAwaited }) => isAwaited);
   const things = [
     ...waiting.map(({ step, title }) => ({
@@ -21,11 +25,15 @@ export function JobBlocks({ state, zone, waiting, missingPhotographs }: JobBlock
       what: `Signature due: ${holdPointName(title)}`,
       note: 'at the vehicle, on the Floor',
     })),
-    ...openBlockers(state).map((deviation) => ({
-      key: deviation.id,
-      what: `Deviation, class ${deviation.class}: ${deviation.words}`,
-      note: `${deviation.raisedByName}, ${dayAndTime(deviation.raisedAt, zone)}`,
-    })),
+    ...openBlockers(state).map((deviation) => {
+      const guide = guideTo(state, deviation, names);
+      return {
+        key: deviation.id,
+        what: `Deviation, class ${deviation.class}: ${guide?.happened ?? deviation.words}`,
+        note: `${deviation.raisedByName}, ${dayAndTime(deviation.raisedAt, zone)}`,
+        ...(guide && { more: `${guide.blocked} ${guide.next} It is disposed of on the Floor.` }),
+      };
+    }),
     ...state.plan.steps
       .filter(({ id }) => state.steps[id]?.status === 'waiting for a part')
       .map(({ id, title }) => ({ key: id, what: `Waiting for a part: ${title}`, note: '' })),
@@ -76,13 +84,14 @@ function isOver({ phase }: JobState): boolean {
   return phase === 'handed over' || phase === 'ended unfinished';
 }
 
-function BlockList({ things }: { things: { key: string; what: string; note: string }[] }) {
+function BlockList({ things }: { things: { key: string; what: string; note: string; more?: string }[] }) {
   return (
     <ul className="job-list">
-      {things.map(({ key, what, note }) => (
+      {things.map(({ key, what, note, more }) => (
         <li key={key}>
           <b>{what}</b>
           {note !== '' && <span className="text-soft"> {note}</span>}
+          {more !== undefined && <p>{more}</p>}
         </li>
       ))}
     </ul>

@@ -114,6 +114,7 @@ function Job({
             zone={zone}
             waiting={answer.waiting}
             missingPhotographs={answer.missingPhotographs}
+            tablets={answer.tablets}
           />
           <JobSetAside job={answer.id} zone={zone} />
           <JobNext state={jobState} />

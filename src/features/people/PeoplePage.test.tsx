@@ -1,4 +1,4 @@
-import { render, screen, within } from '@testing-library/react';
+import { fireEvent, render, screen, waitFor, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { describe, expect, it } from 'vitest';
 import { answerDesk, refused, type DeskAnswer } from '../../../tests/support/desk-server';
@@ -134,5 +134,35 @@ describe('the page of people', () => {
     await user.click(screen.getByRole('button', { name: 'Add the person' }));
     expect(await screen.findByText(why)).toBeVisible();
     expect(screen.getByLabelText('Printed name')).toHaveValue('A. Dded');
+  });
+});
+
+describe('the tablets on that page', () => {
+  const at = '2031-05-06T07:00:00.000Z';
+  const bay = { id: 'd1', name: 'Bay 2', state: 'active', enrolledAt: at, lastHeardAt: at };
+  const gone = { ...bay, id: 'd2', name: 'Bay 3', state: 'lost' };
+  const devices = { 'GET /api/devices': { body: { devices: [bay, gone] } } };
+
+  it('are declared lost with a reason and by holding, not by a touch', async () => {
+    const { sent, user } = await show({ ...devices, 'PATCH /api/devices/d1': { body: {} } });
+    await user.click(await screen.findByRole('button', { name: 'Declare Bay 2 lost' }));
+    const dialog = within(screen.getByRole('dialog', { name: 'Declare Bay 2 lost' }));
+    const hold = dialog.getByRole('button', { name: 'Declare Bay 2 lost' });
+    expect(hold).toHaveAttribute('aria-disabled', 'true');
+    await user.type(dialog.getByLabelText('How was it lost?'), 'left in a van');
+    await user.click(hold);
+    expect(sent()).toEqual([]);
+    fireEvent.pointerDown(hold, { isPrimary: true, button: 0 });
+    await waitFor(() => expect(sent()).toHaveLength(1), { timeout: 4000 });
+    const body = { state: 'lost', reason: 'left in a van' };
+    expect(sent()).toEqual([{ method: 'PATCH', path: '/api/devices/d1', body }]);
+    await waitFor(() => expect(screen.queryByRole('dialog')).toBeNull());
+  });
+
+  it('that are lost say so and are taken back into use', async () => {
+    const { sent, user } = await show({ ...devices, 'PATCH /api/devices/d2': { body: {} } });
+    expect(await screen.findByText('lost: nothing it sends is taken')).toBeVisible();
+    await user.click(screen.getByRole('button', { name: 'Bay 3 is found: take it back into use' }));
+    expect(sent()).toEqual([{ method: 'PATCH', path: '/api/devices/d2', body: { state: 'active' } }]);
   });
 });

@@ -2,6 +2,7 @@ import { useState } from 'react';
 import { ChoiceRows } from '@/components/ChoiceRows';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
+import type { DeviationGuide } from '@/domain/deviation-guide';
 import type { Deviation } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
 import { dayAndTime } from '@/domain/time-words';
@@ -20,6 +21,8 @@ type Disposition = (typeof DISPOSITIONS)[number]['value'];
 
 interface DispositionFormProps {
   deviation: Deviation;
+  /** What is known of a deviation that tablets brought about. */
+  guide?: DeviationGuide | undefined;
   /** It is disposed of, or left as it is. */
   onDone: () => void;
 }
@@ -31,7 +34,7 @@ export function DispositionForm(props: DispositionFormProps) {
   return may ? <Disposing {...props} /> : <NeedsSupervisor {...props} />;
 }
 
-function Disposing({ deviation, onDone }: DispositionFormProps) {
+function Disposing({ deviation, guide, onDone }: DispositionFormProps) {
   const run = useRun();
   const [disposition, setDisposition] = useState<Disposition>();
   const [reason, setReason] = useState('');
@@ -74,11 +77,11 @@ function Disposing({ deviation, onDone }: DispositionFormProps) {
       }
     >
       <div className="grid gap-5">
-        <WhatIsWrong deviation={deviation} />
+        <WhatIsWrong deviation={deviation} guide={guide} />
         <ChoiceRows
           label="What becomes of it"
           columns={2}
-          choices={[...DISPOSITIONS]}
+          choices={choicesOf(guide)}
           value={disposition}
           onChoose={(value) => setDisposition(DISPOSITIONS.find((each) => each.value === value)?.value)}
         />
@@ -100,23 +103,36 @@ function Disposing({ deviation, onDone }: DispositionFormProps) {
   );
 }
 
+/** The dispositions that make sense: all, unless more is known of what happened. */
+function choicesOf(guide: DeviationGuide | undefined) {
+  if (guide === undefined) return [...DISPOSITIONS];
+  return guide.choices.flatMap(({ value, note }) =>
+    DISPOSITIONS.filter((each) => each.value === value).map((each) => ({ ...each, note })),
+  );
+}
+
 /** The words of the deviation, the step that it is on, and who said so. */
-function WhatIsWrong({ deviation }: { deviation: Deviation }) {
+function WhatIsWrong({ deviation, guide }: Pick<DispositionFormProps, 'deviation' | 'guide'>) {
   const { state, workshop } = useRun();
   const { words, step, raisedAt, raisedByName } = deviation;
   const title = step === undefined ? undefined : findStep(state.plan, step)?.title;
   return (
     <div>
-      <p className="text-xl font-bold">{words}</p>
+      <p className="text-xl font-bold">{guide?.happened ?? words}</p>
       <p className="text-lg text-soft">
         {title === undefined ? '' : `${title}; `}class {deviation.class}, {raisedByName},{' '}
         {dayAndTime(raisedAt, workshop.zone)}
       </p>
+      {guide && (
+        <p className="pt-2 text-lg">
+          {guide.blocked} {guide.next}
+        </p>
+      )}
     </div>
   );
 }
 
-function NeedsSupervisor({ deviation, onDone }: DispositionFormProps) {
+function NeedsSupervisor({ deviation, guide, onDone }: DispositionFormProps) {
   const run = useRun();
   return (
     <Sheet
@@ -127,7 +143,7 @@ function NeedsSupervisor({ deviation, onDone }: DispositionFormProps) {
       }
     >
       <div className="grid gap-4">
-        <WhatIsWrong deviation={deviation} />
+        <WhatIsWrong deviation={deviation} guide={guide} />
         <p className="text-lg">
           A supervisor or the quality lead disposes of a deviation. Hand the tablet over and change who is
           working; change back after.

@@ -3,6 +3,7 @@ import { QuietButton } from '@/components/QuietButton';
 import { Sign } from '@/components/Sign';
 import type { Deviation, JobState, OpenItem } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
+import { guideTo, type TabletNames } from '@/domain/deviation-guide';
 import { gatesWords } from '../bars-words';
 import { openWitnessPoints } from '../current-step';
 import { useRun } from '../run-context';
@@ -11,26 +12,35 @@ import { DispositionForm } from './DispositionForm';
 import { Sheet } from './Sheet';
 
 interface JobSheetProps {
+  /** What the job's tablets are called. */
+  tablets: TabletNames;
   onClose: () => void;
   onLeave: () => void;
 }
 
 /** What is open on the job: things off and things in, deviations, invitations to look. */
-export function JobSheet({ onClose, onLeave }: JobSheetProps) {
+export function JobSheet({ tablets, onClose, onLeave }: JobSheetProps) {
   const run = useRun();
   const [disposing, setDisposing] = useState<string>();
   const { state } = run;
   const open = state.deviations.filter(({ disposed }) => !disposed);
   const deviation = open.find(({ id }) => id === disposing);
   const witness = openWitnessPoints(state);
-  if (deviation) return <DispositionForm deviation={deviation} onDone={() => setDisposing(undefined)} />;
+  if (deviation)
+    return (
+      <DispositionForm
+        deviation={deviation}
+        guide={guideTo(state, deviation, tablets)}
+        onDone={() => setDisposing(undefined)}
+      />
+    );
   return (
     <Sheet
       title={`Job ${state.number ?? ''}: what is open`}
       onClose={onClose}
       foot={<QuietButton shape="wide" sign="back" label="Other job" onPress={onLeave} />}
     >
-      <Deviations deviations={open} onDispose={setDisposing} />
+      <Deviations deviations={open} tablets={tablets} onDispose={setDisposing} />
       <OpenList
         state={state}
         zone={run.workshop.zone}
@@ -63,14 +73,21 @@ export function JobSheet({ onClose, onLeave }: JobSheetProps) {
   );
 }
 
-function Deviations({ deviations, onDispose }: { deviations: Deviation[]; onDispose: (id: string) => void }) {
-  const { workshop } = useRun();
+interface DeviationsProps {
+  deviations: Deviation[];
+  tablets: TabletNames;
+  onDispose: (id: string) => void;
+}
+
+function Deviations({ deviations, tablets, onDispose }: DeviationsProps) {
+  const { workshop, state } = useRun();
+  const rows = deviations.map((deviation) => ({ deviation, guide: guideTo(state, deviation, tablets) }));
   return (
     <section className="pb-5">
       <h3 className="form-label border-b-2 border-text pb-1">Deviations, open</h3>
       {deviations.length === 0 && <p className="pt-2 text-lg">None.</p>}
       <ul className="grid gap-3 pt-3">
-        {deviations.map((deviation) => (
+        {rows.map(({ deviation, guide }) => (
           <li
             key={deviation.id}
             className="grid grid-cols-[1fr_auto] items-center gap-4 border-b border-rule pb-3"
@@ -78,12 +95,17 @@ function Deviations({ deviations, onDispose }: { deviations: Deviation[]; onDisp
             <div>
               <p className="flex items-start gap-2 text-lg font-bold">
                 <Sign name={deviation.blocks ? 'cross' : 'question'} />
-                {deviation.words}
+                {guide?.happened ?? deviation.words}
               </p>
+              {guide && (
+                <p className="text-lg">
+                  {guide.blocked} {guide.next}
+                </p>
+              )}
               <p className="text-base text-soft">
                 class {deviation.class}, {deviation.raisedByName},{' '}
                 {dayAndTime(deviation.raisedAt, workshop.zone)}
-                {deviation.blocks ? '; what follows waits' : '; nothing waits for it'}
+                {guide ? '' : deviation.blocks ? '; what follows waits' : '; nothing waits for it'}
               </p>
             </div>
             <QuietButton shape="wide" label="Dispose of it" onPress={() => onDispose(deviation.id)} />

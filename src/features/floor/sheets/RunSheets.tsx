@@ -33,17 +33,26 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
   const run = useRun();
   const signedIn = useFloor((floor) => floor.signedIn);
   const status = useFloor((floor) => floor.sync);
+  const view = useFloor((floor) => floor.view);
   const update = useUpdate();
   switch (name) {
     case 'steps':
       return <StepsSheet current={step} onClose={onClose} />;
     case 'job':
-      return <JobSheet onClose={onClose} onLeave={() => (location.hash = '')} />;
+      return (
+        <JobSheet
+          tablets={namesOf(view?.row.tablets)}
+          onClose={onClose}
+          onLeave={() => (location.hash = '')}
+        />
+      );
     case 'sync':
       return (
         <SyncSheet
           step={step}
           status={status}
+          pending={view?.pending}
+          offline={store.getState().offline}
           hasUpdate={update.isWaiting}
           onUpdate={update.activate}
           onClose={onClose}
@@ -104,6 +113,10 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
     case 'measuring tool':
       return <ToolSheet hand="measuring" step={step} onClose={onClose} />;
   }
+}
+
+function namesOf(tablets: readonly { id: string; name: string }[] = []): ReadonlyMap<string, string> {
+  return new Map(tablets.map(({ id, name }) => [id, name]));
 }
 
 /** Someone else works here now; that they took over has already made the Floor ask about what was on the screen. */

@@ -6,12 +6,15 @@ import { WipeCover } from '@/components/WipeCover';
 import { wordsOf } from '@/domain/entry-words';
 import { findStep, type PlanStep } from '@/domain/plan';
 import { dayAndTime } from '@/domain/time-words';
-import type { RefusedRow } from '@/offline/database';
+import type { OutboxRow, RefusedRow } from '@/offline/database';
+import type { Surroundings } from '@/offline/surroundings';
 import type { SyncStatus } from '@/offline/sync-status';
 import { capWords, isCapBegun } from '../cap-in-hand';
 import { afterRefusal } from '../refused-words';
 import { useRun, type Run } from '../run-context';
+import { SaveToFile } from './SaveToFile';
 import { Sheet } from './Sheet';
+import { WaitingRecords } from './WaitingRecords';
 
 const WIPE_SECONDS = 10;
 
@@ -19,13 +22,25 @@ interface SyncSheetProps {
   /** The step on the screen. */
   step: PlanStep | undefined;
   status: SyncStatus;
+  /** What the server has not given back of the job. */
+  pending?: readonly OutboxRow[] | undefined;
+  /** The tablet's records, to save them as a file. */
+  offline?: Surroundings | undefined;
   hasUpdate: boolean;
   onUpdate: () => void;
   onClose: () => void;
 }
 
 /** Where the records are, what was refused and why, and how this tablet looks. */
-export function SyncSheet({ step, status, hasUpdate, onUpdate, onClose }: SyncSheetProps) {
+export function SyncSheet({
+  step,
+  status,
+  pending = [],
+  offline,
+  hasUpdate,
+  onUpdate,
+  onClose,
+}: SyncSheetProps) {
   const run = useRun();
   const [wipedUntil, setWipedUntil] = useState<number>();
   if (wipedUntil !== undefined) {
@@ -72,12 +87,16 @@ export function SyncSheet({ step, status, hasUpdate, onUpdate, onClose }: SyncSh
               />
             </div>
           </section>
+          <WaitingRecords pending={pending} plan={run.state.plan} zone={run.workshop.zone} />
           <Refused refused={run.refused} onClose={onClose} />
         </div>
-        <section className="grid gap-4">
-          <h3 className="form-label border-b-2 border-text pb-1">How this tablet looks</h3>
-          <LookPanel />
-        </section>
+        <div className="grid gap-6">
+          {offline && <SaveToFile offline={offline} />}
+          <section className="grid gap-4">
+            <h3 className="form-label border-b-2 border-text pb-1">How this tablet looks</h3>
+            <LookPanel />
+          </section>
+        </div>
       </div>
     </Sheet>
   );

@@ -67,7 +67,7 @@ describe('the sheet of what is open', () => {
         journal={journal}
         person={person}
         onSheet={onSheet}
-        over={() => <JobSheet onClose={onClose} onLeave={onLeave} />}
+        over={() => <JobSheet tablets={new Map()} onClose={onClose} onLeave={onLeave} />}
       />,
     );
     return { onSheet, onLeave, onClose, user: userEvent.setup() };

@@ -2,7 +2,7 @@ import { render, screen, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { describe, expect, it, vi } from 'vitest';
 import type { Entry } from '@/domain/entry';
-import type { RefusedRow } from '@/offline/database';
+import type { OutboxRow, RefusedRow } from '@/offline/database';
 import type { SyncStatus } from '@/offline/sync-status';
 import { FixtureRun, type FixtureOptions } from '../../../../tests/support/floor-run';
 import { angleTool, Journal, torqueTool } from '../../../../tests/support/journal';
@@ -32,9 +32,10 @@ interface Opening extends Partial<FixtureOptions> {
   journal: Journal;
   shown?: Partial<SyncStatus>;
   hasUpdate?: boolean;
+  pending?: OutboxRow[];
 }
 
-function open({ journal, shown = {}, hasUpdate = false, ...options }: Opening) {
+function open({ journal, shown = {}, hasUpdate = false, pending = [], ...options }: Opening) {
   const onUpdate = vi.fn();
   const onClose = vi.fn();
   render(
@@ -46,6 +47,7 @@ function open({ journal, shown = {}, hasUpdate = false, ...options }: Opening) {
           step={step}
           status={{ ...status, ...shown }}
           hasUpdate={hasUpdate}
+          pending={pending}
           onUpdate={onUpdate}
           onClose={onClose}
         />
@@ -157,5 +159,45 @@ describe('what the server refused', () => {
     await user.click(sheet.getByRole('button', { name: /^Go to “Raise the vehicle”$/ }));
     expect(onClose).toHaveBeenCalledOnce();
     expect(screen.getByRole('heading', { level: 1, name: 'Raise the vehicle' })).toBeInTheDocument();
+  });
+});
+
+describe('what waits at the server', () => {
+  function row(journal: Journal, over: Partial<OutboxRow>): OutboxRow {
+    const entry = journal.draft('done', {}, { by: 'tech', with: [], step: 'strip.raise' });
+    const kept = { contentHash: 'h', signature: 's', key: 'k', place: 1, where: 'waiting' } as const;
+    return { ...kept, id: entry.id, job: entry.job, entry, ...over };
+  }
+
+  it('says in words why, and what to do; what only waits its turn is counted', () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.tray-off');
+    const reason = 'The handover waits for a photograph that has not come to the server yet: “arrival”.';
+    const pending = [
+      row(journal, { id: 'w1', code: 'photograph-missing', reason }),
+      row(journal, { id: 'w2', code: 'earlier-missing', reason: 'Record 8 has not come yet.' }),
+      row(journal, { id: 'w3', where: 'on this tablet' }),
+    ];
+    const { sheet } = open({ journal, pending });
+    expect(sheet.getByRole('heading', { name: 'Waiting at the server: 2' })).toBeVisible();
+    expect(sheet.getByText(reason)).toBeVisible();
+    expect(sheet.getByText('It goes in by itself once the photograph is there.')).toBeVisible();
+    expect(sheet.queryByText('Record 8 has not come yet.')).toBeNull();
+    expect(sheet.getByText('One more waits only for these.')).toBeVisible();
+  });
+
+  it('says what the first one waits for where all wait for an earlier one', () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.tray-off');
+    const code = 'earlier-missing';
+    const reason = 'Record 8 of this tablet has not come yet. It goes first.';
+    const pending = ['a', 'b', 'c'].map((id) => row(journal, { id, code, reason }));
+    const { sheet } = open({ journal, pending });
+    expect(sheet.getByText(reason)).toBeVisible();
+    expect(sheet.getByText('2 more wait only for that.')).toBeVisible();
+  });
+
+  it('is not spoken of where nothing waits', () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.tray-off');
+    const { sheet } = open({ journal, pending: [row(journal, { where: 'sent' })] });
+    expect(sheet.queryByText(/Waiting at the server/)).toBeNull();
   });
 });
