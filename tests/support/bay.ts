@@ -1,4 +1,4 @@
-import type { Entry } from '@/domain/entry';
+import type { Entry, EntryData } from '@/domain/entry';
 import type { JobState } from '@/domain/job-state';
 import { GET as getJob } from '@/pages/api/jobs/[id]/index';
 import type { EntryVerdict } from '@/server/sync-body';
@@ -87,8 +87,8 @@ export const ragsIn = (count: number) =>
   ({ kind: 'counted', step: 'build.rags-in', data: { count } }) as const;
 
 /** The handover of the small route. */
-export const handOver = {
+export const handOver: { kind: 'handed-over'; step: string; data: EntryData<'handed-over'> } = {
   kind: 'handed-over',
   step: 'build.hand-over',
   data: { checks: [{ id: 'parts', ok: true }] },
-} as const;
+};
