@@ -23,7 +23,7 @@ const STEPS = {
   format: { what: 'format', run: () => check('prettier', '--check', '--log-level', 'warn', '.') },
   unit: { what: 'unit, standards and integration tests (up to 2 min)', run: runVitest },
   build: { what: 'build (10 to 40 s)', run: runBuild },
-  e2e: { what: 'end-to-end tests in a browser (up to 5 min)', run: runPlaywright },
+  e2e: { what: 'end-to-end tests in a browser (up to 7 min)', run: runPlaywright },
 };
 
 const reports = mkdtempSync(path.join(tmpdir(), 'witnessmark-reports-'));
