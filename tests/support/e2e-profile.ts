@@ -10,7 +10,7 @@ import type { Entry } from '@/domain/entry';
  */
 
 /** A browser profile that outlives its browser. */
-export interface Profile {
+interface Profile {
   start(): Promise<BrowserContext>;
   remove(): Promise<void>;
 }

@@ -22,7 +22,7 @@ interface Asked {
 }
 
 /** A browser without a screen on the running program: it keeps its cookies and asks for JSON. */
-export class Client {
+class Client {
   private readonly cookies = new Map<string, string>();
 
   constructor(private readonly app: RunningApp) {}
