@@ -244,6 +244,7 @@ async function doJob(shop: Shop, demo: DemoJob, nowMs: number): Promise<void> {
     left -= made;
     if (made === 0 || left <= 0) break;
     if (isEvening(tablet.now) && nextSteps(tablet.held(id).state).length > 0) {
+      await tablet.signWork(id, technician);
       tablet.now = nextMorning(tablet.now);
       shift += 1;
       const by = required(people, demo.technicians[shift % demo.technicians.length] ?? '');

@@ -7,6 +7,7 @@ import { QuietButton } from '@/components/QuietButton';
 import { phaseToSign } from '@/domain/job-work';
 import type { JobView } from '@/offline/job-store';
 import type { WorkshopRow } from '@/offline/database';
+import { capInHand } from './cap-in-hand';
 import { currentStep } from './current-step';
 import { useFloor, useFloorStore } from './floor-context';
 import { NothingToDo } from './NothingToDo';
@@ -48,21 +49,23 @@ function useWorker(): Worker | undefined {
 
 function Running({ view, workshop, person }: { view: JobView; workshop: WorkshopRow; person: Worker }) {
   const place = useFloor((floor) => floor.place);
+  const device = useFloor((floor) => floor.tablet?.id);
   const isOnline = useIsOnline();
   const [sheet, setSheet] = useState<SheetName>();
   const step = currentStep(view.state, place);
   const run = useRunOf({ view, workshop, person, step, isOnline, openSheet: setSheet });
-  // Whoever goes to a step themselves is let go there; the question comes back after.
-  const signable = place.isVisit ? undefined : phaseToSign(view.state, person.id);
+  // Never in the middle of a cap, nor over a step that somebody went to themselves; the question comes after.
+  const isFree = !place.isVisit && capInHand(view.state) === undefined;
+  const signable = isFree ? phaseToSign(view.state, person.id) : undefined;
   useWatchfulness();
   useWakeLock();
   useMainKeys(sheet === undefined);
   useLaterScreens();
   return (
     <RunContext value={run}>
-      {mustTakeOver(view.state, person.id) ? (
+      {mustTakeOver(view.state, person.id, device) ? (
         <Suspense fallback={<Opening />}>
-          <TakeOverScreen />
+          <TakeOverScreen device={device} tablets={view.row.tablets} />
         </Suspense>
       ) : signable ? (
         <Suspense fallback={<Opening />}>

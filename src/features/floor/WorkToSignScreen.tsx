@@ -30,14 +30,16 @@ export function WorkToSignScreen({ phase, entries }: { phase: string; entries: K
         or not so? Put it right first: touch Steps and correct it, or touch your name if somebody else worked.
       </p>
       <ol className="grid gap-x-8 @4xl/floor-main:grid-cols-2">
-        {entries.map((kept) => (
-          <li key={kept.id} className="border-b border-rule py-1.5 text-lg">
-            <span className="figure text-soft">
-              {shortDay(kept.at, zone)} {clockTime(kept.at, zone)}
-            </span>{' '}
-            {doneWords(kept, run.state.plan)}
-          </li>
-        ))}
+        {entries
+          .toSorted((a, b) => a.at.localeCompare(b.at))
+          .map((kept) => (
+            <li key={kept.id} className="border-b border-rule py-1.5 text-lg">
+              <span className="figure text-soft">
+                {shortDay(kept.at, zone)} {clockTime(kept.at, zone)}
+              </span>{' '}
+              {doneWords(kept, run.state.plan)}
+            </li>
+          ))}
       </ol>
     </FloorFrame>
   );

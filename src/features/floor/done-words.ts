@@ -47,6 +47,8 @@ export function doneWords(kept: Kept, plan: Plan): string {
       return `deviation: ${dataOf(kept, 'deviation-raised').words}`;
     case 'deviation-disposed':
       return `deviation disposed of: ${dataOf(kept, 'deviation-disposed').disposition}`;
+    case 'corrected':
+      return `${title}, corrected: ${dataOf(kept, 'corrected').reason}`;
     case 'taken-back':
       return `taken back: ${dataOf(kept, 'taken-back').which}`;
     case 'not-applicable':

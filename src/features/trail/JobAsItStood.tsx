@@ -40,10 +40,10 @@ export const JobAsItStood = memo(function JobAsItStood({
       tabIndex={0}
     >
       <h2 className="trail-state-title">The job as it stood at entry {seq}</h2>
+      <RelatedEntries related={related} onGo={onGo} />
       <div className="trail-state-both">
         <EngineBelow {...engineView(state, step, zone)} />
         <div className="trail-state-words">
-          <RelatedEntries related={related} onGo={onGo} />
           {/* The newest signature is the one that the work stands on: it comes first. */}
           {[...state.signatures].reverse().map((signature, i) => {
             const { words, covers, ...stamp } = signatureView(signature, zone);

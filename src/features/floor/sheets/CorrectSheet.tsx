@@ -143,9 +143,13 @@ function OneRecord({ kept, onClose, onBack }: { kept: Kept; onClose: () => void;
               }}
             />
           )}
-          <NoteField label="Why" phrases={REASONS} value={reason} onChange={setReason} />
         </div>
-        {field && <FieldInput key={field.id} field={field} value={value} onChange={setValue} />}
+        {field && (
+          <div className="@4xl/sheet:col-start-2 @4xl/sheet:row-span-2 @4xl/sheet:row-start-1">
+            <FieldInput key={field.id} field={field} value={value} onChange={setValue} />
+          </div>
+        )}
+        <NoteField label="Why" phrases={REASONS} value={reason} onChange={setReason} />
       </div>
     </Sheet>
   );
