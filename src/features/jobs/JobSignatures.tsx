@@ -3,7 +3,7 @@ import { Button } from '@/components/Button';
 import { SignatureStamp } from '@/components/SignatureStamp';
 import type { JobState } from '@/domain/job-state';
 import { signatureView } from '@/domain/signature-view';
-import { dayAndTime } from '@/domain/time-words';
+import { clockTime, dayAndTime, dayOf } from '@/domain/time-words';
 import { JudgementDialog, type Judge } from './JudgementDialog';
 
 interface JobSignaturesProps {
@@ -34,7 +34,11 @@ export function JobSignatures({ state, zone, judge }: JobSignaturesProps) {
       <div className="job-stamps">
         {state.signatures.map((signature) => (
           <div key={signature.entry}>
-            <SignatureStamp {...signatureView(signature, zone)} />
+            {/* The day has its year, because the card outlives it. */}
+            <SignatureStamp
+              {...signatureView(signature, zone)}
+              time={`${dayOf(signature.at, zone)}, ${clockTime(signature.at, zone)}`}
+            />
             {may && signature.reopened === undefined && (
               <div className="form-actions mt-2 no-print">
                 <Button
