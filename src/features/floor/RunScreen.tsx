@@ -10,7 +10,6 @@ import type { WorkshopRow } from '@/offline/database';
 import { capInHand } from './cap-in-hand';
 import { currentStep } from './current-step';
 import { useFloor, useFloorStore } from './floor-context';
-import { NothingToDo } from './NothingToDo';
 import { RunContext, type SheetName, type Worker } from './run-context';
 import { mustTakeOver } from './shift';
 import { fetchLaterScreens, StepScreen } from './steps/StepScreen';
@@ -22,6 +21,7 @@ import { useWatchfulness } from './use-watchfulness';
 
 const RunSheets = lazy(() => import('./sheets/RunSheets').then((m) => ({ default: m.RunSheets })));
 const TakeOverScreen = lazy(() => import('./TakeOverScreen').then((m) => ({ default: m.TakeOverScreen })));
+const NothingToDo = lazy(() => import('./NothingToDo').then((m) => ({ default: m.NothingToDo })));
 const WorkToSignScreen = lazy(() =>
   import('./WorkToSignScreen').then((m) => ({ default: m.WorkToSignScreen })),
 );
@@ -74,7 +74,9 @@ function Running({ view, workshop, person }: { view: JobView; workshop: Workshop
       ) : step ? (
         <StepScreen key={step.id} step={step} />
       ) : (
-        <NothingToDo />
+        <Suspense fallback={<Opening />}>
+          <NothingToDo />
+        </Suspense>
       )}
       {sheet !== undefined && (
         <Suspense fallback={null}>
@@ -93,6 +95,7 @@ function useLaterScreens() {
       // Asked for again when a sheet opens, if it does not come now.
       import('./sheets/RunSheets').catch(() => undefined);
       import('./WorkToSignScreen').catch(() => undefined);
+      import('./NothingToDo').catch(() => undefined);
     }, LATER_MS);
     return () => clearTimeout(timer);
   }, []);
