@@ -90,15 +90,19 @@ class Hands {
   async doOne(floor: FloorDriver): Promise<void> {
     const look = await floor.look();
     const pulls = await this.pullsOn(floor.page, look);
+    const before = await screenText(floor.page);
     if (look.words.startsWith('yes, no or not sure')) {
       const wasPulled = pulls.every((pull) => this.pulled.includes(pull));
       await floor.answer(wasPulled ? 'Yes' : 'No');
+      await hasMoved(floor.page, before);
       if (wasPulled) this.show(pulls);
       return;
     }
     this.pull(pulls);
     await floor.doNext(look);
-    if (!look.isBarred) this.show(pulls);
+    if (look.isBarred || pulls.length === 0) return;
+    await hasMoved(floor.page, before);
+    this.show(pulls);
   }
 
   /** Goes on until the next touch is one after a pull. */
@@ -202,21 +206,32 @@ class Hands {
   }
 }
 
-/** What tells one screen from the next: the heading and the record of the last act. */
+/**
+ * What tells one screen from the next: the heading and the record of the last act. Where that record lies is left
+ * out: it changes from "on this tablet" to "sent" while the screen stays.
+ */
 const TELLING = ['main h1', 'main .floor-done'];
+const WHERE = /, (on this tablet|sent|waiting|refused)/.source;
 
 const screenText = (page: Page) =>
   page.evaluate(
-    (telling) => telling.map((selector) => document.querySelector(selector)?.textContent ?? '').join('|'),
-    TELLING,
+    ([telling, where]) =>
+      telling
+        .map((selector) => document.querySelector(selector)?.textContent ?? '')
+        .join('|')
+        .replace(new RegExp(where), ''),
+    [TELLING, WHERE] as const,
   );
 
-/** Waits, inside the page, for the first frame that shows something else. */
+/** Waits, inside the page, for the first change that shows something else. */
 const hasMoved = (page: Page, before: string) =>
   page.evaluate(
-    async ([telling, was]) => {
+    async ([telling, where, was]) => {
       const now = () =>
-        telling.map((selector) => document.querySelector(selector)?.textContent ?? '').join('|');
+        telling
+          .map((selector) => document.querySelector(selector)?.textContent ?? '')
+          .join('|')
+          .replace(new RegExp(where), '');
       const seen = new Promise<void>((resolve) => {
         const look = new MutationObserver(() => {
           if (now() !== was) resolve();
@@ -225,5 +240,5 @@ const hasMoved = (page: Page, before: string) =>
       });
       if (now() === was) await seen;
     },
-    [TELLING, before] as const,
+    [TELLING, WHERE, before] as const,
   );
