@@ -114,6 +114,8 @@ describe('every operation of the API', { timeout: 60_000 }, () => {
       'POST /api/set-password': 410,
       'POST /api/auth/switch': 401,
       'POST /api/auth/sign-out': 401,
+      // The job is still running.
+      'POST /api/jobs/{id}/erase': 409,
     };
     // A photograph is there once it was sent.
     const isPhoto = (operation: Operation) => Number(nameOf(operation) === 'GET /api/photos/{hash}');
