@@ -66,9 +66,10 @@ export async function callServer<S extends z.ZodMiniType>(
     };
   }
   const answer = readAnswer(response, text, call.answer);
-  if (answer.ok || answer.code !== 'unknown-tablet' || !device) return answer;
+  if (answer.ok || !device) return answer;
+  if (answer.code !== 'unknown-tablet' && answer.code !== 'lost-tablet') return answer;
   await noteForgotten(s.db, device);
-  return { ...ENROL_AGAIN };
+  return answer.code === 'lost-tablet' ? answer : { ...ENROL_AGAIN };
 }
 
 const ENROL_AGAIN: Trouble = {

@@ -3,6 +3,7 @@
  * and the bytes of photographs. Nothing is taken off the tablet by it, and the same file brought in twice, or
  * brought in and sent as well, does no harm.
  */
+import { liveQuery } from 'dexie';
 import { toBase64url } from '@/domain/base64url';
 import type { PhotoRow } from './database';
 import { readDevice } from './device';
@@ -15,6 +16,15 @@ export interface TabletFile {
   file: Blob;
   records: number;
   photographs: number;
+}
+
+/** Tells how many records and photographs such a file would hold, now and whenever that changes. */
+export function watchCountForFile(
+  s: Surroundings,
+  listener: (count: { records: number; photographs: number }) => void,
+): () => void {
+  const watched = liveQuery(() => countForFile(s)).subscribe(listener);
+  return () => watched.unsubscribe();
 }
 
 /** How many records and photographs such a file would hold. */

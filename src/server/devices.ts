@@ -68,8 +68,8 @@ export async function findRequestDevice(db: Db, request: Request): Promise<Devic
   }
   if (row.state === 'lost') {
     throw new AppError(
-      'unknown-tablet',
-      'This tablet was declared lost. What it recorded is still on it: ask the owner to take it back into use, or save its records as a file.',
+      'lost-tablet',
+      'This tablet was declared lost. What it recorded is still on it: ask a supervisor to take it back into use, or save its records as a file and bring that to the office.',
     );
   }
   return toDevice(row);

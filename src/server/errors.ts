@@ -5,6 +5,7 @@ const STATUS = {
   'wrong-password': 400,
   'not-signed-in': 401,
   'unknown-tablet': 401,
+  'lost-tablet': 401,
   'wrong-sign-in': 401,
   'not-allowed': 403,
   'foreign-origin': 403,

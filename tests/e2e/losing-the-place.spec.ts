@@ -8,7 +8,7 @@ import { picture } from '../support/e2e-picture';
 import { seedJob, type SeededJob } from '../support/e2e-seed';
 import { readTrail } from '../support/e2e-trail';
 import { FloorDriver } from './floor-driver';
-import { openOnFloor, sendAll } from './on-floor';
+import { hold, openOnFloor, sendAll } from './on-floor';
 
 const SECOND = 1000;
 
@@ -107,7 +107,7 @@ test('another tool or another person within a cap asks whether the bolt was turn
     await openOnFloor(second, job.number);
     await expect(second.getByRole('heading', { name: `Take over from ${ines.name}` })).toBeVisible();
     for (const digit of bram.pin) await second.getByRole('button', { name: digit, exact: true }).tap();
-    await second.getByRole('button', { name: 'Take the job over' }).tap();
+    await hold(second, second.getByRole('button', { name: 'Take the job over' }));
     await expectQuestion(second, '3B', 'Cycle 1 of 3, the angle pass');
     await second.getByRole('button', { name: 'No', exact: true }).tap();
     await expectAction(second, '3B turn through 110°', 'Cycle 1 of 3, the angle pass');

@@ -6,7 +6,7 @@ import { picture } from '../support/e2e-picture';
 import { seedJob, type SeededJob } from '../support/e2e-seed';
 import { expectLargeTargets, expectMainInSight, expectNoScrolling } from '../support/e2e-targets';
 import { FloorDriver } from './floor-driver';
-import { openOnFloor } from './on-floor';
+import { hold, openOnFloor } from './on-floor';
 
 /*
  * Every sheet over a run and every screen beside it, on the tablet lying and standing: targets for gloves, the
@@ -146,7 +146,7 @@ test('the screens beside a run', async ({ app, page }) => {
     await expect(page.getByRole('heading', { name: `Take over from ${ines.name}` })).toBeVisible();
     await expectGood(page, { isWhole: true, hasMain: true });
     for (const digit of supervisor.pin) await page.getByRole('button', { name: digit, exact: true }).tap();
-    await page.getByRole('button', { name: 'Take the job over' }).tap();
+    await hold(page, page.getByRole('button', { name: 'Take the job over' }));
     await expect(page.getByRole('heading', { name: /^Take over/ })).toHaveCount(0);
   });
   await test.step('a deviation is raised and disposed of', async () => {
@@ -190,7 +190,7 @@ test('a refused record is shown to its author with the reason and what to do nex
   await signInOnFloor(page, bram);
   await openOnFloor(page, job.number);
   for (const digit of '000000') await page.getByRole('button', { name: digit, exact: true }).tap();
-  await page.getByRole('button', { name: 'Take the job over' }).tap();
+  await hold(page, page.getByRole('button', { name: 'Take the job over' }));
   const cell = page.getByRole('button', { name: /where the records are/ });
   await expect(cell).toContainText('1 refused');
   await cell.tap();
@@ -205,14 +205,4 @@ test('a refused record is shown to its author with the reason and what to do nex
 async function close(sheet: Locator, { isLast = true } = {}): Promise<void> {
   await sheet.getByRole('button', { name: 'Close' }).tap();
   if (isLast) await expect(sheet).toHaveCount(0);
-}
-
-/** Holds a button as a finger does, until it has acted. */
-async function hold(page: Page, button: Locator): Promise<void> {
-  const box = await button.boundingBox();
-  if (box === null) throw new Error('What is held is on the screen.');
-  await page.mouse.move(box.x + box.width / 2, box.y + box.height / 2);
-  await page.mouse.down();
-  await expect(button).toHaveCount(0);
-  await page.mouse.up();
 }

@@ -183,7 +183,7 @@ describe('a lost tablet that is found again', () => {
     const body = { device: lost.device, sentAt, jobs: [], entries: late };
     expect(await ask(postSync, { tablet: lost.credential, body })).toMatchObject({
       status: 401,
-      body: { error: { code: 'unknown-tablet' } },
+      body: { error: { code: 'lost-tablet', message: expect.stringContaining('ask a supervisor') } },
     });
     expect((await change({ state: 'active' }, shop.people.ann)).status).toBe(403);
     expect(await change({ state: 'active' })).toMatchObject({ status: 200, body: { state: 'active' } });

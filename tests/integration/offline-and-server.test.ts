@@ -330,7 +330,10 @@ describe('a tablet and the server', () => {
     recorded(await recordEntries(tablet.offline, job, [remark], { by: ann.id }));
     const { id } = await readTablet(tablet.offline);
     await changeDevice(shop.app, owner, id, { state: 'lost', reason: 'left in a van' });
-    expect(await tablet.offline.sync.now()).toMatchObject({ code: 'enrol-again' });
+    expect(await tablet.offline.sync.now()).toMatchObject({
+      code: 'lost-tablet',
+      why: expect.stringContaining('declared lost'),
+    });
     await tablet.signIn(ann);
     recorded(await recordEntries(tablet.offline, job, [remark], { by: ann.id }));
     must(await tablet.offline.sync.now());

@@ -14,6 +14,7 @@ import { RunContext, type SheetName, type Worker } from './run-context';
 import { mustTakeOver } from './shift';
 import { fetchLaterScreens, StepScreen } from './steps/StepScreen';
 import { useIsOnline } from './use-is-online';
+import { useJobTablets } from './use-job-tablets';
 import { useMainKeys } from './use-main-keys';
 import { useRunOf } from './use-run';
 import { useWakeLock } from './use-wake-lock';
@@ -50,6 +51,7 @@ function useWorker(): Worker | undefined {
 function Running({ view, workshop, person }: { view: JobView; workshop: WorkshopRow; person: Worker }) {
   const place = useFloor((floor) => floor.place);
   const device = useFloor((floor) => floor.tablet?.id);
+  const tablets = useJobTablets(view);
   const isOnline = useIsOnline();
   const [sheet, setSheet] = useState<SheetName>();
   const step = currentStep(view.state, place);
@@ -65,7 +67,7 @@ function Running({ view, workshop, person }: { view: JobView; workshop: Workshop
     <RunContext value={run}>
       {mustTakeOver(view.state, person.id, device) ? (
         <Suspense fallback={<Opening />}>
-          <TakeOverScreen device={device} tablets={view.row.tablets} />
+          <TakeOverScreen device={device} tablets={tablets} />
         </Suspense>
       ) : signable ? (
         <Suspense fallback={<Opening />}>

@@ -1,4 +1,4 @@
-import { useEffect, useState } from 'react';
+import { lazy, Suspense, useEffect, useState } from 'react';
 import { EmptyState } from '@/components/EmptyState';
 import { FloorFrame } from '@/components/FloorFrame';
 import { Notice } from '@/components/Notice';
@@ -18,6 +18,8 @@ import { TabletForm } from './TabletForm';
 import { clockTime } from '@/domain/time-words';
 import { useIsOnline } from './use-is-online';
 import { useUpdate } from './use-update';
+
+const SaveToFile = lazy(() => import('./sheets/SaveToFile').then((m) => ({ default: m.SaveToFile })));
 
 /** The first screen: who works here, and the jobs of this tablet; all of it from the tablet itself. */
 export function StartScreen() {
@@ -68,12 +70,20 @@ export function StartScreen() {
             }
           />
         )}
+        {tablet?.mustEnrolAgain && floor.sync.trouble?.code === 'lost-tablet' && (
+          <Notice tone="stop" title={floor.sync.trouble.words} />
+        )}
         {needsName && working !== null && (
           <TabletForm
             isBusy={isBusy}
             mustAgain={tablet.mustEnrolAgain === true}
             onName={(name) => act(() => nameTablet(offline, name, working))}
           />
+        )}
+        {tablet?.mustEnrolAgain && (
+          <Suspense fallback={null}>
+            <SaveToFile offline={offline} />
+          </Suspense>
         )}
         {floor.isReady && !needsSignIn && (
           <People

@@ -1,8 +1,8 @@
-import { render, screen } from '@testing-library/react';
+import { fireEvent, render, screen, waitFor } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { describe, expect, it } from 'vitest';
 import type { RefusedRow } from '@/offline/database';
-import { FixtureRun, type FixtureOptions } from '../../../tests/support/floor-run';
+import { FixtureRun, type FixtureOptions, technician } from '../../../tests/support/floor-run';
 import { Journal } from '../../../tests/support/journal';
 import { smallPlan } from '../../../tests/support/small-documents';
 import { NothingToDo } from './NothingToDo';
@@ -84,5 +84,59 @@ describe('a job with nothing to do', () => {
     render(<FixtureRun journal={journal} over={() => <NothingToDo />} />);
     expect(screen.getByText(/it is bent\. The supervisor disposes of it\./)).toBeVisible();
     expect(screen.getByRole('button', { name: 'What is open' })).toBeVisible();
+  });
+});
+
+describe('taking a job up on a second tablet', () => {
+  const first = {
+    ...{ id: 'tablet', name: 'Bay 2' },
+    ...{ lastHeardAt: '2026-06-02T09:40:00.000Z', lastRecordedAt: '2026-06-02T09:30:00.000Z' },
+  };
+
+  function openAt(journal: Journal, tablets = [first], person = mate) {
+    const device = journal.state.working?.device;
+    const known = tablets.map((tablet) => ({ ...tablet, id: device ?? '' }));
+    render(
+      <FixtureRun
+        journal={journal}
+        person={person}
+        now={() => Date.parse(journal.state.lastAt ?? '') + 60_000}
+        over={() => <TakeOverScreen device="another" tablets={known} />}
+      />,
+    );
+    return userEvent.setup();
+  }
+
+  it('says when the first was last heard, and what may have happened on it since', () => {
+    openAt(new Journal(smallPlan()).performUntil('strip.tray-off'));
+    expect(screen.getByText('Bay 2 was last heard 2 Jun, 10:40')).toBeVisible();
+    expect(screen.getByText(/the same bolt is soon turned twice/)).toBeVisible();
+  });
+
+  it('is done by holding, and a touch does nothing', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.tray-off');
+    const user = openAt(journal);
+    const before = journal.entries.length;
+    for (const digit of '4711') await user.click(screen.getByRole('button', { name: digit }));
+    await user.click(main());
+    expect(journal.entries).toHaveLength(before);
+    fireEvent.pointerDown(main(), { isPrimary: true, button: 0 });
+    await waitFor(() => expect(journal.entries).toHaveLength(before + 1), { timeout: 4000 });
+    expect(journal.entries.at(-1)).toMatchObject({ kind: 'took-over', data: { from: 'tech' } });
+  });
+
+  it('is asked of the same person too, and names nobody whom they take it from', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.tray-off');
+    openAt(journal, [first], technician);
+    expect(screen.getByRole('heading', { name: 'You worked on it at another tablet' })).toBeVisible();
+    const before = journal.entries.length;
+    fireEvent.pointerDown(screen.getByRole('button', { name: 'Go on here' }), { isPrimary: true, button: 0 });
+    await waitFor(() => expect(journal.entries).toHaveLength(before + 1), { timeout: 4000 });
+    expect(journal.entries.at(-1)?.data).not.toHaveProperty('from');
+  });
+
+  it('says so where it has not heard of that tablet', () => {
+    openAt(new Journal(smallPlan()).performUntil('strip.tray-off'), []);
+    expect(screen.getByText('When the other tablet was last heard is not known here')).toBeVisible();
   });
 });

@@ -14,10 +14,16 @@ export function needsPin(state: JobState, person: string, now: number): boolean 
   return state.lastAt === undefined || now - Date.parse(state.lastAt) > IDLE_MS;
 }
 
-/** Whether someone else has worked on the job last, so that this person takes it over first. */
-export function mustTakeOver(state: JobState, person: string): boolean {
-  if (state.working === undefined || state.working.by === person) return false;
+/** Whether someone else has worked on the job last, or another tablet has, so that it is taken over first. */
+export function mustTakeOver(state: JobState, person: string, device?: string): boolean {
+  if (state.working === undefined) return false;
+  if (state.working.by === person && !isElsewhere(state, device)) return false;
   return Object.values(state.steps).some(({ entries }) => entries.some(isWork));
+}
+
+/** Whether the work on the job was last done at another tablet than this. */
+export function isElsewhere({ working }: JobState, device: string | undefined): boolean {
+  return device !== undefined && working !== undefined && working.device !== device;
 }
 
 function isWork({ kind }: Kept): boolean {

@@ -64,24 +64,26 @@ function Delivered({ delivery, zone }: { delivery: Delivery; zone: string }) {
   const { tablet, verdicts, notTaken, trouble } = delivery;
   const isWaiting = verdicts.some(({ verdict }) => verdict === 'waiting');
   return (
-    <div className="form">
-      {trouble !== undefined && (
-        <ErrorNote
-          happened={trouble}
-          kept="What is listed below is in. The rest is in the file still."
-          next="Bring the same file in again."
-        />
-      )}
-      <Notice
-        tone={trouble !== undefined || notTaken.length > 0 || isWaiting ? 'unsure' : 'good'}
-        title={`${tablet ?? 'The file'}: ${summaryOf(delivery)}`}
-        isAlert
-      >
-        {isWaiting && <p>What waits is in the file alone: keep it, and bring it in again later.</p>}
-        {notTaken.map((words) => (
-          <p key={words}>{words}</p>
-        ))}
-      </Notice>
+    <>
+      <div className="form">
+        {trouble !== undefined && (
+          <ErrorNote
+            happened={trouble}
+            kept="What is listed below is in. The rest is in the file still."
+            next="Bring the same file in again."
+          />
+        )}
+        <Notice
+          tone={trouble !== undefined || notTaken.length > 0 || isWaiting ? 'unsure' : 'good'}
+          title={`${tablet ?? 'The file'}: ${summaryOf(delivery)}`}
+          isAlert
+        >
+          {isWaiting && <p>What waits is in the file alone: keep it, and bring it in again later.</p>}
+          {notTaken.map((words) => (
+            <p key={words}>{words}</p>
+          ))}
+        </Notice>
+      </div>
       <DataTable
         caption="What became of each record"
         columns={[
@@ -103,7 +105,7 @@ function Delivered({ delivery, zone }: { delivery: Delivery; zone: string }) {
         }))}
         emptyWords="The file held no records."
       />
-    </div>
+    </>
   );
 }
 

@@ -6,6 +6,8 @@ import { TextField } from '@/components/TextField';
 
 interface LostTabletDialogProps {
   name: string;
+  /** What tells it from others of the same name. */
+  about: string;
   /** Why the last try did not come about. */
   trouble?: string | undefined;
   onDeclare: (reason: string) => void;
@@ -13,7 +15,7 @@ interface LostTabletDialogProps {
 }
 
 /** Declares a tablet lost, with the reason; held down, because every open job of the tablet is told. */
-export function LostTabletDialog({ name, trouble, onDeclare, onClose }: LostTabletDialogProps) {
+export function LostTabletDialog({ name, about, trouble, onDeclare, onClose }: LostTabletDialogProps) {
   const [reason, setReason] = useState('');
   const given = reason.trim();
   return (
@@ -32,6 +34,9 @@ export function LostTabletDialog({ name, trouble, onDeclare, onClose }: LostTabl
       }
     >
       <div className="form">
+        <p>
+          <b>{about}</b>
+        </p>
         <p>
           It can&rsquo;t send any more until it is taken back into use. In each open job in which it recorded,
           a deviation of class A says from which record on nothing came: the first start and the handover wait

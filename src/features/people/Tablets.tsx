@@ -32,7 +32,7 @@ const COLUMNS = [
 ] as const;
 
 /** The tablets and desk browsers that the workshop knows, when each was last heard, and which are lost. */
-export function Tablets({ zone }: { zone: string }) {
+export function Tablets({ zone, title = 'Tablets' }: { zone: string; title?: string | undefined }) {
   const list = useServerList('/api/devices', devicesAnswer);
   const devices = list.data?.pages.flatMap((page) => page.devices);
   const [losing, setLosing] = useState<DeviceRow>();
@@ -42,7 +42,7 @@ export function Tablets({ zone }: { zone: string }) {
   };
   return (
     <section className="part">
-      <h2 className="part-title">Tablets</h2>
+      <h2 className="part-title">{title}</h2>
       {trouble !== undefined && losing === undefined && (
         <ErrorNote happened={trouble} kept="The tablet is as it was." next="Try it again." />
       )}
@@ -56,7 +56,7 @@ export function Tablets({ zone }: { zone: string }) {
             name: row.name,
             id: <span className="figure">{row.id.slice(-8)}</span>,
             enrolled: dayAndTime(row.enrolledAt, zone),
-            heard: row.lastHeardAt === null ? 'never' : dayAndTime(row.lastHeardAt, zone),
+            heard: heardWords(row, zone),
             state: row.state === 'lost' ? 'lost: nothing it sends is taken' : 'in use',
             acts: (
               <TabletActs
@@ -80,6 +80,7 @@ export function Tablets({ zone }: { zone: string }) {
       {losing && (
         <LostTabletDialog
           name={losing.name}
+          about={`${losing.name}, id ${losing.id.slice(-8)}, last heard ${heardWords(losing, zone)}`}
           trouble={trouble}
           onDeclare={(reason) => void declare(losing, reason)}
           onClose={() => setLosing(undefined)}
@@ -87,6 +88,10 @@ export function Tablets({ zone }: { zone: string }) {
       )}
     </section>
   );
+}
+
+function heardWords({ lastHeardAt }: DeviceRow, zone: string): string {
+  return lastHeardAt === null ? 'never' : dayAndTime(lastHeardAt, zone);
 }
 
 function TabletActs({ row, onLose, onFound }: { row: DeviceRow; onLose: () => void; onFound: () => void }) {

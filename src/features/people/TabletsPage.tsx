@@ -12,7 +12,7 @@ export function TabletsPage({ zone }: { zone: string }) {
       <div className="page-head">
         <h1 className="page-title">Tablets</h1>
       </div>
-      <Tablets zone={zone} />
+      <Tablets zone={zone} title="Known to the workshop" />
       <BringInFile zone={zone} />
     </QueryClientProvider>
   );

@@ -1,6 +1,7 @@
 import type { PlanStep } from '@/domain/plan';
 import { setWorking } from '@/offline/tablet';
 import { useFloor, useFloorStore } from '../floor-context';
+import { useJobTablets } from '../use-job-tablets';
 import { useUpdate } from '../use-update';
 import { useRun, type SheetName, type Worker } from '../run-context';
 import { SignOutSheet } from '../SignOutSheet';
@@ -34,6 +35,7 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
   const signedIn = useFloor((floor) => floor.signedIn);
   const status = useFloor((floor) => floor.sync);
   const view = useFloor((floor) => floor.view);
+  const tablets = useJobTablets(view);
   const update = useUpdate();
   switch (name) {
     case 'steps':
@@ -41,7 +43,7 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
     case 'job':
       return (
         <JobSheet
-          tablets={namesOf(view?.row.tablets)}
+          tablets={new Map(tablets.map(({ id, name: called }) => [id, called]))}
           onClose={onClose}
           onLeave={() => (location.hash = '')}
         />
@@ -113,10 +115,6 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
     case 'measuring tool':
       return <ToolSheet hand="measuring" step={step} onClose={onClose} />;
   }
-}
-
-function namesOf(tablets: readonly { id: string; name: string }[] = []): ReadonlyMap<string, string> {
-  return new Map(tablets.map(({ id, name }) => [id, name]));
 }
 
 /** Someone else works here now; that they took over has already made the Floor ask about what was on the screen. */

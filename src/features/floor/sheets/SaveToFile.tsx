@@ -1,6 +1,6 @@
 import { useEffect, useState } from 'react';
 import { QuietButton } from '@/components/QuietButton';
-import { countForFile, makeTabletFile, type TabletFile } from '@/offline/tablet-file';
+import { makeTabletFile, type TabletFile, watchCountForFile } from '@/offline/tablet-file';
 import type { Surroundings } from '@/offline/surroundings';
 
 /** Saves what is only on this tablet to a file, for the office to bring in. */
@@ -9,13 +9,7 @@ export function SaveToFile({ offline }: { offline: Surroundings }) {
   const [saved, setSaved] = useState<TabletFile>();
   const [trouble, setTrouble] = useState<string>();
   const [isBusy, setBusy] = useState(false);
-  useEffect(() => {
-    let isThere = true;
-    void countForFile(offline).then((counted) => isThere && setCount(counted));
-    return () => {
-      isThere = false;
-    };
-  }, [offline]);
+  useEffect(() => watchCountForFile(offline, setCount), [offline]);
   const isNothing = count !== undefined && count.records + count.photographs === 0;
   async function save() {
     setBusy(true);

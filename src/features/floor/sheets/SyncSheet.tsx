@@ -87,16 +87,14 @@ export function SyncSheet({
               />
             </div>
           </section>
+          {offline && <SaveToFile offline={offline} />}
           <WaitingRecords pending={pending} plan={run.state.plan} zone={run.workshop.zone} />
           <Refused refused={run.refused} onClose={onClose} />
         </div>
-        <div className="grid gap-6">
-          {offline && <SaveToFile offline={offline} />}
-          <section className="grid gap-4">
-            <h3 className="form-label border-b-2 border-text pb-1">How this tablet looks</h3>
-            <LookPanel />
-          </section>
-        </div>
+        <section className="grid gap-4">
+          <h3 className="form-label border-b-2 border-text pb-1">How this tablet looks</h3>
+          <LookPanel />
+        </section>
       </div>
     </Sheet>
   );
