@@ -44,7 +44,7 @@ async function workToHold(): Promise<void> {
 const last = async () => (await tablet.sync()).at(-1);
 
 describe('a shift on one tablet without a network', () => {
-  it('arrives under its true authors and in order, long after the first of them went home', async () => {
+  it('A’s entries after A is gone arrive under their true authors and in order', async () => {
     const { supervisor, lead, ann, ben, owner } = shop.people;
     const { app } = shop;
     await tablet.perform(job.id, { technician: ann, supervisor: lead }, shop.kit, {
