@@ -168,6 +168,8 @@ test('the screens beside a run', async ({ app, page }) => {
     await page.getByRole('button', { name: 'Problem' }).tap();
     await sheet.getByRole('button', { name: 'Make safe and park' }).tap();
     await page.getByRole('button', { name: 'Safe, park the job' }).tap();
+    // Work that is behind one is signed for before anything else comes.
+    await hold(page, page.getByRole('button', { name: /my work/ }));
     await expect(page.getByRole('button', { name: 'As it was left, resume' })).toBeVisible();
     await expectGood(page, { hasMain: true });
   });

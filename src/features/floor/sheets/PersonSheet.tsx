@@ -175,7 +175,8 @@ function TakeOver({ next, step, isMid, onBack, onClose, onChanged }: TakeOverPro
     >
       <div className={asksPin ? 'grid items-start gap-6 @4xl/sheet:grid-cols-[1fr_25rem]' : 'grid gap-6'}>
         <div className="grid gap-5">
-          {unsigned > 0 && (
+          {/* In the middle of a cycle there is something else to decide first. */}
+          {unsigned > 0 && !isMid && (
             <div className="grid gap-2">
               <SignWork />
               <p className="text-lg text-soft">
