@@ -1,4 +1,4 @@
-import { useEffect, useState, useSyncExternalStore } from 'react';
+import { lazy, Suspense, useEffect, useState, useSyncExternalStore } from 'react';
 import { openOffline, type Offline } from '@/offline/offline';
 import { askToPersist } from '@/offline/photo';
 import { registerWorker } from '@/offline/registration';
@@ -8,8 +8,10 @@ import { FloorContext, useFloor, useFloorStore } from './floor-context';
 import { createFloorStore, type FloorStore } from './floor-store';
 import { RunScreen } from './RunScreen';
 import { bringWork } from './sign-in';
-import { StartScreen } from './StartScreen';
 import { keepRegistration } from './use-update';
+
+// Not needed where the address names a job, and there the first action counts.
+const StartScreen = lazy(() => import('./StartScreen').then((m) => ({ default: m.StartScreen })));
 
 const WORKER = '/sw.js';
 
@@ -35,7 +37,12 @@ function Floor() {
     if (job === null) leaveJob();
     else void bringAndOpen(offline, job, openJob);
   }, [store, job, isReady]);
-  return job !== null && jobId === job ? <RunScreen /> : <StartScreen />;
+  if (job !== null && jobId === job) return <RunScreen />;
+  return (
+    <Suspense fallback={null}>
+      <StartScreen />
+    </Suspense>
+  );
 }
 
 /** A job that is not here yet is fetched first where there is a network; its absence is told by the run screen. */

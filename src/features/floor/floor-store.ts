@@ -245,7 +245,9 @@ function questionAfter(drafts: Draft[], { offline, view, workshop, place }: Floo
   if (!view || !workshop) return { isAway: false, isNewHand: false };
   const { state } = view;
   const step = place.step === null ? undefined : findStep(state.plan, place.step);
-  const isNewHand = drafts.some(({ kind }) => kind === 'took-over');
+  // Where no action was shown and no cap has begun there is nothing that can have been turned.
+  const isInHand = place.action !== undefined || capInHand(state) !== undefined;
+  const isNewHand = isInHand && drafts.some(({ kind }) => kind === 'took-over');
   const isNewTool = drafts.some(
     (draft) => draft.kind === 'tool-taken' && isToolChange(state, workshop, step, draft.data, offline.now()),
   );

@@ -62,7 +62,7 @@ describe('the list of steps', () => {
       sheet().getByRole('button', { name: new RegExp(`^${journal.step('build.oil').title}`) }),
     );
     expect(onClose).toHaveBeenCalledOnce();
-    expect(screen.getByText('Not yet')).toBeInTheDocument();
+    expect(await screen.findByText('Not yet')).toBeInTheDocument();
   });
 
   it('says in words that a deviation is open', () => {

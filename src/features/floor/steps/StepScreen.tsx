@@ -3,8 +3,6 @@ import { whyNot } from '@/domain/job';
 import type { PlanStep } from '@/domain/plan';
 import { StepFrame } from '../StepFrame';
 import { useRun } from '../run-context';
-import { BarredStep } from './BarredStep';
-import { DoneStep } from './DoneStep';
 import { DoStep } from './DoStep';
 import { PlaceStep } from './PlaceStep';
 import { RefitStep } from './RefitStep';
@@ -17,6 +15,8 @@ import { TurnStep } from './TurnStep';
  * done; the service worker holds them all, so that they come without a network too.
  */
 const loaders = {
+  barred: () => import('./BarredStep'),
+  done: () => import('./DoneStep'),
   count: () => import('./CountStep'),
   fill: () => import('./FillStep'),
   fit: () => import('./FitStep'),
@@ -33,6 +33,8 @@ const loaders = {
   resume: () => import('./ResumeStep'),
   handOver: () => import('./HandOverStep'),
 };
+const BarredStep = lazy(() => loaders.barred().then((m) => ({ default: m.BarredStep })));
+const DoneStep = lazy(() => loaders.done().then((m) => ({ default: m.DoneStep })));
 const CountStep = lazy(() => loaders.count().then((m) => ({ default: m.CountStep })));
 const FillStep = lazy(() => loaders.fill().then((m) => ({ default: m.FillStep })));
 const FitStep = lazy(() => loaders.fit().then((m) => ({ default: m.FitStep })));

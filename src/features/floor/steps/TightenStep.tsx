@@ -1,4 +1,4 @@
-import { useEffect, useState, type ReactNode } from 'react';
+import { lazy, useEffect, useState, type ReactNode } from 'react';
 import { LoudAction } from '@/components/LoudAction';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
@@ -24,11 +24,13 @@ import {
 } from '../tighten-touch';
 import { handOf, toolOf, wantedOf } from '../tighten-tool';
 import { toolWords, type Hand } from '../tool-choice';
-import { ReplaceBolt } from './ReplaceBolt';
 import { TightenDrawings } from './TightenDrawings';
 import { ToolToTake } from './ToolToTake';
-import { TypedReading } from './TypedReading';
 import { WasItTurned } from './WasItTurned';
+
+// Seldom needed: a touch does without them.
+const ReplaceBolt = lazy(() => import('./ReplaceBolt').then((m) => ({ default: m.ReplaceBolt })));
+const TypedReading = lazy(() => import('./TypedReading').then((m) => ({ default: m.TypedReading })));
 
 type TightenStepPlan = StepOf<'tighten'>;
 

@@ -26,7 +26,8 @@ export function WasItTurned({ step, touch }: { step: StepOf<'tighten'>; touch: T
     spec?.kind === 'angle'
       ? 'was it turned?'
       : names.length > 1
-        ? 'were they tightened?'
+        ? // Short, because it stands beside two bolts.
+          'tightened?'
         : 'was it tightened?';
   const unsure = {
     kind: 'started-again' as const,

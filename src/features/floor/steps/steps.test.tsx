@@ -143,10 +143,10 @@ describe('a step on the Floor', () => {
     expect(last()).toMatchObject({ kind: 'turned', data: { toAngle: angle } });
   });
 
-  it('says why the crank may not turn while a cap is off', () => {
+  it('says why the crank may not turn while a cap is off', async () => {
     const journal = new Journal(smallPlan()).performUntil('strip.shell-look@1U');
     render(<FixtureRun journal={journal} start={{ step: 'build.turns', isVisit: true }} />);
-    expect(screen.getByText('Not yet')).toBeVisible();
+    expect(await screen.findByText('Not yet')).toBeVisible();
     expect(screen.getByRole('button', { name: /^Back to what can be done/ })).toBeEnabled();
   });
 

@@ -109,6 +109,7 @@ describe('the tightening programme', () => {
   it('keeps a reading that was typed as typed', async () => {
     const { made } = runCap(2);
     await press(/^Enter (angle|torque)/);
+    await screen.findByText(/asked: /);
     const step = made();
     expect(step).toEqual([]);
     const target = /asked: (\d+)/.exec(document.body.textContent)![1]!;
@@ -120,6 +121,7 @@ describe('the tightening programme', () => {
   it('goes on to the figure when it stopped short', async () => {
     const { made } = runCap(2);
     await press(/^Enter/);
+    await screen.findByText(/asked: /);
     await key('1');
     expect(screen.getByText('Short')).toBeVisible();
     await press(/^Went on to/);
@@ -129,6 +131,7 @@ describe('the tightening programme', () => {
   it('condemns an overturned bolt only by holding, lets its partner off, and starts again with a new one', async () => {
     const { journal, made } = runCap(3);
     await press(/^Enter/);
+    await screen.findByText(/asked: /);
     await key('999');
     expect(screen.getByText('Too far')).toBeVisible();
     await press(/^Condemn 1B/);
@@ -136,7 +139,7 @@ describe('the tightening programme', () => {
     hold(/^Condemn 1B/);
     expect(await screen.findByText(/its partner was turned too far/)).toBeVisible();
     await press(/^Released 1A/);
-    expect(screen.getByText(/Turned too far: the bolt is scrap/)).toBeVisible();
+    expect(await screen.findByText(/Turned too far: the bolt is scrap/)).toBeVisible();
     expect(main()).toHaveTextContent('the lot of the new bolt is needed');
     await key('B2');
     await press(/^Replaced 1B/);
