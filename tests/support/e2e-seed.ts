@@ -51,7 +51,6 @@ export async function seedJob(app: RunningApp, options: SeedOptions = {}): Promi
     await sendAsOfNow(tablet);
     await keepPhotographs(worker.api, photographs);
   }
-  await Promise.all([supervisor.api.dispose(), worker.api.dispose()]);
   return job;
 }
 
