@@ -3,7 +3,7 @@ import { expect, islandsReady, test } from '../support/e2e';
 import { demoPerson, signInOnFloor } from '../support/e2e-people';
 import { seedJob } from '../support/e2e-seed';
 import { readTrail } from '../support/e2e-trail';
-import { openOnFloor } from './on-floor';
+import { openOnFloor, sendAll } from './on-floor';
 
 /* Somebody leaves the tablet: their session ends, the others' go on, and what they recorded is kept. */
 
@@ -33,6 +33,8 @@ test('signing out without a network is done at the server when it is back, and l
   await openOnFloor(page, job.number);
   const main = page.getByRole('contentinfo').getByRole('button').last();
   await expect(main).toBeEnabled();
+  // The job was taken up here, which is a record too.
+  await sendAll(page);
   const before = readTrail(app, job.id).length;
   await context.setOffline(true);
   await page.getByRole('button', { name: 'Problem' }).tap();
