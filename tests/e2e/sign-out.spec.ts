@@ -80,6 +80,8 @@ async function signOut(page: Page): Promise<void> {
 /** Who the server has signed in at this browser. */
 async function signedInAtServer(page: Page): Promise<string[]> {
   const answer = await page.request.get('/api/me');
+  // The session that was active may have ended, and the next one is not active yet.
+  if (!answer.ok()) return [];
   const { sideBySide } = (await answer.json()) as { sideBySide: { name: string }[] };
   return sideBySide.map(({ name }) => name).sort();
 }
