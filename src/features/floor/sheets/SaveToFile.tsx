@@ -25,14 +25,14 @@ export function SaveToFile({ offline }: { offline: Surroundings }) {
     }
   }
   return (
-    <section className="grid gap-2 text-lg">
+    <section className="grid gap-1 text-lg">
       <h3 className="form-label border-b-2 border-text pb-1">If this tablet can’t send</h3>
       <p>
         {isNothing
           ? 'Nothing is on this tablet alone.'
           : `${count === undefined ? 'What' : contents(count)} on this tablet alone. A file of it can be brought in at the office, also when the tablet is gone.`}
       </p>
-      <div className="pt-2">
+      <div className="pt-1">
         <QuietButton
           shape="wide"
           label={isBusy ? 'Saving…' : 'Save what is on this tablet to a file'}

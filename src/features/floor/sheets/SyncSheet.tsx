@@ -55,8 +55,8 @@ export function SyncSheet({
   }
   return (
     <Sheet title="Where the records are" onClose={onClose}>
-      <div className="grid items-start gap-x-10 gap-y-6 @4xl/sheet:grid-cols-[2fr_3fr]">
-        <div className="grid gap-6">
+      <div className="grid items-start gap-x-10 gap-y-4 @4xl/sheet:grid-cols-[2fr_3fr]">
+        <div className="grid gap-3">
           <section className="grid gap-2 text-lg">
             <div className="grid gap-2" role="status">
               <p className="text-2xl font-bold">{status.words}</p>
@@ -91,7 +91,7 @@ export function SyncSheet({
           <WaitingRecords pending={pending} plan={run.state.plan} zone={run.workshop.zone} />
           <Refused refused={run.refused} onClose={onClose} />
         </div>
-        <section className="grid gap-4">
+        <section className="grid gap-3">
           <h3 className="form-label border-b-2 border-text pb-1">How this tablet looks</h3>
           <LookPanel />
         </section>
