@@ -59,7 +59,7 @@ export function SignOutSheet({ person, isOnline, onClose, onLeft }: SignOutSheet
     >
       <div className="grid max-w-[62ch] gap-3 text-lg">
         {leaving?.why !== undefined && <p className="text-xl font-bold">{leaving.why}</p>}
-        <p>{unsentWords(leaving?.unsent ?? 0, person.name)}</p>
+        {leaving && <p>{unsentWords(leaving.unsent, person.name)}</p>}
         <p>
           To work here again {person.name} signs in with e-mail and password, which needs the network. The key
           for signing with the PIN stays on this tablet.

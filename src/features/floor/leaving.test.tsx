@@ -1,7 +1,7 @@
 import { render, screen, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { beforeEach, describe, expect, it, vi } from 'vitest';
-import { setWorking, whoIsWorking } from '@/offline/tablet';
+import { readTablet, setWorking, whoIsWorking } from '@/offline/tablet';
 import type { Offline } from '@/offline/offline';
 import { Journal } from '../../../tests/support/journal';
 import { OfflineServer } from '../../../tests/support/offline-server';
@@ -68,7 +68,7 @@ describe('signing out on the Floor', () => {
 
   it('is barred with words while a cap that they work on stands half done', async () => {
     const { store, offline } = await openFloor();
-    await giveCapTo('tech', offline);
+    await giveCapTo({ by: 'tech' }, offline);
     const { user, onLeft } = showSheet(store);
     expect(await screen.findByText(/: 1A and 1B stand half tightened\. Finish them/)).toBeVisible();
     expect(main()).toHaveAttribute('aria-disabled', 'true');
@@ -80,18 +80,26 @@ describe('signing out on the Floor', () => {
 
   it('is free once somebody else has taken the job over', async () => {
     const { store, offline } = await openFloor();
-    await giveCapTo('mate', offline);
+    await giveCapTo({ by: 'mate' }, offline);
+    showSheet(store);
+    await vi.waitFor(() => expect(main()).not.toHaveAttribute('aria-disabled'));
+  });
+
+  it('is free while their cap stands half done at another tablet', async () => {
+    const { store, offline } = await openFloor();
+    await giveCapTo({ by: 'tech', device: 'another-tablet' }, offline);
     showSheet(store);
     await vi.waitFor(() => expect(main()).not.toHaveAttribute('aria-disabled'));
   });
 });
 
-/** The job as it would be in the middle of a cap in somebody's hands. */
-async function giveCapTo(person: string, offline: Offline): Promise<void> {
+/** The job as it would be in the middle of a cap in somebody's hands, here unless another tablet is named. */
+async function giveCapTo(whose: { by: string; device?: string }, offline: Offline): Promise<void> {
   const journal = new Journal(smallPlan()).performUntil('build.tighten@rod1');
   journal.tightenOnce('build.tighten@rod1');
   const view = await offline.jobs.open(job);
-  const state = { ...journal.state, working: { ...journal.state.working!, by: person } };
+  const { id: device } = await readTablet(offline);
+  const state = { ...journal.state, working: { ...journal.state.working!, device, ...whose } };
   vi.spyOn(offline.jobs, 'get').mockReturnValue({ ...view, state });
 }
 

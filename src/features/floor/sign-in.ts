@@ -74,11 +74,14 @@ export async function leaveTablet(offline: Offline, person: string): Promise<voi
   offline.sync.nudge();
 }
 
-/** Why a person can't leave the tablet now: a cap that they work on stands half done. */
+/** Why a person can't leave the tablet now: a cap that they work on here stands half done. */
 export async function whyNotLeave(offline: Offline, person: string): Promise<string | undefined> {
+  const { id: device } = await readTablet(offline);
   for (const { id, number } of await offline.db.jobs.filter((job) => job.availableOffline).toArray()) {
     const view = offline.jobs.get(id) ?? (await openQuietly(offline, id));
-    const cap = view?.state.working?.by === person ? capInHand(view.state) : undefined;
+    const working = view?.state.working;
+    const isTheirs = working?.by === person && working.device === device;
+    const cap = view && isTheirs ? capInHand(view.state) : undefined;
     if (cap) {
       return `Job ${number}: ${capWords(cap)} stand half tightened. Finish them, or let somebody take the job over.`;
     }
