@@ -1,3 +1,4 @@
+import { availableParallelism } from 'node:os';
 import { fileURLToPath } from 'node:url';
 import { defineConfig } from 'vitest/config';
 
@@ -10,6 +11,8 @@ const alias = {
 export default defineConfig({
   resolve: { alias },
   test: {
+    // By itself the runner leaves one core to others, which on two cores halves it.
+    maxWorkers: Math.max(2, availableParallelism() - 1),
     setupFiles: ['tests/support/setup.ts'],
     projects: [
       {
