@@ -15,6 +15,8 @@ const ENTRIES = 500;
 /** How much slower than this machine the tablet is taken to be. */
 const SLOWDOWN = 4;
 const PATIENCE_MS = 30_000;
+/** A tool that may be taken for the pass; the main action is barred until one is. */
+const TOOL_ROW = '.choice:not([data-barred])';
 
 /** A job on the tablet with the step that is next on it. */
 interface Prepared {
@@ -144,7 +146,7 @@ async function measureTouches(context: BrowserContext, addresses: readonly strin
   };
 }
 
-/** Touches what is on top until the last bolt is marked; between passes the wrench is changed in its sheet. */
+/** Touches what is on top until the last bolt is marked; the tool of each pass is touched where it is asked for. */
 async function tightenCap(
   context: BrowserContext,
   address: string,
@@ -156,7 +158,7 @@ async function tightenCap(
   await takeUp(page);
   let before = '';
   for (;;) {
-    const screen = await page.waitForFunction(readScreen, { touchable: TOUCHABLE, before });
+    const screen = await page.waitForFunction(readScreen, { touchable: `${TOUCHABLE}, ${TOOL_ROW}`, before });
     const { key, x, y, touches } = (await screen.jsonValue()) as Screen;
     if (touches.filter(({ kind }) => kind === 'marked').length >= BOLTS) {
       const writes = await page.evaluate(timeBareWrites, touches.length);

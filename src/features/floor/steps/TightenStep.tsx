@@ -79,7 +79,8 @@ function TightenAction({ step, touch }: { step: TightenStepPlan; touch: TightenT
     <StepFrame
       step={step}
       isLoud
-      heading={<ActionHeading step={step} touch={touch} run={run} />}
+      // The cautions come with the action itself, once its tool is in hand: before that nothing can be recorded.
+      heading={<ActionHeading step={step} touch={touch} run={run} hasWords={!needsTool} />}
       then={thenWords(run, step, touch)}
       foot={needsTool ? undefined : <ToolsWords run={run} step={step} touch={touch} />}
       quiet={<SecondQuiet hand={hand} needsTool={needsTool} onType={() => setTyping(true)} />}
@@ -134,7 +135,17 @@ function isAtHead(step: TightenStepPlan, { actions: [action] }: TightenTouch): b
 }
 
 /** Which bolt and how much, equally loud; the name of a joint that is no cap is a heading. */
-function ActionHeading({ step, touch, run }: { step: TightenStepPlan; touch: TightenTouch; run: Run }) {
+function ActionHeading({
+  step,
+  touch,
+  run,
+  hasWords,
+}: {
+  step: TightenStepPlan;
+  touch: TightenTouch;
+  run: Run;
+  hasWords: boolean;
+}) {
   const names = touchBolts(touch);
   const isShort = names.every((name) => name.length <= 3);
   const { words, figure, unit } = loudWords(run, step, touch);
@@ -150,7 +161,7 @@ function ActionHeading({ step, touch, run }: { step: TightenStepPlan; touch: Tig
           step={headWords(step, touch) ?? placeWords(run.state, step, touch)}
         />
       </div>
-      {isAtHead(step, touch) && (
+      {hasWords && isAtHead(step, touch) && (
         <div className="grid gap-3 pt-3">
           <StepCautions step={step} />
           {step.cautions.length === 0 && <HowLines how={step.how} />}
