@@ -1,8 +1,9 @@
 import { correctableKinds, correctionClass } from './correction-class';
 import type { EntryKind, EntryOf } from './entry';
 import { whyNotInItsPlace } from './job-correction-form';
+import { isDue } from './job-countersign';
 import { activeEntries, findKept, stepOfEntry } from './job-kept';
-import type { JobState, Kept, Verdict, Workshop } from './job-state';
+import type { Countersign, JobState, Kept, Verdict, Workshop } from './job-state';
 import { findStep } from './plan';
 
 const OK: Verdict = { ok: true };
@@ -133,16 +134,24 @@ export function whyNotRevoked(state: JobState, entry: EntryOf<'revoked'>): Verdi
     : no('unknown-entry', 'There is no signature or disposition to revoke.');
 }
 
-/** A clerical correction under a signature is countersigned once, by somebody with no hand in it or in its step. */
+/** A correction that asks for it is countersigned once, by somebody with no hand in it or in its step. */
 export function whyNotCountersigned(state: JobState, entry: EntryOf<'countersigned'>): Verdict {
   const asked = state.countersigns.find(({ correction }) => correction === entry.data.of);
-  if (!asked) return no('unknown-entry', 'There is no correction that asks for this countersign.');
+  return asked
+    ? whyNotCountersignedBy(state, asked, entry.by)
+    : no('unknown-entry', 'There is no correction that asks for this countersign.');
+}
+
+/** May this person countersign this correction, as far as it is a matter of who worked on it? */
+export function whyNotCountersignedBy(state: JobState, asked: Countersign, person: string): Verdict {
   if (asked.countersignedBy !== undefined)
     return no('already-signed', 'This correction is countersigned already.');
-  if (asked.by === entry.by)
+  if (!isDue(state, asked))
+    return no('settled', 'The deviation was disposed of, or the value was corrected again since.');
+  if (asked.by === person)
     return no('own-work', 'Nobody countersigns their own correction.', 'Someone else does.');
-  const step = findStep(state.plan, asked.step);
-  return step?.class === 'A' && state.authors[asked.step]?.includes(entry.by) === true
+  const isOverValue = asked.deviations !== undefined || findStep(state.plan, asked.step)?.class === 'A';
+  return isOverValue && state.authors[asked.step]?.includes(person) === true
     ? no('own-work', 'The signer had a hand in this work.', 'Someone who did none of it countersigns.')
     : OK;
 }

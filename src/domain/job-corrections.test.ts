@@ -3,7 +3,9 @@ import { Journal, torqueTool } from '../../tests/support/journal';
 import { smallPlan } from '../../tests/support/small-documents';
 import type { Entry, EntryData, EntryKind, EntryOf } from './entry';
 import { evidenceFor } from './job';
+import { dueCountersigns } from './job-countersign';
 import { DONE_PAST, donePast } from './job-evidence';
+import type { PlanStep } from './plan';
 import { signatureView } from './signature-view';
 
 const HOLD = 'build.caps-marked';
@@ -214,14 +216,103 @@ describe('a corrected value that leaves its limits', () => {
     expect(journal.status(GAUGE)).toBe('done');
   });
 
-  it('lets the deviation on the earlier value rest once the value is inside, and says so', () => {
+  it('leaves the deviation open until somebody else countersigns, whoever corrected the value to inside', () => {
+    for (const by of ['tech', 'sup']) {
+      const journal = begin().performUntil(GAUGE).gauge(GAUGE, '0.800', '0.050');
+      const change = corrected(entryOf(journal, 'gauged', GAUGE), { clearance: '0.050' });
+      const { id } = journal.record('corrected', change, { by });
+      const open = () => journal.state.deviations.filter(({ blocks, disposed }) => blocks && !disposed);
+      expect(open().map(({ rule }) => rule)).toEqual(['clearance-outside', 'taper']);
+      expect(open()[0]?.words).toContain('0.800');
+      expect(journal.why('strip.clean@rod2')).toMatch(/^deviation-open/);
+      const sign = (signer: string) => journal.ask('countersigned', { of: id, name: signer }, { by: signer });
+      expect(sign(by)).toMatchObject({ code: by === 'sup' ? 'own-work' : 'role' });
+      expect(sign('mate')).toMatchObject({ code: 'role' });
+      journal.record('countersigned', { of: id, name: 'Q. Lead' }, { by: 'lead' });
+      expect(open()).toEqual([]);
+      expect(journal.state.deviations[0]?.words).toContain('since corrected');
+      expect(journal.status(GAUGE)).toBe('done');
+      expect(journal.why('strip.clean@rod2')).toBe('ok');
+      expect(sign('lead')).toMatchObject({ code: 'already-signed' });
+    }
+  });
+
+  it('is not countersigned by somebody who had a hand in the work, of whatever class', () => {
+    const journal = begin().performUntil('build.rags-in');
+    journal.record('counted', { count: 11 }, { step: 'build.rags-in', by: 'tech', with: ['lead'] });
+    const counted = entryOf(journal, 'counted', 'build.rags-in');
+    const { id } = journal.record('corrected', corrected(counted, { count: 12 }));
+    const sign = (by: string) => journal.ask('countersigned', { of: id, name: by }, { by });
+    expect(sign('lead')).toMatchObject({ code: 'own-work' });
+    expect(sign('sup')).toEqual({ ok: true });
+  });
+
+  it('is disposed of instead, and then asks for no countersign any more', () => {
     const journal = begin().performUntil(GAUGE).gauge(GAUGE, '0.800', '0.050');
-    journal.record('corrected', corrected(entryOf(journal, 'gauged', GAUGE), { clearance: '0.050' }));
-    expect(journal.status(GAUGE)).toBe('done');
-    expect(journal.state.deviations[0]).toMatchObject({
-      blocks: false,
-      words: expect.stringContaining('since corrected'),
-    });
+    const change = corrected(entryOf(journal, 'gauged', GAUGE), { clearance: '0.050' });
+    const { id } = journal.record('corrected', change);
+    const dispose = (deviation: string) =>
+      journal.record(
+        'deviation-disposed',
+        { deviation, disposition: 'rework', reason: 'measure it again' },
+        { by: 'sup' },
+      );
+    const [disposed] = journal.state.deviations.map((deviation) => dispose(deviation.id));
+    const sign = () => journal.ask('countersigned', { of: id, name: 'Q. Lead' }, { by: 'lead' });
+    expect(dueCountersigns(journal.state)).toEqual([]);
+    expect(sign()).toMatchObject({ code: 'settled' });
+    expect(journal.status(GAUGE)).toBe('open');
+    journal.record('revoked', { of: disposed!.id, reason: 'too soon' }, { by: 'lead' });
+    expect(dueCountersigns(journal.state)).toHaveLength(1);
+    expect(sign()).toEqual({ ok: true });
+  });
+
+  it('asks for the newest correction, and lets the earlier deviation rest only where the new value has its own', () => {
+    const journal = begin().performUntil(GAUGE).gauge(GAUGE, '0.800', '0.050');
+    const gauged = entryOf(journal, 'gauged', GAUGE);
+    const first = journal.record('corrected', corrected(gauged, { clearance: '0.050' }));
+    const second = journal.record('corrected', corrected(gauged, { clearance: '0.052' }));
+    const sign = (of: string) => journal.ask('countersigned', { of, name: 'Q. Lead' }, { by: 'lead' });
+    expect(sign(first.id)).toMatchObject({ code: 'settled' });
+    expect(sign(second.id)).toEqual({ ok: true });
+    const third = journal.record('corrected', corrected(gauged, { clearance: '0.900' }));
+    const open = journal.state.deviations.filter(({ blocks }) => blocks);
+    expect(open.map(({ id }) => id)).toContain(`${third.id}:clearance-outside`);
+    expect(open.map(({ id }) => id)).not.toContain(`${gauged.id}:clearance-outside`);
+    expect(sign(second.id)).toMatchObject({ code: 'settled' });
+    const fourth = journal.record('corrected', corrected(gauged, { clearance: '0.050' }));
+    expect(dueCountersigns(journal.state)).toMatchObject([{ correction: fourth.id }]);
+    journal.record('countersigned', { of: fourth.id, name: 'Q. Lead' }, { by: 'lead' });
+    expect(journal.state.deviations.filter(({ blocks }) => blocks)).toEqual([]);
+  });
+
+  it('asks nothing of a correction whose value was inside before and after', () => {
+    const journal = begin().performUntil('strip.clean@rod2');
+    journal.record('corrected', corrected(entryOf(journal, 'gauged', GAUGE), { clearance: '0.047' }));
+    expect(journal.state.countersigns).toEqual([]);
+    expect(journal.why('strip.clean@rod2')).toBe('ok');
+  });
+
+  it('bars the handover until then by its deviation, and a clerical one by itself', () => {
+    const journal = begin().performUntil('build.drive');
+    const checks = journal.step('build.drive') as PlanStep & { kind: 'drive' };
+    const said = (ok: boolean) => checks.after.map(({ id }) => ({ id, ok }));
+    const before = checks.before.map(({ id }) => ({ id, ok: true }));
+    journal.record(
+      'drive-started',
+      { odometer: '1000', unit: 'km', checks: before },
+      { step: 'build.drive' },
+    );
+    const ended = journal.record(
+      'drive-ended',
+      { odometer: '1025', unit: 'km', checks: said(false) },
+      { step: 'build.drive' },
+    ) as Entry & EntryOf<'drive-ended'>;
+    const { id } = journal.record('corrected', corrected(ended, { checks: said(true) }));
+    journal.performUntil('build.hand-over');
+    expect(journal.why('build.hand-over')).toMatch(/^deviation-open/);
+    journal.record('countersigned', { of: id, name: 'S. Visor' }, { by: 'sup' });
+    expect(journal.why('build.hand-over')).toBe('ok');
   });
 
   it('does not ask again for an accepted reading when only its lot is mended', () => {
@@ -264,6 +355,26 @@ describe('a corrected value that leaves its limits', () => {
       { kind: 'released', data: { bolt: '2A' } },
       { kind: 'bolt-replaced', data: { bolt: '2B' } },
     ]);
+  });
+
+  it('leaves a bolt barred that was condemned and by its author’s correction is not', () => {
+    const step = 'build.tighten@rod2';
+    const journal = begin().performUntil(step);
+    journal.tightenOnce(step, {}, { value: '14', how: 'typed', outcome: 'over' });
+    const pull = entryOf(journal, 'tightened', step);
+    expect(journal.state.bolts['2A']?.condemned).toBeDefined();
+    const change = corrected(pull, { value: pull.data.target.target, outcome: 'done' });
+    const { id } = journal.record('corrected', change);
+    expect(journal.state.deviations.at(-1)).toMatchObject({
+      blocks: true,
+      step,
+      words: 'By a correction, bolt 2A was not turned too far after all',
+    });
+    journal.tighten(step);
+    const after = journal.plan.steps.find(({ needs }) => needs.includes(step))!;
+    expect(journal.why(after.id)).toMatch(/^deviation-open/);
+    journal.record('countersigned', { of: id, name: 'S. Visor' }, { by: 'sup' });
+    expect(journal.why(after.id)).not.toMatch(/^deviation-open/);
   });
 
   it('asks the supervisor about shells that are built in and were not the ones measured', () => {

@@ -1,6 +1,7 @@
 /* What corrections, take-backs and revocations change. The earlier entry stays; only what it counts for differs. */
 import type { EntryData, EntryOf } from './entry';
 import { addAuthors } from './job-authors';
+import { askToCountersign, openOnValue } from './job-countersign';
 import { raiseDeviation } from './job-deviation';
 import { classOf, openAgain, stepTouched } from './job-evidence';
 import { findKept, lastOf, patchEntry, stepOfEntry } from './job-kept';
@@ -26,8 +27,12 @@ export function applyCorrection(state: JobState, entry: EntryOf<'corrected'>, ke
   }
   next = addAuthors(next, stepId, [by, ...kept.with]);
   if (isClass === 'clerical') return settleSteps(next, [stepId]);
-  next = settleSteps(withdrawJudged(next, stepId, before), [stepId]);
   const step = findStep(next.plan, stepId);
+  const open = openOnValue(state, stepId, before);
+  next = settleSteps(next, [stepId]);
+  if (step?.kind === 'tighten' && isNoLongerOver(before, data)) next = askAboutBolt(next, step, kept, data);
+  const earlier = [...open, ...next.deviations.filter(({ id }) => id === `${kept.id}:${NOT_OVER}`)];
+  next = askToCountersign(next, stepId, kept, { earlier, reason });
   if (step?.kind === 'tighten' && before.kind === 'tightened')
     return judgePast(state, next, step, kept, data as EntryData<'tightened'>);
   if (step?.kind === 'choose-shells' && lastOf(next.steps[stepId], 'chose-shells')?.id === of)
@@ -42,24 +47,32 @@ function isUnderSignature(state: JobState, stepId: string): boolean {
   });
 }
 
-/** Rules that judge all readings of a step together, so that any of them may have raised the deviation. */
-const TOGETHER = new Set(['taper', 'spread']);
+/** The rule by which a bolt that was condemned waits for somebody else's word. */
+const NOT_OVER = 'corrected-over';
 
-/** What a rule said of the value that is superseded no longer stands for anything; the new value is judged anew. */
-function withdrawJudged(state: JobState, stepId: string, before: Kept): JobState {
-  const grounds = (kept: Kept): string[] => (kept.valueFrom ? [kept.id, kept.valueFrom.id] : [kept.id]);
-  const own = new Set(grounds(before));
-  const all = new Set(state.steps[stepId]?.entries.flatMap(grounds));
-  const deviations = state.deviations.map((deviation) => {
-    const [ground = ''] = deviation.id.split(':');
-    const { rule, disposed, blocks } = deviation;
-    if (rule === undefined || rule === 'conflict' || rule === 'done-wrong' || disposed || !blocks)
-      return deviation;
-    return own.has(ground) || (TOGETHER.has(rule) && all.has(ground))
-      ? { ...deviation, blocks: false, words: `${deviation.words} (since corrected)` }
-      : deviation;
-  });
-  return { ...state, deviations };
+function isNoLongerOver(before: Kept, data: object): data is EntryData<'tightened'> {
+  const isOver = (one: object): boolean => 'outcome' in one && one.outcome === 'over';
+  return before.kind === 'tightened' && isOver(before.data) && !isOver(data);
+}
+
+/** Nobody takes the condemnation off their own bolt. */
+function askAboutBolt(
+  state: JobState,
+  step: StepOf<'tighten'>,
+  kept: Kept,
+  { bolt }: EntryData<'tightened'>,
+): JobState {
+  return raiseDeviation(
+    state,
+    { ...kept, step: step.id },
+    {
+      rule: NOT_OVER,
+      class: step.class,
+      words: `By a correction, bolt ${bolt} was not turned too far after all`,
+      blocks: true,
+      rod: step.rod,
+    },
+  );
 }
 
 /** A programme that was finished and by the corrected value is not: bolts that are built in hold what they should not. */
@@ -148,15 +161,4 @@ export function applyRevocation(state: JobState, entry: EntryOf<'revoked'>, kept
     deviations: next.deviations.map((d) => (d.disposed?.entry === of ? { ...d, disposed: undefined } : d)),
   };
   return touched === undefined ? next : settleSteps(next, [touched]);
-}
-
-/** Signing again covers the corrections that were made under the signature before. */
-export function coverCorrections(state: JobState, step: PlanStep, kept: Kept): JobState {
-  if (step.kind !== 'hold' || state.countersigns.length === 0) return state;
-  const countersigns = state.countersigns.map((asked) =>
-    asked.countersignedBy === undefined && asked.by !== kept.by && step.covers.includes(asked.step)
-      ? { ...asked, countersignedBy: kept.by }
-      : asked,
-  );
-  return { ...state, countersigns };
 }

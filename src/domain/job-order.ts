@@ -2,6 +2,7 @@
  * What may come next. Order is enforced where it matters and free where it doesn't: a step that can't be
  * done yet says why, and what would unlock it.
  */
+import { correctionOver, dueCountersigns } from './job-countersign';
 import { isBlocked } from './job-deviation';
 import { findSignature, stepsPast, uncheckedSignatures } from './job-evidence';
 import type { JobState, OpenItem, Verdict } from './job-state';
@@ -123,7 +124,7 @@ function whyNeedIsMissing(state: JobState, needId: string): Verdict {
     return no(
       'deviation-open',
       `A deviation is open on "${title}": ${sentence(deviation.words)}`,
-      'The supervisor disposes of it.',
+      wayOut(state, deviation),
     );
   }
   if (need?.kind === 'hold')
@@ -174,7 +175,7 @@ function whyNotHold(state: JobState, step: PlanStep & { kind: 'hold' }): Verdict
   if (!barred.ok || step.gate !== 'start') return barred;
   const open = openBlockers(state).find((d) => d.class !== 'C');
   return open
-    ? no('deviation-open', `A deviation is open: ${sentence(open.words)}`, 'The supervisor disposes of it.')
+    ? no('deviation-open', `A deviation is open: ${sentence(open.words)}`, wayOut(state, open))
     : OK;
 }
 
@@ -189,7 +190,7 @@ function whyNotHandOver(state: JobState): Verdict {
       'Bring the tablet to the network.',
     );
   }
-  if (state.countersigns.some((asked) => asked.countersignedBy === undefined)) {
+  if (dueCountersigns(state).some(({ deviations }) => deviations === undefined)) {
     return no(
       'countersign',
       'A correction under a signature has not been countersigned.',
@@ -197,12 +198,7 @@ function whyNotHandOver(state: JobState): Verdict {
     );
   }
   const [open] = openBlockers(state);
-  if (open)
-    return no(
-      'deviation-open',
-      `A deviation is open: ${sentence(open.words)}`,
-      'The supervisor disposes of it.',
-    );
+  if (open) return no('deviation-open', `A deviation is open: ${sentence(open.words)}`, wayOut(state, open));
   const missing = state.plan.steps.find((s) => s.kind !== 'hand-over' && !isSatisfied(state, s.id));
   return missing ? whyNeedIsMissing(state, missing.id) : OK;
 }
@@ -210,6 +206,13 @@ function whyNotHandOver(state: JobState): Verdict {
 /** Deviations that block and wait for a disposition. */
 export function openBlockers(state: JobState): JobState['deviations'] {
   return state.deviations.filter((deviation) => deviation.blocks && !deviation.disposed);
+}
+
+/** What takes an open deviation out of the way: a disposition, or a countersign where its value was corrected. */
+export function wayOut(state: JobState, { id }: JobState['deviations'][number]): string {
+  return correctionOver(state, id) === undefined
+    ? 'The supervisor disposes of it.'
+    : 'Its value was corrected since: a supervisor or the quality lead countersigns that on the page of the job, or disposes of the deviation.';
 }
 
 /** Words with a full stop at their end, if they have none. */

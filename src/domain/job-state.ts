@@ -138,6 +138,17 @@ export interface Signature {
   donePast?: string[] | undefined;
 }
 
+/** Somebody else's name under a correction: asked for, or given. */
+export interface Countersign {
+  correction: string;
+  step: string;
+  reason: string;
+  by: string;
+  /** The deviations that stay open until then; absent for a clerical correction under a signature. */
+  deviations?: string[] | undefined;
+  countersignedBy?: string | undefined;
+}
+
 export interface ToolInHand {
   id: string;
   name: string;
@@ -171,14 +182,8 @@ export interface JobState {
   lots: Record<string, string[]>;
   deviations: Deviation[];
   signatures: Signature[];
-  /** Clerical corrections under a signature, which someone else countersigns before handover. */
-  countersigns: {
-    correction: string;
-    step: string;
-    reason: string;
-    by: string;
-    countersignedBy?: string | undefined;
-  }[];
+  /** Corrections that someone else countersigns. */
+  countersigns: Countersign[];
   /** Who had a hand in each step, helpers and correctors included. */
   authors: Record<string, string[]>;
   people: Record<string, string>;

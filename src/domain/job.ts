@@ -4,7 +4,8 @@
  * here everything is taken as having happened. A state is never changed in place: screens keep old ones.
  */
 import type { Entry, EntryOf, Recorded } from './entry';
-import { applyCorrection, applyRevocation, applyTakeBack, coverCorrections } from './job-corrections';
+import { applyCorrection, applyRevocation, applyTakeBack } from './job-corrections';
+import { countersign, coverCorrections } from './job-countersign';
 import { raiseDeviation, remark } from './job-deviation';
 import { noteAuthor } from './job-authors';
 import { reopenSignatures } from './job-evidence';
@@ -164,12 +165,8 @@ function applyToJob(state: JobState, entry: Entry, kept: Kept): JobState | undef
       const { class: criticalClass, words, blocks, rod } = entry.data;
       return raiseDeviation(state, kept, { class: criticalClass, words, blocks, rod });
     }
-    case 'countersigned': {
-      const countersigns = state.countersigns.map((asked) =>
-        asked.correction === entry.data.of ? { ...asked, countersignedBy: entry.by } : asked,
-      );
-      return { ...state, countersigns };
-    }
+    case 'countersigned':
+      return countersign(state, entry.data.of, entry.by);
     case 'work-signed':
       return signWork(state, entry);
     case 'ended-unfinished':

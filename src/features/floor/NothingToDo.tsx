@@ -2,7 +2,7 @@ import { FloorFrame } from '@/components/FloorFrame';
 import { EngineBelow } from '@/components/EngineBelow';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
-import { openBlockers, sentence } from '@/domain/job-order';
+import { openBlockers, sentence, wayOut } from '@/domain/job-order';
 import { findSignature } from '@/domain/job-evidence';
 import { whyNot } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
@@ -95,9 +95,9 @@ function endWords(state: JobState): string {
 const SHOWN = 6;
 
 function waitingFor(state: JobState): { title: string; why: string }[] {
-  const deviations = openBlockers(state).map(({ words }) => ({
+  const deviations = openBlockers(state).map((one) => ({
     title: 'Deviation',
-    why: `${sentence(words)} The supervisor disposes of it.`,
+    why: `${sentence(one.words)} ${wayOut(state, one)}`,
   }));
   const parts = state.plan.steps
     .filter(({ id }) => state.steps[id]?.status === 'waiting for a part')

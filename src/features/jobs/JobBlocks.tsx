@@ -1,5 +1,6 @@
 import { nextSteps, whyNot } from '@/domain/job';
 import { guideTo } from '@/domain/deviation-guide';
+import { correctionOver } from '@/domain/job-countersign';
 import { openBlockers } from '@/domain/job-order';
 import type { JobState } from '@/domain/job-state';
 import { dayAndTime } from '@/domain/time-words';
@@ -32,6 +33,9 @@ export function JobBlocks({ state, zone, waiting, missingPhotographs, tablets }:
         what: `Deviation, class ${deviation.class}: ${guide?.happened ?? deviation.words}`,
         note: `${deviation.raisedByName}, ${dayAndTime(deviation.raisedAt, zone)}`,
         ...(guide && { more: `${guide.blocked} ${guide.next} It is disposed of on the Floor.` }),
+        ...(correctionOver(state, deviation.id) && {
+          more: 'Its value was corrected since. It rests once that is countersigned (under “Corrected”), or is disposed of on the Floor.',
+        }),
       };
     }),
     ...state.plan.steps

@@ -4,7 +4,10 @@ import type { Entry, EntryData } from '@/domain/entry';
 import { wordsOf } from '@/domain/entry-words';
 import { DONE_PAST, findSignature } from '@/domain/job-evidence';
 import { findKept } from '@/domain/job';
-import type { JobState, Kept } from '@/domain/job-state';
+import { whyNotCountersignedBy } from '@/domain/job-correction-rules';
+import { dueCountersigns } from '@/domain/job-countersign';
+import { sentence } from '@/domain/job-order';
+import type { Countersign, JobState, Kept } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
 import { dayAndTime } from '@/domain/time-words';
 import { JudgementDialog, type Judge } from './JudgementDialog';
@@ -20,25 +23,19 @@ interface JobCorrectionsProps {
 /** What corrections ask for: a countersign, a hold point signed again, and which steps were done past it. */
 export function JobCorrections({ state, zone, judge }: JobCorrectionsProps) {
   const [asked, ask] = useState<string>();
-  const due = state.countersigns.filter(({ countersignedBy }) => countersignedBy === undefined);
+  const due = dueCountersigns(state);
   const past = state.signatures.filter(({ donePast = [] }) => donePast.length > 0);
   const one = due.find(({ correction }) => correction === asked);
   if (due.length === 0 && past.length === 0) return null;
   return (
     <section className="part">
-      <h2 className="part-title">Corrected under a signature</h2>
+      <h2 className="part-title">Corrected</h2>
       <ul className="job-list">
         {due.map((countersign) => (
           <li key={countersign.correction}>
-            <b>Countersign due before handover</b>
-            <Correction state={state} zone={zone} correction={countersign.correction} />
-            {judge && countersign.by !== judge.id && (
-              <div className="form-actions mt-2">
-                <Button look="quiet" onClick={() => ask(countersign.correction)}>
-                  Countersign
-                </Button>
-              </div>
-            )}
+            <b>{dueWords(countersign)}</b>
+            <Correction state={state} zone={zone} asked={countersign} />
+            {judge && <Countersigning {...{ state, countersign, judge }} onAsk={ask} />}
           </li>
         ))}
         {past.map(({ entry, step, donePast = [] }) => (
@@ -68,21 +65,55 @@ export function JobCorrections({ state, zone, judge }: JobCorrectionsProps) {
           })}
           onClose={() => ask(undefined)}
         >
-          <Correction state={state} zone={zone} correction={one.correction} />
+          <Correction state={state} zone={zone} asked={one} />
         </JudgementDialog>
       )}
     </section>
   );
 }
 
-/** What a correction changed, by whom, when and why. */
-function Correction({ state, zone, correction }: { state: JobState; zone: string; correction: string }) {
-  const kept = findKept(state, correction);
+function dueWords({ deviations }: Countersign): string {
+  if (deviations === undefined) return 'Countersign due before handover';
+  return deviations.length === 1
+    ? 'Countersign due: the deviation stays open until then'
+    : 'Countersign due: the deviations stay open until then';
+}
+
+/** The button for whoever may, or why this person may not. */
+function Countersigning({
+  state,
+  countersign,
+  judge,
+  onAsk,
+}: {
+  state: JobState;
+  countersign: Countersign;
+  judge: Judge;
+  onAsk: (correction: string) => void;
+}) {
+  const verdict = whyNotCountersignedBy(state, countersign, judge.id);
+  if (!verdict.ok) return <p className="text-soft">{[verdict.why, verdict.unlock].join(' ')}</p>;
+  return (
+    <div className="form-actions mt-2 no-print">
+      <Button look="quiet" onClick={() => onAsk(countersign.correction)}>
+        Countersign
+      </Button>
+    </div>
+  );
+}
+
+/** What a correction changed, by whom, when and why, and which deviations wait for it. */
+function Correction({ state, zone, asked }: { state: JobState; zone: string; asked: Countersign }) {
+  const kept = findKept(state, asked.correction);
   if (!kept) return null;
   const { of, reason } = kept.data as EntryData<'corrected'>;
   const target = findKept(state, of);
+  const earlier = state.deviations.filter(({ id }) => asked.deviations?.includes(id));
   return (
     <p>
+      {earlier.map(({ id, words }) => (
+        <span key={id}>Before: {sentence(words)} </span>
+      ))}
       {target && <>Now: {keptWords(state, target)}. </>}
       <span className="text-soft">
         Corrected by {kept.name}, {dayAndTime(kept.at, zone)}: {reason}

@@ -116,10 +116,10 @@ function Job({
             missingPhotographs={answer.missingPhotographs}
             tablets={answer.tablets}
           />
+          <JobCorrections state={jobState} zone={zone} judge={onThisJob} />
           <JobSetAside job={answer.id} zone={zone} />
           <JobNext state={jobState} />
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
-          <JobCorrections state={jobState} zone={zone} judge={onThisJob} />
           <JobSignatures state={jobState} zone={zone} judge={onThisJob} />
           <JobPhotos state={jobState} zone={zone} missing={answer.missingPhotographs} />
           {canErase && HAS_ENDED.includes(jobState.phase) && <JobErasure job={answer} />}

@@ -66,9 +66,10 @@ describe('a clerical correction under a signature', () => {
     expect(screen.queryByRole('dialog')).toBeNull();
   });
 
-  it('offers nothing to whoever made it', () => {
+  it('offers nothing to whoever made it, and says why', () => {
     show(clerical(), { ...lead, id: 'tech' });
     expect(screen.queryByRole('button', { name: 'Countersign' })).toBeNull();
+    expect(screen.getByText(/Nobody countersigns their own correction/)).toBeVisible();
   });
 
   it('stays open with the words when it was refused', async () => {
@@ -79,6 +80,21 @@ describe('a clerical correction under a signature', () => {
     await user.click(dialog().getByRole('button', { name: 'Countersign' }));
     expect(dialog().getByText(/The PIN was wrong/)).toBeVisible();
     expect(dialog().getByLabelText('Your PIN')).toHaveValue('');
+  });
+});
+
+describe('a value that was corrected to inside its limits', () => {
+  it('is countersigned with the earlier value and its deviation in sight', async () => {
+    const step = 'strip.gauge@rod2';
+    const journal = new Journal(smallPlan()).performUntil(step).gauge(step, '0.800', '0.800');
+    const { id: of, data } = journal.entries.findLast((one) => one.kind === 'gauged')!;
+    const better = { ...data, clearance: '0.050' };
+    journal.record('corrected', { of, class: 'substantive', reason: 'misread', data: better });
+    const user = show(journal);
+    expect(screen.getByText('Countersign due: the deviation stays open until then')).toBeVisible();
+    await user.click(screen.getByRole('button', { name: 'Countersign' }));
+    expect(dialog().getByText(/Before: Rod 2, rear: 0\.800 mm is outside the limits\./)).toBeVisible();
+    expect(dialog().getByText(/Now: Rod 2, rear: 0\.050 mm/)).toBeVisible();
   });
 });
 

@@ -5,6 +5,7 @@ import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
 import { correctionClass } from '@/domain/correction-class';
 import { wordsOf } from '@/domain/entry-words';
+import { openOnValue } from '@/domain/job-countersign';
 import { findSignature } from '@/domain/job-evidence';
 import { whyNotWhose } from '@/domain/job-correction-rules';
 import type { JobState, Kept } from '@/domain/job-state';
@@ -247,6 +248,8 @@ function afterWords(state: JobState, kept: Kept, isClass: 'clerical' | 'substant
       step.covers.includes(kept.step) &&
       findSignature(state, step.id) !== undefined,
   );
+  if (isClass === 'substantive' && kept.step !== undefined && openOnValue(state, kept.step, kept).length > 0)
+    return 'the deviation stays open until someone else countersigns';
   if (!isSigned) return 'the record keeps both';
   return isClass === 'clerical' ? 'someone else countersigns it' : 'the hold point opens again';
 }

@@ -55,6 +55,18 @@ describe('correcting a record', () => {
     expect(onClose).toHaveBeenCalledOnce();
   });
 
+  it('of a value with an open deviation says that it stays open, and why', async () => {
+    const journal = new Journal(smallPlan()).performUntil(GAUGE).gauge(GAUGE, '0.048', '0.060');
+    expect(journal.state.deviations.some(({ blocks }) => blocks)).toBe(true);
+    const { user } = open(journal, GAUGE);
+    await user.click(sheet().getByRole('button', { name: /^Rod 2, rear/ }));
+    await user.click(sheet().getByRole('radio', { name: /^0\.050 mm/ }));
+    await user.click(sheet().getByRole('button', { name: 'misread' }));
+    expect(main()).toHaveTextContent('the deviation stays open until someone else countersigns');
+    await user.click(main());
+    expect(screen.getByText(/countersigns that on the page of the job/)).toBeVisible();
+  });
+
   it('of another’s work is for a supervisor, with the author shown', async () => {
     const journal = afterGauge();
     const mate = { id: 'mate', name: 'M. Ate', roles: ['technician'] };

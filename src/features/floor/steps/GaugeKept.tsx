@@ -4,6 +4,8 @@ import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
 import { Reading } from '@/components/Reading';
 import { Verdict } from '@/components/Verdict';
+import { correctionOver } from '@/domain/job-countersign';
+import { wayOut } from '@/domain/job-order';
 import type { ClearanceReading, JobState, RodState } from '@/domain/job-state';
 import { rodsOf, type PlanLimit, type StepOf } from '@/domain/plan';
 import { dataOf } from '../done-words';
@@ -61,8 +63,10 @@ export function GaugeKept({ step, rod, kept, onRear, onReadAgain, onByParts }: G
       foot={
         deviations.length > 0 ? (
           <p className="font-bold text-outside">
-            {deviations.map(({ words }) => words).join('. ')}. The supervisor disposes of it; only that opens
-            the way.
+            {deviations.map(({ words }) => words).join('. ')}.{' '}
+            {deviations.every(({ id }) => correctionOver(state, id))
+              ? deviations.slice(0, 1).map((one) => wayOut(state, one))
+              : 'The supervisor disposes of it; only that opens the way.'}
           </p>
         ) : undefined
       }
