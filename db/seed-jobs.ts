@@ -204,7 +204,7 @@ async function openShop(
   for (const person of people.values()) {
     if (!person.roles.some((role) => role === 'technician' || role === 'supervisor')) continue;
     const { publicKey } = tablet.makeKey(person.id);
-    await app.db.transaction().execute((trx) => enrolKey(trx, actor(person), device, publicKey, app));
+    await app.db.transaction().execute((trx) => enrolKey(trx, actor(person), device, { publicKey }, app));
   }
   return { app, clock, people, tablet, device };
 }

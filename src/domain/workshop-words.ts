@@ -96,7 +96,7 @@ function wordsOf({ kind, data }: WorkshopRecord, names: ReadonlyMap<string, stri
     case 'pin-set':
       return `${named(data.person)} set a signing PIN`;
     case 'tablet-enrolled':
-      return `Tablet enrolled: ${named(data.tablet)}`;
+      return `Tablet enrolled: ${named(data.tablet)}${again(data.afterRestore, ', again')}`;
     case 'tablet-renamed':
       return `Tablet ${text(data.from) ?? ''} is called ${text(data.to) ?? ''} from here on`;
     case 'tablet-lost':
@@ -106,7 +106,7 @@ function wordsOf({ kind, data }: WorkshopRecord, names: ReadonlyMap<string, stri
     case 'tablet-file-brought':
       return `File of tablet ${named(data.tablet)} brought in: ${String(data.recorded)} recorded, ${String(data.refused)} refused`;
     case 'key-enrolled':
-      return `Key ${text(data.key) ?? ''} of ${named(data.person)} on ${named(data.tablet)}`;
+      return `Key ${text(data.key) ?? ''} of ${named(data.person)} on ${named(data.tablet)}${again(data.afterRestore, ', enrolled again')}`;
     case 'key-revoked':
       return `Key ${text(data.key) ?? ''} of ${named(data.person)} on ${named(data.tablet)} revoked`;
     default:
@@ -163,6 +163,10 @@ function text(value: unknown): string | undefined {
 
 function list(value: unknown): string {
   return Array.isArray(value) && value.length > 0 ? value.map(String).join(', ') : 'nobody';
+}
+
+function again(restoredAt: unknown, words: string): string {
+  return typeof restoredAt === 'string' ? `${words} after the restore of ${restoredAt}` : '';
 }
 
 function because(reason: unknown): string {

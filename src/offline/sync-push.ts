@@ -1,4 +1,5 @@
 import { changeJob, ofJob, type FloorDatabase, type OutboxRow, type RefusedRow } from './database';
+import { noteLostKey } from './lost-keys';
 import type { Verdicts } from './sync-answer';
 
 const MAX_ENTRIES = 200;
@@ -60,6 +61,9 @@ function bytesOf(row: Sendable): number {
   return new TextEncoder().encode(JSON.stringify(toWire(row))).length + 1;
 }
 
+/** The server was restored to a time before the author's key was enrolled. */
+const KEY_LOST = 'key-lost';
+
 /**
  * Writes down what the server said of each record. What it recorded stays in the outbox until the trail
  * brings it back in its place; what it refused is kept whole with the reason.
@@ -71,10 +75,11 @@ export async function applyVerdicts(
   at: string,
 ): Promise<void> {
   const byId = new Map(verdicts.map((verdict) => [verdict.id, verdict]));
-  await db.transaction('rw', db.outbox, db.refused, db.jobs, async () => {
+  await db.transaction('rw', db.outbox, db.refused, db.jobs, db.authorKeys, async () => {
     const changed = new Set<string>();
-    for (const { job, place, id } of sent) {
+    for (const { job, place, id, key } of sent) {
       const verdict = byId.get(id);
+      if (verdict?.code === KEY_LOST) await noteLostKey(db, key);
       // Of what was refused before, the trail says whether it is told of again.
       if (place === undefined) continue;
       const row = await db.outbox.get([job, place]);

@@ -7,6 +7,7 @@ import type { JobRow } from './database';
 import { keepDevice, readDevice, type Device } from './device';
 import { sendPhotos, sendPhotosAgain } from './photo-queue';
 import { fetchMissingPlans, pullWorkshop } from './prefetch';
+import { enrolLostKeys } from './lost-keys';
 import { callServer, type Outcome, type Trouble } from './server-call';
 import { instantOf, type Surroundings } from './surroundings';
 import { syncAnswer, type SyncAnswer } from './sync-answer';
@@ -26,6 +27,7 @@ export async function runSync(s: Surroundings): Promise<Outcome> {
   if (device.credential === undefined) return NOT_ENROLLED;
   const tried = new Set<string>();
   const behind = new Set(await jobsToAskFor(s));
+  const keyed = new Set<string>();
   for (;;) {
     const batch = await nextBatch(s.db, tried);
     for (const { job } of batch.rows) behind.add(job);
@@ -36,10 +38,11 @@ export async function runSync(s: Surroundings): Promise<Outcome> {
     await applyVerdicts(s.db, batch.rows, answer.body.verdicts, at);
     const { brought, isRestored } = await applyJobs(s, jobs, answer.body, at, behind);
     // What a restored server lacks goes first; whatever waited for it is worth another try.
-    if (isRestored) tried.clear();
+    const isAnew = (await enrolLostKeys(s, keyed)) || isRestored;
+    if (isAnew) tried.clear();
     else for (const { id } of batch.rows) tried.add(id);
     const isMoving = brought || batch.rows.length > 0;
-    const isLeft = batch.more || isRestored || behind.size > 0;
+    const isLeft = batch.more || isAnew || behind.size > 0;
     if (!isMoving || !isLeft) return afterwards(s, device, answer.body);
   }
 }

@@ -1,4 +1,5 @@
 import { findDevice } from './device';
+import { readWhoMustSignIn } from './lost-keys';
 import type { Whereabouts } from './database';
 import type { Surroundings } from './surroundings';
 
@@ -13,6 +14,8 @@ export interface SyncStatus {
   refused: number;
   /** Photographs that are only here. */
   photos: number;
+  /** Whose key a restored server has forgotten, by name. */
+  signInAgain: string[];
   running: boolean;
   /** RFC 3339; when everything last went through. */
   lastSyncAt?: string | undefined;
@@ -35,7 +38,8 @@ export interface LastSync {
 /** Counts what is on the disk; meant for a live query. */
 export async function readSyncStatus({ db }: Surroundings): Promise<Omit<SyncStatus, 'running' | 'words'>> {
   const count = (where: Whereabouts) => db.outbox.where('where').equals(where).count();
-  const tables = [db.meta, db.outbox, db.entries, db.refused, db.photos];
+  const { meta, outbox, entries, refused, photos, authorKeys, workshop, signedIn } = db;
+  const tables = [meta, outbox, entries, refused, photos, authorKeys, workshop, signedIn];
   return db.transaction('r', tables, async () => {
     const device = await findDevice(db);
     const last = (await db.meta.get('sync'))?.value as LastSync | undefined;
@@ -47,6 +51,7 @@ export async function readSyncStatus({ db }: Surroundings): Promise<Omit<SyncSta
       sent: (await count('sent')) + confirmed,
       refused: await db.refused.count(),
       photos: await db.photos.where('sent').equals(0).count(),
+      signInAgain: await readWhoMustSignIn(db),
       lastSyncAt: last?.syncedAt,
       lastTriedAt: last?.triedAt,
       trouble: last?.trouble,
@@ -65,6 +70,13 @@ export function statusWords(status: Omit<SyncStatus, 'words'>): string {
   ] as const;
   const told = parts.filter(([count]) => count > 0).map(([count, words]) => `${count} ${words}`);
   return told.length > 0 ? told.join(', ') : 'All sent';
+}
+
+/** What is to be done after the server was restored to before somebody's key was enrolled; undefined if nothing is. */
+export function signInAgainWords(names: readonly string[]): string | undefined {
+  if (names.length === 0) return undefined;
+  const who = names.length === 1 ? names[0] : `${names.slice(0, -1).join(', ')} and ${names.at(-1)}`;
+  return `${who} ${names.length === 1 ? 'has' : 'have'} to sign in on this tablet again: the server was restored from a backup that is older than the key here. Nothing is lost: the records are kept on this tablet, and go in by themselves once that is done.`;
 }
 
 const CLOCK_TOLERANCE_MS = 5 * 60 * 1000;

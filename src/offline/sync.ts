@@ -128,6 +128,7 @@ const NOTHING_KNOWN: SyncStatus = {
   sent: 0,
   refused: 0,
   photos: 0,
+  signInAgain: [],
   running: false,
   words: '',
 };

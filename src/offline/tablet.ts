@@ -31,21 +31,22 @@ export async function readTablet(s: Surroundings): Promise<Tablet> {
 const enrolled = z.object({ id: z.string(), credential: z.string() });
 
 /**
- * Enrols this browser as a tablet; someone must be signed in. A tablet that the workshop no longer knows
- * gets a new id, and sends what the old one recorded under the keys that signed it.
+ * Enrols this browser as a tablet; someone must be signed in. A tablet that a restored server has forgotten stays
+ * the one it was. One that the workshop has put out of use gets a new id, and sends what the old one recorded under
+ * the keys that signed it.
  */
 export async function enrolTablet(s: Surroundings, name: string): Promise<Outcome> {
   const device = await readDevice(s);
-  const id = device.credential === undefined ? device.id : s.newId();
-  const first = await askToEnrol(s, device, id, name);
+  const first = await askToEnrol(s, device, device.id, name);
   return !first.ok && first.code === 'conflict' ? askToEnrol(s, device, s.newId(), name) : first;
 }
 
 async function askToEnrol(s: Surroundings, device: Device, id: string, name: string): Promise<Outcome> {
+  const isSame = id === device.id;
   const answer = await callServer(s, {
     method: 'POST',
     path: '/api/devices',
-    body: { id, name },
+    body: { id, name, ...(isSame ? { credential: device.credential } : {}) },
     answer: enrolled,
     without: 'tablet',
   });
@@ -53,7 +54,10 @@ async function askToEnrol(s: Surroundings, device: Device, id: string, name: str
   const { db } = s;
   await db.transaction('rw', db.meta, db.authorKeys, db.counters, db.jobs, async () => {
     await keepDevice(db, { id, name, credential: answer.body.credential });
-    if (id === device.id) return;
+    if (isSame) {
+      await db.authorKeys.filter(({ enrolled }) => enrolled !== undefined).modify({ mustEnrolAgain: true });
+      return;
+    }
     // Keys and numbers belong to the old id: new ones from here, and every open view must notice.
     await db.authorKeys.clear();
     await db.counters.toCollection().modify({ deviceSeq: 0 });
@@ -71,19 +75,23 @@ const enrolledKey = z.object({ id: z.string(), workshop: z.int() });
  */
 export async function enrolAuthorKey(s: Surroundings, person: string): Promise<Outcome> {
   const key = (await s.db.authorKeys.get(person)) ?? (await makeAuthorKey(s, person));
-  if (key.enrolled !== undefined) return { ok: true };
+  if (isKnown(key)) return { ok: true };
   const active = await callServer(s, { path: '/api/me', answer: activePerson, without: 'tablet' });
   if (!active.ok) return active;
   if (active.body.actor.personId !== person) return OTHER_SESSION;
   const answer = await callServer(s, {
     method: 'POST',
     path: '/api/keys',
-    body: { publicKey: key.publicKey },
+    body: { publicKey: key.publicKey, ...(key.mustEnrolAgain ? { again: true } : {}) },
     answer: enrolledKey,
   });
   if (!answer.ok) return answer;
-  await s.db.authorKeys.update(person, { enrolled: answer.body.workshop });
+  await s.db.authorKeys.update(person, { enrolled: answer.body.workshop, mustEnrolAgain: undefined });
   return { ok: true };
+}
+
+function isKnown({ enrolled, mustEnrolAgain }: AuthorKeyRow): boolean {
+  return enrolled !== undefined && !mustEnrolAgain;
 }
 
 const OTHER_SESSION: Trouble = {
@@ -169,14 +177,25 @@ export async function extendSessionsHourly(s: Surroundings): Promise<void> {
   });
 }
 
-/** Everybody who is signed in at this tablet, and whether their key is known to the workshop. */
-export async function listSignedIn(s: Surroundings): Promise<(SignedInRow & { hasKey: boolean })[]> {
+/** Somebody who is signed in at this tablet, as it knows them. */
+export interface SignedInHere extends SignedInRow {
+  /** The workshop has been told of their key on this tablet. */
+  hasKey: boolean;
+  /** A restored server has forgotten it. They may go on; what they record waits until they sign in again. */
+  mustSignIn: boolean;
+}
+
+/** Everybody who is signed in at this tablet, and what the workshop knows of their keys. */
+export async function listSignedIn(s: Surroundings): Promise<SignedInHere[]> {
   const [people, keys] = await Promise.all([
     s.db.signedIn.orderBy('person').toArray(),
     s.db.authorKeys.toArray(),
   ]);
-  const withKey = new Set(keys.filter((key) => key.enrolled !== undefined).map((key) => key.person));
-  return people.map((row) => ({ ...row, hasKey: withKey.has(row.person) }));
+  const byPerson = new Map(keys.map((key) => [key.person, key]));
+  return people.map((row) => {
+    const key = byPerson.get(row.person);
+    return { ...row, hasKey: key?.enrolled !== undefined, mustSignIn: key?.mustEnrolAgain === true };
+  });
 }
 
 /** The person who said that they are working here: a claim, not proof. */

@@ -7,7 +7,7 @@ import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import type { Device } from './devices';
 import { AppError, notFound } from './errors';
-import { appendWorkshopEntry } from './workshop-trail';
+import { appendWorkshopEntry, findLastRestore } from './workshop-trail';
 
 /** The public half of the key with which one person signs their entries on one tablet. */
 export interface AuthorKey {
@@ -22,12 +22,15 @@ export interface AuthorKey {
   revokedAt: string | null;
 }
 
-/** Enrols the acting person's key on a tablet; enrolling the same key again changes nothing. */
+/**
+ * Enrols the acting person's key on a tablet; enrolling the same key again changes nothing. `again`: the tablet says
+ * that it had been enrolled, which a restore took back; the trail tells of it if it tells of a restore.
+ */
 export async function enrolKey(
   trx: Trx,
   actor: Actor,
   device: Device,
-  publicKey: string,
+  { publicKey, again = false }: { publicKey: string; again?: boolean | undefined },
   app: { clock: Clock; ids: Ids },
 ): Promise<AuthorKey> {
   const point = requirePoint(publicKey);
@@ -44,12 +47,12 @@ export async function enrolKey(
       },
     );
   }
-  const { seq } = await appendWorkshopEntry(
-    trx,
-    actor,
-    { kind: 'key-enrolled', data: { key: id, publicKey, person: actor.personId, tablet: device.id } },
-    app,
-  );
+  const restoredAt = again ? await findLastRestore(trx) : undefined;
+  const data = {
+    ...{ key: id, publicKey, person: actor.personId, tablet: device.id },
+    ...(restoredAt === undefined ? {} : { afterRestore: restoredAt }),
+  };
+  const { seq } = await appendWorkshopEntry(trx, actor, { kind: 'key-enrolled', data }, app);
   const key: AuthorKey = {
     id,
     person: actor.personId,

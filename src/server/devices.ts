@@ -5,7 +5,7 @@ import { isSameDigest, newSecret, sha256Hex } from './crypto';
 import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import { AppError } from './errors';
-import { appendWorkshopEntry } from './workshop-trail';
+import { appendWorkshopEntry, findLastRestore } from './workshop-trail';
 
 /** A browser that was enrolled as a tablet. */
 export interface Device {
@@ -17,14 +17,22 @@ export interface Device {
   lastHeardAt: string | null;
 }
 
-/** Enrols a browser as a tablet; the credential is given out this once and only its hash is kept. */
+/**
+ * Enrols a browser as a tablet; the credential is given out this once and only its hash is kept. A tablet that a
+ * restore took back shows the one that it was given then, and keeps it: so it does no harm if that comes twice.
+ */
 export async function enrolDevice(
   trx: Trx,
   actor: Actor,
-  { id, name }: { id: string; name: string },
+  { id, name, credential: shown }: { id: string; name: string; credential?: string | undefined },
   app: { clock: Clock; ids: Ids },
 ): Promise<{ device: Device; credential: string }> {
-  const known = await trx.selectFrom('device').select('id').where('id', '=', id).executeTakeFirst();
+  const restoredAt = shown === undefined ? undefined : await findLastRestore(trx);
+  const credential = restoredAt === undefined || shown === undefined ? newSecret() : shown;
+  const known = await trx.selectFrom('device').selectAll().where('id', '=', id).executeTakeFirst();
+  if (known?.state === 'active' && isSameDigest(known.credential_hash, sha256Hex(credential))) {
+    return { device: toDevice(known), credential };
+  }
   if (known !== undefined) {
     throw new AppError(
       'conflict',
@@ -32,7 +40,6 @@ export async function enrolDevice(
       { field: 'id' },
     );
   }
-  const credential = newSecret();
   const row: DeviceRow = {
     id,
     name,
@@ -43,7 +50,8 @@ export async function enrolDevice(
     last_heard_at: null,
   };
   await trx.insertInto('device').values(row).execute();
-  await appendWorkshopEntry(trx, actor, { kind: 'tablet-enrolled', data: { tablet: id, name } }, app);
+  const data = { tablet: id, name, ...(restoredAt === undefined ? {} : { afterRestore: restoredAt }) };
+  await appendWorkshopEntry(trx, actor, { kind: 'tablet-enrolled', data }, app);
   return { device: toDevice(row), credential };
 }
 

@@ -4,8 +4,9 @@ import type { Verdict } from '@/domain/job-state';
 import { MINUTE } from './clock';
 import { conflictWords } from './conflict-words';
 import { hadPlan, isBehind, type JobFold, SERVER_DEVICE } from './job-fold';
+import { whyWaitForKey } from './lost-keys';
 import { whyWaitForPhotographs } from './photos-missing';
-import { whyNotCovered, whyWaitForEvidence } from './signing';
+import { whyLost, whyNotCovered, whyNotWork, whyWaitForEvidence } from './signing';
 import { type Batch, foldOf, type ProvedItem, record, refuse } from './sync-batch';
 import { isRevoked, isTrueToWorkshop, proveAuthor } from './sync-author';
 import type { EntryVerdict } from './sync-body';
@@ -71,7 +72,11 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
     );
   }
   const proof = proveAuthor(batch, item, entry);
-  if (!proof.ok) return refuse(batch, item, { ...proof, device: ownDevice });
+  if (!proof.ok) {
+    const wait = proof.code === 'key-unknown' ? await whyWaitForKey(batch, fold, entry) : undefined;
+    if (wait !== undefined) return waiting(item, 'key-lost', wait);
+    return refuse(batch, item, { ...proof, device: ownDevice });
+  }
   const { signature, key } = proof;
   const proved = {
     ...{ ...item, entry, fields, signature, key },
@@ -121,6 +126,8 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
   const wait = await whyWaitForEvidence(batch, fold, entry);
   if (wait !== undefined) return waiting(item, 'evidence-missing', wait);
   const times = timesOf(batch, item);
+  const lost = entry.kind === 'work-signed' ? await whyLost(batch, fold, entry) : undefined;
+  if (lost !== undefined) return refuseIt('evidence-lost', lost);
   const own = await ownVerdict(batch, fold, item, times);
   const isOnLostView = !own.ok && isActOnLostView(batch, fold, item, own.code);
   if (!own.ok && !isOnLostView) return refuseIt(own.code, own.why);
@@ -222,7 +229,10 @@ async function ownVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: 
     );
   }
   const isOther = item.isNumberReused || item.isLate || isBehind(fold, entry.device, entry.basis);
-  return mayRecord(isOther ? await tabletView(batch, fold, entry) : fold.state, entry, workshop);
+  const view = isOther ? await tabletView(batch, fold, entry) : fold.state;
+  const verdict = mayRecord(view, entry, workshop);
+  if (entry.kind !== 'work-signed' || (!verdict.ok && verdict.code !== 'work-to-come')) return verdict;
+  return whyNotWork(batch, fold, entry, view);
 }
 
 /**

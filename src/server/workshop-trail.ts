@@ -1,6 +1,6 @@
 import { canonicalJson } from '@/domain/canonical';
 import { chainHash, contentHash } from '@/domain/trail';
-import { NO_PREVIOUS } from '@/domain/trail-chain';
+import { NO_PREVIOUS } from '@/domain/trail-hash';
 import { type Actor, requireRole, THE_WORKSHOP } from './actor';
 import { type Clock, type Ids, stamp } from './clock';
 import { sha256Hex } from './crypto';
@@ -107,6 +107,18 @@ export async function appendWorkshopEntry(
     })
     .execute();
   return { seq: recorded.seq, hash };
+}
+
+/** When the record was last restored from a backup, as far as its trails tell; undefined if it never was. */
+export async function findLastRestore(db: Db): Promise<string | undefined> {
+  const noted = await db
+    .selectFrom('workshop_entry')
+    .select('at')
+    .where('kind', '=', 'restored')
+    .orderBy('seq', 'desc')
+    .limit(1)
+    .executeTakeFirst();
+  return noted?.at;
 }
 
 /** The number of the newest workshop entry; a job entry names the one it was judged by. */

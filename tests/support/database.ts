@@ -1,10 +1,13 @@
 import { copyFileSync, mkdtempSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import path from 'node:path';
+import { sql } from 'kysely';
 import pino from 'pino';
 import { afterEach } from 'vitest';
+import { THE_WORKSHOP } from '@/server/actor';
 import type { Clock, Ids } from '@/server/clock';
 import { type App, closeApp, openApp, provideApp } from '@/server/compose';
+import { appendWorkshopEntry } from '@/server/workshop-trail';
 
 /*
  * A real data folder per test: the migrations run once a worker, and each test copies the file that they made.
@@ -67,6 +70,31 @@ export async function openTestApp(options: { publicUrl?: string } = {}): Promise
   open.push({ app, folder });
   provideApp(app);
   return { ...app, clock };
+}
+
+/** Copies the database of an app as it stands, as a backup does; the answer is to be given to `restoreTestApp`. */
+export async function backUpTestApp({ db, settings }: TestApp): Promise<string> {
+  const copy = path.join(settings.dataDir, 'backup.db');
+  rmSync(copy, { force: true });
+  await sql`vacuum into ${copy}`.execute(db);
+  return copy;
+}
+
+/** Puts the database back to such a copy and opens it anew; the workshop's trail tells of it, as of a restore. */
+export async function restoreTestApp(app: TestApp, copy: string): Promise<TestApp> {
+  const { settings, clock, ids, log } = app;
+  const file = path.join(settings.dataDir, 'witnessmark.db');
+  await closeApp(app);
+  for (const end of ['-wal', '-shm']) rmSync(`${file}${end}`, { force: true });
+  copyFileSync(copy, file);
+  const opened = await openApp(settings, { clock, ids, log });
+  for (const one of open) if (one.folder === settings.dataDir) one.app = opened;
+  provideApp(opened);
+  const data = { backupMadeAt: clock.now().toISOString(), breaks: 0 };
+  await opened.db
+    .transaction()
+    .execute((trx) => appendWorkshopEntry(trx, THE_WORKSHOP, { kind: 'restored', data }, opened));
+  return { ...opened, clock };
 }
 
 /** Makes the migrated file that the tests of this worker copy. */

@@ -7,6 +7,7 @@ import { syncWords } from '@/components/sync-words';
 import type { JobRow } from '@/offline/database';
 import { makeAvailableOffline } from '@/offline/prefetch';
 import type { Outcome } from '@/offline/server-call';
+import { signInAgainWords } from '@/offline/sync-status';
 import { setWorking } from '@/offline/tablet';
 import { useFloor, useFloorStore } from './floor-context';
 import type { FloorState, SignedInPerson } from './floor-store';
@@ -30,12 +31,14 @@ export function StartScreen() {
   const { act, isBusy, trouble } = useServerActs();
   const { offline, working, signedIn, tablet } = floor;
   const update = useUpdate();
-  const { refused } = floor.sync;
+  const { refused, signInAgain } = floor.sync;
+  const lostKeys = signInAgain.length;
+  const mustSignIn = signInAgainWords(signInAgain);
   const { reload } = floor;
   useEffect(() => {
-    // What the server refuses while this screen stands is told on its job's row.
+    // What the server refuses, or has forgotten, while this screen stands is told on its rows.
     void reload();
-  }, [reload, refused]);
+  }, [reload, refused, lostKeys]);
   const isCalm = !isBusy && !isAdding && leaving === undefined;
   useEffect(() => {
     // Nobody is in the middle of anything here.
@@ -72,6 +75,11 @@ export function StartScreen() {
         )}
         {tablet?.mustEnrolAgain && floor.sync.trouble?.code === 'lost-tablet' && (
           <Notice tone="stop" title={floor.sync.trouble.words} />
+        )}
+        {mustSignIn !== undefined && !needsSignIn && (
+          <Notice tone="unsure" title={mustSignIn}>
+            Touch “Add a person” and sign in there.
+          </Notice>
         )}
         {needsName && working !== null && (
           <TabletForm
@@ -165,11 +173,11 @@ function People({ floor, onAdd, onPick, onLeave }: PeopleProps) {
         </div>
       </div>
       <div className="flex flex-wrap gap-3 pt-4 [&_.quiet-button]:text-xl">
-        {floor.signedIn.map(({ person, name, hasKey }) => (
+        {floor.signedIn.map(({ person, name, hasKey, mustSignIn }) => (
           <QuietButton
             key={person}
             shape="wide"
-            label={hasKey ? name : `${name}, no key here yet`}
+            label={mustSignIn ? `${name}, sign in again` : hasKey ? name : `${name}, no key here yet`}
             isPressed={person === floor.working}
             onPress={() => onPick(person)}
           />

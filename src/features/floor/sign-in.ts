@@ -60,10 +60,11 @@ async function settleIn(offline: Offline, person: string): Promise<Outcome> {
   return bringWork(offline, person);
 }
 
-/** Finishes what a lost line left undone: the working person's key, where the tablet is enrolled without it. */
+/** Finishes what a lost line or a restore left undone: the working person's key, where the tablet is enrolled without it. */
 export async function finishEnrolment(offline: Offline, person: string): Promise<Outcome> {
   const signedIn = await listSignedIn(offline);
-  if (signedIn.find((who) => who.person === person)?.hasKey === true) return { ok: true };
+  const here = signedIn.find((who) => who.person === person);
+  if (here?.hasKey === true && !here.mustSignIn) return { ok: true };
   const { enrolled } = await readTablet(offline);
   return enrolled ? enrolAuthorKey(offline, person) : { ok: true };
 }

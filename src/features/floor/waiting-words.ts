@@ -4,6 +4,7 @@ const NEXT: Record<string, string> = {
     'Bring the other tablet to the network. If it is lost, a supervisor declares it lost at a desk.',
   'earlier-missing':
     'It goes in by itself after that one. If that never comes, the office can declare this tablet lost and bring in its file.',
+  'key-lost': 'It goes in by itself once its author has signed in on that tablet again.',
   'pin-locked': 'It goes in by itself when the PIN is free again.',
   'server-older': 'It goes in by itself once the server is updated. Tell the owner.',
   'job-unknown': 'It is sent again by itself. Tell the owner if it stays so.',

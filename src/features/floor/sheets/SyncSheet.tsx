@@ -8,7 +8,7 @@ import { findStep, type PlanStep } from '@/domain/plan';
 import { dayAndTime } from '@/domain/time-words';
 import type { OutboxRow, RefusedRow } from '@/offline/database';
 import type { Surroundings } from '@/offline/surroundings';
-import type { SyncStatus } from '@/offline/sync-status';
+import { signInAgainWords, type SyncStatus } from '@/offline/sync-status';
 import { capWords, isCapBegun } from '../cap-in-hand';
 import { afterRefusal } from '../refused-words';
 import { useRun, type Run } from '../run-context';
@@ -43,6 +43,7 @@ export function SyncSheet({
 }: SyncSheetProps) {
   const run = useRun();
   const [wipedUntil, setWipedUntil] = useState<number>();
+  const mustSignIn = signInAgainWords(status.signInAgain);
   if (wipedUntil !== undefined) {
     return (
       <WipeCover
@@ -66,6 +67,7 @@ export function SyncSheet({
                   ` Last sent ${dayAndTime(status.lastSyncAt, run.workshop.zone)}.`}
               </p>
               {status.trouble && <p className="font-bold">{status.trouble.words}</p>}
+              {mustSignIn !== undefined && <p className="font-bold">{mustSignIn}</p>}
             </div>
             <p className="text-soft">
               What is on this tablet is safe through a reload, an empty battery and a shift without a network.

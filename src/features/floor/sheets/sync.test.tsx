@@ -16,6 +16,7 @@ const status: SyncStatus = {
   sent: 31,
   refused: 0,
   photos: 0,
+  signInAgain: [],
   running: false,
   words: 'All sent',
 };
@@ -77,6 +78,12 @@ describe('the sheet of where the records are', () => {
       '31 made on this tablet are with the server. Last sent 2 Jun, 09:12.',
     );
     expect(sheet.getByRole('status')).toHaveTextContent('The server was not reached. Nothing is lost.');
+  });
+
+  it('says who has to sign in again after the server was restored, and that nothing is lost', () => {
+    const { sheet } = open({ journal: new Journal(smallPlan()), shown: { signInAgain: ['Ann', 'Ben'] } });
+    expect(sheet.getByRole('status')).toHaveTextContent('Ann and Ben have to sign in on this tablet again');
+    expect(sheet.getByRole('status')).toHaveTextContent('Nothing is lost');
   });
 
   it('covers the screen while it is wiped', async () => {

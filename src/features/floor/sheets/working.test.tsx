@@ -18,6 +18,7 @@ const mate = {
   roles: ['technician'],
   sessionUntil: '2027-01-01T00:00:00.000Z',
   hasKey: true,
+  mustSignIn: false,
 };
 const tech: SignedInPerson = { ...mate, person: 'tech', name: 'T. Nician' };
 

@@ -1,7 +1,7 @@
 import * as z from 'zod';
 import { deviceAnswer } from '@/server/answers';
 import { enrolDevice, listDevices } from '@/server/devices';
-import { cursor, line, uuid } from '@/server/fields';
+import { cursor, line, secret, uuid } from '@/server/fields';
 import { endpoint } from '@/server/http';
 
 export const GET = endpoint(
@@ -22,7 +22,8 @@ export const POST = endpoint(
     path: '/api/devices',
     summary: 'Enrol this browser as a tablet; its credential is answered this once',
     who: 'session',
-    body: z.strictObject({ id: uuid, name: line(60) }),
+    /** `credential`: the one that the tablet had, if a restored server has forgotten the tablet. */
+    body: z.strictObject({ id: uuid, name: line(60), credential: secret.optional() }),
     answer: z.strictObject({ id: z.string(), credential: z.string() }),
     status: 201,
   },

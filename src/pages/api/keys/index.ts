@@ -23,15 +23,14 @@ export const POST = endpoint(
     summary:
       'Enrol the key with which you sign your entries on this tablet; again with the same key does no harm',
     who: 'session and tablet',
-    body: z.strictObject({ publicKey: z.string().max(100) }),
+    /** `again`: the tablet had enrolled it before, and a restored server has forgotten it. */
+    body: z.strictObject({ publicKey: z.string().max(100), again: z.literal(true).optional() }),
     /** `workshop`: the number of the workshop entry that enrolled it. */
     answer: z.strictObject({ id: z.string(), workshop: z.int() }),
     status: 201,
   },
   async ({ app, actor, device, body }) => {
-    const key = await app.db
-      .transaction()
-      .execute((trx) => enrolKey(trx, actor, device, body.publicKey, app));
+    const key = await app.db.transaction().execute((trx) => enrolKey(trx, actor, device, body, app));
     return { id: key.id, workshop: key.workshopSeq };
   },
 );
