@@ -1,8 +1,11 @@
 import { describe, expect, it } from 'vitest';
 import { Journal } from '../../tests/support/journal';
 import { smallPlan } from '../../tests/support/small-documents';
-import type { Recorded } from './entry';
-import { myWorkWords, phaseToSign, unsignedWork } from './job-work';
+import { sha256OfBytes } from '@/offline/hashing';
+import type { Entry, EntryOf, Recorded } from './entry';
+import { evidenceDigest } from './job-evidence';
+import { myWorkWords, phaseToSign, unsignedWork, whyNotDigest } from './job-work';
+import { contentHash } from './trail-hash';
 
 const HOLD = 'build.caps-marked';
 const begin = () => new Journal(smallPlan());
@@ -51,6 +54,30 @@ describe('signing for one’s own work', () => {
     expect(ask({ upTo: { constructor: 1 } })).toMatchObject({ code: 'work-to-come' });
     journal.signWork('tech');
     expect(ask({})).toMatchObject({ code: 'nothing-to-sign' });
+  });
+
+  it('has a digest of exactly the entries that it covers, in whatever order they stand', () => {
+    const journal = begin().performUntil('strip.strap');
+    const own = unsignedWork(journal.state, 'tech');
+    const hashes = new Map(
+      own.map(({ id }) => [
+        id,
+        contentHash(
+          journal.entries.find((e) => e.id === id)!,
+          sha256OfBytes,
+        ),
+      ]),
+    );
+    const judged = (covered: string[]) => {
+      const digest = evidenceDigest(covered, sha256OfBytes);
+      const data = { covers: { ...covers(journal, 'tech'), digest } };
+      const entry = journal.draft('work-signed', data) as Entry & EntryOf<'work-signed'>;
+      return whyNotDigest(journal.state, entry, { hashes, sha256: sha256OfBytes });
+    };
+    const all = [...hashes.values()];
+    expect(judged(all.toReversed())).toEqual({ ok: true });
+    for (const other of [all.slice(1), [...all.slice(1), 'f'.repeat(64)], []])
+      expect(judged(other)).toMatchObject({ code: 'digest-differs' });
   });
 
   it('is said with the number', () => {

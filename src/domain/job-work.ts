@@ -2,7 +2,9 @@
  * Who is working on a tablet is a claim. So everybody signs for their own entries from time to time: "these 63
  * entries are my work". Which of them are signed follows from how far each such signature reaches on each tablet.
  */
+import type { Sha256 } from './canonical';
 import type { EntryKind, EntryOf } from './entry';
+import { evidenceDigest } from './job-evidence';
 import type { JobState, Kept, Verdict } from './job-state';
 import { findStep } from './plan';
 
@@ -75,6 +77,31 @@ function isBehind(state: JobState, stepId: string): boolean {
   return status === 'done' || status === 'not applicable';
 }
 
+/** What such a signature covers: its author's unsigned work up to the numbers that it names. */
+function workCovered(state: JobState, { by, data }: EntryOf<'work-signed'>): Kept[] {
+  const { upTo } = data.covers;
+  return unsignedWork(state, by).filter(
+    ({ device, deviceSeq }) => Object.hasOwn(upTo, device) && deviceSeq <= (upTo[device] ?? 0),
+  );
+}
+
+/** A signature for one's own work is for exactly the entries whose content hashes make its digest. */
+export function whyNotDigest(
+  state: JobState,
+  entry: EntryOf<'work-signed'>,
+  { hashes, sha256 }: { hashes: ReadonlyMap<string, string>; sha256: Sha256 },
+): Verdict {
+  const covered = workCovered(state, entry).flatMap(({ id }) => hashes.get(id) ?? []);
+  return evidenceDigest(covered, sha256) === entry.data.covers.digest
+    ? { ok: true }
+    : {
+        ok: false,
+        code: 'digest-differs',
+        why: 'What it was signed for is not what you recorded: the digest on it is of other entries.',
+        unlock: 'Look at your entries again and sign.',
+      };
+}
+
 /** Everybody signs for their own entries, alone, and for no more than they have recorded. */
 export function whyNotWorkSigned(state: JobState, entry: EntryOf<'work-signed'>): Verdict {
   const { upTo, count } = entry.data.covers;
@@ -92,12 +119,7 @@ export function whyNotWorkSigned(state: JobState, entry: EntryOf<'work-signed'>)
       unlock: 'Sign for what is there.',
     };
   }
-  const covered = own.filter(
-    (kept) =>
-      isUnsignedWork(state, kept) &&
-      Object.hasOwn(upTo, kept.device) &&
-      kept.deviceSeq <= (upTo[kept.device] ?? 0),
-  );
+  const covered = workCovered(state, entry);
   if (covered.length === 0)
     return { ok: false, code: 'nothing-to-sign', why: 'There is no work that you have not signed already.' };
   return covered.length === count

@@ -1,8 +1,11 @@
 import type { Entry, EntryOf } from '@/domain/entry';
 import { evidenceFor } from '@/domain/job';
 import { evidenceDigest } from '@/domain/job-evidence';
+import type { JobState, Verdict } from '@/domain/job-state';
+import { whyNotDigest, whyNotWorkSigned } from '@/domain/job-work';
 import { stamp } from './clock';
 import type { App } from './compose';
+import type { Trx } from './database';
 import { sha256Hex } from './crypto';
 import { AppError } from './errors';
 import { type JobFold, UNHEARD } from './job-fold';
@@ -17,38 +20,52 @@ import type { Batch, PinResult, ProvedItem } from './sync-batch';
  * could not stand anyway.
  */
 
+/** What says up to which numbers it covers the records of each tablet. */
+type Covering = EntryOf<'signed'> | EntryOf<'work-signed'>;
+
 /** Why a signature has to wait: something that it covers has not come in yet and may still come. */
 export async function whyWaitForEvidence(
   batch: Batch,
   fold: JobFold,
   entry: Entry,
 ): Promise<string | undefined> {
-  if (entry.kind !== 'signed') return undefined;
+  if (entry.kind !== 'signed' && entry.kind !== 'work-signed') return undefined;
   const missing = notHeard(fold, entry);
-  const lost = await findLost(
+  const states = await readStates(
     batch.trx,
     missing.map(([device]) => device),
   );
-  const awaited = missing.find(([device]) => !lost.has(device));
+  // A tablet's own earlier numbers are there before this is judged, and one that nobody knows sends nothing.
+  const mayCome = (device: string): boolean =>
+    entry.kind === 'signed'
+      ? states.get(device) !== 'lost'
+      : device !== entry.device && states.get(device) === 'active';
+  const awaited = missing.find(([device]) => mayCome(device));
   if (awaited === undefined) return undefined;
   return `The signature covers records of a tablet up to number ${awaited[1]} that have not come in yet. It waits for them.`;
 }
 
+async function readStates(trx: Trx, devices: readonly string[]): Promise<ReadonlyMap<string, string>> {
+  if (devices.length === 0) return new Map();
+  const rows = await trx.selectFrom('device').select(['id', 'state']).where('id', 'in', devices).execute();
+  return new Map(rows.map(({ id, state }) => [id, state]));
+}
+
 /** The tablets whose records a signature reaches further than they were heard, with the number that it reaches. */
-function notHeard(fold: JobFold, { data }: EntryOf<'signed'>): [device: string, number: number][] {
+function notHeard(fold: JobFold, { data }: Covering): [device: string, number: number][] {
   return Object.entries(data.covers.upTo).filter(
     ([device, number]) => (fold.heard.get(device) ?? UNHEARD).number < number,
   );
 }
 
 /** Why a signature can't stand whose evidence was on a tablet that is lost. */
-async function whyLost(batch: Batch, fold: JobFold, entry: EntryOf<'signed'>): Promise<string | undefined> {
+export async function whyLost(batch: Batch, fold: JobFold, entry: Covering): Promise<string | undefined> {
   const missing = notHeard(fold, entry);
   const lost = await findLost(
     batch.trx,
     missing.map(([device]) => device),
   );
-  const [first] = missing;
+  const first = missing.find(([device]) => entry.kind === 'signed' || lost.has(device));
   if (first === undefined) return undefined;
   const [device, number] = first;
   const name = lost.get(device) ?? 'a tablet';
@@ -77,6 +94,24 @@ export async function whyNotCovered(
   if (covered.length === covers.count && evidenceDigest(covered, sha256Hex) === covers.digest)
     return undefined;
   return 'The evidence changed since you saw it: something that you saw was refused or is not the same. Look at it again and sign again.';
+}
+
+/**
+ * A signature for one's own work is judged on what its author saw. If that was on another tablet whose records came
+ * since, it is judged on what there is now: only who knew them has their digest.
+ */
+export async function whyNotWork(
+  batch: Batch,
+  fold: JobFold,
+  entry: EntryOf<'work-signed'>,
+  view: JobState,
+): Promise<Verdict> {
+  const seen = whyNotWorkSigned(view, entry);
+  const isOfOthers = !seen.ok && seen.code === 'work-to-come';
+  const verdict = isOfOthers ? whyNotWorkSigned(fold.state, entry) : seen;
+  if (!verdict.ok) return verdict;
+  const hashes = await contentHashes(batch, fold.job);
+  return whyNotDigest(isOfOthers ? fold.state : view, entry, { hashes, sha256: sha256Hex });
 }
 
 async function contentHashes(batch: Batch, job: string): Promise<ReadonlyMap<string, string>> {
