@@ -455,6 +455,7 @@ describe('revoking', () => {
     journal.record('revoked', { of, reason: 'the wrong vehicle' }, { by: 'sup' });
     expect(journal.state.signatures[0]).toMatchObject({ reopened: 'revoked: the wrong vehicle' });
     expect(journal.state.signatures[0]?.donePast).toContain('build.rags-in');
+    expect(journal.status(HOLD)).toBe('open');
     expect(journal.ask('revoked', { of, reason: 'again' }, { by: 'sup' })).toMatchObject({
       code: 'already-open',
     });

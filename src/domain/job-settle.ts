@@ -5,7 +5,7 @@
 import type { EntryData } from './entry';
 import { settleClearance } from './job-clearance';
 import { isBlocked, raiseDeviation } from './job-deviation';
-import { isPassed } from './job-evidence';
+import { findSignature, isPassed } from './job-evidence';
 import { activeEntries, asGround, lastOf } from './job-kept';
 import { judgeLimit } from './job-limit';
 import type { JobState, Kept, StepState, StepStatus } from './job-state';
@@ -110,9 +110,12 @@ function statusOf(state: JobState, step: PlanStep): StepStatus {
   if (isClosedByNotApplicable(state, step)) return 'not applicable';
   if (isStepDone(state, step)) return 'done';
   if (wayOut?.kind === 'waiting-for-part') return 'waiting for a part';
-  return active.some((kept) => kept.kind !== 'part-arrived' && kept.kind !== 'photographed')
-    ? 'begun'
-    : 'open';
+  // A signature that no longer stands leaves its hold point as it was before.
+  const isBegun =
+    step.kind === 'hold'
+      ? findSignature(state, step.id) !== undefined
+      : active.some((kept) => kept.kind !== 'part-arrived' && kept.kind !== 'photographed');
+  return isBegun ? 'begun' : 'open';
 }
 
 function isStepDone(state: JobState, step: PlanStep): boolean {

@@ -43,6 +43,8 @@ export class Browser {
   readonly offline: Offline;
   session: Hand | undefined;
   isAway = false;
+  /** Requests that don't arrive although the others do. */
+  isCut: (path: string, body: string) => boolean = () => false;
   lostReplies = 0;
   now: number;
 
@@ -63,7 +65,8 @@ export class Browser {
   }
 
   private async fetch(path: string, init: RequestInit = {}): Promise<Response> {
-    if (this.isAway) throw new TypeError('Failed to fetch');
+    const isCut = this.isCut(path, typeof init.body === 'string' ? init.body : '');
+    if (this.isAway || isCut) throw new TypeError('Failed to fetch');
     for (const [pattern, handlers] of ROUTES) {
       const match = pattern.exec(path);
       const handler = handlers[init.method ?? 'GET'];

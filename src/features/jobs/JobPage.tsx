@@ -9,6 +9,7 @@ import { JobClearances } from './JobClearances';
 import { JobErasure } from './JobErasure';
 import { JobCorrections } from './JobCorrections';
 import { JobFacts, JobHeadFacts } from './JobFacts';
+import { JobKept } from './JobKept';
 import { JobNext } from './JobNext';
 import { JobPeople } from './JobPeople';
 import { JobPhotos } from './JobPhotos';
@@ -90,6 +91,7 @@ function Job({
           )}
         </div>
       </div>
+      <JobKept job={answer.id} />
       <JobHeadFacts job={answer} zone={zone} />
       <div className="mt-4">
         <JobStanding state={jobState} zone={zone} />

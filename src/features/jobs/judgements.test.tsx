@@ -2,15 +2,16 @@ import { QueryClient, QueryClientProvider } from '@tanstack/react-query';
 import { render, screen, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { beforeEach, describe, expect, it, vi } from 'vitest';
-import type { Outcome } from '@/offline/server-call';
+import type { DeskOutcome } from '@/offline/desk-record';
 import { Journal } from '../../../tests/support/journal';
 import { smallPlan } from '../../../tests/support/small-documents';
 import { JobCorrections } from './JobCorrections';
 import { JobSignatures } from './JobSignatures';
 import type { Judge } from './JudgementDialog';
 
-const recordAtDesk = vi.hoisted(() => vi.fn<(...asked: unknown[]) => Promise<Outcome>>());
-vi.mock('@/offline/desk-record', () => ({ recordAtDesk }));
+const recordAtDesk = vi.hoisted(() => vi.fn<(...asked: unknown[]) => Promise<DeskOutcome>>());
+const sendKept = vi.hoisted(() => vi.fn<(...asked: unknown[]) => Promise<DeskOutcome>>());
+vi.mock('@/offline/desk-record', () => ({ recordAtDesk, sendKept }));
 vi.mock('@/offline/offline', () => ({ offlineOfThisPage: () => 'this browser' }));
 
 beforeEach(() => {
@@ -80,6 +81,26 @@ describe('a clerical correction under a signature', () => {
     await user.click(dialog().getByRole('button', { name: 'Countersign' }));
     expect(dialog().getByText(/The PIN was wrong/)).toBeVisible();
     expect(dialog().getByLabelText('Your PIN')).toHaveValue('');
+  });
+});
+
+describe('a judgement that the server was not reached with', () => {
+  it('is kept, says so, and is sent again without being signed again', async () => {
+    const kept = { ok: false, code: 'kept', why: 'The server was not reached.', kept: ['entry-1'] } as const;
+    recordAtDesk.mockResolvedValue({ ...kept, kept: [...kept.kept] });
+    sendKept.mockResolvedValueOnce({ ...kept, kept: [...kept.kept] }).mockResolvedValueOnce({ ok: true });
+    const user = show(clerical());
+    await user.click(screen.getByRole('button', { name: 'Countersign' }));
+    await user.type(dialog().getByLabelText('Your PIN'), '604392');
+    await user.click(dialog().getByRole('button', { name: 'Countersign' }));
+    expect(dialog().getByRole('alert')).toHaveTextContent('Signed, and kept in this browser');
+    expect(dialog().queryByLabelText('Your PIN')).toBeNull();
+    await user.click(dialog().getByRole('button', { name: 'Send it now' }));
+    expect(dialog().getByRole('alert')).toHaveTextContent('The server was not reached.');
+    await user.click(dialog().getByRole('button', { name: 'Send it now' }));
+    expect(screen.queryByRole('dialog')).toBeNull();
+    expect(sendKept).toHaveBeenCalledWith('this browser', 'job-1', ['entry-1']);
+    expect(recordAtDesk).toHaveBeenCalledOnce();
   });
 });
 
