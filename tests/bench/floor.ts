@@ -15,8 +15,8 @@ const ENTRIES = 500;
 /** How much slower than this machine the tablet is taken to be. */
 const SLOWDOWN = 4;
 const PATIENCE_MS = 30_000;
-/** A tool that may be taken for the pass; the main action is barred until one is. */
-const TOOL_ROW = '.choice:not([data-barred])';
+/** What to touch next: the action, or a tool that may be taken for the pass, until when the action is barred. */
+const ON_TOP = `${TOUCHABLE}, .choice:not([data-barred])`;
 
 /** A job on the tablet with the step that is next on it. */
 interface Prepared {
@@ -108,7 +108,7 @@ async function prepareTablet(context: BrowserContext, workshop: BenchWorkshop): 
 async function takeUp(page: Page): Promise<void> {
   await holdDown(page, page.getByRole('button', { name: 'Go on here' }));
   const work = page.getByRole('button', { name: /my work/ });
-  await work.or(page.locator(TOUCHABLE)).first().waitFor();
+  await work.or(page.locator(ON_TOP)).first().waitFor();
   if (await work.isVisible()) await holdDown(page, work);
 }
 
@@ -158,7 +158,7 @@ async function tightenCap(
   await takeUp(page);
   let before = '';
   for (;;) {
-    const screen = await page.waitForFunction(readScreen, { touchable: `${TOUCHABLE}, ${TOOL_ROW}`, before });
+    const screen = await page.waitForFunction(readScreen, { touchable: ON_TOP, before });
     const { key, x, y, touches } = (await screen.jsonValue()) as Screen;
     if (touches.filter(({ kind }) => kind === 'marked').length >= BOLTS) {
       const writes = await page.evaluate(timeBareWrites, touches.length);
@@ -171,7 +171,7 @@ async function tightenCap(
   }
 }
 
-/** Runs in the page: the action on top, once the screen differs from before and nothing is busy. */
+/** Runs in the page: the action on top, once the screen differs from before, nothing is busy and it lies still. */
 function readScreen({ touchable, before }: { touchable: string; before: string }): Screen | false {
   const { benchTouches: touches } = globalThis as unknown as { benchTouches: Touch[] };
   const sheet = document.querySelector('dialog[open]');
@@ -182,7 +182,11 @@ function readScreen({ touchable, before }: { touchable: string; before: string }
   // What comes after the last touch of a cap may ask for a reading first: then nothing is to be touched.
   if (action === null) return touches.length > 0 ? { key, x: 0, y: 0, touches } : false;
   const { x, y, width, height } = action.getBoundingClientRect();
-  return { key, x: x + width / 2, y: y + height / 2, touches };
+  const at = { x: x + width / 2, y: y + height / 2 };
+  const seen = globalThis as unknown as { benchLastAt?: typeof at };
+  const liesStill = seen.benchLastAt?.x === at.x && seen.benchLastAt.y === at.y;
+  seen.benchLastAt = at;
+  return liesStill && { key, ...at, touches };
 }
 
 interface Screen {

@@ -89,6 +89,7 @@ function TightenAction({ step, touch }: { step: TightenStepPlan; touch: TightenT
           <MainAction
             label={hand === 'angle' ? 'Choose the angle gauge' : 'Choose the torque wrench'}
             why="touch the one in your hand"
+            isBusy={run.isBusy}
             onPress={() => undefined}
           />
         ) : (
