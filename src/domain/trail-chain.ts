@@ -1,10 +1,7 @@
 import { bytesOf, canonicalWithout, hashJson, type Sha256 } from '@/domain/canonical';
 import { officeKinds } from '@/domain/entry';
 import { requireWhole, type TrailBody } from '@/domain/trail-export';
-import { SERVER_FIELDS } from '@/domain/trail-hash';
-
-/** The `prev` of a trail's first entry, whose `seq` is 1. */
-export const NO_PREVIOUS = '0'.repeat(64);
+import { NO_PREVIOUS, SERVER_FIELDS } from '@/domain/trail-hash';
 
 const ADDED: ReadonlySet<string> = new Set(SERVER_FIELDS);
 

@@ -8,6 +8,9 @@ import { bytesOf, canonicalJson, hashJson, type Sha256 } from './canonical';
 /** HMAC-SHA-256 of a message under a key as lower-case hex. */
 export type HmacSha256 = (key: Uint8Array, message: Uint8Array) => string;
 
+/** The `prev` of a trail's first entry, whose `seq` is 1. */
+export const NO_PREVIOUS = '0'.repeat(64);
+
 /** What the server adds to an entry when it records it. */
 export const SERVER_FIELDS = ['seq', 'recordedAt', 'prev', 'clockOffsetMs', 'pin', 'conflict'] as const;
 

@@ -4,7 +4,7 @@
  */
 import * as z from 'zod/mini';
 import type { Plan } from '@/domain/plan';
-import { NO_PREVIOUS } from '@/domain/trail-chain';
+import { NO_PREVIOUS } from '@/domain/trail-hash';
 import { changeJob, ofJob, type JobRow, type WorkshopRow } from './database';
 import { documentHash } from './hashing';
 import { plansNeeded } from './job-store';

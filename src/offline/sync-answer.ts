@@ -4,7 +4,7 @@
  */
 import * as z from 'zod/mini';
 import { parseEntry, type Recorded } from '@/domain/entry';
-import { NO_PREVIOUS } from '@/domain/trail-chain';
+import { NO_PREVIOUS } from '@/domain/trail-hash';
 import type { EntryRow, JobRow, TrailPoint } from './database';
 import { chainHashOf, contentHashOf, entryOf } from './hashing';
 

@@ -3,7 +3,7 @@
  * takes its place among the confirmed entries, and only if it is the same record to the letter.
  */
 import { officeKinds, type EntryKind } from '@/domain/entry';
-import { NO_PREVIOUS } from '@/domain/trail-chain';
+import { NO_PREVIOUS } from '@/domain/trail-hash';
 import { changeJob, ofJob, type EntryRow, type FloorDatabase, type JobRow, type OutboxRow } from './database';
 import { findDevice } from './device';
 import { forgetErased, forgetGone } from './forget';

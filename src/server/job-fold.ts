@@ -5,7 +5,7 @@ import type { Plan } from '@/domain/plan';
 import type { Db, Trx } from './database';
 import { notFound } from './errors';
 import { getPlan } from './plans';
-import { NO_PREVIOUS } from '@/domain/trail-chain';
+import { NO_PREVIOUS } from '@/domain/trail-hash';
 
 /*
  * The folded state of each job by the hash of its head. It is a memory, never the record: whatever is held here

@@ -1,7 +1,7 @@
 import { headMessage } from '@/domain/trail';
-import { isMadeByServer, NO_PREVIOUS } from '@/domain/trail-chain';
+import { isMadeByServer } from '@/domain/trail-chain';
 import type { SignedHead } from '@/domain/trail-export';
-import { contentHash, contentOf } from '@/domain/trail-hash';
+import { contentHash, contentOf, NO_PREVIOUS } from '@/domain/trail-hash';
 import type { Recorded } from '@/domain/entry';
 import { THE_WORKSHOP } from './actor';
 import { proveSignature } from './author-signature';

@@ -20,9 +20,9 @@ import {
   identityCommitment,
   keyMessage,
 } from '@/domain/trail';
-import { NO_PREVIOUS } from '@/domain/trail-chain';
 import type { TrailChecks } from '@/domain/trail-checks';
 import type { TrailBody } from '@/domain/trail-export';
+import { NO_PREVIOUS } from '@/domain/trail-hash';
 
 /*
  * Whole exported trails for tests, made with keys of their own. `rechain` and `seal` let a test play somebody

@@ -3,7 +3,7 @@ import { isDeepStrictEqual } from 'node:util';
 import { judgementKinds, type Entry } from '@/domain/entry';
 import { replay } from '@/domain/job';
 import type { JobState } from '@/domain/job-state';
-import { NO_PREVIOUS } from '@/domain/trail-chain';
+import { NO_PREVIOUS } from '@/domain/trail-hash';
 import type { FloorDatabase } from '@/offline/database';
 import { getFold, listRecorded } from '@/server/job-fold';
 import { checkRecord } from '@/server/record-check';
