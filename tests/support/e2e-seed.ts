@@ -29,6 +29,8 @@ export interface SeedOptions {
   technician?: DemoSignIn;
   /** People put on the job; the technician unless given. */
   people?: DemoSignIn[];
+  /** What the technician does after that, before all of it is sent. */
+  then?: (tablet: ScriptedTablet, job: string, technician: ScriptedPerson) => Promise<void>;
 }
 
 type Signed = ScriptedPerson & { api: APIRequestContext };
@@ -38,7 +40,7 @@ const OPTIONS = { steering: 'electric', 'front-axle': 'not-driven', plate: 'none
 
 /** Opens a job for the six and does everything before a step, under the demo's names. */
 export async function seedJob(app: RunningApp, options: SeedOptions = {}): Promise<SeededJob> {
-  const { technician = demoPerson('ines'), people = [technician], until } = options;
+  const { technician = demoPerson('ines'), people = [technician], until, then } = options;
   const supervisor = await signInToApi(app, demoPerson('supervisor'));
   const worker = await signInToApi(app, technician);
   const tablet = await enrol(supervisor, worker);
@@ -48,6 +50,7 @@ export async function seedJob(app: RunningApp, options: SeedOptions = {}): Promi
     const photographs = await takePhotographs(job.plan);
     const kit = kitOf(tablet, photographs);
     await tablet.perform(job.id, { technician: worker, supervisor }, kit, { step });
+    await then?.(tablet, job.id, worker);
     await sendAsOfNow(tablet);
     await keepPhotographs(worker.api, photographs);
   }
