@@ -29,6 +29,8 @@ export default defineConfig({
   },
   vite: {
     plugins: [tailwindcss()],
+    // The package's own entry is written for older browsers, and larger.
+    resolve: { alias: { dexie: 'dexie/dist/modern/dexie.mjs' } },
     // A data: address would need a wider content policy than 'self'.
     build: { assetsInlineLimit: 0 },
   },

@@ -5,6 +5,8 @@ import { defineConfig } from 'vitest/config';
 const alias = {
   '@': fileURLToPath(new URL('./src', import.meta.url)),
   '@db': fileURLToPath(new URL('./db', import.meta.url)),
+  // As it is built.
+  dexie: 'dexie/dist/modern/dexie.mjs',
 };
 
 /** One project an environment: browser-shaped tests name themselves `*.test.tsx` or lie in `offline`. */
