@@ -336,9 +336,15 @@ def _is_salt(value):
 
 
 def _is_time(value):
-    """RFC 3339 in UTC with up to three decimals; whether there was such a day is not asked."""
-    form_of_time = r"[0-9]{4}-[0-9]{2}-[0-9]{2}T[0-9]{2}:[0-9]{2}:[0-9]{2}(?:\.[0-9]{1,3})?Z"
-    return isinstance(value, str) and re.fullmatch(form_of_time, value) is not None
+    """RFC 3339 in UTC with up to three decimals, on a day that there was."""
+    form_of_time = r"([0-9]{4})-([0-9]{2})-([0-9]{2})T([0-9]{2}):([0-9]{2}):([0-9]{2})(?:\.[0-9]{1,3})?Z"
+    found = re.fullmatch(form_of_time, value) if isinstance(value, str) else None
+    if found is None:
+        return False
+    year, month, day, hour, minute, second = (int(part) for part in found.groups())
+    is_leap = year % 4 == 0 and (year % 100 != 0 or year % 400 == 0)
+    days = (31, 29 if is_leap else 28, 31, 30, 31, 30, 31, 31, 30, 31, 30, 31)
+    return 1 <= month <= 12 and 1 <= day <= days[month - 1] and hour < 24 and minute < 60 and second < 60
 
 
 def _or_null(check):

@@ -5,6 +5,7 @@
  * zod/mini, because the Floor carries this module.
  */
 import * as z from 'zod/mini';
+import { instant } from '@/domain/instant';
 
 const text = (max: number) => z.string().check(z.minLength(1), z.maxLength(max));
 const uuid = z
@@ -12,7 +13,6 @@ const uuid = z
   .check(z.regex(/^[0-9a-f]{8}-[0-9a-f]{4}-[1-8][0-9a-f]{3}-[89ab][0-9a-f]{3}-[0-9a-f]{12}$/));
 const sha256Hex = z.string().check(z.regex(/^[0-9a-f]{64}$/));
 const decimal = z.string().check(z.regex(/^-?\d{1,9}(\.\d{1,6})?$/));
-const instant = z.string().check(z.regex(/^\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d(\.\d{1,3})?Z$/));
 const whole = z.int().check(z.minimum(0));
 const note = text(2000);
 const lot = text(60);

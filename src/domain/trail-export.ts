@@ -6,11 +6,11 @@ import * as z from 'zod/mini';
 import { fromBase64url } from '@/domain/base64url';
 import { canonicalJson } from '@/domain/canonical';
 import { envelopeSchema } from '@/domain/entry';
+import { instant } from '@/domain/instant';
 
 export const TRAIL_FORMAT = 'witnessmark-trail';
 
 const sha256Hex = z.string().check(z.regex(/^[0-9a-f]{64}$/));
-const instant = z.string().check(z.regex(/^\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d(\.\d{1,3})?Z$/));
 const place = z.int().check(z.minimum(1));
 const json = z.record(z.string(), z.unknown());
 

@@ -103,6 +103,14 @@ describe('in a push', () => {
     await expectWhole(texts.length);
   });
 
+  it('a time that never was is refused', async () => {
+    const times = ['2031-02-30T09:00:00.000Z', '2031-05-07T25:00:00.000Z', '2031-13-01T09:00:00Z'];
+    const verdicts = await push(await Promise.all(times.map((at) => signed({ at }))));
+    expect(verdicts).toHaveLength(times.length);
+    for (const verdict of verdicts) expect(verdict).toMatchObject({ verdict: 'refused', code: 'malformed' });
+    await expectWhole(times.length);
+  });
+
   it('text, numbers and keys that may not be hashed are refused, each with its place', async () => {
     const { data } = good.entry;
     const bad: [object, RegExp][] = [

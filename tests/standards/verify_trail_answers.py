@@ -158,6 +158,30 @@ class Base64Url(unittest.TestCase):
             self.assertIsNone(verify_trail.bytes_of(bad), bad)
 
 
+class Times(unittest.TestCase):
+    # Leap years of the calendar, and the form of RFC 3339, section 5.6.
+    def test_are_only_those_that_there_were(self):
+        for good in ("2028-02-29T23:59:59Z", "2000-02-29T00:00:00.1Z", "0000-02-29T00:00:00.123Z"):
+            self.assertTrue(verify_trail._is_time(good), good)
+        for bad in (
+            "2026-02-29T00:00:00Z",
+            "2100-02-29T00:00:00Z",
+            "2026-02-30T00:00:00Z",
+            "2026-04-31T00:00:00Z",
+            "2026-13-01T00:00:00Z",
+            "2026-00-01T00:00:00Z",
+            "2026-01-00T00:00:00Z",
+            "2026-01-01T24:00:00Z",
+            "2026-01-01T00:60:00Z",
+            "2026-12-31T23:59:60Z",
+            "2026-01-01T00:00:00.1234Z",
+            "2026-01-01T00:00:00+00:00",
+            "2026-01-01T00:00:00Z\n",
+            "２０２６-01-01T00:00:00Z",
+        ):
+            self.assertFalse(verify_trail._is_time(bad), bad)
+
+
 class HostileFiles(unittest.TestCase):
     MARK = b'{"body":{"format":"witnessmark-trail"%s},"publicKey":"","signature":""}'
 
