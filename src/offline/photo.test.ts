@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { sha256OfBytes } from './hashing';
-import { askToPersist, boundedSize, preparePhoto, roomForPhotos, type Darkroom } from './photo';
+import { boundedSize, preparePhoto, roomForPhotos, type Darkroom } from './photo';
 
 /** Pixels are for a real browser; here only what is asked of it counts. */
 function darkroom(width: number, height: number, asked: string[] = []): Darkroom {
@@ -51,11 +51,5 @@ describe('room', () => {
 
   it('is not called low where the browser does not tell', async () => {
     expect(await roomForPhotos({ estimate: async () => ({}) })).toEqual({ low: false });
-  });
-
-  it('is asked to persist only where it does not yet', async () => {
-    const persist = () => Promise.reject(new Error('not needed'));
-    expect(await askToPersist({ persisted: async () => true, persist })).toBe(true);
-    expect(await askToPersist({ persisted: async () => false, persist: async () => false })).toBe(false);
   });
 });

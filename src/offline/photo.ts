@@ -3,7 +3,7 @@
  * camera wrote into the file. From then on its bytes are what the hash and the signature stand for.
  */
 import { sha256OfBytes } from './hashing';
-import type { Surroundings } from './surroundings';
+import { browserStorage } from './persistence';
 
 const LONGEST_SIDE = 2048;
 const JPEG_QUALITY = 0.85;
@@ -83,17 +83,6 @@ const browserDarkroom: Darkroom = {
   },
 };
 
-/** An address under which a picture that is on this tablet can be shown; revoke it after use. */
-export async function photoUrl({ db }: Surroundings, hash: string): Promise<string | undefined> {
-  const [photo, kept] = await Promise.all([db.photos.get(hash), db.photoBytes.get(hash)]);
-  return photo && kept && URL.createObjectURL(new Blob([kept.bytes], { type: photo.type }));
-}
-
-/** Absent where the page did not come over HTTPS. */
-function browserStorage(): StorageManager | undefined {
-  return 'storage' in navigator ? navigator.storage : undefined;
-}
-
 /** Is there room for photographs beside the records? In words when not; `low` is false where nobody can tell. */
 export async function roomForPhotos(
   storage: Pick<StorageManager, 'estimate'> | undefined = browserStorage(),
@@ -105,12 +94,4 @@ export async function roomForPhotos(
     words:
       'This tablet is nearly full. What room there is left is kept for records: connect to the network so that photographs can be sent, or free some space.',
   };
-}
-
-/** Asks the browser not to clear the records when it is short of space; tells whether it agreed. */
-export async function askToPersist(
-  storage: Pick<StorageManager, 'persist' | 'persisted'> | undefined = browserStorage(),
-): Promise<boolean> {
-  if (!storage) return false;
-  return (await storage.persisted()) || (await storage.persist());
 }

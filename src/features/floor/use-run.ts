@@ -2,7 +2,7 @@ import { useMemo } from 'react';
 import { syncWords } from '@/components/sync-words';
 import { coverageOf, coverWork } from '@/offline/evidence';
 import type { JobView } from '@/offline/job-store';
-import { photoUrl } from '@/offline/photo';
+import { photoUrl } from '@/offline/kept-photo';
 import { canSignWithPin } from '@/offline/tablet';
 import type { Whereabouts, WorkshopRow } from '@/offline/database';
 import type { PlanStep } from '@/domain/plan';
