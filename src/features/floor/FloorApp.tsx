@@ -1,11 +1,12 @@
 import { lazy, Suspense, useEffect, useState, useSyncExternalStore } from 'react';
 import { openOffline, type Offline } from '@/offline/offline';
-import { askToPersist } from '@/offline/photo';
+import { askToPersist } from '@/offline/persistence';
 import { registerWorker } from '@/offline/registration';
 import { makeAvailableOffline } from '@/offline/prefetch';
 import { refreshSignedIn } from '@/offline/tablet';
 import { FloorContext, useFloor, useFloorStore } from './floor-context';
 import { createFloorStore, type FloorStore } from './floor-store';
+import { Opening } from './Opening';
 import { RunScreen } from './RunScreen';
 import { bringWork } from './sign-in';
 import { keepRegistration } from './use-update';
@@ -14,6 +15,8 @@ import { keepRegistration } from './use-update';
 const StartScreen = lazy(() => import('./StartScreen').then((m) => ({ default: m.StartScreen })));
 
 const WORKER = '/sw.js';
+/** The service worker fetches everything anew where there is a new version: the first action goes before. */
+const WORKER_AFTER_MS = 2000;
 
 /** The Floor: one page that reads everything from this tablet, so that it opens with no network. */
 export function FloorApp() {
@@ -31,6 +34,9 @@ function Floor() {
   const store = useFloorStore();
   const isReady = useFloor((floor) => floor.isReady);
   const jobId = useFloor((floor) => floor.jobId);
+  const isHere = useFloor(({ jobs }) =>
+    jobs.some(({ id, availableOffline }) => id === job && availableOffline),
+  );
   useEffect(() => {
     if (!isReady) return;
     const { openJob, leaveJob, offline } = store.getState();
@@ -38,6 +44,8 @@ function Floor() {
     else void bringAndOpen(offline, job, openJob);
   }, [store, job, isReady]);
   if (job !== null && jobId === job) return <RunScreen />;
+  // What is on the tablet opens in a moment; the jobs stand there only while one is brought over the network.
+  if (job !== null && (isHere || !isReady)) return <Opening />;
   return (
     <Suspense fallback={null}>
       <StartScreen />
@@ -62,12 +70,15 @@ function startFloor(store: FloorStore): () => void {
   const stopSync = offline.sync.subscribe((sync) => store.setState({ sync }));
   offline.sync.start();
   void reload().then(() => catchUp(store));
-  registerWorker(WORKER).then(keepRegistration, () => {
-    // Without a service worker (no HTTPS, a private window) the Floor works as long as the page stays open.
-    keepRegistration(undefined);
+  const cancelWorker = offline.after(WORKER_AFTER_MS, () => {
+    registerWorker(WORKER).then(keepRegistration, () => {
+      // Without a service worker (no HTTPS, a private window) the Floor works as long as the page stays open.
+      keepRegistration(undefined);
+    });
   });
   void askToPersist();
   return () => {
+    cancelWorker();
     stopSync();
     offline.sync.stop();
   };

@@ -4,15 +4,18 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { FloorFrame } from '@/components/FloorFrame';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
+import type { JobState } from '@/domain/job-state';
 import { phaseToSign } from '@/domain/job-work';
+import type { PlanStep } from '@/domain/plan';
 import type { JobView } from '@/offline/job-store';
 import type { WorkshopRow } from '@/offline/database';
 import { capInHand } from './cap-in-hand';
-import { currentStep } from './current-step';
+import { comingAfter, currentStep } from './current-step';
 import { useFloor, useFloorStore } from './floor-context';
+import { Opening } from './Opening';
 import { RunContext, type SheetName, type Worker } from './run-context';
 import { mustTakeOver } from './shift';
-import { fetchLaterScreens, StepScreen } from './steps/StepScreen';
+import { fetchLaterScreens, fetchScreenOf, StepScreen } from './steps/StepScreen';
 import { useIsOnline } from './use-is-online';
 import { useJobTablets } from './use-job-tablets';
 import { useMainKeys } from './use-main-keys';
@@ -27,6 +30,7 @@ const WorkToSignScreen = lazy(() =>
   import('./WorkToSignScreen').then((m) => ({ default: m.WorkToSignScreen })),
 );
 
+const COMING_MS = 500;
 const LATER_MS = 4000;
 
 /** One job on the tablet, a step at a time. */
@@ -62,6 +66,7 @@ function Running({ view, workshop, person }: { view: JobView; workshop: Workshop
   useWatchfulness();
   useWakeLock();
   useMainKeys(sheet === undefined);
+  useComingScreen(view.state, step);
   useLaterScreens();
   return (
     <RunContext value={run}>
@@ -89,6 +94,18 @@ function Running({ view, workshop, person }: { view: JobView; workshop: Workshop
   );
 }
 
+/** The screen of the step after this one is fetched while this one is worked on. */
+function useComingScreen(state: JobState, step: PlanStep | undefined) {
+  useEffect(() => {
+    if (!step) return;
+    const timer = setTimeout(() => {
+      const coming = comingAfter(state, step);
+      if (coming) fetchScreenOf(coming.kind);
+    }, COMING_MS);
+    return () => clearTimeout(timer);
+  }, [state, step]);
+}
+
 /** The screens that come later are fetched once the first action has long been on the screen. */
 function useLaterScreens() {
   useEffect(() => {
@@ -98,18 +115,10 @@ function useLaterScreens() {
       import('./sheets/RunSheets').catch(() => undefined);
       import('./WorkToSignScreen').catch(() => undefined);
       import('./NothingToDo').catch(() => undefined);
+      import('./StartScreen').catch(() => undefined);
     }, LATER_MS);
     return () => clearTimeout(timer);
   }, []);
-}
-
-function Opening() {
-  const cell = { label: 'Opening…' };
-  return (
-    <FloorFrame job={cell} phase={{ label: '' }} sync={{ label: '' }} person={{ label: '' }}>
-      <p className="floor-then">The job is read from this tablet.</p>
-    </FloorFrame>
-  );
 }
 
 function CannotOpen({ why }: { why: string }) {

@@ -5,10 +5,7 @@ import { StepFrame } from '../StepFrame';
 import { useRun } from '../run-context';
 import { DoStep } from './DoStep';
 import { PlaceStep } from './PlaceStep';
-import { RefitStep } from './RefitStep';
-import { RemoveStep } from './RemoveStep';
 import { TightenStep } from './TightenStep';
-import { TurnStep } from './TurnStep';
 
 /*
  * Screens that the first action seldom needs come when they are asked for, or once nothing more urgent is to be
@@ -17,46 +14,61 @@ import { TurnStep } from './TurnStep';
 const loaders = {
   barred: () => import('./BarredStep'),
   done: () => import('./DoneStep'),
+  refit: () => import('./RefitStep'),
+  remove: () => import('./RemoveStep'),
+  turn: () => import('./TurnStep'),
   count: () => import('./CountStep'),
   fill: () => import('./FillStep'),
   fit: () => import('./FitStep'),
   inspect: () => import('./InspectStep'),
   photograph: () => import('./PhotographStep'),
   read: () => import('./ReadStep'),
-  chooseShells: () => import('./ChooseShellsStep'),
+  'choose-shells': () => import('./ChooseShellsStep'),
   gauge: () => import('./GaugeStep'),
   hold: () => import('./HoldStep'),
   witness: () => import('./WitnessStep'),
   watch: () => import('./WatchStep'),
   drive: () => import('./DriveStep'),
-  makeSafe: () => import('./MakeSafeStep'),
+  'make-safe': () => import('./MakeSafeStep'),
   resume: () => import('./ResumeStep'),
-  handOver: () => import('./HandOverStep'),
+  'hand-over': () => import('./HandOverStep'),
 };
 const BarredStep = lazy(() => loaders.barred().then((m) => ({ default: m.BarredStep })));
 const DoneStep = lazy(() => loaders.done().then((m) => ({ default: m.DoneStep })));
+const RefitStep = lazy(() => loaders.refit().then((m) => ({ default: m.RefitStep })));
+const RemoveStep = lazy(() => loaders.remove().then((m) => ({ default: m.RemoveStep })));
+const TurnStep = lazy(() => loaders.turn().then((m) => ({ default: m.TurnStep })));
 const CountStep = lazy(() => loaders.count().then((m) => ({ default: m.CountStep })));
 const FillStep = lazy(() => loaders.fill().then((m) => ({ default: m.FillStep })));
 const FitStep = lazy(() => loaders.fit().then((m) => ({ default: m.FitStep })));
 const InspectStep = lazy(() => loaders.inspect().then((m) => ({ default: m.InspectStep })));
 const PhotographStep = lazy(() => loaders.photograph().then((m) => ({ default: m.PhotographStep })));
 const ReadStep = lazy(() => loaders.read().then((m) => ({ default: m.ReadStep })));
-const ChooseShellsStep = lazy(() => loaders.chooseShells().then((m) => ({ default: m.ChooseShellsStep })));
+const ChooseShellsStep = lazy(() =>
+  loaders['choose-shells']().then((m) => ({ default: m.ChooseShellsStep })),
+);
 const GaugeStep = lazy(() => loaders.gauge().then((m) => ({ default: m.GaugeStep })));
 const HoldStep = lazy(() => loaders.hold().then((m) => ({ default: m.HoldStep })));
 const WitnessStep = lazy(() => loaders.witness().then((m) => ({ default: m.WitnessStep })));
 const WatchStep = lazy(() => loaders.watch().then((m) => ({ default: m.WatchStep })));
 const DriveStep = lazy(() => loaders.drive().then((m) => ({ default: m.DriveStep })));
-const MakeSafeStep = lazy(() => loaders.makeSafe().then((m) => ({ default: m.MakeSafeStep })));
+const MakeSafeStep = lazy(() => loaders['make-safe']().then((m) => ({ default: m.MakeSafeStep })));
 const ResumeStep = lazy(() => loaders.resume().then((m) => ({ default: m.ResumeStep })));
-const HandOverStep = lazy(() => loaders.handOver().then((m) => ({ default: m.HandOverStep })));
+const HandOverStep = lazy(() => loaders['hand-over']().then((m) => ({ default: m.HandOverStep })));
+
+/** Brings the screen of one kind of step, so that nobody waits for it when the step comes. */
+export function fetchScreenOf(kind: PlanStep['kind']): void {
+  if (kind in loaders) fetchQuietly(loaders[kind as keyof typeof loaders]);
+}
 
 /** Brings the screens that come later, once nothing more urgent is to be done. */
 export function fetchLaterScreens(): void {
-  for (const load of Object.values(loaders)) {
-    // Not here yet is no trouble: the screen asks for it again when it is needed.
-    load().catch(() => undefined);
-  }
+  for (const load of Object.values(loaders)) fetchQuietly(load);
+}
+
+/** Not here yet is no trouble: the screen asks for it again when it is needed. */
+function fetchQuietly(load: () => Promise<unknown>): void {
+  load().catch(() => undefined);
 }
 
 /** The screen of one step: its own by its kind, or what stands in its way, or what was recorded on it. */
