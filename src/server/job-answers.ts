@@ -70,6 +70,14 @@ export const jobSummaryAnswer = z.strictObject({
       isAwaited: z.boolean(),
     }),
   ),
+  /** Photographs whose very bytes stand in other jobs too: those that the person may see, and how many others. */
+  photographsElsewhere: z.array(
+    z.strictObject({
+      hash,
+      jobs: z.array(z.strictObject({ id: z.string(), number: z.string() })),
+      others: z.int(),
+    }),
+  ),
   /** The tablets that recorded in the job, the last first. */
   tablets: z.array(jobTablet),
   /** The folded state, with its plan. */

@@ -11,6 +11,7 @@ import { getFold } from './job-fold';
 import { readIdentity, readRegistrations } from './job-identity';
 import type { JobRow } from './job-rows';
 import { type JobTablet, listJobTablets } from './job-tablets';
+import { listPhotographsElsewhere, type PhotographElsewhere } from './photos-elsewhere';
 import { listMissingPhotographs, type MissingPhotograph } from './photos-missing';
 
 const PAGE = 25;
@@ -88,6 +89,8 @@ export interface JobSummary extends JobLine {
   withheld: string[];
   /** Photographs of the record whose bytes have not come. */
   missingPhotographs: MissingPhotograph[];
+  /** Photographs whose very bytes stand in other jobs too. */
+  photographsElsewhere: PhotographElsewhere[];
   /** The tablets that recorded in the job, the last first. */
   tablets: JobTablet[];
   jobState: JobState;
@@ -112,6 +115,7 @@ export async function getJob(app: App, actor: Actor, id: string): Promise<JobSum
     identity: Object.fromEntries(Object.entries(known).map(([field, { value }]) => [field, value])),
     withheld,
     missingPhotographs: await listMissingPhotographs(app, state),
+    photographsElsewhere: await listPhotographsElsewhere(db, actor, id, state),
     tablets: (await listJobTablets(db, [id])).get(id) ?? [],
     jobState: state,
   };

@@ -5,6 +5,7 @@ import { sql } from 'kysely';
 import sharp from 'sharp';
 import { beforeEach, describe, expect, it, vi } from 'vitest';
 import type { EntryData } from '@/domain/entry';
+import { GET as getJob } from '@/pages/api/jobs/[id]/index';
 import { GET as getPhoto, PUT as putPhoto } from '@/pages/api/photos/[hash]';
 import {
   ask,
@@ -126,6 +127,25 @@ describe('the bytes of a photograph', () => {
     expect((await fetchPhoto(hash)).status).toBe(404);
     expect((await put(bytes)).status).toBe(201);
     expect((await fetchPhoto(hash)).status).toBe(200);
+  });
+});
+
+describe('the same picture in two jobs', () => {
+  const elsewhere = async (job: string, as: Hand) =>
+    ((await ask(getJob, { as, params: { id: job } })).body as { photographsElsewhere: unknown })
+      .photographsElsewhere;
+
+  it('is told of on the page of each, with the number of a job only to who may see that job', async () => {
+    const { ben, supervisor, owner } = shop.people;
+    const { job, hash } = await photographInJob();
+    expect(await elsewhere(job.id, owner)).toEqual([]);
+    const { job: second } = await photographInJob();
+    expect(await elsewhere(job.id, owner)).toEqual([
+      { hash, jobs: [{ id: second.id, number: second.number }], others: 0 },
+    ]);
+    expect(await elsewhere(second.id, supervisor)).toMatchObject([{ hash, jobs: [{ id: job.id }] }]);
+    await shop.app.db.updateTable('job').set({ state: 'handed over' }).where('id', '=', second.id).execute();
+    expect(await elsewhere(job.id, ben)).toEqual([{ hash, jobs: [], others: 1 }]);
   });
 });
 

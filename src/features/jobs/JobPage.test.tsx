@@ -47,6 +47,7 @@ function answerOf(journal: Journal, over: Partial<JobAnswer> = {}): JobAnswer {
     identity: { registration: 'TW71 ABC' },
     withheld: ['customerName'],
     missingPhotographs: [],
+    photographsElsewhere: [],
     tablets: [],
     jobState: state,
     ...over,
@@ -164,6 +165,27 @@ describe('the page of a job', () => {
     );
     expect(part('Photographs').getByText('not here yet, on Bay 2')).toBeVisible();
     expect(screen.queryByRole('img', { name: photo!.subject })).not.toBeInTheDocument();
+  });
+
+  it('points out a picture that stands for something else too, here or in other jobs', async () => {
+    const journal = new Journal(smallPlan());
+    const hash = 'd'.repeat(64);
+    const data = { photo: hash, bytes: 10, type: 'image/jpeg', from: 'from file' } as const;
+    journal.record('photographed', { ...data, subject: 'shells of rod 1' });
+    journal.record('photographed', { ...data, subject: 'shells of rod 2' });
+    journal.record('photographed', { ...data, photo: 'e'.repeat(64), subject: 'the sump' });
+    await show(
+      answerOf(journal, {
+        photographsElsewhere: [{ hash, jobs: [{ id: 'j2', number: '31-002' }], others: 2 }],
+      }),
+    );
+    const photographs = part('Photographs');
+    const [first] = photographs.getAllByText(/The same picture/);
+    expect(first).toHaveTextContent(
+      'The same picture stands here for “shells of rod 2” and is in job 31-002 and is in 2 other jobs',
+    );
+    expect(photographs.getAllByText(/The same picture/)).toHaveLength(2);
+    expect(photographs.getAllByRole('link', { name: '31-002' })[0]).toHaveAttribute('href', '/jobs/j2');
   });
 
   it('does not say that handover waits for a photograph that was taken again', async () => {

@@ -123,7 +123,12 @@ function Job({
           <JobNext state={jobState} />
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
           <JobSignatures state={jobState} zone={zone} judge={onThisJob} />
-          <JobPhotos state={jobState} zone={zone} missing={answer.missingPhotographs} />
+          <JobPhotos
+            state={jobState}
+            zone={zone}
+            missing={answer.missingPhotographs}
+            elsewhere={answer.photographsElsewhere}
+          />
           {canErase && HAS_ENDED.includes(jobState.phase) && <JobErasure job={answer} />}
         </div>
         <JobFacts job={answer} />

@@ -51,10 +51,18 @@ export const jobAnswer = z.object({
       isAwaited: z.boolean(),
     }),
   ),
+  photographsElsewhere: z.array(
+    z.object({
+      hash: z.string(),
+      jobs: z.array(z.object({ id: z.string(), number: z.string() })),
+      others: z.number(),
+    }),
+  ),
   tablets: z.array(z.object({ id: z.string(), name: z.string() })),
   jobState: z.custom<JobState>(
     (value: unknown) => typeof value === 'object' && value !== null && 'steps' in value,
   ),
 });
 export type JobAnswer = z.infer<typeof jobAnswer>;
+export type PhotographElsewhere = JobAnswer['photographsElsewhere'][number];
 export type MissingPhotograph = JobAnswer['missingPhotographs'][number];
