@@ -32,7 +32,11 @@ export default defineConfig({
     // The package's own entry is written for older browsers, and larger.
     resolve: { alias: { dexie: 'dexie/dist/modern/dexie.mjs' } },
     // A data: address would need a wider content policy than 'self'.
-    build: { assetsInlineLimit: 0 },
+    build: {
+      assetsInlineLimit: 0,
+      // What comes later is fetched ahead and kept by the service worker: lists of it only delay the first script.
+      modulePreload: false,
+    },
   },
   devToolbar: { enabled: false },
 });

@@ -2,7 +2,7 @@
  * A new version of the program waits until the page says that nobody is in the middle of an action. The
  * records are in IndexedDB and stay as they are; only the page is loaded anew.
  */
-import type { Workbox } from 'workbox-window';
+import { Workbox } from 'workbox-window';
 
 export interface Registration {
   /** Does a new version wait to be used? */
@@ -28,9 +28,11 @@ interface Parts {
 /** Registers the service worker; undefined where the browser has none (no HTTPS, or too old). */
 export async function registerWorker(
   script: string,
-  { workbox: given, reload = reloadPage }: Parts = {},
+  {
+    workbox = 'serviceWorker' in navigator ? new Workbox(script) : undefined,
+    reload = reloadPage,
+  }: Parts = {},
 ): Promise<Registration | undefined> {
-  const workbox = given ?? (await browserWorkbox(script));
   if (!workbox) return undefined;
   let isWaiting = false;
   let isAsked = false;
@@ -61,12 +63,6 @@ export async function registerWorker(
     },
     look: () => workbox.update(),
   };
-}
-
-async function browserWorkbox(script: string): Promise<WorkerHandle | undefined> {
-  if (!('serviceWorker' in navigator)) return undefined;
-  const { Workbox } = await import('workbox-window');
-  return new Workbox(script);
 }
 
 function reloadPage(): void {

@@ -1,7 +1,6 @@
 import { lazy, Suspense, useEffect, useState, useSyncExternalStore } from 'react';
 import { openOffline, type Offline } from '@/offline/offline';
 import { askToPersist } from '@/offline/persistence';
-import { registerWorker } from '@/offline/registration';
 import { makeAvailableOffline } from '@/offline/prefetch';
 import { refreshSignedIn } from '@/offline/tablet';
 import { FloorContext, useFloor, useFloorStore } from './floor-context';
@@ -71,7 +70,7 @@ function startFloor(store: FloorStore): () => void {
   offline.sync.start();
   void reload().then(() => catchUp(store));
   const cancelWorker = offline.after(WORKER_AFTER_MS, () => {
-    registerWorker(WORKER).then(keepRegistration, () => {
+    keepWorker().catch(() => {
       // Without a service worker (no HTTPS, a private window) the Floor works as long as the page stays open.
       keepRegistration(undefined);
     });
@@ -82,6 +81,11 @@ function startFloor(store: FloorStore): () => void {
     stopSync();
     offline.sync.stop();
   };
+}
+
+async function keepWorker(): Promise<void> {
+  const { registerWorker } = await import('@/offline/registration');
+  keepRegistration(await registerWorker(WORKER));
 }
 
 /** What the server knows newer than this tablet; with no network nothing changes. */

@@ -1,4 +1,4 @@
-import type { ReactNode } from 'react';
+import { lazy, Suspense, type ReactNode } from 'react';
 import { Caution } from '@/components/Caution';
 import { EngineBelow } from '@/components/EngineBelow';
 import { FloorFrame } from '@/components/FloorFrame';
@@ -6,14 +6,18 @@ import { QuietButton } from '@/components/QuietButton';
 import { Sign } from '@/components/Sign';
 import { isBlocked } from '@/domain/job-deviation';
 import { uncheckedSignatures } from '@/domain/job-evidence';
+import type { EntryKind } from '@/domain/entry';
 import type { PlanStep } from '@/domain/plan';
 import { comingAfter } from './current-step';
 import { engineView } from '@/domain/engine-view';
 import { lastAct, lastActWords } from './last-act';
-import { lastReading } from './last-reading';
 import { useRun, type Run } from './run-context';
 import { useIsPortrait } from './use-is-portrait';
-import { VerdictBand } from './VerdictBand';
+
+const VerdictBand = lazy(() => import('./VerdictBand').then((m) => ({ default: m.VerdictBand })));
+
+/** Acts that may have a verdict. */
+const READINGS = new Set<EntryKind>(['gauged', 'read', 'counted']);
 
 const STANDING =
   'The vehicle maker’s instructions, local codes and licensed practice prevail over this sheet.';
@@ -139,8 +143,14 @@ const CAUTION_LEVELS = {
 
 /** What was recorded last: a reading with its verdict, large; anything else in a line. */
 function Before({ run, isLoud }: { run: Run; isLoud: boolean }) {
-  const reading = lastReading(run.state);
-  return reading ? <VerdictBand reading={reading} /> : <LastAct run={run} isLoud={isLoud} />;
+  const [act] = lastAct(run.state);
+  const line = <LastAct run={run} isLoud={isLoud} />;
+  if (!act || !READINGS.has(act.kind)) return line;
+  return (
+    <Suspense fallback={line}>
+      <VerdictBand otherwise={line} />
+    </Suspense>
+  );
 }
 
 function LastAct({ run, isLoud }: { run: Run; isLoud: boolean }) {

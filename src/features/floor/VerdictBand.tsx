@@ -1,14 +1,20 @@
+import type { ReactNode } from 'react';
 import { QuietButton } from '@/components/QuietButton';
 import { Verdict } from '@/components/Verdict';
 import { VerdictScale } from '@/components/VerdictScale';
 import { clockTime } from '@/domain/time-words';
 import { limitOnScale } from './gauge-reading';
-import type { LastReading } from './last-reading';
+import { lastReading, type LastReading } from './last-reading';
 import { useRun } from './run-context';
 
-/** The reading that was just kept, with its verdict, over the next screen until something is recorded there. */
-export function VerdictBand({ reading }: { reading: LastReading }) {
+/**
+ * The reading that was just kept, with its verdict, over the next screen until something is recorded there;
+ * something else where the last act was no reading.
+ */
+export function VerdictBand({ otherwise }: { otherwise: ReactNode }) {
   const run = useRun();
+  const reading = lastReading(run.state);
+  if (!reading) return otherwise;
   const { kept, values, unit, verdict, word, words } = reading;
   return (
     <section className="verdict-band" aria-label="The reading just kept" data-kind={verdict}>

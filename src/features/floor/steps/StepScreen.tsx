@@ -32,7 +32,11 @@ const loaders = {
   'make-safe': () => import('./MakeSafeStep'),
   resume: () => import('./ResumeStep'),
   'hand-over': () => import('./HandOverStep'),
+  'what was read': () => import('../VerdictBand'),
 };
+
+/** Kinds whose record is told over the next screen. */
+const TOLD_AFTER = new Set<PlanStep['kind']>(['read', 'gauge', 'count']);
 const BarredStep = lazy(() => loaders.barred().then((m) => ({ default: m.BarredStep })));
 const DoneStep = lazy(() => loaders.done().then((m) => ({ default: m.DoneStep })));
 const RefitStep = lazy(() => loaders.refit().then((m) => ({ default: m.RefitStep })));
@@ -59,6 +63,7 @@ const HandOverStep = lazy(() => loaders['hand-over']().then((m) => ({ default: m
 /** Brings the screen of one kind of step, so that nobody waits for it when the step comes. */
 export function fetchScreenOf(kind: PlanStep['kind']): void {
   if (kind in loaders) fetchQuietly(loaders[kind as keyof typeof loaders]);
+  if (TOLD_AFTER.has(kind)) fetchQuietly(loaders['what was read']);
 }
 
 /** Brings the screens that come later, once nothing more urgent is to be done. */

@@ -38,12 +38,12 @@ describe('the oil clearance', () => {
     await press(band);
     expect(screen.queryByText('Inside')).toBeNull();
     await press(new RegExp(`^Keep ${band} mm`));
-    expect(screen.getByText('Inside')).toBeVisible();
+    expect(await screen.findByText('Inside')).toBeVisible();
     expect(journal.entries.at(-1)).toMatchObject({
       kind: 'gauged',
       data: { end: 'front', by: 'band', clearance: band, again: 'first', threadLot: 'G1', cardLot: 'G1' },
     });
-    const band1 = within(screen.getByRole('region', { name: 'The reading just kept' }));
+    const band1 = within(await screen.findByRole('region', { name: 'The reading just kept' }));
     expect(band1.getByText(`rod ${ROD}, front`)).toBeVisible();
     expect(band1.getByRole('img', { name: /^Between / })).toBeVisible();
     expect(screen.getByRole('heading', { name: `Rod ${ROD}, rear` })).toBeVisible();
@@ -51,7 +51,7 @@ describe('the oil clearance', () => {
     await press(new RegExp(`^Keep ${band} mm`));
     expect(journal.status(STEP)).toBe('done');
     expect(screen.getByRole('heading', { name: `Rod ${ROD}: thread gone, oiled, cap on` })).toBeVisible();
-    const band2 = within(screen.getByRole('region', { name: 'The reading just kept' }));
+    const band2 = within(await screen.findByRole('region', { name: 'The reading just kept' }));
     expect(band2.getByText('Both inside')).toBeVisible();
     expect(band2.getAllByText(band)).toHaveLength(2);
   });
@@ -60,7 +60,7 @@ describe('the oil clearance', () => {
     const journal = new Journal(smallPlan()).performUntil(STEP).gauge(STEP, '0.048', '0.048');
     const next = `strip.clean@rod${ROD}`;
     render(<FixtureRun journal={journal} start={{ step: next, isVisit: false }} />);
-    expect(screen.getByRole('region', { name: 'The reading just kept' })).toBeVisible();
+    expect(await screen.findByRole('region', { name: 'The reading just kept' })).toBeVisible();
     await press(/^Done/);
     expect(screen.queryByRole('region', { name: 'The reading just kept' })).toBeNull();
     expect(screen.getByText(/^Done .*thread gone, oiled, cap on$/)).toBeVisible();

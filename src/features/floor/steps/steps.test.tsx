@@ -219,7 +219,7 @@ describe('a step on the Floor', () => {
     expect(screen.queryByText('Inside')).toBeNull();
     await user.click(screen.getByRole('button', { name: /^Keep 0.20 mm/ }));
     expect(last()).toMatchObject({ kind: 'read', data: { value: '0.20', unit: 'mm', how: 'typed' } });
-    const verdict = within(screen.getByRole('region', { name: 'The reading just kept' }));
+    const verdict = within(await screen.findByRole('region', { name: 'The reading just kept' }));
     expect(verdict.getByText('Inside')).toBeVisible();
   });
 
