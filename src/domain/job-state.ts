@@ -109,6 +109,8 @@ export interface Deviation {
   step?: string | undefined;
   rod?: number | undefined;
   blocks: boolean;
+  /** Of a conflict between tablets: whose records it goes for, and the reason of the first. */
+  conflict?: { code: string; device: string; why: string; entries: string[] } | undefined;
   raisedBy: string;
   raisedByName: string;
   raisedAt: string;

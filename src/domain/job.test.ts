@@ -760,6 +760,56 @@ describe('totality', () => {
     expect(journal.why('strip.cap-off-again@rod2')).toContain('deviation-open');
   });
 
+  it('makes one matter of what one tablet did on a step, and another of what a third did', () => {
+    const journal = begin().performUntil('strip.squeeze@rod2').tighten('strip.squeeze@rod2');
+    const first = journal.entries.findLast((e) => e.kind === 'tightened')!;
+    const conflicting = (number: number, device: string, code = 'already-done') => {
+      const id = `0190a0a0-0000-7000-8000-0000000ffff${number}`;
+      const server = { seq: 99 + number, recordedAt: first.at, prev: '', clockOffsetMs: 0 };
+      journal.fold({ ...first, id, device, ...server, conflict: { code, why: `Reason ${number}.` } });
+    };
+    const open = () => journal.state.deviations.map(({ words }) => words);
+    conflicting(1, 'tablet-2');
+    conflicting(2, 'tablet-2', 'deviation-open');
+    expect(open()).toEqual(['Reason 1. 1 more record of that tablet on this step came with it.']);
+    conflicting(3, 'tablet-3');
+    conflicting(4, 'tablet-2');
+    conflicting(5, 'tablet-2', 'number-used-twice');
+    expect(open()).toEqual([
+      'Reason 1. 2 more records of that tablet on this step came with it.',
+      'Reason 3.',
+      'Reason 5.',
+    ]);
+    const [{ id }] = journal.state.deviations as [{ id: string }];
+    const data = { deviation: id, disposition: 'accept as is', reason: 'looked at' } as const;
+    journal.fold({ ...journal.draft('deviation-disposed', data, { by: 'sup' }), basis: 104 });
+    conflicting(6, 'tablet-2');
+    expect(open().at(-1)).toBe('Reason 6.');
+  });
+
+  it('lets a disposition go for the conflicting records that were known, and opens the rest as a matter of its own', () => {
+    const journal = begin().performUntil('strip.squeeze@rod2').tighten('strip.squeeze@rod2');
+    const first = journal.entries.findLast((e) => e.kind === 'tightened')!;
+    for (const seq of [901, 902, 903, 904]) {
+      const id = `0190a0a0-0000-7000-8000-000000000${seq}`;
+      const server = { seq, recordedAt: first.at, prev: '', clockOffsetMs: 0 };
+      const conflict = { code: 'order', why: `Reason ${seq}.` };
+      journal.fold({ ...first, id, device: 'tablet-2', ...server, conflict });
+    }
+    const [{ id: deviation }] = journal.state.deviations as [{ id: string }];
+    const data = { deviation, disposition: 'accept as is', reason: 'looked at' } as const;
+    journal.fold({ ...journal.draft('deviation-disposed', data, { by: 'sup' }), basis: 902 });
+    expect(journal.state.deviations).toMatchObject([
+      {
+        disposed: { by: 'sup' },
+        words: 'Reason 901. 1 more record of that tablet on this step came with it.',
+      },
+      { words: 'Reason 903. 1 more record of that tablet on this step came with it.' },
+    ]);
+    expect(journal.state.deviations[1]).not.toHaveProperty('disposed');
+    expect(journal.why('strip.cap-off-again@rod2')).toContain('deviation-open');
+  });
+
   it('never throws, whatever comes in whatever order', () => {
     const whole = begin().performUntil(null).entries;
     for (let seed = 1; seed <= 15; seed += 1) {

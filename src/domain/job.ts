@@ -6,7 +6,7 @@
 import type { Entry, EntryOf, Recorded } from './entry';
 import { applyCorrection, applyRevocation, applyTakeBack } from './job-corrections';
 import { countersign, coverCorrections } from './job-countersign';
-import { raiseDeviation, remark } from './job-deviation';
+import { partUnheard, raiseConflict, raiseDeviation, remark } from './job-deviation';
 import { noteAuthor } from './job-authors';
 import { reopenSignatures } from './job-evidence';
 import { settleSteps } from './job-settle';
@@ -96,12 +96,7 @@ export function applyEntry(state: JobState, entry: Entry | Recorded): JobState {
     // What its author claims and what came here differ: nothing of the work itself hangs on that.
     next = remark(next, kept, 'work-signed', entry.conflict.why);
   } else if ('conflict' in entry && entry.conflict) {
-    next = raiseDeviation(next, kept, {
-      rule: 'conflict',
-      class: 'A',
-      words: entry.conflict.why,
-      blocks: true,
-    });
+    next = raiseConflict(next, kept, entry.conflict);
   }
   return checkPace(next, kept);
 }
@@ -198,9 +193,10 @@ function applyDisposition(state: JobState, entry: EntryOf<'deviation-disposed'>,
   if (!deviation)
     return remark(state, kept, 'unknown-deviation', 'A disposition names a deviation that is not there.');
   const disposed = { entry: kept.id, by: kept.by, name: kept.name, at: kept.at, disposition, reason };
+  const parted = partUnheard(state, deviation, entry.basis);
   const next: JobState = {
-    ...state,
-    deviations: state.deviations.map((d) => (d.id === id ? { ...d, disposed } : d)),
+    ...parted,
+    deviations: parted.deviations.map((d) => (d.id === id ? { ...d, disposed } : d)),
   };
   const step = deviation.step === undefined ? undefined : findStep(state.plan, deviation.step);
   if (!step) return next;
