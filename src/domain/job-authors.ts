@@ -1,12 +1,20 @@
 import type { JobState, Kept } from './job-state';
 import { writable } from './job-tables';
 
+/** What is signed, seen or revoked is no work on the vehicle, and whoever does it is not at work there. */
+const judgements: ReadonlySet<Kept['kind']> = new Set<Kept['kind']>([
+  'signed',
+  'witnessed',
+  'countersigned',
+  'revoked',
+]);
+
 /** Who did it, who helped, and who is at work now. */
 export function noteAuthor(state: JobState, kept: Kept): JobState {
   if (kept.by === 'workshop') return state;
   const people =
     state.people[kept.by] === kept.name ? state.people : { ...state.people, [kept.by]: kept.name };
-  const isWork = kept.kind !== 'signed' && kept.kind !== 'witnessed' && kept.kind !== 'countersigned';
+  const isWork = !judgements.has(kept.kind);
   const working =
     isWork && (state.working?.by !== kept.by || state.working.device !== kept.device)
       ? { by: kept.by, name: kept.name, since: kept.at, device: kept.device }

@@ -456,6 +456,8 @@ describe('revoking', () => {
     expect(journal.state.signatures[0]).toMatchObject({ reopened: 'revoked: the wrong vehicle' });
     expect(journal.state.signatures[0]?.donePast).toContain('build.rags-in');
     expect(journal.status(HOLD)).toBe('open');
+    // Whoever revokes at a desk is not at work on the vehicle.
+    expect(journal.state.working?.by).toBe('tech');
     expect(journal.ask('revoked', { of, reason: 'again' }, { by: 'sup' })).toMatchObject({
       code: 'already-open',
     });

@@ -1,6 +1,7 @@
 /* A signature as it is shown on paper and screen: how far it counts, in the signer's own words. */
 import { DONE_PAST } from './job-evidence';
 import type { Signature } from './job-state';
+import { findStep, type Plan } from './plan';
 import { dayAndTime } from './time-words';
 
 /** What an ink stamp says. */
@@ -11,6 +12,16 @@ export interface SignatureView {
   words: string;
   covers: string;
   isNotIndependent: boolean;
+}
+
+/** "Hold point: caps marked" is "caps marked" where the words before it speak of a signature. */
+export function holdPointName(title: string): string {
+  return title.replace(/^Hold point: /, '');
+}
+
+/** The hold point of a step by its name; the step's id where the plan doesn't have it any more. */
+export function holdPointOf(plan: Plan, step: string): string {
+  return holdPointName(findStep(plan, step)?.title ?? step);
 }
 
 /** The signature as its stamp shows it; one that no longer stands says why. */

@@ -25,6 +25,11 @@ export function dayAndTime(at: string | number, zone: string): string {
   return `${shortDay(at, zone)}, ${clockTime(at, zone)}`;
 }
 
+/** Day with its year and time of an instant in the workshop's zone, as "6 Oct 2026, 10:42". */
+export function dateAndTime(at: string | number, zone: string): string {
+  return `${format(at, zone, { day: 'numeric', month: 'short', year: 'numeric' })}, ${clockTime(at, zone)}`;
+}
+
 /** The day of an instant in the workshop's zone without its year, as "6 Oct". */
 export function shortDay(at: string | number, zone: string): string {
   return format(at, zone, { day: 'numeric', month: 'short' });

@@ -20,6 +20,8 @@ describe('the workshop’s trail in words', () => {
         record('roles-changed', { person: 'p2', from: ['technician'], to: ['technician', 'supervisor'] }, 6),
         record('job-opened', { job: 'j1', number: '0147', plan: 'h', content: 'c' }, 7),
         record('head-signed', { trail: 'j1', seq: 40, hash: 'h' }, 8),
+        record('document-released', { documentKind: 'engine', document: 't4', revision: 2 }, 9),
+        record('document-released', { documentKind: 'procedure', document: 'strip', revision: 1 }, 10),
       ),
     ).toEqual([
       'Ines Vale added as technician',
@@ -30,6 +32,8 @@ describe('the workshop’s trail in words', () => {
       'Ines Vale: technician became technician, supervisor',
       'Job 0147 opened',
       'Head signed: job 0147, entry 40',
+      'Engine sheet t4, revision 2, released',
+      'Procedure strip, revision 1, released',
     ]);
   });
 

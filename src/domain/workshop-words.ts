@@ -137,9 +137,9 @@ function toolWords(kind: string, data: WorkshopRecord['data'], named: Named): st
 function recordWords(kind: string, data: WorkshopRecord['data'], named: Named): string {
   switch (kind) {
     case 'document-released':
-      return `${text(data.documentKind) ?? 'Document'} ${text(data.document) ?? ''}, revision ${String(data.revision)}, released`;
+      return `${documentKind(data.documentKind)} ${text(data.document) ?? ''}, revision ${String(data.revision)}, released`;
     case 'document-withdrawn':
-      return `${text(data.documentKind) ?? 'Document'} ${text(data.document) ?? ''}, revision ${String(data.revision)}, withdrawn`;
+      return `${documentKind(data.documentKind)} ${text(data.document) ?? ''}, revision ${String(data.revision)}, withdrawn`;
     case 'job-opened':
       return `Job ${named(data.job)} opened`;
     case 'head-signed':
@@ -195,4 +195,11 @@ function plain(field: string): string {
 function shown(value: unknown): string {
   if (value === null || value === undefined) return 'none';
   return typeof value === 'string' ? value : JSON.stringify(value);
+}
+
+/** "Engine sheet", "Procedure", "Route": the three kinds of document, at the beginning of a line. */
+function documentKind(kind: unknown): string {
+  if (kind === 'engine') return 'Engine sheet';
+  const word = text(kind) ?? 'document';
+  return `${word.slice(0, 1).toUpperCase()}${word.slice(1)}`;
 }

@@ -3,8 +3,8 @@ import { guideTo } from '@/domain/deviation-guide';
 import { correctionOver } from '@/domain/job-countersign';
 import { openBlockers } from '@/domain/job-order';
 import type { JobState } from '@/domain/job-state';
+import { holdPointName, holdPointOf } from '@/domain/signature-view';
 import { dayAndTime } from '@/domain/time-words';
-import { holdPointName } from './hold-point-name';
 import type { MissingPhotograph } from './job-answer';
 
 export interface JobBlocksProps {
@@ -43,9 +43,9 @@ export function JobBlocks({ state, zone, waiting, missingPhotographs, tablets }:
       .map(({ id, title }) => ({ key: id, what: `Waiting for a part: ${title}`, note: '' })),
     ...state.signatures
       .filter(({ checkedAt, reopened }) => checkedAt === undefined && reopened === undefined)
-      .map(({ entry, holdPoint }) => ({
+      .map(({ entry, step }) => ({
         key: entry,
-        what: `Signed, to be checked: ${holdPoint}`,
+        what: `Signed, to be checked: ${holdPointOf(state.plan, step)}`,
         note: 'bring the tablet to the network',
       })),
     ...awaited.map(({ entry, subject, name, tablet, at }) => ({
@@ -109,7 +109,8 @@ function barred(state: JobState): { key: string; what: string; note: string }[] 
     ({ id, onDemand }) => onDemand !== true && state.steps[id]?.status === 'open',
   );
   const verdict = first && whyNot(state, first.id);
-  return first && verdict && !verdict.ok
+  // A deviation that is open stands in the list already.
+  return first && verdict && !verdict.ok && verdict.code !== 'deviation-open'
     ? [{ key: first.id, what: `${first.title}: ${verdict.why}`, note: verdict.unlock ?? '' }]
     : [];
 }

@@ -9,9 +9,9 @@ import { dueCountersigns } from '@/domain/job-countersign';
 import { sentence } from '@/domain/job-order';
 import type { Countersign, JobState, Kept } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
-import { dayAndTime } from '@/domain/time-words';
+import { holdPointOf } from '@/domain/signature-view';
+import { dateAndTime } from '@/domain/time-words';
 import { JudgementDialog, type Judge } from './JudgementDialog';
-import { holdPointName } from './hold-point-name';
 
 interface JobCorrectionsProps {
   state: JobState;
@@ -42,7 +42,7 @@ export function JobCorrections({ state, zone, judge }: JobCorrectionsProps) {
           <li key={entry}>
             <b>
               {donePast.length === 1 ? '1 step was' : `${donePast.length} steps were`} {DONE_PAST}:{' '}
-              {holdPointName(findStep(state.plan, step)?.title ?? step)}
+              {holdPointOf(state.plan, step)}
             </b>{' '}
             <span className="text-soft">
               {findSignature(state, step) ? 'signed again since' : 'not signed again yet'}
@@ -110,16 +110,16 @@ function Correction({ state, zone, asked }: { state: JobState; zone: string; ask
   const target = findKept(state, of);
   const earlier = state.deviations.filter(({ id }) => asked.deviations?.includes(id));
   return (
-    <p>
+    <div>
       {earlier.map(({ id, words }) => (
-        <span key={id}>Before: {sentence(words)} </span>
+        <p key={id}>Before: {sentence(words)}</p>
       ))}
-      {target && <>Now: {keptWords(state, target)}. </>}
-      <span className="text-soft">
-        Corrected by {kept.name}, {dayAndTime(kept.at, zone)}: {reason}
+      {target && <p>Now: {sentence(keptWords(state, target))}</p>}
+      <p className="text-soft">
+        Corrected by {kept.name}, {dateAndTime(kept.at, zone)}: {reason}
         {target && target.by !== kept.by ? `; recorded by ${target.name}` : ''}
-      </span>
-    </p>
+      </p>
+    </div>
   );
 }
 

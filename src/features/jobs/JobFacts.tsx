@@ -1,6 +1,6 @@
 import type { ReactNode } from 'react';
 import { Field } from '@/components/Field';
-import { dayAndTime, dayWords } from '@/domain/time-words';
+import { dateAndTime, dayWords } from '@/domain/time-words';
 import type { JobAnswer } from './job-answer';
 
 const IDENTITY: [field: string, label: string, isFigure?: true][] = [
@@ -47,9 +47,9 @@ export function JobHeadFacts({ job, zone }: { job: JobAnswer; zone: string }) {
         {job.promisedOn === undefined ? 'not promised' : dayWords(job.promisedOn.slice(0, 10))}
       </Field>
       <Field label="Opened">
-        {dayAndTime(job.openedAt, zone)}, {job.openedBy.name}
+        {dateAndTime(job.openedAt, zone)}, {job.openedBy.name}
       </Field>
-      <Field label="Last entry">{job.lastAt === undefined ? 'none' : dayAndTime(job.lastAt, zone)}</Field>
+      <Field label="Last entry">{job.lastAt === undefined ? 'none' : dateAndTime(job.lastAt, zone)}</Field>
     </dl>
   );
 }

@@ -2,8 +2,8 @@ import { useState } from 'react';
 import { Button } from '@/components/Button';
 import { SignatureStamp } from '@/components/SignatureStamp';
 import type { JobState } from '@/domain/job-state';
-import { signatureView } from '@/domain/signature-view';
-import { clockTime, dayAndTime, dayOf } from '@/domain/time-words';
+import { holdPointOf, signatureView } from '@/domain/signature-view';
+import { clockTime, dateAndTime, dayOf } from '@/domain/time-words';
 import { JudgementDialog, type Judge } from './JudgementDialog';
 
 interface JobSignaturesProps {
@@ -34,6 +34,9 @@ export function JobSignatures({ state, zone, judge }: JobSignaturesProps) {
       <div className="job-stamps">
         {state.signatures.map((signature) => (
           <div key={signature.entry}>
+            <h3 className="form-label pb-2 first-letter:uppercase">
+              {holdPointOf(state.plan, signature.step)}
+            </h3>
             {/* The day has its year, because the card outlives it. */}
             <SignatureStamp
               {...signatureView(signature, zone)}
@@ -47,7 +50,7 @@ export function JobSignatures({ state, zone, judge }: JobSignaturesProps) {
                     revoke({
                       of: signature.entry,
                       title: 'Revoke the signature',
-                      words: `${signature.name} signed “${signature.holdPoint}”. The hold point opens again; what was done past it stays recorded as such.`,
+                      words: `${signature.name} signed “${holdPointOf(state.plan, signature.step)}”. The hold point opens again; what was done past it stays recorded as such.`,
                     })
                   }
                 >
@@ -66,7 +69,7 @@ export function JobSignatures({ state, zone, judge }: JobSignaturesProps) {
               <li key={id}>
                 <b>{words}</b>: {disposition}, {reason}{' '}
                 <span className="text-soft">
-                  {name}, {dayAndTime(at, zone)}
+                  {name}, {dateAndTime(at, zone)}
                 </span>
                 {may && (
                   <div className="form-actions mt-2 no-print">

@@ -5,9 +5,10 @@ import { ButtonLink } from '@/components/ButtonLink';
 import { DataTable, type DataColumn } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
 import { Subnav } from '@/components/Subnav';
+import { holdPointName } from '@/domain/signature-view';
 import { dayAndTime, dayWords } from '@/domain/time-words';
 import { atWork } from './at-work';
-import { holdPointName } from './hold-point-name';
+
 import { jobListAnswer, type JobLine } from './job-answer';
 import { newQueryClient, useServerList } from '@/offline/use-server';
 

@@ -123,7 +123,9 @@ export function JudgementDialog(props: JudgementDialogProps) {
           <ErrorNote
             happened={trouble}
             kept="It was not taken. The record stands as it was, and nothing in it is lost."
-            next="Mend it and try again."
+            next={
+              ask === 'pin' ? 'Key your PIN again, or leave it as it is.' : 'Try again, or leave it as it is.'
+            }
           />
         )}
       </div>

@@ -4,7 +4,7 @@ import * as z from 'zod/mini';
 import { Button } from '@/components/Button';
 import { DataTable } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
-import { dayAndTime } from '@/domain/time-words';
+import { dateAndTime } from '@/domain/time-words';
 import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import { useServerList } from '@/offline/use-server';
@@ -55,7 +55,7 @@ export function Tablets({ zone, title = 'Tablets' }: { zone: string; title?: str
           cells: {
             name: row.name,
             id: <span className="figure">{row.id.slice(-8)}</span>,
-            enrolled: dayAndTime(row.enrolledAt, zone),
+            enrolled: dateAndTime(row.enrolledAt, zone),
             heard: heardWords(row, zone),
             state: row.state === 'lost' ? 'lost: nothing it sends is taken' : 'in use',
             acts: (
@@ -91,7 +91,7 @@ export function Tablets({ zone, title = 'Tablets' }: { zone: string; title?: str
 }
 
 function heardWords({ lastHeardAt }: DeviceRow, zone: string): string {
-  return lastHeardAt === null ? 'never' : dayAndTime(lastHeardAt, zone);
+  return lastHeardAt === null ? 'never' : dateAndTime(lastHeardAt, zone);
 }
 
 function TabletActs({ row, onLose, onFound }: { row: DeviceRow; onLose: () => void; onFound: () => void }) {

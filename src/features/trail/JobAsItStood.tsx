@@ -4,7 +4,7 @@ import { SignatureStamp } from '@/components/SignatureStamp';
 import { engineView } from '@/domain/engine-view';
 import type { JobState } from '@/domain/job-state';
 import { findStep } from '@/domain/plan';
-import { signatureView } from '@/domain/signature-view';
+import { holdPointOf, signatureView } from '@/domain/signature-view';
 import { EntryFacts } from './EntryFacts';
 import { RelatedEntries } from './RelatedEntries';
 import type { ReadTrail } from './read-trail';
@@ -48,7 +48,12 @@ export const JobAsItStood = memo(function JobAsItStood({
           {[...state.signatures].reverse().map((signature, i) => {
             const { words, covers, ...stamp } = signatureView(signature, zone);
             return (
-              <SignatureStamp key={signature.entry} {...stamp} {...(i === 0 ? { words, covers } : {})} />
+              <div key={signature.entry}>
+                <h3 className="form-label pb-1 first-letter:uppercase">
+                  {holdPointOf(state.plan, signature.step)}
+                </h3>
+                <SignatureStamp {...stamp} {...(i === 0 ? { words, covers } : {})} />
+              </div>
             );
           })}
           {recorded.kind === 'signed' && <Independence state={state} by={recorded.by} step={recorded.step} />}

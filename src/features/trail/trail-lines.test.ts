@@ -86,6 +86,22 @@ describe('the lines of the ledger', () => {
     );
   });
 
+  it('name the entry that a countersign or a revocation is about', () => {
+    const journal = new Journal(smallPlan()).performUntil('build.sump-on');
+    const chosen = journal.entries.find((one) => one.kind === 'chose-shells')!;
+    const data = { ...chosen.data, upper: { grade: 'blue', lot: 'S-7' } };
+    const of = journal.record('corrected', { of: chosen.id, class: 'clerical', reason: 'misread', data }).id;
+    journal.record('countersigned', { of, name: 'Q. Lead' }, { by: 'lead' });
+    const signed = journal.state.signatures[0]!.entry;
+    journal.record('revoked', { of: signed, reason: 'the wrong vehicle' }, { by: 'lead' });
+    const lines = linesOf(readTrailOf(journal), ZONE);
+    const seqOf = (id: string) => lines.find((line) => line.id === id)!.seq;
+    expect(lines.slice(-2).map(({ what }) => what)).toEqual([
+      `Countersigned a correction (entry ${seqOf(of)})`,
+      `Revoked: the wrong vehicle (entry ${seqOf(signed)})`,
+    ]);
+  });
+
   it('show a conflict in the words that it was recorded with', () => {
     const trail = readTrailOf(begun(), (entry) =>
       entry.seq === 3 ? { ...entry, conflict: { code: 'done-already', why: 'Done on tablet 2.' } } : entry,

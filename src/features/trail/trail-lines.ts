@@ -73,6 +73,10 @@ export function linesOf({ entries, plans }: ReadTrail, zone: string): TrailLine[
 /** A correction says its reason and what stands there since; what stood there before keeps its own line. */
 function whatWords(recorded: Recorded, plan: Plan, byId: ReadonlyMap<string, Recorded>): string {
   const words = wordsOf(recorded, plan);
+  if (recorded.kind === 'countersigned' || recorded.kind === 'revoked') {
+    const about = byId.get(recorded.data.of);
+    return about ? `${words} (entry ${about.seq})` : words;
+  }
   const earlier = recorded.kind === 'corrected' ? byId.get(recorded.data.of) : undefined;
   if (recorded.kind !== 'corrected' || earlier === undefined) return words;
   // The rules took the correction only because its data has the form of what it corrects.

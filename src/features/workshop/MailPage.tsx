@@ -4,7 +4,7 @@ import * as z from 'zod/mini';
 import { Button } from '@/components/Button';
 import { DataTable } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
-import { dayAndTime } from '@/domain/time-words';
+import { dateAndTime } from '@/domain/time-words';
 import { newQueryClient, useServerList } from '@/offline/use-server';
 import { WitnessForm } from './WitnessForm';
 
@@ -67,7 +67,7 @@ function Letters({ zone }: { zone: string }) {
           key: letter.id,
           isCurrent: letter.id === open,
           cells: {
-            made: dayAndTime(letter.madeAt, zone),
+            made: dateAndTime(letter.madeAt, zone),
             to: letter.address,
             subject: letter.subject,
             state: stateWords(letter, zone),
@@ -103,7 +103,7 @@ function Letters({ zone }: { zone: string }) {
 
 function stateWords({ state, via, sentAt, trouble }: Mail, zone: string): string {
   if (state === 'sent') {
-    return via === 'here' ? 'kept here: no mail service is set' : `sent ${dayAndTime(sentAt ?? '', zone)}`;
+    return via === 'here' ? 'kept here: no mail service is set' : `sent ${dateAndTime(sentAt ?? '', zone)}`;
   }
   if (state === 'failed') return `given up: ${trouble ?? 'no reason given'}`;
   return trouble === null ? 'on its way' : `will be tried again: ${trouble}`;

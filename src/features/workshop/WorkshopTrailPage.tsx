@@ -4,7 +4,7 @@ import { DataTable } from '@/components/DataTable';
 import { ErrorNote } from '@/components/ErrorNote';
 import { SelectField } from '@/components/SelectField';
 import { Verdict } from '@/components/Verdict';
-import { dayAndTime, dayOf } from '@/domain/time-words';
+import { dateAndTime } from '@/domain/time-words';
 import { workshopLines, type WorkshopTopic } from '@/domain/workshop-words';
 import { newQueryClient } from '@/offline/use-server';
 import { readWorkshopTrail, type ReadWorkshopTrail } from './read-workshop-trail';
@@ -99,8 +99,8 @@ function Lines({
         cells: {
           seq,
           at: (
-            <time dateTime={at} title={dayOf(at, zone)}>
-              {dayAndTime(at, zone)}
+            <time dateTime={at} className="cell-time">
+              {dateAndTime(at, zone)}
             </time>
           ),
           who,
