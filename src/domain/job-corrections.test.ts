@@ -286,6 +286,37 @@ describe('a corrected value that leaves its limits', () => {
     expect(journal.state.deviations.filter(({ blocks }) => blocks)).toEqual([]);
   });
 
+  it('keeps both where one of several bad answers is corrected to good and another stays bad', () => {
+    const step = 'build.drive';
+    const journal = begin().performUntil(step);
+    const { before, after } = journal.step(step) as PlanStep & { kind: 'drive' };
+    const [first, second] = [...after, { id: 'other' }];
+    const said = (...bad: (string | undefined)[]) =>
+      [first, second!].map(({ id }) => ({ id, ok: !bad.includes(id) }));
+    const started = {
+      odometer: '1000',
+      unit: 'km',
+      checks: before.map(({ id }) => ({ id, ok: true })),
+    } as const;
+    journal.record('drive-started', started, { step });
+    const data = { odometer: '1025', unit: 'km', checks: said(first.id, second?.id) } as const;
+    const ended = journal.record('drive-ended', data, { step }) as Entry & EntryOf<'drive-ended'>;
+    const { id } = journal.record('corrected', corrected(ended, { checks: said(second?.id) }));
+    const open = () => journal.state.deviations.filter(({ blocks, disposed }) => blocks && !disposed);
+    expect(open().map((one) => one.id)).toEqual([`${ended.id}:not-in-order`, `${id}:not-in-order`]);
+    journal.record('countersigned', { of: id, name: 'S. Visor' }, { by: 'sup' });
+    expect(open().map((one) => one.id)).toEqual([`${id}:not-in-order`]);
+  });
+
+  it('is not got round by taking the reading back and reading anew', () => {
+    const journal = begin().performUntil(GAUGE);
+    const { id: of } = journal.gaugeEnd(GAUGE, 'front', '0.800');
+    journal.record('taken-back', { of, which: 'touched by mistake, not done' });
+    journal.gauge(GAUGE, '0.048', '0.048');
+    expect(journal.state.deviations.filter(({ blocks }) => blocks)).toHaveLength(1);
+    expect(journal.why('strip.clean@rod2')).toMatch(/^deviation-open/);
+  });
+
   it('asks nothing of a correction whose value was inside before and after', () => {
     const journal = begin().performUntil('strip.clean@rod2');
     journal.record('corrected', corrected(entryOf(journal, 'gauged', GAUGE), { clearance: '0.047' }));

@@ -13,6 +13,9 @@ const TOGETHER = new Set(['taper', 'spread']);
 /** Rules whose deviations no other value takes away: what happened is to be judged, or was not a value. */
 const BY_THEMSELVES = new Set(['conflict', 'done-wrong']);
 
+/** The rule that judges several answers at once: another bad one says nothing about the one that was corrected. */
+const MANY_ANSWERS = 'not-in-order';
+
 /** The corrections that wait for a countersign, in the order in which they were made. */
 export function dueCountersigns(state: JobState): Countersign[] {
   return state.countersigns.filter((asked) => isDue(state, asked));
@@ -58,7 +61,8 @@ export function askToCountersign(
   { earlier, reason }: { earlier: readonly Deviation[]; reason: string },
 ): JobState {
   const anew = state.deviations.filter((one) => one.id.startsWith(`${kept.id}:`) && !earlier.includes(one));
-  const isAnew = (one: Deviation): boolean => anew.some((other) => questionOf(other) === questionOf(one));
+  const isAnew = (one: Deviation): boolean =>
+    one.rule !== MANY_ANSWERS && anew.some((other) => questionOf(other) === questionOf(one));
   const replaced = new Set(earlier.filter(isAnew).map(({ id }) => id));
   const held = earlier.flatMap(({ id }) => (replaced.has(id) ? [] : [id]));
   const next = letRest(state, replaced);
