@@ -221,6 +221,37 @@ describe('nextAction', () => {
     );
   });
 
+  it('ends after a bounded number of acts, whatever the judgements of the readings', () => {
+    const reading = fc.tuple(fc.boolean(), fc.double({ min: 0.9, max: 1.08, noNaN: true }));
+    fc.assert(
+      fc.property(fc.array(reading, { maxLength: 60 }), (readings) => {
+        const bolts = ['3A', '3B', '3C'];
+        const done: TighteningRecord[] = [];
+        const coming = [...readings];
+        let wentOver = 0;
+        for (let action = nextAction(twice, bolts, done); action !== null;) {
+          const [isContinued, share] = coming.shift() ?? [false, undefined];
+          if (action.kind === 'stage' && share !== undefined && 'target' in action.spec) {
+            const value = share * action.spec.target;
+            const judged = judgeReading(action.spec, value);
+            // What is short and not continued is no record: the same act is asked for again.
+            if (judged !== 'under' || isContinued) {
+              const outcome = judged === 'ok' ? 'done' : judged === 'over' ? 'over' : 'short and continued';
+              done.push(recordStage(twice, action, { outcome, reading: value }));
+              if (outcome === 'over') wentOver += 1;
+            }
+          } else {
+            done.push(carryOut(twice, action));
+          }
+          const wholeCap = expandProgramme(twice, bolts).length + 2 * bolts.length;
+          expect(done.length).toBeLessThanOrEqual((wentOver + 1) * wholeCap);
+          action = nextAction(twice, bolts, done);
+        }
+      }),
+      { numRuns: 500 },
+    );
+  });
+
   it('never asks for a turn while a bolt is condemned or has to be let off', () => {
     fc.assert(
       fc.property(

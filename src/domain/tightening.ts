@@ -1,5 +1,22 @@
 import { addExact, compareExact, exactOf, subtractExact } from '@/domain/decimal';
 
+export {
+  adapterSetting,
+  boltStiffness,
+  estimatePreload,
+  NUT_FACTORS,
+  nutFactorRange,
+  preloadFromTorque,
+  strength,
+  stressArea,
+  torqueFromPreload,
+  travelFromAngle,
+  type NutFactorRange,
+  type PreloadEstimate,
+  type PropertyClass,
+  type Thread,
+} from './bolt';
+
 /*
  * A programme belongs to the bolts of one cap or joint. Where a cap stands is never kept anywhere: it follows
  * from the records of its bolts, in the order they came, whatever that order was. So a reload, another tablet
@@ -189,28 +206,6 @@ export function canStart(start: {
     return limit !== null && sofar + needs > limit;
   });
   return { ok: wornOut.length === 0, needs, wornOut };
-}
-
-/**
- * What to set a torque wrench to (N·m) when an adapter makes it longer or shorter: M·L / (L + E·cos α). Lengths
- * in mm from the hand to the square and from the square to the bolt; the angle in degrees, 0 straight ahead,
- * 90 square across (no correction), 180 folded back. Source: TM 9-254 fig. 4-6.
- */
-export function adapterSetting(adapter: {
-  target: number;
-  wrenchLength: number;
-  adapterLength: number;
-  adapterAngle: number;
-}): number {
-  const { target, wrenchLength, adapterLength, adapterAngle } = adapter;
-  requirePositive(target, 'torque');
-  requirePositive(wrenchLength, 'wrench length');
-  requirePositive(adapterLength, 'adapter length', 0);
-  if (!Number.isFinite(adapterAngle)) throw new RangeError('The adapter angle must be a number of degrees.');
-  const reach = wrenchLength + adapterLength * Math.cos((adapterAngle * Math.PI) / 180);
-  if (reach <= 0)
-    throw new RangeError('The adapter reaches back past the hand: no setting gives this torque.');
-  return (target * wrenchLength) / reach;
 }
 
 interface CapState {
