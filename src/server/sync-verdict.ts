@@ -1,6 +1,7 @@
 import { type Entry, judgementKinds, officeKinds } from '@/domain/entry';
 import { mayRecord } from '@/domain/job';
 import type { Verdict } from '@/domain/job-state';
+import { clockTime } from '@/domain/time-words';
 import { MINUTE } from './clock';
 import { conflictWords } from './conflict-words';
 import { hadPlan, isBehind, type JobFold, SERVER_DEVICE } from './job-fold';
@@ -312,7 +313,7 @@ function checkedPin(batch: Batch, item: ProvedItem): PinVerdict {
     case 'locked':
       return {
         code: 'pin-locked',
-        reason: `Too many wrong PINs: ${entry.author.name}'s PIN is locked until ${tried.until}. The record waits on the tablet.`,
+        reason: `Too many wrong PINs: ${entry.author.name}'s PIN is locked until ${clockTime(tried.until, batch.history.at(batch.history.seq).zone)}. The record waits and goes in by itself.`,
       };
   }
 }

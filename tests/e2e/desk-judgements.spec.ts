@@ -1,4 +1,4 @@
-import type { Page } from '@playwright/test';
+import type { Page, Route } from '@playwright/test';
 import type { ScriptedPerson, ScriptedTablet } from '@db/scripted-tablet';
 import { expect, islandsReady, test } from '../support/e2e';
 import { demoPerson, signInAtDesk } from '../support/e2e-people';
@@ -23,7 +23,12 @@ async function judge(page: Page, button: string, field: 'Your PIN' | 'Reason', a
   await dialog.getByRole('button', { name: button, exact: true }).tap();
 }
 
-test('a correction is countersigned and a signature revoked at the desk', async ({ app, page }) => {
+test('a correction is countersigned and a signature revoked at the desk', async ({
+  app,
+  page,
+  expectedErrors,
+}) => {
+  expectedErrors.push(/net::ERR_FAILED.*api\/sync/);
   const job = await seedJob(app, { until: CLOTHS, then: miscountAndCorrect });
   await signInAtDesk(page, supervisor);
   await page.goto(`/jobs/${job.id}`);
@@ -41,7 +46,14 @@ test('a correction is countersigned and a signature revoked at the desk', async 
     await expect(page.getByRole('dialog')).toContainText('one stuck to another');
     await judge(page, 'Countersign', 'Your PIN', '111111');
     await expect(page.getByRole('alert')).toContainText('The PIN was wrong. Sign again.');
+    // The network fails once it is signed: it is kept, and sent as it was signed.
+    const cut = (route: Route) =>
+      route.request().postData()?.includes('countersigned') === true ? route.abort() : route.continue();
+    await page.route('**/api/sync', cut);
     await judge(page, 'Countersign', 'Your PIN', supervisor.pin);
+    await expect(page.getByRole('dialog')).toContainText('Signed, and kept in this browser');
+    await page.unroute('**/api/sync', cut);
+    await page.getByRole('button', { name: 'Send it now' }).tap();
     await expect(page.getByRole('dialog')).toHaveCount(0);
     await expect(blocks).toContainText('Nothing blocks it.');
   });

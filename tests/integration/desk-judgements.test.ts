@@ -110,6 +110,25 @@ describe('a supervisor at a desk', () => {
     expect(await judge('supervisor', countersign(of, 'supervisor'))).toEqual({ ok: true });
   });
 
+  it('whose PIN is locked is told until when, and the judgement waits', async () => {
+    const of = await correctedToInside();
+    for (const pin of ['111111', '222222', '333333', '444444', '555555'])
+      expect(await judge('supervisor', countersign(of, 'supervisor', pin))).toMatchObject({
+        code: 'pin-wrong',
+      });
+    expect(await judge('supervisor', countersign(of, 'supervisor'))).toMatchObject({
+      code: 'kept',
+      why: expect.stringMatching(/PIN is locked until \d\d:\d\d\. The record waits and goes in by itself\./),
+    });
+    expect(await readKept(desk.offline, bay.job.id)).toMatchObject({
+      count: 1,
+      reason: expect.stringContaining('locked'),
+    });
+    desk.pass(20 * 60_000);
+    expect(await desk.offline.sync.now()).toEqual({ ok: true });
+    expect(openBlockers(await bay.stateOnServer())).toEqual([]);
+  });
+
   it('who made the correction does not countersign it, and nor does whoever worked on the step', async () => {
     const of = await correctedToInside('supervisor');
     expect(await judge('supervisor', countersign(of, 'supervisor'))).toMatchObject({ code: 'own-work' });

@@ -1,17 +1,19 @@
 import { QueryClient, QueryClientProvider } from '@tanstack/react-query';
-import { render, screen, within } from '@testing-library/react';
+import { act, render, screen, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { beforeEach, describe, expect, it, vi } from 'vitest';
-import type { DeskOutcome } from '@/offline/desk-record';
+import type { DeskOutcome, KeptHere, watchKept as WatchKept } from '@/offline/desk-record';
 import { Journal } from '../../../tests/support/journal';
 import { smallPlan } from '../../../tests/support/small-documents';
 import { JobCorrections } from './JobCorrections';
+import { JobKept } from './JobKept';
 import { JobSignatures } from './JobSignatures';
 import type { Judge } from './JudgementDialog';
 
 const recordAtDesk = vi.hoisted(() => vi.fn<(...asked: unknown[]) => Promise<DeskOutcome>>());
 const sendKept = vi.hoisted(() => vi.fn<(...asked: unknown[]) => Promise<DeskOutcome>>());
-vi.mock('@/offline/desk-record', () => ({ recordAtDesk, sendKept }));
+const watchKept = vi.hoisted(() => vi.fn<typeof WatchKept>());
+vi.mock('@/offline/desk-record', () => ({ recordAtDesk, sendKept, watchKept }));
 vi.mock('@/offline/offline', () => ({ offlineOfThisPage: () => 'this browser' }));
 
 beforeEach(() => {
@@ -101,6 +103,29 @@ describe('a judgement that the server was not reached with', () => {
     expect(screen.queryByRole('dialog')).toBeNull();
     expect(sendKept).toHaveBeenCalledWith('this browser', 'job-1', ['entry-1']);
     expect(recordAtDesk).toHaveBeenCalledOnce();
+  });
+
+  it('is told of on the page of its job until it is on the record, and why it waits', () => {
+    let tell: (kept: KeptHere) => void = () => undefined;
+    watchKept.mockImplementation((_offline, _job, telling) => {
+      tell = telling;
+      return () => undefined;
+    });
+    const client = new QueryClient();
+    const asksAgain = vi.spyOn(client, 'invalidateQueries');
+    render(
+      <QueryClientProvider client={client}>
+        <JobKept job="job-1" />
+      </QueryClientProvider>,
+    );
+    expect(screen.queryByRole('alert')).toBeNull();
+    act(() => tell({ count: 1, reason: 'Your PIN is locked for 15 minutes.' }));
+    expect(screen.getByRole('alert')).toHaveTextContent('1 entry is signed and kept in this browser');
+    expect(screen.getByRole('alert')).toHaveTextContent('Your PIN is locked for 15 minutes.');
+    expect(asksAgain).not.toHaveBeenCalled();
+    act(() => tell({ count: 0 }));
+    expect(screen.queryByRole('alert')).toBeNull();
+    expect(asksAgain).toHaveBeenCalledOnce();
   });
 });
 
