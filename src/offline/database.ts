@@ -36,8 +36,6 @@ export interface AuthorKeyRow {
   pair: CryptoKeyPair;
   /** The `seq` of the workshop's trail that says so; absent until the server knows the key. */
   enrolled?: number | undefined;
-  /** A restored server has forgotten it: what it signed waits here until its person enrols it again. */
-  mustEnrolAgain?: true | undefined;
 }
 
 export interface SignedInRow {

@@ -1,45 +1,55 @@
 /*
- * Keys that a restored server has forgotten. What they signed waits, and work goes on; each is enrolled again, the
- * same key, by its person's own session on this tablet, exactly as it was the first time.
+ * Keys that a restored server has forgotten, by their people. What they signed waits and work goes on; each is
+ * enrolled again, the same key, by its person's own session on this tablet, exactly as it was the first time.
  */
 import type { FloorDatabase } from './database';
-import type { Surroundings } from './surroundings';
-import { enrolAuthorKey } from './tablet';
+import type { Verdicts } from './sync-answer';
+import type { Sendable } from './sync-push';
 
-/** Notes that the server does not know a key that it knew; call it inside a transaction that holds `authorKeys`. */
-export async function noteLostKey(db: FloorDatabase, key: string): Promise<void> {
-  await db.authorKeys
-    .filter(({ id, enrolled }) => id === key && enrolled !== undefined)
-    .modify({ mustEnrolAgain: true });
+/** The server was restored to a time before the author's key was enrolled. */
+const KEY_LOST = 'key-lost';
+
+/** Whose key the server has to be told of again. */
+export async function readLostKeys({ meta }: FloorDatabase): Promise<string[]> {
+  return lostKeysIn((await meta.get('lostKeys'))?.value);
 }
 
-/**
- * Enrols again the forgotten key of whoever's session is the active one; the others have to sign in. `tried` holds
- * who was tried in this run. Tells whether one was enrolled, so that what waits for it is worth another try.
- */
-export async function enrolLostKeys(s: Surroundings, tried: Set<string>): Promise<boolean> {
-  let isEnrolled = false;
-  for (const { person } of await s.db.authorKeys.filter(isLost).toArray()) {
-    if (tried.has(person) || !(await s.db.signedIn.get(person))) continue;
-    tried.add(person);
-    const outcome = await enrolAuthorKey(s, person);
-    isEnrolled ||= outcome.ok;
-  }
-  return isEnrolled;
+/** The same out of the row that holds it. */
+export function lostKeysIn(value: unknown): string[] {
+  return (value as string[] | undefined) ?? [];
 }
 
-/** The names of those who have to sign in here again before what they recorded can be sent. */
-export async function readWhoMustSignIn(db: FloorDatabase): Promise<string[]> {
-  const lost = await db.authorKeys.filter(isLost).toArray();
-  if (lost.length === 0) return [];
-  const [workshop, signedIn] = await Promise.all([db.workshop.get('workshop'), db.signedIn.toArray()]);
-  const names = new Map([
-    ...(workshop?.people ?? []).map(({ id, name }) => [id, name] as const),
-    ...signedIn.map(({ person, name }) => [person, name] as const),
-  ]);
-  return lost.map(({ person }) => names.get(person) ?? 'Somebody who was added after the backup').sort();
+/** Notes that the server knows these people's keys no longer; within a transaction it has to hold `meta`. */
+export async function noteLostKeys(db: FloorDatabase, people: readonly string[]): Promise<void> {
+  const value = [...new Set([...(await readLostKeys(db)), ...people])];
+  await db.meta.put({ key: 'lostKeys', value });
 }
 
-function isLost({ mustEnrolAgain }: { mustEnrolAgain?: true | undefined }): boolean {
-  return mustEnrolAgain === true;
+/** Notes that the server knows a person's key again; call it inside a transaction that holds `meta`. */
+export async function noteKeyKnown(db: FloorDatabase, person: string): Promise<void> {
+  const lost = await readLostKeys(db);
+  if (!lost.includes(person)) return;
+  const value = lost.filter((one) => one !== person);
+  if (value.length === 0) await db.meta.delete('lostKeys');
+  else await db.meta.put({ key: 'lostKeys', value });
+}
+
+/** Learns from what the server said of records which of this tablet's keys it has forgotten. */
+export async function noteLostVerdicts(
+  db: FloorDatabase,
+  sent: readonly Pick<Sendable, 'id' | 'key'>[],
+  verdicts: Verdicts,
+): Promise<void> {
+  const waiting = new Set(verdicts.flatMap(({ id, code }) => (code === KEY_LOST ? [id] : [])));
+  if (waiting.size === 0) return;
+  const keys = new Set(sent.flatMap(({ id, key }) => (waiting.has(id) ? [key] : [])));
+  await db.transaction('rw', db.authorKeys, db.meta, async () => {
+    // Records of other tablets' keys, which this one brings back, are for those to see to.
+    const own = (await db.authorKeys.toArray()).filter(({ id }) => keys.has(id));
+    if (own.length > 0)
+      await noteLostKeys(
+        db,
+        own.map(({ person }) => person),
+      );
+  });
 }

@@ -104,9 +104,8 @@ async function lookForRefusals(db: FloorDatabase, job: string): Promise<void> {
   const untold = refused.filter(({ inTrail }) => typeof inTrail !== 'number');
   if (untold.length === 0) return;
   const told = new Map<string, number>();
-  await ofJob(db.entries, job).each(({ seq, recorded }) => {
+  for (const { seq, recorded } of await ofJob(db.entries, job).toArray())
     if (recorded.kind === 'refused') told.set(recorded.data.content, seq);
-  });
   for (const row of untold) await db.refused.put({ ...row, inTrail: told.get(row.contentHash) ?? null });
 }
 

@@ -1,5 +1,4 @@
 import { changeJob, ofJob, type FloorDatabase, type OutboxRow, type RefusedRow } from './database';
-import { noteLostKey } from './lost-keys';
 import type { Verdicts } from './sync-answer';
 
 const MAX_ENTRIES = 200;
@@ -23,10 +22,14 @@ export interface Batch {
 }
 
 /** The next records to send: each job's in order, none that was tried in this run or has arrived already. */
-export async function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): Promise<Batch> {
-  const lost = await db.refused.filter(({ inTrail }) => inTrail === null).toArray();
+export function nextBatch(db: FloorDatabase, tried: ReadonlySet<string>): Promise<Batch> {
+  return db.transaction('r', db.refused, db.outbox, () => readBatch(db, tried));
+}
+
+async function readBatch(db: FloorDatabase, tried: ReadonlySet<string>): Promise<Batch> {
+  const lost = (await db.refused.toArray()).filter(({ inTrail }) => inTrail === null);
   const jobs = new Set(lost.map(({ job }) => job));
-  await db.outbox.toCollection().eachPrimaryKey(([job]) => jobs.add(job));
+  for (const [job] of await db.outbox.toCollection().primaryKeys()) jobs.add(job);
   const rows: Sendable[] = [];
   let bytes = 0;
   for (const job of jobs) {
@@ -61,9 +64,6 @@ function bytesOf(row: Sendable): number {
   return new TextEncoder().encode(JSON.stringify(toWire(row))).length + 1;
 }
 
-/** The server was restored to a time before the author's key was enrolled. */
-const KEY_LOST = 'key-lost';
-
 /**
  * Writes down what the server said of each record. What it recorded stays in the outbox until the trail
  * brings it back in its place; what it refused is kept whole with the reason.
@@ -74,12 +74,12 @@ export async function applyVerdicts(
   verdicts: Verdicts,
   at: string,
 ): Promise<void> {
+  if (sent.length === 0) return;
   const byId = new Map(verdicts.map((verdict) => [verdict.id, verdict]));
-  await db.transaction('rw', db.outbox, db.refused, db.jobs, db.authorKeys, async () => {
+  await db.transaction('rw', db.outbox, db.refused, db.jobs, async () => {
     const changed = new Set<string>();
-    for (const { job, place, id, key } of sent) {
+    for (const { job, place, id } of sent) {
       const verdict = byId.get(id);
-      if (verdict?.code === KEY_LOST) await noteLostKey(db, key);
       // Of what was refused before, the trail says whether it is told of again.
       if (place === undefined) continue;
       const row = await db.outbox.get([job, place]);

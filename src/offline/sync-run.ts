@@ -7,14 +7,14 @@ import type { JobRow } from './database';
 import { keepDevice, readDevice, type Device } from './device';
 import { sendPhotos, sendPhotosAgain } from './photo-queue';
 import { fetchMissingPlans, pullWorkshop } from './prefetch';
-import { enrolLostKeys } from './lost-keys';
+import { noteLostVerdicts } from './lost-keys';
 import { callServer, type Outcome, type Trouble } from './server-call';
 import { instantOf, type Surroundings } from './surroundings';
 import { syncAnswer, type SyncAnswer } from './sync-answer';
 import { finishSignOuts } from './sign-out';
 import { applyJobAnswer } from './sync-pull';
 import { applyVerdicts, nextBatch, toWire, type Batch } from './sync-push';
-import { extendSessionsHourly } from './tablet';
+import { enrolLostKeys, extendSessionsHourly } from './tablet';
 
 /** As many as the server lets a tablet ask for at once. */
 const MAX_JOBS = 100;
@@ -36,9 +36,11 @@ export async function runSync(s: Surroundings): Promise<Outcome> {
     if (!answer.ok) return answer;
     const at = instantOf(s.now());
     await applyVerdicts(s.db, batch.rows, answer.body.verdicts, at);
+    await noteLostVerdicts(s.db, batch.rows, answer.body.verdicts);
     const { brought, isRestored } = await applyJobs(s, jobs, answer.body, at, behind);
     // What a restored server lacks goes first; whatever waited for it is worth another try.
-    const isAnew = (await enrolLostKeys(s, keyed)) || isRestored;
+    const isKeyed = batch.rows.length > 0 && (await enrolLostKeys(s, keyed));
+    const isAnew = isRestored || isKeyed;
     if (isAnew) tried.clear();
     else for (const { id } of batch.rows) tried.add(id);
     const isMoving = brought || batch.rows.length > 0;
@@ -55,9 +57,9 @@ const NOT_ENROLLED: Trouble = {
 
 /** Jobs made available offline, and any with a record that still has to arrive. */
 async function jobsToAskFor({ db }: Surroundings): Promise<string[]> {
-  const waiting = new Set<string>();
-  await db.outbox.toCollection().eachPrimaryKey(([job]) => waiting.add(job));
-  return db.jobs.filter((row) => row.availableOffline || waiting.has(row.id)).primaryKeys();
+  const waiting = new Set((await db.outbox.toCollection().primaryKeys()).map(([job]) => job));
+  const rows = await db.jobs.toArray();
+  return rows.filter((row) => row.availableOffline || waiting.has(row.id)).map(({ id }) => id);
 }
 
 async function nextJobs({ db }: Surroundings, behind: ReadonlySet<string>): Promise<JobRow[]> {

@@ -1,6 +1,6 @@
-import { findDevice } from './device';
-import { readWhoMustSignIn } from './lost-keys';
-import type { Whereabouts } from './database';
+import type { FloorDatabase, Whereabouts } from './database';
+import type { Device } from './device';
+import { lostKeysIn } from './lost-keys';
 import type { Surroundings } from './surroundings';
 
 /** What this tablet has still to send, and how sending goes. */
@@ -35,15 +35,14 @@ export interface LastSync {
   trouble?: { code: string; words: string } | undefined;
 }
 
-/** Counts what is on the disk; meant for a live query. */
+/** Counts what is on the disk; meant for a live query, so it asks as little as it can. */
 export async function readSyncStatus({ db }: Surroundings): Promise<Omit<SyncStatus, 'running' | 'words'>> {
-  const count = (where: Whereabouts) => db.outbox.where('where').equals(where).count();
-  const { meta, outbox, entries, refused, photos, authorKeys, workshop, signedIn } = db;
-  const tables = [meta, outbox, entries, refused, photos, authorKeys, workshop, signedIn];
+  const tables = [db.meta, db.outbox, db.entries, db.refused, db.photos, db.workshop];
   return db.transaction('r', tables, async () => {
-    const device = await findDevice(db);
-    const last = (await db.meta.get('sync'))?.value as LastSync | undefined;
-    const clock = await db.meta.get('clock');
+    const meta = new Map((await db.meta.toArray()).map(({ key, value }) => [key, value]));
+    const device = meta.get('device') as Device | undefined;
+    const last = meta.get('sync') as LastSync | undefined;
+    const count = (where: Whereabouts) => db.outbox.where('where').equals(where).count();
     const confirmed = device ? await db.entries.where('device').equals(device.id).count() : 0;
     return {
       onTablet: await count('on this tablet'),
@@ -51,13 +50,21 @@ export async function readSyncStatus({ db }: Surroundings): Promise<Omit<SyncSta
       sent: (await count('sent')) + confirmed,
       refused: await db.refused.count(),
       photos: await db.photos.where('sent').equals(0).count(),
-      signInAgain: await readWhoMustSignIn(db),
+      signInAgain: await namesOf(db, lostKeysIn(meta.get('lostKeys'))),
       lastSyncAt: last?.syncedAt,
       lastTriedAt: last?.triedAt,
       trouble: last?.trouble,
-      clockOffsetMs: clock?.value as number | undefined,
+      clockOffsetMs: meta.get('clock') as number | undefined,
     };
   });
+}
+
+/** The names of people who may have been forgotten by the workshop. */
+async function namesOf(db: FloorDatabase, people: readonly string[]): Promise<string[]> {
+  if (people.length === 0) return [];
+  const known = (await db.workshop.get('workshop'))?.people ?? [];
+  const names = new Map(known.map(({ id, name }) => [id, name]));
+  return people.map((person) => names.get(person) ?? 'Somebody who was added after the backup').sort();
 }
 
 /** Where the records are, such as "12 on this tablet, 1 refused". */

@@ -7,6 +7,7 @@ import type { Verdict } from '@/domain/job-state';
 import { newAuthorKey } from './author-key';
 import { changeJob, type AuthorKeyRow, type SignedInRow } from './database';
 import { keepDevice, readDevice, type Device } from './device';
+import { noteKeyKnown, noteLostKeys, readLostKeys } from './lost-keys';
 import { callServer, type Outcome, type Trouble } from './server-call';
 import type { Surroundings } from './surroundings';
 
@@ -55,11 +56,17 @@ async function askToEnrol(s: Surroundings, device: Device, id: string, name: str
   await db.transaction('rw', db.meta, db.authorKeys, db.counters, db.jobs, async () => {
     await keepDevice(db, { id, name, credential: answer.body.credential });
     if (isSame) {
-      await db.authorKeys.filter(({ enrolled }) => enrolled !== undefined).modify({ mustEnrolAgain: true });
+      const keys = await db.authorKeys.toArray();
+      const enrolled = keys.filter((key) => key.enrolled !== undefined);
+      await noteLostKeys(
+        db,
+        enrolled.map(({ person }) => person),
+      );
       return;
     }
     // Keys and numbers belong to the old id: new ones from here, and every open view must notice.
     await db.authorKeys.clear();
+    await db.meta.delete('lostKeys');
     await db.counters.toCollection().modify({ deviceSeq: 0 });
     for (const job of await db.jobs.toCollection().primaryKeys()) await changeJob(db, job, {});
   });
@@ -75,23 +82,39 @@ const enrolledKey = z.object({ id: z.string(), workshop: z.int() });
  */
 export async function enrolAuthorKey(s: Surroundings, person: string): Promise<Outcome> {
   const key = (await s.db.authorKeys.get(person)) ?? (await makeAuthorKey(s, person));
-  if (isKnown(key)) return { ok: true };
+  const isLost = (await readLostKeys(s.db)).includes(person);
+  if (key.enrolled !== undefined && !isLost) return { ok: true };
   const active = await callServer(s, { path: '/api/me', answer: activePerson, without: 'tablet' });
   if (!active.ok) return active;
   if (active.body.actor.personId !== person) return OTHER_SESSION;
   const answer = await callServer(s, {
     method: 'POST',
     path: '/api/keys',
-    body: { publicKey: key.publicKey, ...(key.mustEnrolAgain ? { again: true } : {}) },
+    body: { publicKey: key.publicKey, ...(isLost ? { again: true } : {}) },
     answer: enrolledKey,
   });
   if (!answer.ok) return answer;
-  await s.db.authorKeys.update(person, { enrolled: answer.body.workshop, mustEnrolAgain: undefined });
+  await s.db.transaction('rw', s.db.authorKeys, s.db.meta, async () => {
+    await s.db.authorKeys.update(person, { enrolled: answer.body.workshop });
+    await noteKeyKnown(s.db, person);
+  });
   return { ok: true };
 }
 
-function isKnown({ enrolled, mustEnrolAgain }: AuthorKeyRow): boolean {
-  return enrolled !== undefined && !mustEnrolAgain;
+/**
+ * Enrols again the key that a restored server has forgotten, of whoever's session is the active one; the others have
+ * to sign in. `tried` holds who was tried already. Tells whether one was enrolled, so that what waits for it is
+ * worth another try.
+ */
+export async function enrolLostKeys(s: Surroundings, tried: Set<string>): Promise<boolean> {
+  let isEnrolled = false;
+  for (const person of await readLostKeys(s.db)) {
+    if (tried.has(person) || !(await s.db.signedIn.get(person))) continue;
+    tried.add(person);
+    const outcome = await enrolAuthorKey(s, person);
+    isEnrolled ||= outcome.ok;
+  }
+  return isEnrolled;
 }
 
 const OTHER_SESSION: Trouble = {
@@ -187,15 +210,17 @@ export interface SignedInHere extends SignedInRow {
 
 /** Everybody who is signed in at this tablet, and what the workshop knows of their keys. */
 export async function listSignedIn(s: Surroundings): Promise<SignedInHere[]> {
-  const [people, keys] = await Promise.all([
+  const [people, keys, lost] = await Promise.all([
     s.db.signedIn.orderBy('person').toArray(),
     s.db.authorKeys.toArray(),
+    readLostKeys(s.db),
   ]);
-  const byPerson = new Map(keys.map((key) => [key.person, key]));
-  return people.map((row) => {
-    const key = byPerson.get(row.person);
-    return { ...row, hasKey: key?.enrolled !== undefined, mustSignIn: key?.mustEnrolAgain === true };
-  });
+  const withKey = new Set(keys.filter((key) => key.enrolled !== undefined).map((key) => key.person));
+  return people.map((row) => ({
+    ...row,
+    hasKey: withKey.has(row.person),
+    mustSignIn: lost.includes(row.person),
+  }));
 }
 
 /** The person who said that they are working here: a claim, not proof. */

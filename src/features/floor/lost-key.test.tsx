@@ -1,5 +1,6 @@
 import { render, screen } from '@testing-library/react';
 import { expect, it } from 'vitest';
+import { noteLostKeys } from '@/offline/lost-keys';
 import { setWorking } from '@/offline/tablet';
 import { OfflineServer } from '../../../tests/support/offline-server';
 import { openTablet } from '../../../tests/support/offline-tablet';
@@ -10,7 +11,7 @@ import { StartScreen } from './StartScreen';
 it('tells on the first screen whose key a restored server has forgotten, and what to do', async () => {
   const { offline } = await openTablet(new OfflineServer(), { people: ['tech', 'mate'] });
   await setWorking(offline, 'tech');
-  await offline.db.authorKeys.update('mate', { mustEnrolAgain: true });
+  await noteLostKeys(offline.db, ['mate']);
   const store = createFloorStore(offline);
   offline.sync.subscribe((sync) => store.setState({ sync }));
   offline.sync.start();
