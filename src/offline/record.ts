@@ -284,6 +284,8 @@ async function writeAll(
       row?.revision === view.row.revision && deviceSeq === view.deviceSeq && present?.id === key.id;
     if (!isUnchanged) return undefined;
     const place = counter?.place ?? 0;
+    // What other tablets did and a restore took back is part of what was seen here, and the server can't know it.
+    const isOnLost = view.pending.some((one) => one.restored && one.entry.device !== signed[0]?.entry.device);
     const rows = signed.map((one, index): OutboxRow => ({
       job: view.job,
       place: place + index + 1,
@@ -291,6 +293,7 @@ async function writeAll(
       ...one,
       key: key.id,
       where: 'on this tablet',
+      ...(isOnLost ? { restored: true } : {}),
     }));
     await db.outbox.bulkAdd(rows);
     await keepPhotos(db, view.job, photos, keptAt);

@@ -180,6 +180,26 @@ describe('a server restored from a backup', () => {
     ]);
   });
 
+  it('hears which new records were made on what others did and it has lost', async () => {
+    const { tablet: second, offline: other } = await openTablet(server, { job, people: ['mate'] });
+    const backup = server.backup();
+    await recordRemarks({ tablet: second, offline: other }, job, { count: 1, by: 'mate' });
+    must(await other.sync.now());
+    must(await offline.sync.now());
+    server.restore(backup);
+    server.onAnswer = (path, answer) => (path === '/api/sync' ? cutOffAfter(answer) : answer);
+    await offline.sync.now();
+    server.isAway = false;
+    server.onAnswer = (_path, answer) => answer;
+    await remarks({ from: 2, count: 1 });
+    must(await offline.sync.now());
+    const sent = server.requests.at(-1)!.body as { entries: { entry: { by: string }; restored?: true }[] };
+    expect(sent.entries.map(({ entry, restored }) => [entry.by, restored])).toEqual([
+      ['mate', true],
+      ['tech', true],
+    ]);
+  });
+
   it('hears again of what it refused, and then takes what waits behind it', async () => {
     const backup = server.backup();
     server.judge = () => ({ verdict: 'refused', code: 'overtaken', reason: 'Somebody was quicker.' });
