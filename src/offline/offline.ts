@@ -1,6 +1,7 @@
 import { createJobStore, type JobStore } from './job-store';
 import { browserSurroundings, type Surroundings } from './surroundings';
-import { createSyncLoop, type SyncLoop } from './sync';
+import { NO_NETWORK, type Outcome } from './server-call';
+import { createSyncLoop, type SyncLoop, type SyncRun } from './sync';
 
 /** What the offline part is to a page. */
 export interface Offline extends Surroundings {
@@ -8,13 +9,26 @@ export interface Offline extends Surroundings {
   sync: SyncLoop;
 }
 
+/** The surroundings, and a run of the sync where it is not to be loaded first. */
+interface OpenedWith extends Surroundings {
+  run?: SyncRun | undefined;
+}
+
 /** Opens the tablet's records; once a page, in the browser. `sync.start()` begins to send. */
-export function openOffline(surroundings: Surroundings = browserSurroundings()): Offline {
+export function openOffline(
+  { run = runWhenLoaded, ...surroundings }: OpenedWith = browserSurroundings(),
+): Offline {
   return {
     ...surroundings,
     jobs: createJobStore(surroundings.db),
-    sync: createSyncLoop(surroundings),
+    sync: createSyncLoop(surroundings, run),
   };
+}
+
+/** A record can be made before what sends it is there: that part of the program is loaded by the first run. */
+async function runWhenLoaded(s: Surroundings): Promise<Outcome> {
+  const part = await import('./sync-run').catch(() => undefined);
+  return part ? part.runSync(s) : { ...NO_NETWORK };
 }
 
 let ofThisPage: Offline | undefined;

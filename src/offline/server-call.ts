@@ -58,12 +58,7 @@ export async function callServer<S extends z.ZodMiniType>(
     text = await response.text();
   } catch {
     // fetch tells every failure of the network by throwing, and why is not for a page to know.
-    return {
-      ok: false,
-      code: 'no-network',
-      why: 'The server was not reached. Nothing is lost: the tablet tries again by itself.',
-      offline: true,
-    };
+    return { ...NO_NETWORK };
   }
   const answer = readAnswer(response, text, call.answer);
   if (answer.ok || !device) return answer;
@@ -71,6 +66,13 @@ export async function callServer<S extends z.ZodMiniType>(
   await noteForgotten(s.db, device);
   return answer.code === 'lost-tablet' ? answer : { ...ENROL_AGAIN };
 }
+
+export const NO_NETWORK: Trouble = {
+  ok: false,
+  code: 'no-network',
+  why: 'The server was not reached. Nothing is lost: the tablet tries again by itself.',
+  offline: true,
+};
 
 const ENROL_AGAIN: Trouble = {
   ok: false,

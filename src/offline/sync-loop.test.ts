@@ -1,4 +1,4 @@
-import { afterEach, beforeEach, describe, expect, it } from 'vitest';
+import { afterEach, beforeEach, describe, expect, it, vi } from 'vitest';
 import { OfflineServer } from '../../tests/support/offline-server';
 import { openTablet, recorded, type TestTablet } from '../../tests/support/offline-tablet';
 import { smallPlan } from '../../tests/support/small-documents';
@@ -41,6 +41,32 @@ describe('when a tablet syncs', () => {
     await first;
     expect(syncs()).toBe(before + 1);
     expect(tablet.timers.map(({ ms }) => ms)).toEqual([60_000]);
+  });
+
+  it('waits with the first run where it is asked to, and shows meanwhile what is here', async () => {
+    const before = syncs();
+    const here = until(({ onTablet }) => onTablet === 1);
+    recorded(await recordEntries(offline, job, [rags], { by: 'tech' }));
+    offline.sync.start(1000);
+    await here;
+    const [timer] = tablet.timers;
+    expect([syncs(), timer!.ms]).toEqual([before, 1000]);
+    const first = ended();
+    timer!.then();
+    await first;
+    expect(syncs()).toBeGreaterThan(before);
+  });
+
+  it('takes it for a lost network where what sends can’t be loaded, and tries again', async () => {
+    vi.doMock('./sync-run', () => {
+      throw new TypeError('Failed to fetch dynamically imported module');
+    });
+    try {
+      expect(await offline.sync.now()).toMatchObject({ ok: false, code: 'no-network' });
+    } finally {
+      vi.doUnmock('./sync-run');
+    }
+    expect(await offline.sync.now()).toEqual({ ok: true });
   });
 
   it('does so soon after a record, and tells where the record is', async () => {

@@ -5,7 +5,6 @@
 import { liveQuery } from 'dexie';
 import type { Outcome } from './server-call';
 import { instantOf, type Surroundings } from './surroundings';
-import { runSync } from './sync-run';
 import { readSyncStatus, statusWords, type LastSync, type SyncStatus } from './sync-status';
 
 const SECOND = 1000;
@@ -17,9 +16,12 @@ const LONGEST_RETRY_MS = 5 * MINUTE;
 /** Touches in quick succession go out together. */
 const NUDGE_MS = 250;
 
+/** One run over everything, as `runSync` does it. */
+export type SyncRun = (s: Surroundings) => Promise<Outcome>;
+
 export interface SyncLoop {
-  /** Begins to send by itself; safe to call again. */
-  start(): void;
+  /** Begins to send by itself, if asked only after a time; safe to call again. */
+  start(afterMs?: number): void;
   /** Ends that; a run that has begun comes to its end. */
   stop(): void;
   /** Runs once, after any run that is under way, and tells how it went. */
@@ -31,7 +33,7 @@ export interface SyncLoop {
 }
 
 /** The sync of one tab; call `start` once the page is there. */
-export function createSyncLoop(s: Surroundings): SyncLoop {
+export function createSyncLoop(s: Surroundings, run: SyncRun): SyncLoop {
   let isStarted = false;
   let isRunning = false;
   let failures = 0;
@@ -51,20 +53,20 @@ export function createSyncLoop(s: Surroundings): SyncLoop {
   function now(): Promise<Outcome> {
     // A run that has not begun yet serves everybody who asks meanwhile.
     if (pending) return pending;
-    const run = lastRun.then(async () => {
+    const next = lastRun.then(async () => {
       pending = undefined;
       return runOnce();
     });
-    pending = run;
-    lastRun = run.catch(() => undefined);
-    return run;
+    pending = next;
+    lastRun = next.catch(() => undefined);
+    return next;
   }
 
   async function runOnce(): Promise<Outcome> {
     isRunning = true;
     show({});
     try {
-      const outcome = await oneAtATime(s, () => runSync(s));
+      const outcome = await oneAtATime(s, () => run(s));
       failures = outcome.ok ? 0 : failures + 1;
       await noteRun(s, outcome);
       return outcome;
@@ -95,14 +97,15 @@ export function createSyncLoop(s: Surroundings): SyncLoop {
   }
 
   return {
-    start() {
+    start(afterMs = 0) {
       if (isStarted) return;
       isStarted = true;
       const watched = liveQuery(() => readSyncStatus(s)).subscribe((read) => show(read));
       stopWatching = () => watched.unsubscribe();
       window.addEventListener('online', runQuietly);
       document.addEventListener('visibilitychange', onVisible);
-      runQuietly();
+      if (afterMs > 0) plan(afterMs);
+      else runQuietly();
     },
     stop() {
       if (!isStarted) return;

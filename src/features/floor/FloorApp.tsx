@@ -16,6 +16,8 @@ const StartScreen = lazy(() => import('./StartScreen').then((m) => ({ default: m
 const WORKER = '/sw.js';
 /** The service worker fetches everything anew where there is a new version: the first action goes before. */
 const WORKER_AFTER_MS = 2000;
+/** A run of the sync loads what it needs: before that, too. */
+const SYNC_AFTER_MS = 1000;
 
 /** The Floor: one page that reads everything from this tablet, so that it opens with no network. */
 export function FloorApp() {
@@ -67,7 +69,7 @@ async function bringAndOpen(
 function startFloor(store: FloorStore): () => void {
   const { offline, reload } = store.getState();
   const stopSync = offline.sync.subscribe((sync) => store.setState({ sync }));
-  offline.sync.start();
+  offline.sync.start(SYNC_AFTER_MS);
   void reload().then(() => catchUp(store));
   const cancelWorker = offline.after(WORKER_AFTER_MS, () => {
     keepWorker().catch(() => {

@@ -1,6 +1,7 @@
 /* Simulated tablets: a disk that lasts, pages on it that come and go, and a clock of its own. */
 import { webcrypto } from 'node:crypto';
 import { closeOffline, openOffline, type Offline } from '@/offline/offline';
+import { runSync } from '@/offline/sync-run';
 import type { Actor } from '@/server/actor';
 import { abortTransactions, openDisk, setFull, type Schema } from './disk';
 import type { Network } from './network';
@@ -75,6 +76,8 @@ export class Tab {
   constructor(readonly tablet: SimTablet) {
     const { around } = tablet;
     this.offline = openOffline({
+      // Loading a module takes no turn, and so has no place in the order of events.
+      run: runSync,
       db: openDisk(tablet.disk, tablet.schema),
       fetch: (path, init = {}) => this.fetch(path, init),
       now: () => tablet.now(),

@@ -16,6 +16,7 @@ import { openOffline, type Offline } from '@/offline/offline';
 import type { PreparedPhoto } from '@/offline/photo';
 import { makeAvailableOffline, pullWorkshop } from '@/offline/prefetch';
 import type { Outcome } from '@/offline/server-call';
+import { runSync } from '@/offline/sync-run';
 import { enrolAuthorKey, enrolTablet, rememberSignIn } from '@/offline/tablet';
 import { POST as postJobs } from '@/pages/api/jobs/index';
 import { POST as postPrepare } from '@/pages/api/jobs/prepare';
@@ -297,6 +298,7 @@ async function fillTablet(
 ): Promise<Rows> {
   let session: Person = people.owner;
   const offline: Offline = openOffline({
+    run: runSync,
     db: openDisk(`beginning-${process.pid}-${number}`, 'present'),
     fetch: async (address, init = {}) => {
       const { status, text } = await server.answer(address, init, session);
