@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { angleTool, buildWorkshop, Journal, torqueTool } from '../../tests/support/journal';
 import { smallPlan } from '../../tests/support/small-documents';
+import type { Recorded } from './entry';
 import { nextSteps, progressOf, replay } from './job';
 import { photosOf } from './job-photos';
 import { markCount } from './job-signing-rules';
@@ -766,7 +767,9 @@ describe('totality', () => {
     const conflicting = (number: number, device: string, code = 'already-done') => {
       const id = `0190a0a0-0000-7000-8000-0000000ffff${number}`;
       const server = { seq: 99 + number, recordedAt: first.at, prev: '', clockOffsetMs: 0 };
-      journal.fold({ ...first, id, device, ...server, conflict: { code, why: `Reason ${number}.` } });
+      const conflict = { code, why: `Reason ${number}.` };
+      const recorded: Recorded = { ...first, id, device, ...server, conflict };
+      journal.fold(recorded);
     };
     const open = () => journal.state.deviations.map(({ words }) => words);
     conflicting(1, 'tablet-2');
@@ -780,7 +783,7 @@ describe('totality', () => {
       'Reason 3.',
       'Reason 5.',
     ]);
-    const [{ id }] = journal.state.deviations as [{ id: string }];
+    const { id } = journal.state.deviations[0]!;
     const data = { deviation: id, disposition: 'accept as is', reason: 'looked at' } as const;
     journal.fold({ ...journal.draft('deviation-disposed', data, { by: 'sup' }), basis: 104 });
     conflicting(6, 'tablet-2');
@@ -794,9 +797,10 @@ describe('totality', () => {
       const id = `0190a0a0-0000-7000-8000-000000000${seq}`;
       const server = { seq, recordedAt: first.at, prev: '', clockOffsetMs: 0 };
       const conflict = { code: 'order', why: `Reason ${seq}.` };
-      journal.fold({ ...first, id, device: 'tablet-2', ...server, conflict });
+      const recorded: Recorded = { ...first, id, device: 'tablet-2', ...server, conflict };
+      journal.fold(recorded);
     }
-    const [{ id: deviation }] = journal.state.deviations as [{ id: string }];
+    const { id: deviation } = journal.state.deviations[0]!;
     const data = { deviation, disposition: 'accept as is', reason: 'looked at' } as const;
     journal.fold({ ...journal.draft('deviation-disposed', data, { by: 'sup' }), basis: 902 });
     expect(journal.state.deviations).toMatchObject([
