@@ -22,6 +22,7 @@ describe('the workshop’s trail in words', () => {
         record('head-signed', { trail: 'j1', seq: 40, hash: 'h' }, 8),
         record('document-released', { documentKind: 'engine', document: 't4', revision: 2 }, 9),
         record('document-released', { documentKind: 'procedure', document: 'strip', revision: 1 }, 10),
+        record('workshop-key-renewed', { key: 'ab'.repeat(32), before: 'cd'.repeat(32), since: 's' }, 11),
       ),
     ).toEqual([
       'Ines Vale added as technician',
@@ -34,6 +35,7 @@ describe('the workshop’s trail in words', () => {
       'Head signed: job 0147, entry 40',
       'Engine sheet t4, revision 2, released',
       'Procedure strip, revision 1, released',
+      'The workshop signs with key abababababababab from here on, vouched for by cdcdcdcdcdcdcdcd, the one before it',
     ]);
   });
 

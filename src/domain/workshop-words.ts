@@ -83,6 +83,8 @@ function wordsOf({ kind, data }: WorkshopRecord, names: ReadonlyMap<string, stri
       return data.address === 'set'
         ? 'Signed heads are mailed to a witness address from here on'
         : 'Signed heads are mailed nowhere from here on';
+    case 'workshop-key-renewed':
+      return `The workshop signs with key ${String(data.key).slice(0, 16)} from here on, vouched for by ${String(data.before).slice(0, 16)}, the one before it`;
     case 'person-added':
       return `${named(data.person)} added as ${list(data.roles)}`;
     case 'person-renamed':

@@ -6,6 +6,7 @@ import { type Auth, makeAuth } from './auth';
 import { type Clock, type Ids, randomIds, stamp, systemClock } from './clock';
 import { type Db, openDatabase } from './database';
 import { forgetStoredFolds } from './job-fold';
+import { noteKeyRenewals } from './key-renewals';
 import { type Keys, openKeys } from './keys';
 import { readSettings, type Settings } from './settings';
 
@@ -41,6 +42,7 @@ export async function openApp(settings: AppSettings, options: OpenOptions = {}):
   try {
     await migrate(db);
     await forgetStoredFolds(db);
+    await noteKeyRenewals({ db, keys, clock, ids });
   } catch (error) {
     await db.destroy();
     throw error;

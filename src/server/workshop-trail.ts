@@ -19,6 +19,7 @@ export type EntryData =
 export const WORKSHOP_KINDS = [
   'workshop-set',
   'witness-address-changed',
+  'workshop-key-renewed',
   'person-added',
   'person-renamed',
   'roles-changed',

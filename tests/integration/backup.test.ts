@@ -17,6 +17,7 @@ import { verifyTrail } from '@/domain/trail';
 import { GET as getExport } from '@/pages/api/jobs/[id]/export';
 import { BackupError, writeBackup } from '@/server/backup';
 import { closeApp, openApp, provideApp } from '@/server/compose';
+import { noteKeyRenewals } from '@/server/key-renewals';
 import { renewHeadKey } from '@/server/keys';
 import { photoStorage } from '@/server/photos';
 import { checkRecord } from '@/server/record-check';
@@ -280,6 +281,17 @@ describe('a renewed key of the workshop', () => {
         ok: true,
         key: renewed.now,
       });
+      const told = () =>
+        app.db
+          .selectFrom('workshop_entry')
+          .select('body')
+          .where('kind', '=', 'workshop-key-renewed')
+          .execute();
+      const [entry, ...others] = await told();
+      expect(others).toEqual([]);
+      expect(JSON.parse(entry!.body)).toMatchObject({ data: { key: renewed.now, before } });
+      await noteKeyRenewals(app);
+      expect(await told()).toHaveLength(1);
     } finally {
       await closeApp(app);
     }
