@@ -1,5 +1,6 @@
+import { all, create } from 'mathjs';
 import { describe, expect, it } from 'vitest';
-import { convert, type Unit } from '@/domain/units';
+import { convert, measureTheSame, UNITS, type Unit } from '@/domain/units';
 
 describe('units against NIST SP 811 appendix B.8', () => {
   it.each<[number, Unit, number, Unit]>([
@@ -47,7 +48,8 @@ describe('units against dual-unit figures of public technical manuals', () => {
     expect(Math.abs(convert(inches, 'in', 'mm') - millimetres)).toBeLessThanOrEqual(0.0005);
   });
 
-  // TM 5-2815-241-34&P p. 2-64 prints 70 to 75 ft·lb as 98 to 105 N·m (a factor of 1.4); p. 2-224 has it right.
+  // TM 5-2815-241-34&P p. 2-64 prints 70 to 75 ft·lb as 98 to 105 N·m (a factor of 1.4); p. 2-224 has it right. A
+  // sheet here names one unit a figure, so a wrong pair can't get in; the check is what whoever copies one needs.
   it.each([
     ['p. 2-64', [98, 105], false],
     ['p. 2-224', [95, 102], true],
@@ -56,5 +58,61 @@ describe('units against dual-unit figures of public technical manuals', () => {
     expect(exact[0]).toBeCloseTo(94.907, 3);
     expect(exact[1]).toBeCloseTo(101.686, 3);
     expect(exact.every((value, index) => Math.abs(printed[index]! / value - 1) <= 0.01)).toBe(agrees);
+  });
+
+  // The passes of the same page that follow
+  it.each([
+    [140, 189.815],
+    [150, 203.373],
+  ])('%d lbf·ft is %d N·m', (poundFeet, newtonMetres) => {
+    expect(convert(poundFeet, 'lbf·ft', 'N·m')).toBeCloseTo(newtonMetres, 3);
+  });
+});
+
+// A library that knows units by factors of its own. It has no imperial quart, which is a quarter of the gallon of
+// 4.54609 L; its psi is cut off at 12 digits (6894.75729276459 Pa, exactly 6894.757293168361…).
+describe('units against an independent library, every pair both ways', () => {
+  const math = create(all);
+  math.createUnit('imperialgallon', '4.54609 L');
+  const names: Record<Unit, [name: string, share: number]> = {
+    'N·m': ['N m', 1],
+    'lbf·ft': ['lbf ft', 1],
+    'lbf·in': ['lbf in', 1],
+    'kgf·m': ['kgf m', 1],
+    mm: ['mm', 1],
+    µm: ['um', 1],
+    in: ['inch', 1],
+    thou: ['mil', 1],
+    deg: ['deg', 1],
+    rad: ['rad', 1],
+    '°C': ['degC', 1],
+    '°F': ['degF', 1],
+    kPa: ['kPa', 1],
+    bar: ['bar', 1],
+    psi: ['psi', 1],
+    km: ['km', 1],
+    mi: ['mile', 1],
+    L: ['L', 1],
+    'US qt': ['quart', 1],
+    'imp qt': ['imperialgallon', 4],
+    N: ['N', 1],
+    kN: ['kN', 1],
+    lbf: ['lbf', 1],
+  };
+  const pairs = UNITS.flatMap((from) =>
+    UNITS.filter((to) => to !== from && measureTheSame(from, to)).map((to): [Unit, Unit] => [from, to]),
+  );
+
+  it('has them all', () => {
+    expect(pairs).toHaveLength(4 * 3 + 4 * 3 + 2 + 2 + 3 * 2 + 2 + 3 * 2 + 3 * 2);
+  });
+
+  it.each(pairs)('%s to %s', (from, to) => {
+    const [[source, ofSource], [target, ofTarget]] = [names[from], names[to]];
+    const allowed = from === 'psi' || to === 'psi' ? 1e-10 : 1e-12;
+    for (const value of [0.003, 1, 37.5, 4200]) {
+      const expected = math.unit(value / ofSource, source).toNumber(target) * ofTarget;
+      expect(Math.abs(convert(value, from, to) - expected)).toBeLessThanOrEqual(Math.abs(expected) * allowed);
+    }
   });
 });
