@@ -220,6 +220,8 @@ export interface Workshop {
     state: 'in use' | 'withdrawn';
     cycleLimit: number | null;
     cyclesUsed: number | null;
+    /** Why its last calibration failed; a tablet that has not heard since then has none. */
+    failure?: string | null | undefined;
   }[];
 }
 

@@ -22,6 +22,14 @@ describe('fitness', () => {
     });
   });
 
+  it('bars a tool whose last calibration failed from class A, however far its date is off', () => {
+    const failed = { ...wrench, failure: 'at 20 N·m there are 4 readings, and 5 are needed' };
+    const reasons = ['its last calibration failed: at 20 N·m there are 4 readings, and 5 are needed'];
+    expect(fitness(failed, use, day)).toEqual({ fit: false, reasons });
+    expect(fitness(failed, { ...use, criticalClass: 'B' }, day)).toEqual({ fit: true, reasons });
+    expect(fitness({ ...wrench, failure: null }, use, day).fit).toBe(true);
+  });
+
   it('still counts the cycle limit itself', () => {
     expect(fitness({ ...wrench, cyclesUsed: 5000 }, use, day).fit).toBe(true);
     expect(fitness({ ...wrench, cyclesUsed: 5001 }, use, day).fit).toBe(false);

@@ -15,7 +15,23 @@ export interface Tool {
   state: 'in use' | 'withdrawn';
   cycleLimit: number | null;
   cyclesUsed: number | null;
+  /** Type and class of a torque tool by ISO 6789-1:2017; null or absent where they are not known. */
+  torqueType?: TorqueToolType | null | undefined;
+  torqueClass?: TorqueToolClass | null | undefined;
+  /** Why its last calibration failed, in words; null or absent where it did not. */
+  failure?: string | null | undefined;
 }
+
+/** I indicates the torque, II is set to one. */
+export const TORQUE_TOOL_TYPES = ['I', 'II'] as const;
+export type TorqueToolType = (typeof TORQUE_TOOL_TYPES)[number];
+export const TORQUE_TOOL_CLASSES = ['A', 'B', 'C', 'D', 'E', 'F', 'G'] as const;
+export type TorqueToolClass = (typeof TORQUE_TOOL_CLASSES)[number];
+/** The classes that each type has: ISO 6789-1:2017, from memory. */
+export const CLASSES_OF_TYPE: Readonly<Record<TorqueToolType, readonly TorqueToolClass[]>> = {
+  I: ['A', 'B', 'C', 'D', 'E'],
+  II: TORQUE_TOOL_CLASSES,
+};
 
 /** What a tool is wanted for: the kind of tool, the largest or only value it has to reach, and for which class. */
 export interface ToolUse {
@@ -26,7 +42,7 @@ export interface ToolUse {
 }
 
 /** Tools that mean nothing without a calibration. */
-const CALIBRATED_KINDS: readonly string[] = [
+export const CALIBRATED_KINDS: readonly string[] = [
   'torque wrench',
   'angle gauge',
   'micrometer',
@@ -34,13 +50,13 @@ const CALIBRATED_KINDS: readonly string[] = [
   'pressure gauge',
 ];
 /** A torque wrench is trusted in its upper four fifths where no lower end is marked (ISO 6789:2003). */
-const FIFTHS = 5;
+export const FIFTHS = 5;
 
 /**
  * Whether a tool may be used on a day (YYYY-MM-DD in the workshop's zone), and what speaks against it, in words
  * that follow "this tool:". A tool of another kind or withdrawn fits nothing. One that is not known, out of its
- * range, past its date or past its cycle limit is barred from class A; for B and C it is a warning. The due date
- * itself and the limits themselves still count.
+ * range, past its date, past its cycle limit or failed by its last calibration is barred from class A; for B and C
+ * it is a warning. The due date itself and the limits themselves still count.
  */
 export function fitness(
   tool: Tool | undefined,
@@ -54,7 +70,9 @@ export function fitness(
     ...(tool.kind === use.kind ? [] : [`its kind is ${tool.kind}, and this needs ${use.kind}`]),
     ...(tool.state === 'in use' ? [] : ['it is withdrawn from use']),
   ];
+  const { failure = null } = tool;
   const doubts = [
+    ...(failure === null ? [] : [`its last calibration failed: ${failure}`]),
     ...dateDoubts(tool, on),
     ...cycleDoubts(tool),
     ...(tool.kind === use.kind ? rangeDoubts(tool, use) : []),
@@ -80,16 +98,15 @@ export function deviationPercent({ set, reference }: { set: number; reference: n
  * torque in N·m, and up to 10 N·m most classes are given more. Source: ISO 6789-1:2017, 5.1.5.
  */
 export function permissibleDeviation(tool: {
-  type: 'I' | 'II';
-  class: 'A' | 'B' | 'C' | 'D' | 'E' | 'F' | 'G';
+  type: TorqueToolType;
+  class: TorqueToolClass;
   maximum: number;
 }): number {
   requirePositive(tool.maximum, 'largest torque');
-  const classes = { I: 'ABCDE', II: 'ABCDEFG' } as const;
   const closer = { I: 'BCE', II: 'ABC' } as const;
-  if (!Object.hasOwn(classes, tool.type))
+  if (!Object.hasOwn(CLASSES_OF_TYPE, tool.type))
     throw new RangeError(`There is no type ${tool.type} of torque tool.`);
-  if (tool.class.length !== 1 || !classes[tool.type].includes(tool.class)) {
+  if (!CLASSES_OF_TYPE[tool.type].includes(tool.class)) {
     throw new RangeError(`Torque tools of type ${tool.type} have no class ${tool.class}.`);
   }
   return closer[tool.type].includes(tool.class) && tool.maximum > 10 ? 4 : 6;

@@ -39,6 +39,7 @@ const workshopAnswer = z.object({
       state: z.enum(['in use', 'withdrawn']),
       cycleLimit: z.nullable(z.int()),
       cyclesUsed: z.nullable(z.int()),
+      failure: z.optional(nullableText),
     }),
   ),
   sealingKey: z.object({ id: z.string(), publicKey: z.string() }),
