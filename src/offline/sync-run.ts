@@ -105,6 +105,13 @@ async function applyJobs(
   return { brought, isRestored };
 }
 
+/** How far off this tablet's clock is; a change of less than a second is nothing to write down. */
+async function noteClock({ db }: Surroundings, offsetMs: number): Promise<void> {
+  const before = (await db.meta.get('clock'))?.value as number | undefined;
+  if (before !== undefined && Math.abs(before - offsetMs) < 1000) return;
+  await db.meta.put({ key: 'clock', value: offsetMs });
+}
+
 /** The workshop, missing plans and photographs, once the records are there. */
 async function afterwards(
   s: Surroundings,
@@ -112,7 +119,7 @@ async function afterwards(
   { workshop: workshopSeq, clockOffsetMs, restoredAt }: SyncAnswer,
 ): Promise<Outcome> {
   if (device.mustEnrolAgain) await keepDevice(s.db, { ...device, mustEnrolAgain: undefined });
-  if (clockOffsetMs !== undefined) await s.db.meta.put({ key: 'clock', value: clockOffsetMs });
+  if (clockOffsetMs !== undefined) await noteClock(s, clockOffsetMs);
   // Whatever else fails: a handover waits at the server for photographs, and for nothing else of these.
   if (restoredAt) await sendPhotosAgain(s, restoredAt);
   const photos = await sendPhotos(s);

@@ -1,5 +1,12 @@
 import SqliteDatabase from 'better-sqlite3';
-import { Kysely, SqliteAdapter, SqliteDialect, type Transaction } from 'kysely';
+import {
+  Kysely,
+  SqliteAdapter,
+  type SqliteDatabase as KyselyDatabase,
+  SqliteDialect,
+  type SqliteStatement as KyselyStatement,
+  type Transaction,
+} from 'kysely';
 import type { Database } from '@db/tables';
 
 /** The database outside a transaction. Inside one, use the transaction alone: there is one connection. */
@@ -34,5 +41,30 @@ export function openDatabase(file: string): Db {
   sqlite.pragma('foreign_keys = ON');
   sqlite.pragma('recursive_triggers = ON');
   sqlite.pragma('busy_timeout = 5000');
-  return new Kysely<Database>({ dialect: new WitnessmarkSqliteDialect({ database: sqlite }) });
+  return new Kysely<Database>({
+    dialect: new WitnessmarkSqliteDialect({ database: keepStatements(sqlite) }),
+  });
+}
+
+/** More than the program has; texts with lists of values in them come in many lengths. */
+const STATEMENTS_KEPT = 1000;
+const CHANGES_TABLES = /^\s*(create|alter|drop|vacuum|pragma)\b/i;
+const READS_OR_WRITES_ROWS = /^\s*(select|insert|update|delete)\b/i;
+
+/** Prepares each text once: what is asked with every request is most of what the server asks. */
+function keepStatements(sqlite: SqliteDatabase.Database): KyselyDatabase {
+  const kept = new Map<string, KyselyStatement>();
+  return {
+    prepare(text) {
+      const known = kept.get(text);
+      if (known !== undefined) return known;
+      // Nothing that was prepared outlives a change of the tables.
+      const isOfRows = READS_OR_WRITES_ROWS.test(text);
+      if (kept.size >= STATEMENTS_KEPT || (!isOfRows && CHANGES_TABLES.test(text))) kept.clear();
+      const made = sqlite.prepare(text) as unknown as KyselyStatement;
+      if (isOfRows) kept.set(text, made);
+      return made;
+    },
+    close: () => void sqlite.close(),
+  };
 }
