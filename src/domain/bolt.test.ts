@@ -22,13 +22,16 @@ describe('stressArea and strength', () => {
       expect(() => stressArea({ ...bolt, pitch: size })).toThrow('pitch must be greater than zero');
     }
     expect(() => stressArea({ diameter: 1.2, pitch: 1 })).toThrow('no core is left');
+    expect(stressArea({ diameter: 1, pitch: 0.25 })).toBeLessThan(1);
   });
 
   it('knows bolts from M1.6 to M39, ends included', () => {
     expect(strength({ diameter: 1.6, pitch: 0.35, propertyClass: '8.8' }).proofLoad).toBeGreaterThan(0);
     expect(strength({ diameter: 39, pitch: 4, propertyClass: '8.8' }).proofLoad).toBeGreaterThan(0);
     expect(() => strength({ diameter: 1.5, pitch: 0.35, propertyClass: '8.8' })).toThrow('M1.6 to M39');
-    expect(() => strength({ diameter: 39.1, pitch: 4, propertyClass: '8.8' })).toThrow('M1.6 to M39');
+    for (const propertyClass of ['8.8', '10.9', '12.9'] as const) {
+      expect(() => strength({ diameter: 39.1, pitch: 4, propertyClass })).toThrow('M1.6 to M39');
+    }
   });
 
   it('refuses a class that every object knows', () => {
@@ -65,7 +68,9 @@ describe('torque and preload', () => {
       'friction under the head',
     );
     expect(() => torqueFromPreload({ ...joint, headDiameter: 0 })).toThrow('friction diameter');
-    expect(() => torqueFromPreload({ ...joint, threadFriction: 30 })).toThrow('no torque turns the thread');
+    const locking = Math.PI * (9 - 0.649519) * Math.cos(Math.PI / 6);
+    expect(torqueFromPreload({ ...joint, threadFriction: locking * 0.995 })).toBeGreaterThan(1000);
+    expect(() => torqueFromPreload({ ...joint, threadFriction: locking * 1.005 })).toThrow('no torque turns');
     expect(() => preloadFromTorque({ torque: -1, nutFactor: 0.2, diameter: 9 })).toThrow('torque must be');
     expect(() => preloadFromTorque({ torque: 1, nutFactor: 0, diameter: 9 })).toThrow('nut factor must be');
     expect(() => preloadFromTorque({ torque: 1, nutFactor: 0.2, diameter: 0 })).toThrow('diameter must be');

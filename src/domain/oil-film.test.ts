@@ -63,11 +63,18 @@ describe('filmFor', () => {
         expect(film.attitudeAngle).toBeLessThan(90);
         expect(film.frictionVariable).toBeGreaterThan(0);
         expect(film.flowVariable).toBeGreaterThan(0);
+        expect(film.sideFlowRatio).toBeGreaterThanOrEqual(0);
+        expect(film.sideFlowRatio).toBeLessThanOrEqual(1);
         expect(film.pressureRatio).toBeGreaterThan(0);
         expect(film.pressureRatio).toBeLessThan(1);
       }),
       { numRuns: 1000 },
     );
+  });
+
+  it('holds the share of side flow to what it can be, where the cubic strays past it', () => {
+    expect(filmFor({ sommerfeld: 0.0115, lengthToDiameter: 0.7 }).sideFlowRatio).toBe(1);
+    expect(filmFor({ sommerfeld: 0.2, lengthToDiameter: 100 }).sideFlowRatio).toBeGreaterThanOrEqual(0);
   });
 
   it('runs on smoothly past the last row, and out to a bearing without load', () => {

@@ -147,7 +147,8 @@ export function filmFor(bearing: { sommerfeld: number; lengthToDiameter: number 
     minimumFilmRatio: blend('minimumFilmRatio'),
     frictionVariable: blend('frictionVariable'),
     flowVariable: blend('flowVariable'),
-    sideFlowRatio: blend('sideFlowRatio'),
+    // Between the tables the cubic strays a little past what a share can be.
+    sideFlowRatio: Math.min(1, Math.max(0, blend('sideFlowRatio'))),
     attitudeAngle: blend('attitudeAngle'),
     pressureRatio: blend('pressureRatio'),
   };

@@ -64,15 +64,15 @@ export function conformityProbability(reading: {
   low?: number | undefined;
   high?: number | undefined;
 }): number {
-  const { value, standardUncertainty, low, high } = reading;
+  const { value, standardUncertainty, low = -Infinity, high = Infinity } = reading;
   requireFinite(value, 'value');
   requirePositive(standardUncertainty, 'standard uncertainty');
-  if (low === undefined && high === undefined) throw new RangeError('At least one limit is needed.');
-  requireLimits({ low: low ?? -Number.MAX_VALUE, high: high ?? Number.MAX_VALUE });
+  if (reading.low !== undefined) requireFinite(low, 'low limit');
+  if (reading.high !== undefined) requireFinite(high, 'high limit');
+  if (!Number.isFinite(low) && !Number.isFinite(high)) throw new RangeError('At least one limit is needed.');
+  requireOrder(low, high);
   const below = (limit: number): number => normalCdf(limit, value, standardUncertainty);
   const above = (limit: number): number => normalCdf(value, limit, standardUncertainty);
-  if (low === undefined) return high === undefined ? 1 : below(high);
-  if (high === undefined) return above(low);
   // Taken on the side of the value's own tail, where the difference keeps its digits.
   return value < low ? above(low) - above(high) : below(high) - below(low);
 }
@@ -85,5 +85,9 @@ function requireValues(xs: readonly number[], least: number): void {
 function requireLimits({ low, high }: { low: number; high: number }): void {
   requireFinite(low, 'low limit');
   requireFinite(high, 'high limit');
+  requireOrder(low, high);
+}
+
+function requireOrder(low: number, high: number): void {
   if (low >= high) throw new RangeError('The low limit must be below the high limit.');
 }

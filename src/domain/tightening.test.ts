@@ -291,7 +291,7 @@ describe('recordStage', () => {
 
   it('refuses a stage that the programme does not have, and a reading that can not be', () => {
     expect(() => recordStage(twice, { bolt: '3A', cycle: 2, stage: 0 }, { outcome: 'done' })).toThrow(
-      'no stage 1 in cycle 3',
+      'no stage 1 in cycle 3.',
     );
     const angleOf3A = { bolt: '3A', cycle: 0, stage: 1 };
     expect(() => recordStage(twice, angleOf3A, { outcome: 'done', reading: -1 })).toThrow(RangeError);
@@ -388,6 +388,11 @@ describe('adapterSetting', () => {
     expect(adapterSetting(adapter)).toBeLessThan(60);
     expect(adapterSetting({ ...adapter, adapterAngle: 180 })).toBeGreaterThan(60);
     expect(adapterSetting({ ...adapter, adapterLength: 0 })).toBe(60);
+  });
+
+  it('gives a setting as long as the bolt is past the hand at all', () => {
+    const nearlyBack = { ...adapter, adapterLength: 399.5, adapterAngle: 180 };
+    expect(adapterSetting(nearlyBack)).toBeCloseTo((60 * 400) / 0.5, 6);
   });
 
   it('refuses lengths and angles that can not be', () => {
