@@ -5,7 +5,7 @@ import { build } from 'esbuild';
 import { injectManifest } from 'workbox-build';
 
 /** The pages that must open with no network; what they need is found from their text. */
-const OFFLINE_PAGES = ['floor/index.html', 'offline/index.html'];
+const OFFLINE_PAGES = ['floor/index.html', 'floor/sums/index.html', 'offline/index.html'];
 const READABLE = /\.(?:html|js|css|webmanifest)$/;
 /** Every browser that can run a service worker reads .woff2, so the older form is never fetched. */
 const NEVER = /\.woff$/;

@@ -9,13 +9,19 @@ import { NavigationRoute, registerRoute } from 'workbox-routing';
 
 declare const self: ServiceWorkerGlobalScope;
 
-const FLOOR_PAGE = '/floor/index.html';
+/** The pages of the Floor, which hold no data. */
+const FLOOR_PAGES = [
+  { address: /^\/floor\/?$/, page: '/floor/index.html' },
+  { address: /^\/floor\/sums\/?$/, page: '/floor/sums/index.html' },
+];
 const OFFLINE_PAGE = '/offline/index.html';
 
-registerRoute(
-  ({ request, url }) => request.mode === 'navigate' && /^\/floor\/?$/.test(url.pathname),
-  async ({ request }) => (await matchPrecache(FLOOR_PAGE)) ?? fetch(request),
-);
+for (const { address, page } of FLOOR_PAGES) {
+  registerRoute(
+    ({ request, url }) => request.mode === 'navigate' && address.test(url.pathname),
+    async ({ request }) => (await matchPrecache(page)) ?? fetch(request),
+  );
+}
 
 // The Floor has no data in its page, so what stands behind the question mark never matters to the cache.
 precacheAndRoute(self.__WB_MANIFEST, { cleanURLs: false });

@@ -4,6 +4,7 @@ import { FloorFrame } from '@/components/FloorFrame';
 import { Notice } from '@/components/Notice';
 import { QuietButton } from '@/components/QuietButton';
 import { syncWords } from '@/components/sync-words';
+import { sumsAddress } from '@/features/sums/sums-address';
 import type { JobRow } from '@/offline/database';
 import { makeAvailableOffline } from '@/offline/prefetch';
 import type { Outcome } from '@/offline/server-call';
@@ -200,12 +201,15 @@ function JobList({ floor, isOnline, isBusy, act }: JobListProps) {
     <section>
       <div className="flex flex-wrap items-end justify-between gap-3 border-b-2 border-text pb-2">
         <h2 className="text-xl">Open jobs</h2>
-        <QuietButton
-          shape="wide"
-          label={isBusy ? 'Looking…' : 'Look for jobs'}
-          why={isOnline ? undefined : 'no network'}
-          onPress={() => act(() => bringWork(offline, working))}
-        />
+        <div className="flex flex-wrap gap-3">
+          <QuietButton shape="wide" label="Sums" onPress={() => location.assign(sumsAddress({}))} />
+          <QuietButton
+            shape="wide"
+            label={isBusy ? 'Looking…' : 'Look for jobs'}
+            why={isOnline ? undefined : 'no network'}
+            onPress={() => act(() => bringWork(offline, working))}
+          />
+        </div>
       </div>
       {floor.jobs.length === 0 ? (
         <div className="pt-6">

@@ -16,10 +16,11 @@ interface JobSheetProps {
   tablets: TabletNames;
   onClose: () => void;
   onLeave: () => void;
+  onSums: () => void;
 }
 
 /** What is open on the job: things off and things in, deviations, invitations to look. */
-export function JobSheet({ tablets, onClose, onLeave }: JobSheetProps) {
+export function JobSheet({ tablets, onClose, onLeave, onSums }: JobSheetProps) {
   const run = useRun();
   const [disposing, setDisposing] = useState<string>();
   const { state } = run;
@@ -38,7 +39,12 @@ export function JobSheet({ tablets, onClose, onLeave }: JobSheetProps) {
     <Sheet
       title={`Job ${state.number ?? ''}: what is open`}
       onClose={onClose}
-      foot={<QuietButton shape="wide" sign="back" label="Other job" onPress={onLeave} />}
+      foot={
+        <>
+          <QuietButton shape="wide" sign="back" label="Other job" onPress={onLeave} />
+          <QuietButton shape="wide" label="Sums" onPress={onSums} />
+        </>
+      }
     >
       <Deviations deviations={open} tablets={tablets} onDispose={setDisposing} />
       <OpenList

@@ -4,6 +4,7 @@ import { useFloor, useFloorStore } from '../floor-context';
 import { useJobTablets } from '../use-job-tablets';
 import { useUpdate } from '../use-update';
 import { useRun, type SheetName, type Worker } from '../run-context';
+import { sumsAddress } from '@/features/sums/sums-address';
 import { SignOutSheet } from '../SignOutSheet';
 import { CorrectSheet } from './CorrectSheet';
 import { DeviationForm } from './DeviationForm';
@@ -37,6 +38,10 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
   const view = useFloor((floor) => floor.view);
   const tablets = useJobTablets(view);
   const update = useUpdate();
+  const goToSums = (from: Parameters<typeof sumsAddress>[0]) =>
+    location.assign(sumsAddress({ job: view?.row.id, ...from }));
+  const workOutAdapter = (wanted: number | undefined) =>
+    goToSums({ sum: 'adapter', target: wanted?.toString() });
   switch (name) {
     case 'steps':
       return <StepsSheet current={step} onClose={onClose} />;
@@ -46,6 +51,7 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
           tablets={new Map(tablets.map(({ id, name: called }) => [id, called]))}
           onClose={onClose}
           onLeave={() => (location.hash = '')}
+          onSums={() => goToSums({})}
         />
       );
     case 'sync':
@@ -109,11 +115,11 @@ export function RunSheets({ name, step, onClose }: RunSheetsProps) {
     case 'end unfinished':
       return <EndUnfinishedSheet onClose={onClose} />;
     case 'torque tool':
-      return <ToolSheet hand="torque" step={step} onClose={onClose} />;
+      return <ToolSheet hand="torque" step={step} onClose={onClose} onAdapter={workOutAdapter} />;
     case 'angle tool':
-      return <ToolSheet hand="angle" step={step} onClose={onClose} />;
+      return <ToolSheet hand="angle" step={step} onClose={onClose} onAdapter={workOutAdapter} />;
     case 'measuring tool':
-      return <ToolSheet hand="measuring" step={step} onClose={onClose} />;
+      return <ToolSheet hand="measuring" step={step} onClose={onClose} onAdapter={workOutAdapter} />;
   }
 }
 

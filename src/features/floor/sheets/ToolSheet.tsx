@@ -1,6 +1,7 @@
 import { useState } from 'react';
 import { ChoiceRows } from '@/components/ChoiceRows';
 import { MainAction } from '@/components/MainAction';
+import { QuietButton } from '@/components/QuietButton';
 import type { PlanStep } from '@/domain/plan';
 import { torqueWanted } from '../cap-in-hand';
 import { useRun } from '../run-context';
@@ -12,6 +13,8 @@ interface ToolSheetProps {
   hand: Hand;
   step: PlanStep | undefined;
   onClose: () => void;
+  /** Works out what to set for an adapter, from the torque that is wanted next. */
+  onAdapter: (wanted: number | undefined) => void;
 }
 
 const TITLES: Record<Hand, string> = {
@@ -21,14 +24,10 @@ const TITLES: Record<Hand, string> = {
 };
 
 /** Which tool is in hand: fit ones can be picked, the others say what speaks against them. */
-export function ToolSheet({ hand, step, onClose }: ToolSheetProps) {
+export function ToolSheet({ hand, step, onClose, onAdapter }: ToolSheetProps) {
   const run = useRun();
-  const offers = offerTools(
-    run.workshop,
-    hand,
-    wantedFor(hand, step?.class ?? 'A', torqueWanted(run.state, step, hand)),
-    run.now(),
-  );
+  const wanted = torqueWanted(run.state, step, hand);
+  const offers = offerTools(run.workshop, hand, wantedFor(hand, step?.class ?? 'A', wanted), run.now());
   const [chosen, choose] = useState<string | undefined>(() => onlyFit(offers));
   async function take() {
     const offer = offers.find(({ tool }) => tool.id === chosen);
@@ -70,6 +69,13 @@ export function ToolSheet({ hand, step, onClose }: ToolSheetProps) {
           value={chosen}
           onChoose={choose}
         />
+        {hand === 'torque' && (
+          <QuietButton
+            shape="wide"
+            label="An adapter is on it: work out the setting"
+            onPress={() => onAdapter(wanted)}
+          />
+        )}
       </div>
     </Sheet>
   );

@@ -61,16 +61,17 @@ describe('the sheet of what is open', () => {
   function open(journal: Journal, person: Worker = technician) {
     const onSheet = vi.fn<(name: SheetName) => void>();
     const onLeave = vi.fn();
+    const onSums = vi.fn();
     const onClose = vi.fn();
     render(
       <FixtureRun
         journal={journal}
         person={person}
         onSheet={onSheet}
-        over={() => <JobSheet tablets={new Map()} onClose={onClose} onLeave={onLeave} />}
+        over={() => <JobSheet tablets={new Map()} onClose={onClose} onLeave={onLeave} onSums={onSums} />}
       />,
     );
-    return { onSheet, onLeave, onClose, user: userEvent.setup() };
+    return { onSheet, onLeave, onSums, onClose, user: userEvent.setup() };
   }
 
   it('lists what is off or in for now with what it bars, and goes to the step that closes it', async () => {
@@ -89,11 +90,13 @@ describe('the sheet of what is open', () => {
   });
 
   it('says so when nothing is open, and leaves the job', async () => {
-    const { user, onLeave } = open(new Journal(smallPlan()));
+    const { user, onLeave, onSums } = open(new Journal(smallPlan()));
     expect(sheet().getByText('None.')).toBeVisible();
     expect(sheet().getByText('Nothing is off, and nothing temporary is in.')).toBeVisible();
     await user.click(sheet().getByRole('button', { name: 'Other job' }));
     expect(onLeave).toHaveBeenCalledOnce();
+    await user.click(sheet().getByRole('button', { name: 'Sums' }));
+    expect(onSums).toHaveBeenCalledOnce();
   });
 
   it('sends a technician who would dispose of a deviation to somebody who may', async () => {

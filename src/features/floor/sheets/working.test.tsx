@@ -102,14 +102,15 @@ describe('the sheet of who is working', () => {
 describe('the sheet of tools', () => {
   function open(journal: Journal, hand: 'torque' | 'angle' | 'measuring' = 'torque') {
     const onClose = vi.fn();
+    const onAdapter = vi.fn();
     render(
       <FixtureRun
         journal={journal}
         start={{ step: CAP, isVisit: false }}
-        over={(step) => <ToolSheet hand={hand} step={step} onClose={onClose} />}
+        over={(step) => <ToolSheet hand={hand} step={step} onClose={onClose} onAdapter={onAdapter} />}
       />,
     );
-    return { onClose, user: userEvent.setup() };
+    return { onClose, onAdapter, user: userEvent.setup() };
   }
 
   it('offers the one tool that is fit, and says what speaks against the other', async () => {
@@ -134,6 +135,12 @@ describe('the sheet of tools', () => {
     open(journal);
     expect(main()).toHaveTextContent('touch the tool');
     expect(main()).toHaveAttribute('aria-disabled', 'true');
+  });
+
+  it('works out the setting for an adapter from the torque that is wanted next', async () => {
+    const { user, onAdapter } = open(capAfter(0));
+    await user.click(sheet().getByRole('button', { name: /^An adapter is on it/ }));
+    expect(onAdapter).toHaveBeenCalledExactlyOnceWith(10);
   });
 
   it('says what to do when the tablet knows no such tool', () => {
