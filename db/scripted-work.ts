@@ -4,8 +4,10 @@ import { nextTightening } from '@/domain/job';
 import { markCount } from '@/domain/job-signing-rules';
 import type { JobState, Workshop } from '@/domain/job-state';
 import { entryForAction } from '@/domain/job-tightening';
-import type { Plan, PlanCheck, PlanStep, StepOf } from '@/domain/plan';
+import { oldShells } from '@/domain/job-wear';
+import { type Plan, type PlanCheck, type PlanStep, rodsOf, type StepOf } from '@/domain/plan';
 import { fitness } from '@/domain/tool';
+import type { WearGrade } from '@/domain/wear';
 
 /*
  * What a sensible person would record next on any step of any plan, one entry at a time. The demo's jobs, the
@@ -80,6 +82,8 @@ function onStep(state: JobState, step: PlanStep, kit: Kit): ScriptedEntry | unde
       return { kind: 'turned', data: turnedData(step), part, afterMs: 80 * SECOND };
     case 'choose-shells':
       return { kind: 'chose-shells', data: chosenData(state, step), part, afterMs: 60 * SECOND };
+    case 'grade-shells':
+      return { kind: 'graded', data: gradedData(state), part, afterMs: 90 * SECOND };
     case 'gauge':
       return gauged(state, step, kit);
     case 'tighten':
@@ -183,6 +187,17 @@ function chosenData(state: JobState, step: StepOf<'choose-shells'>): EntryData<'
   const thicker = grades.find(({ wall }) => Number(wall) > 0)?.grade ?? standard;
   const shell = (grade: string) => ({ grade, lot: lotOf(`shells ${grade}`) });
   return { upper: shell(standard), lower: shell(isSecond ? thicker : standard) };
+}
+
+/** Shells of an engine that pulled hard at low speed: the loaded halves are lined, the last two of them worn. */
+function gradedData({ plan }: JobState): EntryData<'graded'> {
+  const last = rodsOf(plan).length;
+  const upper = (rod: number): WearGrade => (rod === 1 ? 0 : rod > last - 2 ? 2 : 1);
+  const lower = (rod: number): WearGrade => (rod === last ? 1 : 0);
+  const shells = oldShells(plan).map(({ rod, half }) => ({
+    ...{ rod, half, grade: half === 'U' ? upper(rod) : lower(rod), flags: [] },
+  }));
+  return { shells };
 }
 
 function fittedData(step: StepOf<'fit'>): EntryData<'fitted'> {

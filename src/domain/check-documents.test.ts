@@ -127,8 +127,8 @@ const writing: Broken[] = [
     at: ['strip.yaml', 'kind: guess'],
     says: '"kind" of "gauge" of "rods" can\'t be "guess".',
     mend:
-      'Write one of: do, remove, refit, place, count, inspect, read, turn, gauge, choose-shells, tighten, fit, ' +
-      'fill, photograph, watch, drive, hold, witness, make-safe, resume, hand-over.',
+      'Write one of: do, remove, refit, place, count, inspect, read, turn, gauge, choose-shells, grade-shells, ' +
+      'tighten, fit, fill, photograph, watch, drive, hold, witness, make-safe, resume, hand-over.',
   },
   {
     rule: 'a kind of document that does not exist',
@@ -465,6 +465,13 @@ const procedures: Broken[] = [
     at: ['build.yaml', '- id: sump-bolts'],
     says: '"sump-bolts" tightens a rod cap but stands at no rod.',
     mend: 'Put it in a section with "loop: rods".',
+  },
+  {
+    rule: 'shells graded side by side at one rod',
+    change: ({ strip }) => (step(strip, 'grade').each = 'rod'),
+    at: ['strip.yaml', '- id: grade'],
+    says: '"grade" grades all shells side by side but stands at one rod.',
+    mend: 'Put it in a section without a loop, and take "each" out.',
   },
   {
     rule: 'a grade loop on anything but a part',

@@ -89,6 +89,13 @@ function checkKind(place: Place, tell: Tell): void {
   if (step.kind === 'choose-shells' && !isAtRod(place)) {
     tell(path, `"${step.id}" chooses shells but stands at no rod.`, 'Put it in a section with "loop: rods".');
   }
+  if (step.kind === 'grade-shells' && isAtRod(place)) {
+    tell(
+      path,
+      `"${step.id}" grades all shells side by side but stands at one rod.`,
+      'Put it in a section without a loop, and take "each" out.',
+    );
+  }
   if (step.kind === 'tighten') checkTighten(place, step, tell);
   if (section.onDemand !== true && (step.kind === 'make-safe' || step.kind === 'resume')) {
     tell(

@@ -44,6 +44,7 @@ export const correctableKinds: ReadonlySet<EntryKind> = new Set<EntryKind>([
   'inspected',
   'read',
   'chose-shells',
+  'graded',
   'gauged',
   'tightened',
   'bolt-replaced',

@@ -192,6 +192,8 @@ export const stepSchema = z.discriminatedUnion('kind', [
     reworkFrom: id,
   }),
   z.strictObject({ ...common, kind: z.literal('choose-shells') }),
+  /** All old shells of the engine side by side: a grade each, and what else is seen on it. */
+  z.strictObject({ ...common, kind: z.literal('grade-shells') }),
   z.strictObject({
     ...common,
     kind: z.literal('tighten'),

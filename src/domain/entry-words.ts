@@ -4,6 +4,7 @@
  */
 import type { Entry, EntryData, EntryOf } from './entry';
 import { findStep, type Plan } from './plan';
+import { gradingWords } from './wear-words';
 
 /** What the entry says, in one line without its author and time. */
 export function wordsOf(entry: Entry, plan: Plan): string {
@@ -45,6 +46,8 @@ function workWords(entry: Entry, plan: Plan): string | undefined {
       return title;
     case 'chose-shells':
       return `${title}: upper ${entry.data.upper.grade} (lot ${entry.data.upper.lot}), lower ${entry.data.lower.grade} (lot ${entry.data.lower.lot})`;
+    case 'graded':
+      return `${title}: ${gradingWords(entry.data.shells)}`;
     case 'gauged':
       return gaugedWords(entry, plan);
     case 'measuring-again':

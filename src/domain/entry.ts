@@ -6,6 +6,7 @@
  */
 import * as z from 'zod/mini';
 import { instant } from '@/domain/instant';
+import { WEAR_FLAGS } from '@/domain/wear';
 
 const text = (max: number) => z.string().check(z.minLength(1), z.maxLength(max));
 const uuid = z
@@ -82,6 +83,19 @@ export const entryData = {
     lower: shell,
     predicted: z.optional(decimal),
     reason: z.optional(note),
+  }),
+  /** The old shells side by side; each of the engine once. */
+  graded: z.strictObject({
+    shells: z
+      .array(
+        z.strictObject({
+          rod: z.int().check(z.minimum(1), z.maximum(99)),
+          half: z.enum(['U', 'L']),
+          grade: z.literal([0, 1, 2, 3, 4]),
+          flags: z.array(z.enum(WEAR_FLAGS)).check(z.maxLength(WEAR_FLAGS.length)),
+        }),
+      )
+      .check(z.minLength(1), z.maxLength(99)),
   }),
   gauged: z.strictObject({
     end: z.enum(['front', 'rear']),

@@ -5,6 +5,7 @@ import { whyImpossible } from './job-figures';
 import type { JobState, Kept, Verdict, Workshop } from './job-state';
 import { whyNotOutcome, whyNotTool } from './job-tightening-rules';
 import { activeEntries } from './job-kept';
+import { whyNotGraded } from './job-wear';
 import type { PlanStep } from './plan';
 
 const OK: Verdict = { ok: true };
@@ -30,6 +31,8 @@ export function whyNotInItsPlace(
       return whyOther(kept, data, ['end', 'again'], 'reading of another end');
     case 'chose-shells':
       return whyNotGrades(state, data as EntryData<'chose-shells'>);
+    case 'graded':
+      return whyNotGraded(state, data as EntryData<'graded'>);
     case 'read':
     case 'filled':
       return whyOther(kept, data, ['unit'], 'unit');

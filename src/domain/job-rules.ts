@@ -12,6 +12,7 @@ import { whyNotSigned } from './job-signing-rules';
 import { whyNotWorkSigned } from './job-work';
 import { whyNot } from './job-order';
 import type { JobState, Verdict, Workshop } from './job-state';
+import { whyNotGraded } from './job-wear';
 import { findStep, type PlanStep, type StepKind } from './plan';
 
 const OK: Verdict = { ok: true };
@@ -31,6 +32,7 @@ const stepKinds: Partial<Record<EntryKind, StepKind[]>> = {
   read: ['read'],
   turned: ['turn'],
   'chose-shells': ['choose-shells'],
+  graded: ['grade-shells'],
   gauged: ['gauge'],
   'measuring-again': ['gauge'],
   tightened: ['tighten'],
@@ -180,6 +182,8 @@ function whyNotStepEntry(state: JobState, step: PlanStep, entry: Entry, workshop
       return whyNotGauged(state, step, entry);
     case 'chose-shells':
       return whyNotChosen(state, step, entry);
+    case 'graded':
+      return whyNotGraded(state, entry.data);
     case 'watch-checked':
     case 'watch-ended':
       return whyNotWatch(state, step, entry);

@@ -11,6 +11,7 @@ import { judgeLimit } from './job-limit';
 import type { JobState, Kept, StepState, StepStatus } from './job-state';
 import { writable } from './job-tables';
 import { isProgrammeDone, settleBolts } from './job-tightening';
+import { settleGraded } from './job-wear';
 import { findStep, type Plan, type PlanItem, type PlanStep, type StepOf } from './plan';
 
 /** Settles these steps, and those that close what they opened. */
@@ -62,6 +63,8 @@ function settleOwn(state: JobState, step: PlanStep): JobState {
       const { upper, lower, predicted } = chosen.data;
       return { ...state, rods: { ...state.rods, [rod.rod]: { ...rod, upper, lower, predicted } } };
     }
+    case 'grade-shells':
+      return settleGraded(state, step);
     case 'gauge':
       return settleClearance(state, step);
     case 'tighten':
@@ -139,6 +142,8 @@ function isStepDone(state: JobState, step: PlanStep): boolean {
       return lastOf(own, 'turned') !== undefined;
     case 'choose-shells':
       return lastOf(own, 'chose-shells') !== undefined;
+    case 'grade-shells':
+      return lastOf(own, 'graded') !== undefined;
     case 'gauge':
       return isGauged(state, step);
     case 'tighten':

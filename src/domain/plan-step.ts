@@ -75,6 +75,7 @@ function ownFields(placed: PlacedStep, context: StepContext, fill: Fill): object
   switch (kind) {
     case 'do':
     case 'choose-shells':
+    case 'grade-shells':
       return { kind };
     case 'remove':
       return {

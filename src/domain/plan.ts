@@ -86,6 +86,7 @@ export type PlanStep = PlanStepCommon &
     | { kind: 'turn'; toAngle?: number; rods: number[]; fullTurns?: number }
     | { kind: 'gauge'; limit: string; measureAgainFrom: string; reworkFrom: string }
     | { kind: 'choose-shells' }
+    | { kind: 'grade-shells' }
     | {
         kind: 'tighten';
         programme: string;

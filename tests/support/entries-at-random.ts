@@ -34,6 +34,7 @@ const KINDS_ON = {
   turn: ['turned'],
   gauge: ['gauged', 'measuring-again'],
   'choose-shells': ['chose-shells'],
+  'grade-shells': ['graded'],
   tighten: ['tightened', 'released', 'marked', 'started-again', 'bolt-replaced'],
   fit: ['fitted'],
   fill: ['filled'],

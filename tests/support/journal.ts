@@ -15,8 +15,10 @@ import {
 import { markCount, unsignedUnder } from '@/domain/job-signing-rules';
 import type { JobState, Verdict, Workshop } from '@/domain/job-state';
 import { entryForAction } from '@/domain/job-tightening';
+import { oldShells } from '@/domain/job-wear';
 import { unsignedWork } from '@/domain/job-work';
 import { findStep, type Plan, type PlanStep } from '@/domain/plan';
+import type { WearFlag, WearGrade } from '@/domain/wear';
 
 /** The workshop of the tests: a technician, another, a supervisor, a quality lead, and two tools in date. */
 export function buildWorkshop(): Workshop {
@@ -207,6 +209,9 @@ export class Journal {
         this.record('chose-shells', { upper: { grade, lot: 'S-1' }, lower: { grade, lot: 'S-1' } }, on);
         break;
       }
+      case 'grade-shells':
+        this.grade(stepId, {}, options);
+        break;
       case 'gauge':
         this.gauge(stepId, this.targetOf(step.limit), this.targetOf(step.limit), options);
         break;
@@ -283,6 +288,19 @@ export class Journal {
   /** What the sheet aims at. */
   private targetOf(limit: string): string {
     return this.plan.limits[limit]?.target ?? '0.048';
+  }
+
+  /** Every old shell graded: even grey, but for those that are named. */
+  grade(
+    stepId: string,
+    others: Record<string, { grade?: WearGrade; flags?: WearFlag[] }>,
+    options: Options = {},
+  ): Entry {
+    const shells = oldShells(this.plan).map((place) => {
+      const { grade = 0, flags = [] } = others[`${place.rod}${place.half}`] ?? {};
+      return { ...place, grade, flags };
+    });
+    return this.record('graded', { shells }, { ...options, step: stepId });
   }
 
   /** Both ends of a rod read from the card. */

@@ -253,6 +253,11 @@ export function smallProcedures(): Procedure[] {
         ],
       },
       {
+        id: 'together',
+        name: 'All rods together',
+        steps: [{ id: 'grade', kind: 'grade-shells', title: 'Old shells side by side', class: 'B' }],
+      },
+      {
         id: 'at-any-time',
         name: 'At any time',
         onDemand: true,

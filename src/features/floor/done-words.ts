@@ -1,6 +1,7 @@
 import type { EntryData, EntryKind } from '@/domain/entry';
 import type { Kept } from '@/domain/job-state';
 import { findStep, type Plan } from '@/domain/plan';
+import { gradingWords } from '@/domain/wear-words';
 
 /** "bolt 4A" for a cap bolt; the bolts of another joint have names of their own. */
 export function boltName(bolt: string): string {
@@ -30,6 +31,8 @@ export function doneWords(kept: Kept, plan: Plan): string {
       const { end, clearance, unit } = dataOf(kept, 'gauged');
       return `${end} read ${clearance} ${unit}`;
     }
+    case 'graded':
+      return `${title}: ${gradingWords(dataOf(kept, 'graded').shells)}`;
     case 'read':
       return `${title}: ${dataOf(kept, 'read').value} ${dataOf(kept, 'read').unit}`;
     case 'fitted':
