@@ -1,6 +1,7 @@
 import { benchBrowser } from './floor';
 import { benchReplay } from './replay';
 import { type Figure, printFigures } from './report';
+import { benchShells } from './shells';
 import { benchSync } from './sync';
 
 /** What can be measured, by the name that it is asked for by. */
@@ -8,6 +9,7 @@ const PARTS: Readonly<Record<string, () => Promise<Figure[]>>> = {
   floor: benchBrowser,
   sync: benchSync,
   replay: benchReplay,
+  shells: benchShells,
 };
 
 /** Measures what is named, or everything, and prints it. */
