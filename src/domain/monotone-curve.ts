@@ -22,8 +22,8 @@ export function valueOnCurve(knots: readonly Knot[], x: number): number {
   const piece = pieces[at];
   if (piece === undefined) throw new RangeError('The place lies beyond the ends of the curve.');
   const { from, to, width, slope } = piece;
-  const start = slopeBetween(pieces[at - 1], piece);
-  const end = slopeBetween(piece, pieces[at + 1]);
+  const start = slopeAtEnd(piece, pieces[at - 1]);
+  const end = slopeAtEnd(piece, pieces[at + 1]);
   const t = (x - from.x) / width;
   // Hermite's cubic, written so that both ends are met exactly.
   const bend = (start - slope) * (1 - t) - (end - slope) * t;
@@ -42,12 +42,12 @@ function piecesOf(knots: readonly Knot[]): Piece[] {
   return pieces;
 }
 
-/** The slope at the knot between two pieces: a weighted harmonic mean; level where the knots turn. */
-function slopeBetween(left: Piece | undefined, right: Piece | undefined): number {
-  if (left === undefined || right === undefined) return left?.slope ?? right?.slope ?? 0;
-  if (left.slope * right.slope <= 0) return 0;
-  const toLeft = left.width + 2 * right.width;
-  const toRight = 2 * left.width + right.width;
+/** The slope at the knot that a piece shares with its neighbour: a weighted harmonic mean; level where they turn. */
+function slopeAtEnd(piece: Piece, neighbour: Piece | undefined): number {
+  if (neighbour === undefined) return piece.slope;
+  if (piece.slope * neighbour.slope <= 0) return 0;
   // The piece that is nearer to the knot counts more.
-  return (toLeft + toRight) / (toLeft / left.slope + toRight / right.slope);
+  const ofPiece = piece.width + 2 * neighbour.width;
+  const ofNeighbour = 2 * piece.width + neighbour.width;
+  return (ofPiece + ofNeighbour) / (ofPiece / piece.slope + ofNeighbour / neighbour.slope);
 }
