@@ -25,6 +25,11 @@ test('the Floor opens after the server has died, and any other page says that th
     await expect(page.getByRole('main')).toBeVisible();
   }
 
+  await page.goto('/floor/sums');
+  await islandsReady(page);
+  for (const digit of ['4', '0']) await page.getByRole('button', { name: digit, exact: true }).tap();
+  await expect(page.getByRole('region', { name: 'Answer' })).toContainText('29.502 lbf·ft');
+
   await page.goto('/jobs');
   await expect(page.getByRole('heading', { name: 'No network' })).toBeVisible();
 });

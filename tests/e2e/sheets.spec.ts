@@ -143,6 +143,15 @@ test('the screens beside a run', async ({ app, page }) => {
     await expectGood(page, { isWhole: true, hasMain: true });
     await close(sheet);
   });
+  await test.step('the sums, and back', async () => {
+    await page.getByRole('button', { name: 'Sums' }).tap();
+    for (const name of ['Units', 'Adapter', 'Clearance', 'Bolt']) {
+      await page.getByRole('button', { name, exact: true }).tap();
+      await expectGood(page);
+    }
+    await page.getByRole('button', { name: /^Back/ }).tap();
+    await expect(page.getByRole('heading', { name: 'Open jobs' })).toBeVisible();
+  });
   await test.step('taking over, with a PIN', async () => {
     await openOnFloor(page, number);
     await expect(page.getByRole('heading', { name: `Take over from ${ines.name}` })).toBeVisible();

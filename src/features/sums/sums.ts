@@ -111,7 +111,7 @@ const units: Sum = {
       .filter((unit) => unit !== from)
       .map((unit) => ({ title: '', value: figureText(convert(value, from, unit)), unit, isMain: true }));
   },
-  formula: '1 in = 25.4 mm, 1 lbf = 4.448 221 615 260 5 N, 1 kgf = 9.806 65 N, °F = 1.8 · °C + 32',
+  formula: '1 in = 25.4 mm, 1 lbf = 4.4482216152605 N, 1 kgf = 9.80665 N, °F = 1.8 · °C + 32',
   source: 'NIST SP 811, appendix B.8: exact by definition. Five figures are shown.',
 };
 
@@ -225,7 +225,7 @@ const bolt: Sum = {
       },
     ];
   },
-  formula: 'A = π/4 · (d − 0.938 194 · P)², F = T / (K · d), travel = P · angle / 360',
+  formula: 'A = π/4 · (d − 0.938194 · P)², F = T / (K · d), travel = P · angle / 360',
   source: 'ISO 898-1 clause 9.1.6.1 and tables 3 to 7; Shigley, 9th ed., equation 8-27 and table 8-15.',
   note: 'The preload is an estimate: friction moves it by a quarter either way. No limit follows from it; the maker’s programme decides.',
 };
