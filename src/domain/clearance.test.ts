@@ -5,8 +5,12 @@ import {
   clearanceFromParts,
   clearanceFromWidth,
   judge,
+  nearestBand,
   partsUncertainty,
+  spread,
   taper,
+  taperOf,
+  threadsFor,
   type CardBand,
 } from '@/domain/clearance';
 
@@ -144,6 +148,36 @@ describe('judge', () => {
     );
   });
 
+  it('is monotone: further from the middle is never better, and less certain never more decided', () => {
+    const rank = { inside: 0, unsure: 1, outside: 2 };
+    const micrometres = fc.integer({ min: 0, max: 120 });
+    fc.assert(
+      fc.property(
+        micrometres,
+        micrometres,
+        fc.integer({ min: 0, max: 30 }),
+        fc.boolean(),
+        (a, b, u, isWide) => {
+          const ask = (off: number, uncertainty: number) =>
+            judge({
+              value: (500 + (isWide ? off : -off)) / 10_000,
+              low: 0.047,
+              high: 0.053,
+              uncertainty: uncertainty / 10_000,
+            });
+          const [near, far] = [Math.min(a, b), Math.max(a, b)];
+          expect(rank[ask(near, u).verdict]).toBeLessThanOrEqual(rank[ask(far, u).verdict]);
+          const [nearPlace, farPlace] = [ask(near, u).place, ask(far, u).place];
+          expect(isWide ? nearPlace <= farPlace : nearPlace >= farPlace).toBe(true);
+          const decided = ask(a, u).verdict;
+          if (decided !== 'unsure')
+            for (let less = 0; less < u; less += 5) expect(ask(a, less).verdict).toBe(decided);
+        },
+      ),
+      { numRuns: 500 },
+    );
+  });
+
   it('places a value between its limits', () => {
     expect(judge({ value: 0.03, ...limits }).place).toBe(0);
     expect(judge({ value: 0.07, ...limits }).place).toBe(1);
@@ -169,5 +203,65 @@ describe('taper', () => {
   it('refuses a clearance that can not be', () => {
     expect(() => taper(-0.05, 0.05)).toThrow(RangeError);
     expect(() => taper(0.05, Number.NaN)).toThrow(RangeError);
+  });
+});
+
+describe('the taper of two readings', () => {
+  const read = (clearance: number, uncertainty: number) => ({ clearance, uncertainty });
+
+  it('is told only where it is more than both readings are unsure of together', () => {
+    expect(taperOf(read(0.05, 0.002), read(0.045, 0.002))).toEqual({ taper: 0.005, isTold: true });
+    expect(taperOf(read(0.05, 0.0025), read(0.045, 0.0025))).toEqual({ taper: 0.005, isTold: false });
+    expect(taperOf(read(0.3, 0.1), read(0.1, 0.1))).toEqual({ taper: 0.2, isTold: false });
+  });
+
+  it('refuses an uncertainty that can not be', () => {
+    expect(() => taperOf(read(0.05, -0.001), read(0.05, 0))).toThrow(RangeError);
+    expect(() => taperOf(read(0.05, 0), read(0.05, Number.NaN))).toThrow(RangeError);
+  });
+});
+
+describe('spread', () => {
+  it('is the largest less the smallest, exactly', () => {
+    expect(spread([0.05, 0.047, 0.062])).toBe(0.015);
+    expect(spread([0.05])).toBe(0);
+    expect(() => spread([])).toThrow(RangeError);
+    expect(() => spread([0.05, -0.01])).toThrow(RangeError);
+  });
+});
+
+describe('the nearest band', () => {
+  const card = [
+    { width: 1, clearance: 0.08 },
+    { width: 1.5, clearance: 0.06 },
+    { width: 2.5, clearance: 0.04 },
+  ];
+
+  it('is the one whose printed width is nearer; halfway, the one that stands for less clearance', () => {
+    const clearanceAt = (width: number) => nearestBand(card, width).clearance;
+    expect([0.9, 1, 1.24, 1.26, 1.9, 2.1, 2.6].map(clearanceAt)).toEqual([
+      0.08, 0.08, 0.08, 0.06, 0.06, 0.04, 0.04,
+    ]);
+    expect([1.25, 2].map(clearanceAt)).toEqual([0.06, 0.04]);
+    expect(() => nearestBand(card, 4)).toThrow('wider than this card can tell');
+  });
+
+  it('is within half a step of what the card reads between its bands', () => {
+    fc.assert(
+      fc.property(fc.integer({ min: 80, max: 300 }), (hundredths) => {
+        const { clearance, uncertainty } = clearanceFromCard(card, hundredths / 100);
+        expect(Math.abs(nearestBand(card, hundredths / 100).clearance - clearance)).toBeLessThanOrEqual(
+          uncertainty + 1e-12,
+        );
+      }),
+    );
+  });
+});
+
+describe('the threads for a clearance', () => {
+  it('refuses a clearance or a range that can not be', () => {
+    expect(() => threadsFor(0, [])).toThrow(RangeError);
+    expect(() => threadsFor(0.05, [{ name: 'fine', low: 0.08, high: 0.02 }])).toThrow('fine');
+    expect(() => threadsFor(0.05, [{ name: 'fine', low: -0.02, high: 0.08 }])).toThrow(RangeError);
   });
 });

@@ -1,4 +1,4 @@
-import { addExact, compareExact, exactOf, exactToNumber, subtractExact } from '@/domain/decimal';
+import { addExact, compareExact, exactOf, exactToNumber, subtractExact, type Exact } from '@/domain/decimal';
 
 /** One stripe of a plastic gauge card: a thread crushed to this width stands for this clearance. Both mm. */
 export interface CardBand {
@@ -10,6 +10,13 @@ export interface CardBand {
 export interface CardReading {
   clearance: number;
   uncertainty: number;
+}
+
+/** A gauging thread and the clearances (mm) that it is made for, both limits included. */
+export interface ThreadSize {
+  name: string;
+  low: number;
+  high: number;
 }
 
 /** Where a measured value lies against its two limits. `place` is 0 at the low limit and 1 at the high one. */
@@ -45,6 +52,34 @@ export function clearanceFromCard(card: CardBand[], crushedWidth: number): CardR
   if (clearance <= 0) throw new RangeError('The crushed width is too far off the card to be read.');
   const steps = on === -1 ? [stepBelow(bands, upper)] : [stepBelow(bands, on), stepBelow(bands, on + 1)];
   return { clearance, uncertainty: Math.max(...steps) / 2 };
+}
+
+/** The band of a card that is nearest to a crushed width (mm each); halfway between two, the wider one. */
+export function nearestBand(card: CardBand[], crushedWidth: number): CardBand {
+  requireLength(crushedWidth, 'crushed width');
+  const bands = sortedBands(card);
+  requireOnCard(bands, crushedWidth);
+  // Halfway, the wider band stands for the smaller clearance: a shell that is too tight is the graver mistake.
+  return bands.reduce((best, band) => (isAsNear(band.width, best.width, crushedWidth) ? band : best));
+}
+
+function isAsNear(width: number, other: number, to: number): boolean {
+  const off = (from: number): Exact => sizeOf(subtractExact(exactOf(from), exactOf(to)));
+  return compareExact(off(width), off(other)) <= 0;
+}
+
+function sizeOf({ units, scale }: Exact): Exact {
+  return { units: units < 0n ? -units : units, scale };
+}
+
+/** The threads that can measure an expected clearance (mm), in the order given. */
+export function threadsFor(clearance: number, threads: ThreadSize[]): ThreadSize[] {
+  requireLength(clearance, 'expected clearance');
+  for (const { name, low, high } of threads) {
+    requireLength(low, `least clearance of the thread "${name}"`);
+    if (!(high > low)) throw new RangeError(`The range of the thread "${name}" ends below its beginning.`);
+  }
+  return threads.filter(({ low, high }) => low <= clearance && clearance <= high);
 }
 
 /**
@@ -98,6 +133,26 @@ export function taper(front: number, rear: number): number {
   requireLength(front, 'front clearance');
   requireLength(rear, 'rear clearance');
   return Math.abs(exactToNumber(subtractExact(exactOf(front), exactOf(rear))));
+}
+
+/**
+ * The taper (mm) between two readings of one shell, and whether it is more than the readings can tell: more than
+ * both of their uncertainties together.
+ */
+export function taperOf(front: CardReading, rear: CardReading): { taper: number; isTold: boolean } {
+  const between = taper(front.clearance, rear.clearance);
+  for (const { uncertainty } of [front, rear]) {
+    if (!(uncertainty >= 0)) throw new RangeError('An uncertainty can not be negative.');
+  }
+  const unsure = addExact(exactOf(front.uncertainty), exactOf(rear.uncertainty));
+  return { taper: between, isTold: compareExact(exactOf(between), unsure) > 0 };
+}
+
+/** Spread (mm): the largest less the smallest of the clearances (mm) of all rods. */
+export function spread(clearances: number[]): number {
+  if (clearances.length === 0) throw new RangeError('There is no spread of nothing.');
+  for (const clearance of clearances) requireLength(clearance, 'clearance');
+  return taper(Math.max(...clearances), Math.min(...clearances));
 }
 
 function sortedBands(card: CardBand[]): CardBand[] {

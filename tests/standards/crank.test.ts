@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { pinAngles, turningPlan, type Engine } from '@/domain/crank';
+import { loadShippedDocuments } from '@/server/shipped-documents';
 
 /** An engine in line whose crank is the one that fires evenly in the given order. */
 function inline(firingOrder: number[]): Engine {
@@ -61,5 +62,57 @@ describe('crank geometry', () => {
     const stops = turningPlan(inline(order), { reach: 0, start: 0 });
     const bottoms = order.map((rod) => stops.find(({ rods }) => rods.includes(rod))?.angle);
     expect(bottoms).toEqual(order.map((_, index) => (index * interval + 180) % 360));
+  });
+
+  // Derived: pins that fire evenly stand 720/n less the bank angle apart ("single or offset pins", Denton, p. 107).
+  it.each([
+    [6, 90, 30],
+    [6, 60, 60],
+    [6, 120, 0],
+    [8, 90, 0],
+    [10, 90, -18],
+    [10, 72, 0],
+    [12, 60, 0],
+  ])(
+    '%d cylinders at %d degrees of bank: with pins %d degrees apart one rod follows the other evenly',
+    (n, bank, offset) => {
+      const axes = [bank / 2, -bank / 2];
+      const split: Engine = {
+        crankpins: axes.map((bankAxis, i) => ({
+          pin: i + 1,
+          angle: i === 0 ? 0 : offset,
+          rods: [{ rod: i + 1, bankAxis }],
+        })),
+      };
+      const bottomOf = (rod: number) =>
+        turningPlan(split, { reach: 0, start: 0 }).find(({ rods }) => rods.includes(rod))?.angle ??
+        Number.NaN;
+      const between = Math.abs(bottomOf(1) - bottomOf(2));
+      expect(Math.min(between, 360 - between)).toBe(720 / n);
+    },
+  );
+
+  // DIN 73021 as told by an encyclopaedia page on firing order: makers deviate, so numbering is data of each engine.
+  it('takes the numbers of rods and pins as they are given: another numbering turns the same', () => {
+    const numbered = inline([1, 5, 3, 6, 2, 4]);
+    const from = (rod: number) => 7 - rod;
+    const other: Engine = {
+      crankpins: numbered.crankpins.map(({ pin, angle, rods }) => ({
+        ...{ pin: from(pin), angle },
+        rods: rods.map(({ rod, bankAxis }) => ({ rod: from(rod), bankAxis })),
+      })),
+    };
+    const stops = turningPlan(numbered, { reach: 10, start: 20 });
+    expect(turningPlan(other, { reach: 10, start: 20 })).toEqual(
+      stops.map(({ angle, rods }) => ({ angle, rods: rods.map(from).toSorted((a, b) => a - b) })),
+    );
+  });
+
+  // TM 5-2420-222-34 paragraph 1-16 p. 1-7 and TM 10-3930-659-34 p. 2-15: thread is read about 30 degrees from bottom.
+  it('has the shipped engines gauged about 30 degrees from the bottom', () => {
+    const sheets = loadShippedDocuments().flatMap(({ document }) =>
+      document.kind === 'engine' ? [document] : [],
+    );
+    expect(sheets.map(({ capOffset }) => capOffset)).toEqual([30, 30]);
   });
 });

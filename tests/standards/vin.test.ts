@@ -28,4 +28,31 @@ describe('VIN check digit by 49 CFR 565.15', () => {
   it.each(['1M8GDM9AIKP042788', '1M8GDM9AXKP04278'])('%s is malformed: letter I, 16 characters', (vin) => {
     expect(checkVin(vin)).toEqual({ wellFormed: false });
   });
+
+  // Tables III and IV of the regulation: each letter has its value in a place of weight 2, which is the last.
+  it.each([
+    ...['A1', 'B2', 'C3', 'D4', 'E5', 'F6', 'G7', 'H8', 'J1', 'K2', 'L3', 'M4', 'N5', 'P7', 'R9'],
+    ...['S2', 'T3', 'U4', 'V5', 'W6', 'X7', 'Y8', 'Z9'],
+  ])('reads the letter and value %s', (pair) => {
+    const [letter = '', value = ''] = pair;
+    const expected = (last: string) => checkVin(`1111111111111111${last}`).checkDigit?.expected;
+    expect(expected(letter)).toBe(expected(value));
+  });
+
+  it('weighs the places 8 7 6 5 4 3 2 10 0 9 8 7 6 5 4 3 2, and takes neither I nor O nor Q', () => {
+    const weights = [8, 7, 6, 5, 4, 3, 2, 10, 0, 9, 8, 7, 6, 5, 4, 3, 2];
+    const digits = weights.map((_, place) => {
+      const vin = Array<string>(17).fill('0');
+      vin[place] = '1';
+      return checkVin(vin.join('')).checkDigit?.expected;
+    });
+    expect(digits).toEqual(weights.map((weight) => (weight === 10 ? 'X' : String(weight))));
+    for (const letter of 'IOQ') expect(checkVin(`1111111111111111${letter}`)).toEqual({ wellFormed: false });
+  });
+
+  // 49 CFR 565 binds vehicles for one market; ISO 3779 asks for no digit (from memory). A generator's page names year
+  // codes that the regulation leaves out (I, O, Q, U, Z, 0): other markets use the place as they like.
+  it.each(['U', 'Z', '0'])('does not refuse a vehicle for the year code %s', (year) => {
+    expect(checkVin(`111111111${year}1111111`).wellFormed).toBe(true);
+  });
 });

@@ -1,4 +1,4 @@
-import { clearanceFromCard, type CardBand } from '@/domain/clearance';
+import { clearanceFromCard, taperOf, type CardBand, type CardReading } from '@/domain/clearance';
 import { formatDecimal } from '@/domain/decimal';
 import type { ClearanceReading, JobState, RodState } from '@/domain/job-state';
 import type { EntryData } from '@/domain/entry';
@@ -106,7 +106,10 @@ export function targetWords(reading: ClearanceReading, limit: PlanLimit): string
 /** How the two ends differ, said no finer than the card can tell. */
 export function taperWords({ front, rear }: RodState, unit: string): string | undefined {
   if (!front || !rear) return undefined;
-  const taper = Math.abs(Number(front.clearance) - Number(rear.clearance));
-  const told = Number(front.uncertainty) + Number(rear.uncertainty);
-  return taper <= told + 1e-9 ? 'taper: within what the card can tell' : `taper ${taper.toFixed(3)} ${unit}`;
+  const asRead = ({ clearance, uncertainty }: ClearanceReading): CardReading => ({
+    clearance: Number(clearance),
+    uncertainty: Number(uncertainty),
+  });
+  const { taper, isTold } = taperOf(asRead(front), asRead(rear));
+  return isTold ? `taper ${taper.toFixed(3)} ${unit}` : 'taper: within what the card can tell';
 }
