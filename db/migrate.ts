@@ -5,6 +5,7 @@ import * as jobs from './migrations/0003-jobs';
 import * as headsAndPhotos from './migrations/0004-heads-photos';
 import * as mail from './migrations/0005-mail';
 import * as noReplace from './migrations/0006-no-replace';
+import * as judgedCalibrations from './migrations/0007-judged-calibrations';
 
 /** Frozen once merged: a change to the tables is a new file here, never an edit of an old one. */
 const migrations = {
@@ -14,6 +15,7 @@ const migrations = {
   '0004-heads-photos': headsAndPhotos,
   '0005-mail': mail,
   '0006-no-replace': noReplace,
+  '0007-judged-calibrations': judgedCalibrations,
 };
 
 const provider: MigrationProvider = { getMigrations: () => Promise.resolve(migrations) };

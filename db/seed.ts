@@ -6,7 +6,8 @@ import type { Trx } from '@/server/database';
 import { hashNewPassword, storePassword } from '@/server/passwords';
 import { addFirstOwner, addPerson, hasPeople } from '@/server/people';
 import { hashNewPin, storePin } from '@/server/pins';
-import { addTool, type NewTool, recordCalibration } from '@/server/tools';
+import { recordCalibration } from '@/server/calibrations';
+import { addTool, type NewTool } from '@/server/tools';
 import { releaseShippedIfNone } from '@/server/released-documents';
 import { setWitnessAddress } from '@/server/head-mail';
 import { setWorkshop } from '@/server/workshop';
@@ -44,31 +45,32 @@ const WORKSHOP = { name: 'Lantern Yard Engines', zone: 'Europe/London' };
 
 interface DemoTool {
   tool: Omit<NewTool, 'dueOn' | 'cycleLimit'> & { cycleLimit?: number };
-  /** Days from today to the day until which its calibration counts; one is past it. */
+  /** Days from today to the day until which its calibration counts; one is past it, and one near it. */
   dueInDays: number;
-  readings: readonly (readonly [set: string, reference: string])[];
+  /** At each point what stood at the reference, as often as it was read. */
+  readings: readonly (readonly [set: string, references: string])[];
 }
 
 const TOOLS: readonly DemoTool[] = [
   torqueWrench('4', '25', 'TW25-0417', 96, [
-    ['5.0', '5.1'],
-    ['15.0', '15.1'],
-    ['25.0', '24.8'],
+    ['4.0', '4.02 4.05 3.97 4.04 4.06'],
+    ['15.0', '15.1 15.2 15.1 14.9 15.1'],
+    ['25.0', '24.8 24.7 24.9 24.8 24.8'],
   ]),
   torqueWrench('20', '100', 'TW100-0233', 41, [
-    ['20.0', '20.3'],
-    ['60.0', '60.4'],
-    ['100.0', '99.1'],
+    ['20.0', '20.3 20.4 20.2 20.3 20.5'],
+    ['60.0', '60.4 60.1 60.6 60.4 60.3'],
+    ['100.0', '99.1 98.8 99.2 99.0 99.3'],
   ]),
   torqueWrench('40', '210', 'TW210-0187', 158, [
-    ['40.0', '40.5'],
-    ['120.0', '121.0'],
-    ['210.0', '208.6'],
+    ['40.0', '40.5 40.9 40.6 40.2 40.7'],
+    ['120.0', '121.0 121.6 120.8 121.2 121.1'],
+    ['210.0', '208.6 207.9 208.8 208.2 209.0'],
   ]),
   torqueWrench('60', '330', 'TW330-0108', -12, [
-    ['60.0', '61.1'],
-    ['200.0', '203.0'],
-    ['330.0', '326.2'],
+    ['60.0', '61.1 61.6 60.9 61.9 61.3'],
+    ['200.0', '203.0 204.2 202.7 203.6 203.1'],
+    ['330.0', '326.2 325.0 327.1 326.4 325.8'],
   ]),
   measuringTool('Angle gauge', 'angle gauge', ['0', '360'], 'deg', 'AG-0061', 203, [
     ['90', '90'],
@@ -86,7 +88,7 @@ const TOOLS: readonly DemoTool[] = [
     ['45.000', '45.001'],
     ['60.000', '59.999'],
   ]),
-  measuringTool('Oil pressure gauge', 'pressure gauge', ['0', '10'], 'bar', 'PG10-0350', 230, [
+  measuringTool('Oil pressure gauge', 'pressure gauge', ['0', '10'], 'bar', 'PG10-0350', 18, [
     ['2.0', '2.0'],
     ['8.0', '7.9'],
   ]),
@@ -147,7 +149,9 @@ async function addDemoTool(
       on: dayFrom(app, dueInDays - 365),
       dueOn: dayFrom(app, dueInDays),
       certificate: `LY-${tool.serial}`,
-      readings: readings.map(([set, reference]) => ({ set, reference, unit })),
+      readings: readings.flatMap(([set, references]) =>
+        references.split(' ').map((reference) => ({ set, reference, unit })),
+      ),
     },
     past,
   );
@@ -178,6 +182,8 @@ function torqueWrench(
       rangeLow: low,
       rangeHigh: high,
       unit: 'N·m',
+      torqueType: 'II',
+      torqueClass: 'A',
       cycleLimit: 5000,
     },
     dueInDays,

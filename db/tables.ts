@@ -192,6 +192,9 @@ export interface ToolTable {
   state: 'in use' | 'withdrawn';
   cycle_limit: number | null;
   cycles_used: Generated<number>;
+  torque_type: 'I' | 'II' | null;
+  torque_class: 'A' | 'B' | 'C' | 'D' | 'E' | 'F' | 'G' | null;
+  failure: string | null;
 }
 
 export interface CalibrationTable {
@@ -202,6 +205,8 @@ export interface CalibrationTable {
   certificate: Fixed<string>;
   readings: Fixed<string>;
   by_person: Fixed<string>;
+  verdict: Fixed<'passed' | 'failed' | 'not judged'>;
+  reasons: Fixed<string>;
 }
 
 export interface DocumentRevisionTable {

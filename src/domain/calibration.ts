@@ -124,6 +124,11 @@ export function judgeCalibration(
   return { verdict: reasons.length === 0 ? 'passed' : 'failed', limitPercent, points, reasons };
 }
 
+/** Why a calibration failed, as one text. */
+export function failureWords(reasons: readonly string[]): string {
+  return reasons.join('; ');
+}
+
 function judgePoint(
   tool: CalibratedTool,
   readings: readonly CalibrationReading[],

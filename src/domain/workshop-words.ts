@@ -130,7 +130,7 @@ function toolWords(kind: string, data: WorkshopRecord['data'], named: Named): st
     case 'tool-returned':
       return `${named(data.tool)}, serial ${serial}, back in use`;
     case 'calibration-recorded':
-      return `${named(data.tool)}, serial ${serial}, calibrated on ${text(data.on) ?? ''}${due(data.dueOn)}, certificate ${text(data.certificate) ?? ''}`;
+      return `${named(data.tool)}, serial ${serial}, calibrated on ${text(data.on) ?? ''}${calibrationWords(data)}, certificate ${text(data.certificate) ?? ''}`;
     default:
       return undefined;
   }
@@ -177,6 +177,13 @@ function because(reason: unknown): string {
 
 function due(day: unknown): string {
   return typeof day === 'string' ? `, due ${day}` : '';
+}
+
+/** One that failed moved no date. */
+function calibrationWords({ verdict, dueOn, reasons }: WorkshopRecord['data']): string {
+  if (verdict === 'failed')
+    return `: failed, ${Array.isArray(reasons) ? reasons.map(String).join('; ') : ''}`;
+  return `${verdict === 'passed' ? ': passed' : ''}${due(dueOn)}`;
 }
 
 /** The fields that differ, as "range high 100, was 120". */

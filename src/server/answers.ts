@@ -1,4 +1,6 @@
 import * as z from 'zod';
+import { CALIBRATION_VERDICTS } from '@/domain/calibration';
+import { TORQUE_TOOL_CLASSES, TORQUE_TOOL_TYPES } from '@/domain/tool';
 import { role } from './fields';
 
 /** What several routes answer; each is the one description of its thing in the API. */
@@ -48,6 +50,10 @@ export const toolAnswer = z.strictObject({
   state: z.enum(['in use', 'withdrawn']),
   cycleLimit: z.int().nullable(),
   cyclesUsed: z.int().nullable(),
+  torqueType: z.enum(TORQUE_TOOL_TYPES).nullable(),
+  torqueClass: z.enum(TORQUE_TOOL_CLASSES).nullable(),
+  /** Why its last calibration failed. */
+  failure: z.string().nullable(),
 });
 
 export const calibrationAnswer = z.strictObject({
@@ -58,4 +64,7 @@ export const calibrationAnswer = z.strictObject({
   certificate: z.string(),
   readings: z.array(z.strictObject({ set: z.string(), reference: z.string(), unit: z.string() })),
   by: z.string(),
+  /** What the server made of the readings. */
+  verdict: z.enum(CALIBRATION_VERDICTS),
+  reasons: z.array(z.string()),
 });

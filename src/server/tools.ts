@@ -1,34 +1,24 @@
-import type { CalibrationRow, ToolRow } from '@db/tables';
-import type { Tool } from '@/domain/tool';
+import type { ToolRow } from '@db/tables';
+import { TORQUE_TOOL_KIND } from '@/domain/calibration';
+import { CALIBRATED_KINDS, CLASSES_OF_TYPE, type Tool } from '@/domain/tool';
+import { dayAfter, DUE_SOON_DAYS } from '@/domain/tool-standing';
 import { type Actor, requireRole } from './actor';
+import { type Calibration, failureOfNewest, listCalibrations } from './calibrations';
 import type { Clock, Ids } from './clock';
-import { type Asker, requireSomebody } from './asker';
+import { requireSomebody } from './asker';
 import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
-import { AppError, notFound } from './errors';
+import { AppError } from './errors';
+import { type KeptTool, readTool, toTool } from './tool-rows';
+import { readToday } from './workshop';
 import { appendWorkshopEntry } from './workshop-trail';
 
-/** What the maker of a calibration found: the reference against what the tool showed, as read. */
-export interface CalibrationReading {
-  set: string;
-  reference: string;
-  unit: string;
-}
-
-export interface Calibration {
-  id: string;
-  tool: string;
-  on: string;
-  dueOn: string;
-  certificate: string;
-  readings: CalibrationReading[];
-  by: string;
-}
-
-export type NewTool = Omit<Tool, 'id' | 'state' | 'cyclesUsed'>;
+export type NewTool = Omit<Tool, 'id' | 'state' | 'cyclesUsed' | 'failure'>;
 export type ToolChange = { [K in Exclude<keyof NewTool, 'dueOn'>]?: NewTool[K] | undefined } & {
   state?: Tool['state'] | undefined;
 };
+/** Those in use whose date is near, or those that class A may not use as they are. */
+export type ToolsShown = 'due' | 'past';
 
 interface Making {
   clock: Clock;
@@ -39,12 +29,11 @@ interface Making {
 export async function listTools(
   db: Db,
   actor: Actor,
-  { cursor }: { cursor?: string | undefined } = {},
-): Promise<{ tools: Tool[]; cursor?: string }> {
+  { cursor, show }: { cursor?: string | undefined; show?: ToolsShown | undefined },
+  clock: Clock,
+): Promise<{ tools: KeptTool[]; cursor?: string }> {
   requireSomebody(actor);
-  let query = db
-    .selectFrom('tool')
-    .selectAll()
+  let query = selectTools(db, show, await readToday(db, clock))
     .orderBy('name')
     .orderBy('serial')
     .limit(LIST_PAGE + 1);
@@ -55,11 +44,22 @@ export async function listTools(
   return { tools: rows.map(toTool), ...next };
 }
 
-/** All tools at once, as tablets and pages judge by them. */
-export async function readTools(db: Db, asker: Asker): Promise<Tool[]> {
-  requireSomebody(asker);
-  const rows = await db.selectFrom('tool').selectAll().orderBy('name').orderBy('serial').execute();
-  return rows.map(toTool);
+function selectTools(db: Db, show: ToolsShown | undefined, on: string) {
+  const tools = db.selectFrom('tool').selectAll();
+  if (show === undefined) return tools;
+  const inUse = tools.where('state', '=', 'in use');
+  if (show === 'due') {
+    const soon = dayAfter(on, DUE_SOON_DAYS);
+    return inUse.where('failure', 'is', null).where('due_on', '>=', on).where('due_on', '<=', soon);
+  }
+  return inUse.where((eb) =>
+    eb.or([
+      eb('failure', 'is not', null),
+      eb('due_on', '<', on),
+      eb.and([eb('due_on', 'is', null), eb('kind', 'in', CALIBRATED_KINDS)]),
+      eb('cycles_used', '>', eb.ref('cycle_limit')),
+    ]),
+  );
 }
 
 /** One tool with its calibrations, the newest first. */
@@ -67,21 +67,25 @@ export async function getTool(
   db: Db,
   actor: Actor,
   id: string,
-): Promise<Tool & { calibrations: Calibration[] }> {
+): Promise<KeptTool & { calibrations: Calibration[] }> {
   requireSomebody(actor);
-  const row = await getRow(db, id);
-  const calibrations = await db
-    .selectFrom('calibration')
-    .selectAll()
-    .where('tool_id', '=', id)
-    .orderBy('on', 'desc')
-    .execute();
-  return { ...toTool(row), calibrations: calibrations.map(toCalibration) };
+  return { ...(await readTool(db, id)), calibrations: await listCalibrations(db, id) };
 }
 
-/** Adds a tool; its due date, if it needs one, is what its last certificate says. */
-export async function addTool(trx: Trx, actor: Actor, tool: NewTool, making: Making): Promise<Tool> {
+/**
+ * Adds a tool; its due date, if it needs one, is what its last certificate says. Of a torque tool only a judged
+ * calibration gives it one.
+ */
+export async function addTool(trx: Trx, actor: Actor, tool: NewTool, making: Making): Promise<KeptTool> {
   requireRole(actor, 'supervisor', 'quality lead', 'owner');
+  requireClass(tool);
+  if (tool.kind === TORQUE_TOOL_KIND && tool.dueOn !== null) {
+    throw new AppError(
+      'invalid-field',
+      'A torque wrench gets its date from a calibration. Add it without one, then enter its certificate.',
+      { field: 'dueOn' },
+    );
+  }
   await requireFreeSerial(trx, tool.serial, undefined);
   const row: ToolRow = {
     id: making.ids.next(),
@@ -95,24 +99,43 @@ export async function addTool(trx: Trx, actor: Actor, tool: NewTool, making: Mak
     state: 'in use',
     cycle_limit: tool.cycleLimit,
     cycles_used: 0,
+    torque_type: tool.torqueType ?? null,
+    torque_class: tool.torqueClass ?? null,
+    failure: null,
   };
   await trx.insertInto('tool').values(row).execute();
-  await appendWorkshopEntry(trx, actor, { kind: 'tool-added', data: { ...tool, tool: row.id } }, making);
+  const { torqueType = null, torqueClass = null, ...facts } = tool;
+  await appendWorkshopEntry(
+    trx,
+    actor,
+    { kind: 'tool-added', data: { ...facts, torqueType, torqueClass, tool: row.id } },
+    making,
+  );
   return toTool(row);
 }
 
-/** Corrects a tool's facts, withdraws it, or takes it back into use. Its due date moves only by a calibration. */
+/**
+ * Corrects a tool's facts, withdraws it, or takes it back into use. Its due date moves only by a calibration. Where
+ * its newest calibration would fail by the changed facts, the tool is not fit until it is calibrated again.
+ */
 export async function changeTool(
   trx: Trx,
   actor: Actor,
   id: string,
   change: ToolChange,
   making: Making,
-): Promise<Tool> {
+): Promise<KeptTool> {
   requireRole(actor, 'supervisor', 'quality lead', 'owner');
-  const before = toTool(await getRow(trx, id));
+  const before = await readTool(trx, id);
   const changed = Object.fromEntries(Object.entries(change).filter(([, value]) => value !== undefined));
-  const after: Tool = { ...before, ...changed };
+  const changedTool: KeptTool = { ...before, ...changed };
+  requireClass(changedTool);
+  const calibrations = await listCalibrations(trx, id);
+  if (calibrations.length > 0) requireSameRule(before, changedTool);
+  const after: KeptTool = {
+    ...changedTool,
+    failure: before.failure ?? failureOfNewest(changedTool, calibrations),
+  };
   if (after.serial !== before.serial) await requireFreeSerial(trx, after.serial, id);
   const { state: stateBefore, ...factsBefore } = before;
   const { state, ...facts } = after;
@@ -139,73 +162,13 @@ export async function changeTool(
       unit: after.unit,
       state: after.state,
       cycle_limit: after.cycleLimit,
+      torque_type: after.torqueType,
+      torque_class: after.torqueClass,
+      failure: after.failure,
     })
     .where('id', '=', id)
     .execute();
   return after;
-}
-
-/** Records a calibration, which moves the tool's due date and starts its cycles anew. */
-export async function recordCalibration(
-  trx: Trx,
-  actor: Actor,
-  toolId: string,
-  calibration: Omit<Calibration, 'id' | 'tool' | 'by'>,
-  making: Making,
-): Promise<Calibration> {
-  requireRole(actor, 'supervisor', 'quality lead', 'owner');
-  const tool = await getRow(trx, toolId);
-  if (calibration.dueOn <= calibration.on) {
-    throw new AppError('invalid-field', 'The next calibration has to be due after this one was made.', {
-      field: 'dueOn',
-    });
-  }
-  const row: CalibrationRow = {
-    id: making.ids.next(),
-    tool_id: toolId,
-    on: calibration.on,
-    due_on: calibration.dueOn,
-    certificate: calibration.certificate,
-    readings: JSON.stringify(calibration.readings),
-    by_person: actor.personId,
-  };
-  await trx.insertInto('calibration').values(row).execute();
-  const newest = await trx
-    .selectFrom('calibration')
-    .select(['id', 'due_on'])
-    .where('tool_id', '=', toolId)
-    .orderBy('on', 'desc')
-    .orderBy('id', 'desc')
-    .limit(1)
-    .executeTakeFirstOrThrow();
-  // An old certificate that is entered late neither moves the date back nor forgets the cycles since.
-  if (newest.id === row.id) {
-    await trx
-      .updateTable('tool')
-      .set({ due_on: row.due_on, cycles_used: 0 })
-      .where('id', '=', toolId)
-      .execute();
-  }
-  const { on, dueOn, certificate, readings } = calibration;
-  await appendWorkshopEntry(
-    trx,
-    actor,
-    {
-      kind: 'calibration-recorded',
-      data: {
-        calibration: row.id,
-        tool: toolId,
-        serial: tool.serial,
-        on,
-        dueOn,
-        certificate,
-        readings: readings.map(({ set, reference, unit }) => ({ set, reference, unit })),
-        cyclesUsedBefore: tool.cycles_used,
-      },
-    },
-    making,
-  );
-  return toCalibration(row);
 }
 
 async function requireFreeSerial(trx: Trx, serial: string, except: string | undefined): Promise<void> {
@@ -220,36 +183,35 @@ async function requireFreeSerial(trx: Trx, serial: string, except: string | unde
   });
 }
 
-async function getRow(db: Db, id: string): Promise<ToolRow> {
-  const row = await db.selectFrom('tool').selectAll().where('id', '=', id).executeTakeFirst();
-  if (row === undefined) throw notFound('This tool');
-  return row;
+/** Type and class are of torque tools, and go together. */
+function requireClass({
+  kind,
+  torqueType,
+  torqueClass,
+}: Pick<Tool, 'kind' | 'torqueType' | 'torqueClass'>): void {
+  if (!torqueType && !torqueClass) return;
+  if (kind !== TORQUE_TOOL_KIND)
+    throw wrongClass('Only a torque wrench has a type and a class. Leave them out.', 'torqueType');
+  if (!torqueType || !torqueClass)
+    throw wrongClass('Type and class go together. Say both, or neither.', 'torqueClass');
+  if (!CLASSES_OF_TYPE[torqueType].includes(torqueClass)) {
+    throw wrongClass(
+      `Type ${torqueType} has the classes ${CLASSES_OF_TYPE[torqueType].join(', ')}. Look at its plate.`,
+      'torqueClass',
+    );
+  }
 }
 
-function toTool(row: ToolRow): Tool {
-  return {
-    id: row.id,
-    name: row.name,
-    kind: row.kind,
-    serial: row.serial,
-    rangeLow: row.range_low,
-    rangeHigh: row.range_high,
-    unit: row.unit,
-    dueOn: row.due_on,
-    state: row.state,
-    cycleLimit: row.cycle_limit,
-    cyclesUsed: row.cycles_used,
-  };
+function wrongClass(words: string, field: string): AppError {
+  return new AppError('invalid-field', words, { field });
 }
 
-function toCalibration(row: CalibrationRow): Calibration {
-  return {
-    id: row.id,
-    tool: row.tool_id,
-    on: row.on,
-    dueOn: row.due_on,
-    certificate: row.certificate,
-    readings: JSON.parse(row.readings) as CalibrationReading[],
-    by: row.by_person,
-  };
+/** A tool that was calibrated as one kind never becomes a kind of another rule: it would take its date along. */
+function requireSameRule(before: Tool, after: Tool): void {
+  if ((before.kind === TORQUE_TOOL_KIND) === (after.kind === TORQUE_TOOL_KIND)) return;
+  throw new AppError(
+    'conflict',
+    `It was calibrated as ${before.kind}, so its kind stays. If it is another tool, add it as itself.`,
+    { field: 'kind' },
+  );
 }

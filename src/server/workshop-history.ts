@@ -1,4 +1,5 @@
 import type { Workshop } from '@/domain/job-state';
+import { failureWords } from '@/domain/calibration';
 import type { Db } from './database';
 
 /*
@@ -140,7 +141,7 @@ function applyWorkshopEntry(
     case 'tool-returned':
       return tool({ state: 'in use' });
     case 'calibration-recorded':
-      return isNewestCalibration(data, calibratedOn) ? tool({ dueOn: String(data.dueOn) }) : workshop;
+      return isNewestCalibration(data, calibratedOn) ? tool(calibrated(data)) : workshop;
     default:
       return workshop;
   }
@@ -158,11 +159,18 @@ function addedPerson(data: Data): Person {
 function addedTool(data: Data): Tool {
   const { tool, ...facts } = data;
   return {
+    failure: null,
     ...(facts as Omit<Tool, 'id' | 'state' | 'cyclesUsed'>),
     id: String(tool),
     state: 'in use',
     cyclesUsed: 0,
   };
+}
+
+/** One that failed moves no date; those of older versions were not judged. */
+function calibrated({ verdict, dueOn, reasons }: Data): Partial<Tool> {
+  if (verdict !== 'failed') return { dueOn: String(dueOn), failure: null };
+  return { failure: failureWords(reasons as string[]) };
 }
 
 /** An older certificate that is written down late moves no due date. */

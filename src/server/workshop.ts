@@ -1,11 +1,11 @@
 import type { Role } from '@/domain/role';
-import type { Tool } from '@/domain/tool';
+import { dayIn } from '@/domain/job-tightening-rules';
 import { type Actor, parseRoles, requireRole } from './actor';
 import { type Asker, requireSomebody } from './asker';
-import type { Clock, Ids } from './clock';
+import { type Clock, type Ids, stamp } from './clock';
 import type { Db, Trx } from './database';
 import type { Keys } from './keys';
-import { readTools } from './tools';
+import { type KeptTool, readTools } from './tool-rows';
 import { appendWorkshopEntry, workshopSeq } from './workshop-trail';
 
 export interface WorkshopDetails {
@@ -19,7 +19,7 @@ export interface WorkshopView extends WorkshopDetails {
   /** The number of the workshop's newest entry, by which all of this holds. */
   seq: number;
   people: { id: string; name: string; roles: Role[]; active: boolean; hasPin: boolean }[];
-  tools: Tool[];
+  tools: KeptTool[];
   /** The key that PINs are sealed to. */
   sealingKey: { id: string; publicKey: string };
   /** The fingerprint of the key that signs trail heads. */
@@ -53,6 +53,12 @@ export async function getWorkshopDetails(db: Db): Promise<WorkshopDetails> {
     .execute();
   const values = new Map(rows.map((row) => [row.key, row.value]));
   return { name: values.get('workshop.name') ?? 'Workshop', zone: values.get('workshop.zone') ?? 'UTC' };
+}
+
+/** The day that it is in the workshop's zone, YYYY-MM-DD: due dates are judged by it. */
+export async function readToday(db: Db, clock: Clock): Promise<string> {
+  const { zone } = await getWorkshopDetails(db);
+  return dayIn(zone, stamp(clock));
 }
 
 /** The workshop as tablets and pages judge by it; read in one transaction, so that `seq` fits the rest. */

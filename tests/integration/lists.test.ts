@@ -9,7 +9,8 @@ import { enrolDevice } from '@/server/devices';
 import type { HandlerContext } from '@/server/http';
 import { addPerson } from '@/server/people';
 import { getPlanText, listRoutes } from '@/server/plans';
-import { addTool, getTool, listTools, readTools } from '@/server/tools';
+import { readTools } from '@/server/tool-rows';
+import { addTool, getTool, listTools } from '@/server/tools';
 import { getWorkshopView } from '@/server/workshop';
 import type { ScriptedEntry } from '@db/scripted-work';
 import {
@@ -227,7 +228,7 @@ describe('what is read without anybody asking', () => {
     const [tool] = await idsOf('tool');
     const plan = 'a'.repeat(64);
     const readings = [
-      () => listTools(db, THE_WORKSHOP),
+      () => listTools(db, THE_WORKSHOP, {}, shop.app.clock),
       () => readTools(db, THE_WORKSHOP),
       () => getTool(db, THE_WORKSHOP, tool!),
       () => getWorkshopView(db, THE_WORKSHOP, keys),

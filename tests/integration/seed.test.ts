@@ -2,10 +2,11 @@ import { describe, expect, it } from 'vitest';
 import { demoSignIns, seedDemo } from '@db/seed';
 import { ROLES } from '@/domain/role';
 import { fitness } from '@/domain/tool';
+import { standingOf } from '@/domain/tool-standing';
 import { POST as postSignIn } from '@/pages/api/auth/sign-in';
 import { checkPin } from '@/server/pins';
 import { getActor } from '@/server/session';
-import { readTools } from '@/server/tools';
+import { readTools } from '@/server/tool-rows';
 import { openTestApp } from '../support/database';
 import { newBrowser } from '../support/requests';
 
@@ -39,7 +40,7 @@ describe('the demo', () => {
     }
   }, 60_000);
 
-  it('has tools that may be used today and one past its date', async () => {
+  it('has tools that may be used today, their readings judged; one is past its date and one near it', async () => {
     const app = await openTestApp();
     await seedDemo(app);
     const today = app.clock.now().toISOString().slice(0, 10);
@@ -52,5 +53,14 @@ describe('the demo', () => {
     const unfit = tools.filter((tool) => !fitness(tool, { kind: tool.kind, criticalClass: 'A' }, today).fit);
     expect(unfit.map(({ serial }) => serial)).toEqual(['TW330-0108']);
     expect(tools.length).toBeGreaterThan(6);
+    const near = tools.filter((tool) => standingOf(tool, today).kind === 'due soon');
+    expect(near.map(({ serial }) => serial)).toEqual(['PG10-0350']);
+    const calibrations = await app.db
+      .selectFrom('calibration')
+      .innerJoin('tool', 'tool.id', 'calibration.tool_id')
+      .select(['kind', 'verdict'])
+      .execute();
+    for (const { kind, verdict } of calibrations)
+      expect(verdict).toBe(kind === 'torque wrench' ? 'passed' : 'not judged');
   }, 30_000);
 });

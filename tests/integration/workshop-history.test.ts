@@ -2,9 +2,11 @@ import { describe, expect, it } from 'vitest';
 import type { Actor } from '@/server/actor';
 import { MINUTE } from '@/server/clock';
 import { changeRoles, setActive } from '@/server/people';
-import { addTool, changeTool, recordCalibration } from '@/server/tools';
+import { recordCalibration } from '@/server/calibrations';
+import { addTool, changeTool } from '@/server/tools';
 import { getWorkshopView } from '@/server/workshop';
 import { readWorkshopHistory } from '@/server/workshop-history';
+import { goodReadings } from '../support/calibration';
 import { openTestApp, type TestApp } from '../support/database';
 import { addTestPeople } from '../support/requests';
 
@@ -17,7 +19,9 @@ const FACTS = {
   unit: 'N·m',
   dueOn: null,
   cycleLimit: null,
-};
+  torqueType: 'II',
+  torqueClass: 'A',
+} as const;
 
 const READER: Actor = { personId: 'reader', name: 'Reader', roles: ['auditor'], sessionId: undefined };
 
@@ -43,15 +47,19 @@ describe('the history of the workshop', () => {
       return result;
     };
     const tool = (await does((trx) => addTool(trx, owner, FACTS, app))) as { id: string };
-    const calibrate = (on: string, dueOn: string) =>
-      does((trx) =>
-        recordCalibration(trx, owner, tool.id, { on, dueOn, certificate: 'C', readings: [] }, app),
-      );
+    const calibrate = (on: string, dueOn: string, readings = goodReadings(FACTS)) =>
+      does((trx) => recordCalibration(trx, owner, tool.id, { on, dueOn, certificate: 'C', readings }, app));
     await calibrate('2031-01-10', '2032-01-10');
     await does((trx) => changeRoles(trx, owner, tech.personId, ['technician', 'supervisor'], app));
     await does((trx) => setActive(trx, owner, sup.personId, false, app));
     // An older certificate, written down late, moves no date.
     await calibrate('2030-01-10', '2031-01-09');
+    await calibrate('2031-02-10', '2032-02-10', []);
+    expect(seen.at(-1)?.tools[0]).toMatchObject({
+      dueOn: '2032-01-10',
+      failure: expect.stringContaining('no readings at 2 N·m') as string,
+    });
+    await calibrate('2031-03-10', '2032-03-10');
     await does((trx) => changeTool(trx, owner, tool.id, { rangeHigh: '60', state: 'withdrawn' }, app));
     await does((trx) => setActive(trx, owner, sup.personId, true, app));
     await does((trx) => changeTool(trx, owner, tool.id, { state: 'in use' }, app));

@@ -64,8 +64,9 @@ describe('the lowest torque a wrench is trusted at', () => {
 describe('a calibration of a torque tool', () => {
   const wrench = {
     ...{ kind: 'torque wrench', rangeLow: null, rangeHigh: '100', unit: 'N·m' },
-    ...{ torqueType: 'II', torqueClass: 'A' },
-  } as const;
+    torqueType: 'II' as const,
+    torqueClass: 'A' as const,
+  };
   /** `references` are what stood at the reference when the tool tripped, at one set value. */
   const at = (set: string, references: readonly string[]) =>
     references.map((reference) => ({ set, reference, unit: 'N·m' }));

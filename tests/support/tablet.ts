@@ -13,10 +13,12 @@ import type { HandlerContext } from '@/server/http';
 import { photoStorage } from '@/server/photos';
 import { hashNewPin, storePin } from '@/server/pins';
 import { releaseDocuments } from '@/server/released-documents';
-import { addTool, recordCalibration } from '@/server/tools';
+import { recordCalibration } from '@/server/calibrations';
+import { addTool } from '@/server/tools';
 import { getWorkshopView, setWorkshop } from '@/server/workshop';
 import { type PushAnswer, type PushBody, ScriptedTablet } from '@db/scripted-tablet';
 import type { Kit } from '@db/scripted-work';
+import { classOf, goodReadings } from './calibration';
 import { openTestApp, type TestApp } from './database';
 import { addTestPeople, type TestPerson } from './requests';
 import { smallEngine, smallProcedures, smallRoute } from './small-documents';
@@ -111,9 +113,11 @@ async function addTestTool(
   serial: string,
   [rangeLow, rangeHigh, unit]: [string, string, string],
 ): Promise<void> {
-  const facts = { name: kind, kind, serial, rangeLow, rangeHigh, unit, dueOn: null, cycleLimit: null };
+  const range = { rangeLow, rangeHigh, unit, ...classOf(kind) };
+  const facts = { name: kind, kind, serial, ...range, dueOn: null, cycleLimit: null };
   const tool = await addTool(trx, owner, facts, app);
-  const calibration = { on: '2031-01-10', dueOn: '2032-01-10', certificate: `C-${serial}`, readings: [] };
+  const days = { on: '2031-01-10', dueOn: '2032-01-10' };
+  const calibration = { ...days, certificate: `C-${serial}`, readings: goodReadings(facts) };
   await recordCalibration(trx, owner, tool.id, calibration, app);
 }
 

@@ -26,10 +26,12 @@ import { addFirstOwner, addPerson } from '@/server/people';
 import { storePin } from '@/server/pins';
 import { releaseDocuments } from '@/server/released-documents';
 import { documentHash } from '@/server/shipped-documents';
-import { addTool, recordCalibration } from '@/server/tools';
+import { recordCalibration } from '@/server/calibrations';
+import { addTool } from '@/server/tools';
 import { getWorkshopView, setWorkshop } from '@/server/workshop';
 import { type PushAnswer, ScriptedTablet } from '@db/scripted-tablet';
 import type { Kit } from '@db/scripted-work';
+import { classOf, goodReadings } from '../calibration';
 import { smallEngine, smallProcedures, smallRoute } from '../small-documents';
 import { openDisk, readRows, type Rows } from './disk';
 import { countingIdsOf } from './seed';
@@ -120,8 +122,10 @@ async function fillWorkshop({ app }: SimServer): Promise<Record<Name, Person>> {
     for (const person of Object.values(people)) await storePin(trx, person, pin, app);
     for (const [kind, serial, rangeHigh, unit] of TOOLS) {
       const range = { rangeLow: '0', rangeHigh, unit, dueOn: null, cycleLimit: null };
-      const tool = await addTool(trx, owner, { name: kind, kind, serial, ...range }, app);
-      const calibration = { on: '2031-01-10', dueOn: '2032-01-10', certificate: `C-${serial}`, readings: [] };
+      const facts = { name: kind, kind, serial, ...range, ...classOf(kind) };
+      const tool = await addTool(trx, owner, facts, app);
+      const days = { on: '2031-01-10', dueOn: '2032-01-10' };
+      const calibration = { ...days, certificate: `C-${serial}`, readings: goodReadings(facts) };
       await recordCalibration(trx, owner, tool.id, calibration, app);
     }
     const documents = [twoRods(), ...smallProcedures(), smallRoute()];

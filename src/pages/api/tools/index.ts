@@ -1,4 +1,5 @@
 import * as z from 'zod';
+import { TORQUE_TOOL_CLASSES, TORQUE_TOOL_TYPES } from '@/domain/tool';
 import { toolAnswer } from '@/server/answers';
 import { cursor, day, decimal, line } from '@/server/fields';
 import { endpoint } from '@/server/http';
@@ -8,12 +9,13 @@ export const GET = endpoint(
   {
     method: 'GET',
     path: '/api/tools',
-    summary: 'Every tool, also the withdrawn, by name, a page at a time',
+    summary:
+      'Every tool, also the withdrawn, by name, a page at a time; or those in use whose date is near, or past',
     who: 'session',
-    query: z.strictObject({ cursor }),
+    query: z.strictObject({ cursor, show: z.enum(['due', 'past']).optional() }),
     answer: z.strictObject({ tools: z.array(toolAnswer), cursor: z.string().optional() }),
   },
-  async ({ app, actor, query }) => listTools(app.db, actor, query),
+  async ({ app, actor, query }) => listTools(app.db, actor, query, app.clock),
 );
 
 export const POST = endpoint(
@@ -31,6 +33,8 @@ export const POST = endpoint(
       unit: line(20).nullable().default(null),
       dueOn: day.nullable().default(null),
       cycleLimit: z.int().min(1).nullable().default(null),
+      torqueType: z.enum(TORQUE_TOOL_TYPES).nullable().default(null),
+      torqueClass: z.enum(TORQUE_TOOL_CLASSES).nullable().default(null),
     }),
     answer: toolAnswer,
     status: 201,

@@ -2,13 +2,14 @@ import * as z from 'zod';
 import { calibrationAnswer } from '@/server/answers';
 import { day, decimal, line } from '@/server/fields';
 import { endpoint } from '@/server/http';
-import { recordCalibration } from '@/server/tools';
+import { recordCalibration } from '@/server/calibrations';
 
 export const POST = endpoint(
   {
     method: 'POST',
     path: '/api/tools/{id}/calibrations',
-    summary: 'Record a calibration, which moves the tool’s due date',
+    summary:
+      'Record a calibration; the server judges its readings, and one that does not fail moves the tool’s due date',
     who: ['supervisor', 'quality lead', 'owner'],
     body: z.strictObject({
       on: day,

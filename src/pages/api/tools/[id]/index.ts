@@ -1,4 +1,5 @@
 import * as z from 'zod';
+import { TORQUE_TOOL_CLASSES, TORQUE_TOOL_TYPES } from '@/domain/tool';
 import { calibrationAnswer, toolAnswer } from '@/server/answers';
 import { decimal, line } from '@/server/fields';
 import { endpoint } from '@/server/http';
@@ -29,6 +30,8 @@ export const PATCH = endpoint(
       rangeHigh: decimal.nullable().optional(),
       unit: line(20).nullable().optional(),
       cycleLimit: z.int().min(1).nullable().optional(),
+      torqueType: z.enum(TORQUE_TOOL_TYPES).nullable().optional(),
+      torqueClass: z.enum(TORQUE_TOOL_CLASSES).nullable().optional(),
       state: z.enum(['in use', 'withdrawn']).optional(),
     }),
     answer: toolAnswer,
