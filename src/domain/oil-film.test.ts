@@ -88,6 +88,11 @@ describe('filmFor', () => {
       for (const quantity of Object.keys(on!) as (keyof FilmState)[]) {
         expect(past![quantity], quantity).toBeCloseTo(on![quantity], 5);
       }
+      // What friction is above that of a journal in the middle goes with the square of how far it is off.
+      const [excess, ofHalfTheLoad] = [last, last * 2].map(
+        (S) => filmFor({ sommerfeld: S, lengthToDiameter }).frictionVariable / S - 2 * Math.PI ** 2,
+      );
+      expect(ofHalfTheLoad! / excess!).toBeCloseTo(1 / 4, 6);
       const light = filmFor({ sommerfeld: last * 1e9, lengthToDiameter });
       expect(light.minimumFilmRatio).toBeCloseTo(1, 8);
       expect(light.attitudeAngle).toBeCloseTo(unloaded.attitudeAngle, 6);

@@ -59,6 +59,7 @@ const table: Row[] = [
 // Worked out by solving Reynolds' equation for a full bearing by finite differences, with Reynolds' boundary
 // condition, independently of the tables (no source). l/d, eccentricity, S, φ, f·r/c, Q, Qs/Q, P/pmax.
 const solved: Row[] = [
+  [Infinity, 0.05, 0.4759, 70, 9.429, 3.096, 0, 0.8287],
   [Infinity, 0.3, 0.08375, 64.46, 1.868, 2.585, 0, 0.7924],
   [Infinity, 0.5, 0.04931, 58.3, 1.337, 1.933, 0, 0.7213],
   [Infinity, 0.7, 0.02993, 49.1, 1.092, 1.176, 0, 0.5952],
