@@ -1,6 +1,6 @@
 /* Graded old shells in words, the same on the Floor, the job's page, the trail and in print. */
 import type { ShellHalf } from './plan';
-import { type GradedShell, WEAR_FLAGS, WEAR_GRADES, WEAR_SIGNS, type WearGrade } from './wear';
+import { type GradedShell, WEAR_FLAGS, WEAR_GRADES, WEAR_SIGNS, type WearGrade, type WearMap } from './wear';
 
 /** What is written on the back of a shell, as "3U". */
 export function shellName({ rod, half }: { rod: number; half: ShellHalf }): string {
@@ -29,4 +29,13 @@ export function gradingWords(shells: readonly GradedShell[]): string {
     })),
   ];
   return lines.flatMap(({ name, some }) => (some.length === 0 ? [] : `${namesOf(some)} ${name}`)).join('; ');
+}
+
+/** The means of both halves, as "uppers 1.2, lowers 0.3 on average"; a half that was not graded is left out. */
+export function meansWords({ meanUpper, meanLower }: Pick<WearMap, 'meanUpper' | 'meanLower'>): string {
+  const means = [
+    { half: 'uppers', mean: meanUpper },
+    { half: 'lowers', mean: meanLower },
+  ].flatMap(({ half, mean }) => (Number.isNaN(mean) ? [] : `${half} ${mean.toFixed(1)}`));
+  return `${means.join(', ')} on average`;
 }

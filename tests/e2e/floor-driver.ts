@@ -102,6 +102,7 @@ export class FloorDriver {
     if (/^count them$|^key in /.test(look.words)) return this.keyIn(look);
     if (look.words.startsWith('touch a band')) return this.touch(this.button(BAND));
     if (look.words === 'touch a blade') return this.touch(this.button(BLADE));
+    if (look.words === 'touch the grade that most have') return this.gradeShells();
     if (look.words === 'touch what the odometer shows') return this.readOdometer();
     if (/^next look at|^until the time is over/.test(look.words)) return this.passTime(WATCH_STEP_MS);
     if (look.words.startsWith('yes, no or not sure')) return this.answer('No');
@@ -206,6 +207,13 @@ export class FloorDriver {
   private async takeTool(look: Look): Promise<void> {
     await this.touch(this.page.getByRole('group', { name: 'Tools that fit' }).getByRole('radio').first());
     await expect(this.bottom(look.main)).toHaveCount(0);
+    await this.passTime(PACE_MS);
+  }
+
+  /** The old shells all look alike. */
+  private async gradeShells(): Promise<void> {
+    await this.touch(this.button('1 fine lines'));
+    await this.touch(this.page.getByRole('button', { name: /^All \d+: fine lines$/ }));
     await this.passTime(PACE_MS);
   }
 

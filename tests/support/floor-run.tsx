@@ -17,6 +17,7 @@ import '@/features/floor/steps/DriveStep';
 import '@/features/floor/steps/FillStep';
 import '@/features/floor/steps/FitStep';
 import '@/features/floor/steps/GaugeStep';
+import '@/features/floor/steps/GradeShellsStep';
 import '@/features/floor/steps/HandOverStep';
 import '@/features/floor/steps/HoldStep';
 import '@/features/floor/steps/InspectStep';

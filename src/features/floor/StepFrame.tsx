@@ -15,6 +15,7 @@ import { useRun, type Run } from './run-context';
 import { useIsPortrait } from './use-is-portrait';
 
 const VerdictBand = lazy(() => import('./VerdictBand').then((m) => ({ default: m.VerdictBand })));
+const WearBand = lazy(() => import('./WearBand').then((m) => ({ default: m.WearBand })));
 
 /** Acts that may have a verdict. */
 const READINGS = new Set<EntryKind>(['gauged', 'read', 'counted']);
@@ -145,10 +146,11 @@ const CAUTION_LEVELS = {
 function Before({ run, isLoud }: { run: Run; isLoud: boolean }) {
   const [act] = lastAct(run.state);
   const line = <LastAct run={run} isLoud={isLoud} />;
-  if (!act || !READINGS.has(act.kind)) return line;
+  const isGraded = act?.kind === 'graded';
+  if (!act || !(isGraded || READINGS.has(act.kind))) return line;
   return (
     <Suspense fallback={line}>
-      <VerdictBand otherwise={line} />
+      {isGraded ? <WearBand otherwise={line} /> : <VerdictBand otherwise={line} />}
     </Suspense>
   );
 }

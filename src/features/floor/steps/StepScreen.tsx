@@ -24,6 +24,7 @@ const loaders = {
   photograph: () => import('./PhotographStep'),
   read: () => import('./ReadStep'),
   'choose-shells': () => import('./ChooseShellsStep'),
+  'grade-shells': () => import('./GradeShellsStep'),
   gauge: () => import('./GaugeStep'),
   hold: () => import('./HoldStep'),
   witness: () => import('./WitnessStep'),
@@ -33,6 +34,7 @@ const loaders = {
   resume: () => import('./ResumeStep'),
   'hand-over': () => import('./HandOverStep'),
   'what was read': () => import('../VerdictBand'),
+  'what was graded': () => import('../WearBand'),
 };
 
 /** Kinds whose record is told over the next screen. */
@@ -51,6 +53,7 @@ const ReadStep = lazy(() => loaders.read().then((m) => ({ default: m.ReadStep })
 const ChooseShellsStep = lazy(() =>
   loaders['choose-shells']().then((m) => ({ default: m.ChooseShellsStep })),
 );
+const GradeShellsStep = lazy(() => loaders['grade-shells']().then((m) => ({ default: m.GradeShellsStep })));
 const GaugeStep = lazy(() => loaders.gauge().then((m) => ({ default: m.GaugeStep })));
 const HoldStep = lazy(() => loaders.hold().then((m) => ({ default: m.HoldStep })));
 const WitnessStep = lazy(() => loaders.witness().then((m) => ({ default: m.WitnessStep })));
@@ -64,6 +67,7 @@ const HandOverStep = lazy(() => loaders['hand-over']().then((m) => ({ default: m
 export function fetchScreenOf(kind: PlanStep['kind']): void {
   if (kind in loaders) fetchQuietly(loaders[kind as keyof typeof loaders]);
   if (TOLD_AFTER.has(kind)) fetchQuietly(loaders['what was read']);
+  if (kind === 'grade-shells') fetchQuietly(loaders['what was graded']);
 }
 
 /** Brings the screens that come later, once nothing more urgent is to be done. */
@@ -103,6 +107,7 @@ const OWN_DONE_SCREEN = new Set<PlanStep['kind']>([
   'watch',
   'drive',
   'choose-shells',
+  'grade-shells',
   // One that was lost is taken again.
   'photograph',
 ]);
@@ -141,6 +146,8 @@ function screenOf(step: PlanStep, standing: Standing): ReactNode {
       return <GaugeStep step={step} />;
     case 'choose-shells':
       return <ChooseShellsStep step={step} />;
+    case 'grade-shells':
+      return <GradeShellsStep step={step} />;
     case 'tighten':
       return <TightenStep step={step} />;
     case 'fit':
