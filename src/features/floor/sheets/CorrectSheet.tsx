@@ -4,18 +4,18 @@ import { Keypad } from '@/components/Keypad';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
 import { correctionClass } from '@/domain/correction-class';
-import { wordsOf } from '@/domain/entry-words';
-import { openOnValue } from '@/domain/job-countersign';
-import { findSignature } from '@/domain/job-evidence';
 import { whyNotWhose } from '@/domain/job-correction-rules';
-import type { JobState, Kept } from '@/domain/job-state';
+import type { Kept } from '@/domain/job-state';
 import type { PlanStep } from '@/domain/plan';
 import { dayAndTime } from '@/domain/time-words';
 import { LotEntry } from '../LotEntry';
 import { NoteField } from '../NoteField';
 import { decimalText, isNumber } from '../numbers';
 import { useRun } from '../run-context';
+import { BeforeAfter, keptWords } from './BeforeAfter';
 import { correctableOn, fieldsOf, type CorrectField } from './correct-fields';
+import { CorrectGrades } from './CorrectGrades';
+import { afterWords } from './correct-words';
 import { Sheet } from './Sheet';
 
 interface CorrectSheetProps {
@@ -27,11 +27,13 @@ interface CorrectSheetProps {
 export function CorrectSheet({ step, onClose }: CorrectSheetProps) {
   const run = useRun();
   const entries = correctableOn(run.state, step).filter(
-    (kept) => fieldsOf(run.state, run.workshop, kept).length > 0,
+    (kept) => kept.kind === 'graded' || fieldsOf(run.state, run.workshop, kept).length > 0,
   );
   const [only] = entries.length === 1 ? entries : [];
   const [chosen, choose] = useState<string | undefined>(only?.id);
   const kept = entries.find(({ id }) => id === chosen);
+  if (kept?.kind === 'graded')
+    return <CorrectGrades kept={kept} onClose={onClose} onBack={() => choose(undefined)} />;
   if (kept) return <OneRecord kept={kept} onClose={onClose} onBack={() => choose(undefined)} />;
   return (
     <Sheet title={step ? `Correct: ${step.title}` : 'Correct'} onClose={onClose}>
@@ -64,12 +66,6 @@ export function CorrectSheet({ step, onClose }: CorrectSheetProps) {
 function whyNotHere(run: ReturnType<typeof useRun>, kept: Kept): string | undefined {
   const verdict = whyNotWhose(kept, run.person.id, run.workshop);
   return verdict.ok ? undefined : `${kept.name} corrects it, or a supervisor`;
-}
-
-/** A record as every place says it. */
-function keptWords({ plan }: JobState, { kind, step, data }: Pick<Kept, 'kind' | 'step' | 'data'>): string {
-  // Words are made of these three alone.
-  return wordsOf({ kind, step, data } as Parameters<typeof wordsOf>[0], plan);
 }
 
 const REASONS = [
@@ -156,29 +152,6 @@ function OneRecord({ kept, onClose, onBack }: { kept: Kept; onClose: () => void;
   );
 }
 
-/** The record as it stands and as it will read; both stay in the trail. */
-function BeforeAfter({ kept, after }: { kept: Kept; after: Kept['data'] | undefined }) {
-  const run = useRun();
-  return (
-    <dl className="grid gap-3 text-xl">
-      <div>
-        <dt className="form-label">
-          Recorded by {kept.name}, {dayAndTime(kept.at, run.workshop.zone)}
-        </dt>
-        <dd className="font-bold">{keptWords(run.state, kept)}</dd>
-      </div>
-      <div>
-        <dt className="form-label">
-          Corrected by {run.person.name}, who then counts as an author of this work
-        </dt>
-        <dd className="font-bold">
-          {after === undefined ? '…' : keptWords(run.state, { ...kept, data: after })}
-        </dd>
-      </div>
-    </dl>
-  );
-}
-
 function FieldInput({
   field,
   value,
@@ -237,19 +210,4 @@ function isWhole({ how }: CorrectField, value: string): boolean {
 
 function cleaned({ how }: CorrectField, value: string): string {
   return how === 'decimal' || how === 'integer' ? decimalText(value) : value.trim();
-}
-
-/** What comes of it, before it is touched. */
-function afterWords(state: JobState, kept: Kept, isClass: 'clerical' | 'substantive'): string {
-  const isSigned = state.plan.steps.some(
-    (step) =>
-      step.kind === 'hold' &&
-      kept.step !== undefined &&
-      step.covers.includes(kept.step) &&
-      findSignature(state, step.id) !== undefined,
-  );
-  if (isClass === 'substantive' && kept.step !== undefined && openOnValue(state, kept.step, kept).length > 0)
-    return 'the deviation stays open until someone else countersigns';
-  if (!isSigned) return 'the record keeps both';
-  return isClass === 'clerical' ? 'someone else countersigns it' : 'the hold point opens again';
 }

@@ -98,6 +98,25 @@ describe('correcting a record', () => {
     expect(journal.state.deviations.at(-1)).toMatchObject({ rule: 'corrected-outside' });
   });
 
+  it('of the old shells is made by the brush that graded them', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.grade');
+    journal.grade('strip.grade', { '2U': { grade: 3 } });
+    const { user, onClose } = open(journal, 'strip.grade');
+    expect(main()).toHaveTextContent('that is what stands there');
+    await user.click(sheet().getByRole('button', { name: /^2 worn/ }));
+    await user.click(sheet().getByRole('button', { name: /^2U,/ }));
+    expect(sheet().getByText(/2U worn to the next layer$/)).toBeVisible();
+    expect(sheet().getByText(/2U copper showing$/)).toBeVisible();
+    await user.click(sheet().getByRole('button', { name: 'wrong one touched' }));
+    await user.click(main());
+    expect(journal.entries.at(-1)).toMatchObject({
+      kind: 'corrected',
+      data: { class: 'substantive', reason: 'wrong one touched' },
+    });
+    expect(journal.state.deviations.at(-1)?.words).toMatch(/2U copper showing \(since corrected\)$/);
+    expect(onClose).toHaveBeenCalledOnce();
+  });
+
   it('stays open with the words when the rules refuse', async () => {
     const journal = afterGauge();
     const { user, onClose } = open(journal, GAUGE);
