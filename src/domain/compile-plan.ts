@@ -151,6 +151,7 @@ function planEngine(engine: EngineSheet, hashes: Record<string, string>): PlanEn
     boltSets: engine.boltSets.map(({ set, tightenings }) => ({ set, tightenings })),
     measuringBolts,
     shells: { standard, grades },
+    ...(engine.bearing && { bearing: { diameter: engine.bearing.diameter, width: engine.bearing.width } }),
     card: { thread, threadDiameter, range, bands },
   };
 }

@@ -89,6 +89,8 @@ export const engineSchema = z.strictObject({
       .min(1),
     source: sourceSchema,
   }),
+  /** Crankpin diameter and the width of a shell that carries, mm: for estimates of the oil film alone. */
+  bearing: z.strictObject({ diameter: decimal, width: decimal, source: sourceSchema }).optional(),
   card: z.strictObject({
     thread: words,
     threadDiameter: decimal,

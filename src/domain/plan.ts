@@ -148,6 +148,8 @@ export interface PlanEngine extends DocumentReference {
   boltSets: { set: BoltSet; tightenings: number }[];
   measuringBolts: BoltSet;
   shells: { standard: string; grades: { grade: string; wall: string }[] };
+  /** mm; for estimates of the oil film alone. */
+  bearing?: { diameter: string; width: string };
   card: {
     thread: string;
     threadDiameter: string;

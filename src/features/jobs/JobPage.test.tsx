@@ -1,6 +1,7 @@
 import { render, screen, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { describe, expect, it } from 'vitest';
+import type { EntryOf } from '@/domain/entry';
 import { photosOf } from '@/domain/job-photos';
 import { progressOf } from '@/domain/job-progress';
 import { nextSteps } from '@/domain/job';
@@ -109,6 +110,59 @@ describe('the page of a job', () => {
     expect(blocks.getByText('T. Nician, 2 Jun, 09:00')).toBeVisible();
   });
 
+  it('says nothing of the old shells before they are graded', async () => {
+    await show(answerOf(new Journal(smallPlan()).performUntil('strip.grade')));
+    expect(screen.queryByRole('heading', { name: 'Wear of the old shells' })).toBeNull();
+  });
+
+  it('has the map of the old shells in words, and what it points to as a hint', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.grade');
+    journal.grade('strip.grade', {
+      '1L': { grade: 2 },
+      '2L': { grade: 2, flags: ['heat'] },
+      '3L': { grade: 1 },
+      '4L': { grade: 3 },
+    });
+    await show(answerOf(journal));
+    const wear = part('Wear of the old shells');
+    const map = within(wear.getByRole('table', { name: /^Wear of the old shells, front at the left/ }));
+    expect(map.getAllByRole('columnheader').map(({ textContent }) => textContent)).toEqual([
+      'Half',
+      'Rod 1',
+      'Rod 2',
+      'Rod 3',
+      'Rod 4',
+    ]);
+    const lower = within(map.getByRole('row', { name: /^Lower/ })).getAllByRole('cell');
+    expect(lower.map(({ textContent }) => textContent)).toEqual([
+      '1L, worn to the next layer',
+      '2L, worn to the next layer, heat',
+      '3L, fine lines',
+      '4L, copper showing',
+    ]);
+    expect(wear.getByText('Worst: copper showing')).toHaveTextContent('uppers 0.0, lowers 2.0 on average');
+    expect(wear.getByText(/^The lower shells are worn more than the upper ones: commonly/)).toBeVisible();
+    expect(wear.getByText(/^Heat at 2L: commonly/)).toBeVisible();
+    expect(wear.getByText(/A hint for whoever looks further, never a verdict/)).toHaveTextContent(
+      'by T. Nician, 2 Jun, ',
+    );
+  });
+
+  it('shows the grades as they were corrected, and by whom', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.grade');
+    const { id, data } = journal.grade('strip.grade', {}) as EntryOf<'graded'>;
+    const shells = data.shells.map((shell) => ({ ...shell, grade: 1 as const }));
+    journal.record(
+      'corrected',
+      { of: id, class: 'substantive', reason: 'better light', data: { shells } },
+      { by: 'sup', step: 'strip.grade' },
+    );
+    await show(answerOf(journal));
+    const wear = part('Wear of the old shells');
+    expect(wear.getByText(/nothing stands out/)).toBeVisible();
+    expect(wear.getByText(/by S. Visor, 2 Jun, .*, as corrected\./)).toBeVisible();
+  });
+
   it('has the signatures as stamps, and says of one whose PIN is unchecked what to do', async () => {
     const plan = smallPlan();
     const hold = plan.steps.find(({ kind }) => kind === 'hold')!;
@@ -128,6 +182,18 @@ describe('the page of a job', () => {
     expect(screen.getByRole('img', { name: subject })).toHaveAttribute(
       'src',
       `/api/photos/${'b'.repeat(64)}?size=thumb`,
+    );
+  });
+
+  it('says how the clearances lie together, and how sure the least sure one is', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.turn-to@stop2');
+    await show(answerOf(journal));
+    const clearances = part('Oil clearance');
+    expect(clearances.getByText(/readings: mean/)).toHaveTextContent(
+      /^4 readings: mean 0\.0480 mm, spread 0\.000 mm, standard deviation 0\.0000 mm\.$/,
+    );
+    expect(clearances.getByText(/Least sure/)).toHaveTextContent(
+      /inside its limits with a probability of more than 99\.9 %\. The verdict is by its guard bands, not by this\.$/,
     );
   });
 

@@ -8,6 +8,7 @@ import { JobBlocks } from './JobBlocks';
 import { JobClearances } from './JobClearances';
 import { JobErasure } from './JobErasure';
 import { JobCorrections } from './JobCorrections';
+import { JobFilm } from './JobFilm';
 import { JobFacts, JobHeadFacts } from './JobFacts';
 import { JobKept } from './JobKept';
 import { JobNext } from './JobNext';
@@ -17,6 +18,7 @@ import { JobProgress } from './JobProgress';
 import { JobSetAside } from './JobSetAside';
 import { JobSignatures } from './JobSignatures';
 import { JobStanding } from './JobStanding';
+import { JobWear } from './JobWear';
 import { jobAnswer, type JobAnswer } from './job-answer';
 import { newQueryClient, useServer } from '@/offline/use-server';
 
@@ -109,6 +111,7 @@ function Job({
             <EngineBelow {...engineView(jobState, next, zone)} />
           </section>
           <JobClearances state={jobState} />
+          <JobFilm state={jobState} />
         </div>
         <div className="job-state">
           <JobBlocks
@@ -123,6 +126,7 @@ function Job({
           <JobNext state={jobState} />
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
           <JobSignatures state={jobState} zone={zone} judge={onThisJob} />
+          <JobWear state={jobState} zone={zone} />
           <JobPhotos
             state={jobState}
             zone={zone}
