@@ -4,7 +4,6 @@ import { FloorFrame } from '@/components/FloorFrame';
 import { Notice } from '@/components/Notice';
 import { QuietButton } from '@/components/QuietButton';
 import { syncWords } from '@/components/sync-words';
-import { sumsAddress } from '@/features/sums/sums-address';
 import type { JobRow } from '@/offline/database';
 import { makeAvailableOffline } from '@/offline/prefetch';
 import type { Outcome } from '@/offline/server-call';
@@ -19,6 +18,7 @@ import { SignOutSheet } from './SignOutSheet';
 import { TabletForm } from './TabletForm';
 import { clockTime } from '@/domain/time-words';
 import { useIsOnline } from './use-is-online';
+import { sumsAddress } from './sums-address';
 import { useUpdate } from './use-update';
 
 const SaveToFile = lazy(() => import('./sheets/SaveToFile').then((m) => ({ default: m.SaveToFile })));

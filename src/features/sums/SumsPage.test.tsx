@@ -2,7 +2,6 @@ import { render, screen, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { afterEach, describe, expect, it } from 'vitest';
 import { SumsPage } from './SumsPage';
-import { sumsAddress } from './sums-address';
 
 afterEach(() => {
   location.hash = '';
@@ -57,12 +56,5 @@ describe('the sums on the Floor', () => {
     expect(screen.getByText(/The preload is an estimate/)).toBeVisible();
     await user.click(sums().getByRole('button', { name: 'Clearance' }));
     expect(screen.getByText(/A sum, no reading/)).toBeVisible();
-  });
-
-  it('has an address of its own that leads back to the job', () => {
-    expect(sumsAddress({})).toBe('/floor/sums');
-    expect(sumsAddress({ job: 'j1', sum: 'adapter', target: undefined })).toBe(
-      '/floor/sums#job=j1&sum=adapter',
-    );
   });
 });

@@ -1,10 +1,10 @@
 import type { PlanStep } from '@/domain/plan';
 import { setWorking } from '@/offline/tablet';
 import { useFloor, useFloorStore } from '../floor-context';
+import { sumsAddress } from '../sums-address';
 import { useJobTablets } from '../use-job-tablets';
 import { useUpdate } from '../use-update';
 import { useRun, type SheetName, type Worker } from '../run-context';
-import { sumsAddress } from '@/features/sums/sums-address';
 import { SignOutSheet } from '../SignOutSheet';
 import { CorrectSheet } from './CorrectSheet';
 import { DeviationForm } from './DeviationForm';
