@@ -6,7 +6,9 @@ import { ClearanceScale } from './ClearanceScale';
 import { CrankDial } from './CrankDial';
 import { EngineBelow } from './EngineBelow';
 import { ProgrammeStrip } from './ProgrammeStrip';
+import { ShellFace, type ShellFaceProps } from './ShellFace';
 import { TrailStrip } from './TrailStrip';
+import { benchRows } from './WearMap';
 
 const running = { state: 'running', cycles: 3, cyclesDone: 1 } as const;
 
@@ -212,5 +214,46 @@ describe('TrailStrip', () => {
         name: 'Entry 12 of 40. strip-down, entries 1 to 40. Signed clear to close at entry 40',
       }),
     ).toBeInTheDocument();
+  });
+});
+
+describe('ShellFace', () => {
+  const drawingOf = (props: ShellFaceProps) => {
+    const { container, unmount } = render(<ShellFace {...props} />);
+    const shapes = container.querySelector('svg')?.innerHTML ?? '';
+    unmount();
+    return shapes;
+  };
+
+  it('tells every grade and every sign by its shapes', () => {
+    const faces = [
+      drawingOf({}),
+      ...([1, 2, 3, 4] as const).map((grade) => drawingOf({ grade })),
+      ...(['heat', 'debris', 'edge', 'pitting'] as const).map((mark) => drawingOf({ marks: [mark] })),
+    ];
+    expect(new Set(faces).size).toBe(faces.length);
+  });
+
+  it('hatches copper inside its patch', () => {
+    const { container } = render(<ShellFace grade={3} />);
+    const hatch = [...container.querySelectorAll('.shell-lines')].at(-1)?.getAttribute('d') ?? '';
+    const points = [...hatch.matchAll(/(-?[\d.]+) (-?[\d.]+)/g)].map(([, x, y]) => [Number(x), Number(y)]);
+    expect(points.length).toBeGreaterThan(20);
+    for (const [x = NaN, y = NaN] of points)
+      expect(((x - 52) / 21) ** 2 + ((y - 24) / 11) ** 2).toBeCloseTo(1, 1);
+  });
+});
+
+describe('the bench of old shells', () => {
+  const rods = (count: number) => Array.from({ length: count }, (_, i) => ({ rod: String(i + 1) }));
+
+  it.each([
+    [4, [4]],
+    [8, [8]],
+    [10, [5, 5]],
+    [12, [6, 6]],
+    [0, []],
+  ])('of %i rods has rows of %j', (count, rows) => {
+    expect(benchRows(rods(count)).map(({ length }) => length)).toEqual(rows);
   });
 });
