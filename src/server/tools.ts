@@ -9,7 +9,7 @@ import { requireSomebody } from './asker';
 import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
 import { AppError } from './errors';
-import { type KeptTool, readTool, toTool } from './tool-rows';
+import { type KeptTool, readTool, readTools, toTool } from './tool-rows';
 import { readToday } from './workshop';
 import { appendWorkshopEntry } from './workshop-trail';
 
@@ -70,6 +70,16 @@ export async function getTool(
 ): Promise<KeptTool & { calibrations: Calibration[] }> {
   requireSomebody(actor);
   return { ...(await readTool(db, id)), calibrations: await listCalibrations(db, id) };
+}
+
+/** The tool that a page is about, or undefined where there is none. */
+export async function findToolForPage(
+  db: Db,
+  actor: Actor | undefined,
+  id: string | undefined,
+): Promise<KeptTool | undefined> {
+  if (actor === undefined || id === undefined) return undefined;
+  return (await readTools(db, actor)).find((tool) => tool.id === id);
 }
 
 /**

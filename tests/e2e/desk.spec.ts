@@ -103,6 +103,8 @@ for (const theme of THEMES) {
       ['/jobs/new', page.getByRole('button', { name: 'Open the job' })],
       [`/jobs/${job.id}`, page.getByRole('region', { name: 'Progress' })],
       [`/jobs/${job.id}/trail`, page.getByText(/^Unbroken/)],
+      ['/tools', page.getByRole('table', { name: 'The tools of the workshop' })],
+      [await addressOfTool(page), page.getByRole('heading', { name: 'Enter a calibration' })],
     ] as const;
     for (const [address, shown] of pages) {
       await page.goto(address);
@@ -118,6 +120,13 @@ for (const theme of THEMES) {
     await floor.runUntil(({ main }) => main === 'Both at 8, then 25 N·m');
     await expectAccessible(page, 'the Floor, tightening');
   });
+}
+
+/** The page of a tool that has been calibrated. */
+async function addressOfTool(page: Page): Promise<string> {
+  const answer = await page.request.get('/api/tools');
+  const { tools } = (await answer.json()) as { tools: { id: string; kind: string }[] };
+  return `/tools/${tools.find(({ kind }) => kind === 'torque wrench')?.id ?? ''}`;
 }
 
 async function expectAccessible(page: Page, where: string): Promise<void> {
