@@ -291,7 +291,7 @@ describe('recordStage', () => {
 
   it('refuses a stage that the programme does not have, and a reading that can not be', () => {
     expect(() => recordStage(twice, { bolt: '3A', cycle: 2, stage: 0 }, { outcome: 'done' })).toThrow(
-      'no stage 1 in cycle 3.',
+      /no stage 1 in cycle 3\.$/,
     );
     const angleOf3A = { bolt: '3A', cycle: 0, stage: 1 };
     expect(() => recordStage(twice, angleOf3A, { outcome: 'done', reading: -1 })).toThrow(RangeError);
