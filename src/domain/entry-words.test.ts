@@ -29,6 +29,21 @@ describe('an entry in words', () => {
     );
   });
 
+  it('says of shells what was proposed only where others were taken', () => {
+    const entry = journal.entries.find((e) => e.kind === 'chose-shells')!;
+    const { upper, lower } = entry.data;
+    const proposing = (grade: string) =>
+      wordsOf(
+        {
+          ...entry,
+          data: { upper, lower, proposed: { upper: grade, lower: lower.grade }, reason: 'none left' },
+        },
+        journal.plan,
+      );
+    expect(proposing(upper.grade)).toBe(wordsOf(entry, journal.plan));
+    expect(proposing('red')).toMatch(/; proposed were upper red, lower blue: none left$/);
+  });
+
   it('has a line for every entry of a whole job', () => {
     expect(said.every((words) => words.length > 3)).toBe(true);
   });

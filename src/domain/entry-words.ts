@@ -45,7 +45,7 @@ function workWords(entry: Entry, plan: Plan): string | undefined {
     case 'turned':
       return title;
     case 'chose-shells':
-      return `${title}: upper ${entry.data.upper.grade} (lot ${entry.data.upper.lot}), lower ${entry.data.lower.grade} (lot ${entry.data.lower.lot})`;
+      return `${title}: ${choiceWords(entry.data)}`;
     case 'graded':
       return `${title}: ${gradingWords(entry.data.shells)}`;
     case 'gauged':
@@ -73,6 +73,14 @@ function workWords(entry: Entry, plan: Plan): string | undefined {
     default:
       return undefined;
   }
+}
+
+function choiceWords({ upper, lower, proposed, reason }: EntryData<'chose-shells'>): string {
+  const words = `upper ${upper.grade} (lot ${upper.lot}), lower ${lower.grade} (lot ${lower.lot})`;
+  const isOther = proposed && (proposed.upper !== upper.grade || proposed.lower !== lower.grade);
+  return isOther
+    ? `${words}; proposed were upper ${proposed.upper}, lower ${proposed.lower}: ${reason ?? 'no reason given'}`
+    : words;
 }
 
 function gaugedWords(entry: EntryOf<'gauged'>, plan: Plan): string {
@@ -150,7 +158,7 @@ function recordWords(entry: Entry, plan: Plan): string {
     case 'took-over':
       return withNote('Took the job over', entry.data.note);
     case 'signed':
-      return `Signed the hold point “${title}”: “${entry.data.meaning}”, ${entry.data.presence}${entry.data.notIndependent === undefined ? '' : ` (not independent: ${entry.data.notIndependent})`}`;
+      return `Signed the hold point “${title}”: “${entry.data.meaning}”, ${entry.data.presence}${entry.data.certificate === undefined ? '' : `, certificate ${entry.data.certificate.number}, ${entry.data.certificate.kind}`}${entry.data.notIndependent === undefined ? '' : ` (not independent: ${entry.data.notIndependent})`}`;
     case 'witnessed':
       return `Looked at “${title}”: “${entry.data.meaning}”`;
     case 'work-signed':

@@ -82,6 +82,12 @@ export const entryData = {
     upper: shell,
     lower: shell,
     predicted: z.optional(decimal),
+    /** The grades that the tablet proposed; other ones are put in with a reason only. */
+    proposed: z.optional(z.strictObject({ upper: text(40), lower: text(40) })),
+    /** What lay on the shelf before these were taken, as it was counted for the proposal. */
+    stock: z.optional(
+      z.array(z.strictObject({ grade: text(40), half: z.enum(['upper', 'lower', 'either']), count: whole })),
+    ),
     reason: z.optional(note),
   }),
   /** The old shells side by side; each of the engine once. */
@@ -161,6 +167,8 @@ export const entryData = {
     covers: coverage,
     /** A second look by the same person, with the reason; reads "not independent". */
     notIndependent: z.optional(note),
+    /** By which certificate they sign, where the workshop has one of theirs. */
+    certificate: z.optional(z.strictObject({ number: text(60), kind: text(60) })),
   }),
   witnessed: z.strictObject({ holdPoint: text(60), meaning: text(600) }),
   'work-signed': z.strictObject({ covers: coverage }),

@@ -2,6 +2,7 @@
  * What may be recorded, asked on the tablet before the screen moves and again on the server. Every answer
  * is in words for the person who asked. The plan's hash, signatures and PINs are the server's to check.
  */
+import { whyNotAuthorisedFor } from './authorisation';
 import { entryData, type Entry, type EntryKind, type EntryOf } from './entry';
 import * as z from 'zod/mini';
 import { whyNotTighten } from './job-tightening-rules';
@@ -73,6 +74,8 @@ export function mayRecord(state: JobState, entry: Entry, workshop: Workshop): Ve
   if (helper !== undefined) return no('unknown-person', 'The workshop does not know one of the helpers.');
   const role = whyNotRole(entry.kind, person.roles);
   if (!role.ok) return role;
+  const authorised = whyNotAuthorisedFor(state, entry, person, workshop.zone);
+  if (!authorised.ok) return authorised;
   if (entry.kind === 'opened')
     return state.phase === 'not opened' ? OK : no('already-opened', 'The job is open already.');
   const phase = whyNotPhase(state, entry.kind);
@@ -243,7 +246,14 @@ function whyNotChosen(state: JobState, step: PlanStep, entry: EntryOf<'chose-she
   if (isAfterReading && entry.data.reason === undefined) {
     return no('reason-missing', 'Other shells void the reading of this rod.', 'Give the reason.');
   }
+  if (!isAsProposed(entry.data) && entry.data.reason === undefined) {
+    return no('reason-missing', 'Other shells were proposed for this rod.', 'Say why these were taken.');
+  }
   return OK;
+}
+
+function isAsProposed({ upper, lower, proposed }: EntryOf<'chose-shells'>['data']): boolean {
+  return proposed === undefined || (proposed.upper === upper.grade && proposed.lower === lower.grade);
 }
 
 function whyNotWatch(

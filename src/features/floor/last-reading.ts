@@ -1,6 +1,7 @@
 /* The reading that was kept last, for as long as nothing was recorded after it. */
 import { isBlocked } from '@/domain/job-deviation';
 import { judgeLimit } from '@/domain/job-limit';
+import { predictionWords } from '@/domain/job-prediction';
 import type { JobState, Kept, RodState } from '@/domain/job-state';
 import { findStep, type PlanLimit, type PlanStep, type StepOf } from '@/domain/plan';
 import type { VerdictKind } from '@/components/Verdict';
@@ -68,7 +69,9 @@ function clearanceRead(state: JobState, step: StepOf<'gauge'>, kept: Kept): Last
 
 function clearanceWords(rod: RodState, limit: PlanLimit, odd: NonNullable<RodState['front']>): string {
   if (odd.verdict !== 'inside') return limitWords(limit);
-  return taperWords(rod, limit.unit) ?? targetWords(odd, limit);
+  const words = taperWords(rod, limit.unit) ?? targetWords(odd, limit);
+  const prediction = predictionWords(rod);
+  return prediction === undefined ? words : `${prediction}; ${words}`;
 }
 
 function valueRead(state: JobState, step: StepOf<'read'>, kept: Kept): LastReading | undefined {

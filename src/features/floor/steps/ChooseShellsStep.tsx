@@ -2,92 +2,246 @@ import { useState } from 'react';
 import { ChoiceRows } from '@/components/ChoiceRows';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
-import { addExact, exactOf, exactToNumber, formatDecimal, subtractExact } from '@/domain/decimal';
-
+import type { EntryData } from '@/domain/entry';
+import { clearanceLimit } from '@/domain/engine-view';
 import { lastOf } from '@/domain/job-kept';
+import {
+  clearanceOfRod,
+  expectedClearance,
+  fullShelf,
+  proposeShells,
+  shellsOnShelf,
+  type RodClearance,
+  type ShellProposal,
+} from '@/domain/job-shells';
 import type { JobState, RodState, ShellFitted } from '@/domain/job-state';
 import type { StepOf } from '@/domain/plan';
+import type { ShellsInStock } from '@/domain/shell-choice';
 import { shellLots } from '../known-lots';
 import { LotEntry } from '../LotEntry';
 import { RecordAction } from '../RecordAction';
-import { StepFrame } from '../StepFrame';
-import { clearanceLimit } from '@/domain/engine-view';
+import { StepFrame, StepHeading } from '../StepFrame';
 import { useRun } from '../run-context';
+import { ShelfCount } from './ShelfCount';
+import { ShellReason } from './ShellReason';
+import { ShellsProposed } from './ShellsProposed';
 
 type Half = 'upper' | 'lower';
+type Shells = Record<Half, ShellFitted>;
+/** The shelf as counted on this screen; `full` where nobody counts. */
+type Shelf = ShellsInStock[] | 'full';
 
-/** Which grade and lot of shell goes into each half of the rod. */
+const HALVES = ['upper', 'lower'] as const;
+
+/** Which grade and lot of shell goes into each half of the rod: proposed once the rod was read, and free to choose. */
 export function ChooseShellsStep({ step }: { step: StepOf<'choose-shells'> }) {
   const { state } = useRun();
-  const rod = step.rod === undefined ? undefined : state.rods[step.rod];
-  const [shells, setShells] = useState<Record<Half, ShellFitted>>(() => firstChoice(state, rod));
-  const [asksLot, setAsksLot] = useState<Half>();
-  const isAfterReading =
-    rod?.front !== undefined || rod?.rear !== undefined || (rod?.voidReadings.length ?? 0) > 0;
-  const predicted = predictedClearance(state, rod, shells);
-  const missing = (['upper', 'lower'] as const).find((half) => shells[half].lot === '');
-  if (asksLot !== undefined) {
+  const known = step.rod === undefined ? undefined : clearanceOfRod(state, step.rod);
+  const [shelf, setShelf] = useState<Shelf | undefined>(() => shellsOnShelf(state));
+  const [isCounting, setCounting] = useState(false);
+  const [isCounted, setCounted] = useState(false);
+  const isProposing = known !== undefined && isToPropose(state, step);
+  if (isProposing && (shelf === undefined || isCounting)) {
     return (
-      <AskLot
+      <ShelfCount
         step={step}
-        half={asksLot}
-        grade={shells[asksLot].grade}
-        value={shells[asksLot].lot}
-        onLot={(lot) => setShells({ ...shells, [asksLot]: { ...shells[asksLot], lot } })}
-        onClose={() => setAsksLot(undefined)}
+        known={shelf === 'full' ? undefined : shelf}
+        onCounted={(stock) => {
+          setShelf(stock);
+          setCounting(false);
+          setCounted(true);
+        }}
+        onSkip={() => {
+          setShelf(shelf ?? 'full');
+          setCounting(false);
+        }}
       />
     );
   }
+  const stock = shelf === 'full' || shelf === undefined ? fullShelf(state) : shelf;
+  const proposal = isProposing ? proposeShells(state, known.rod, stock) : undefined;
+  return (
+    <ChooseShells
+      key={JSON.stringify(proposal?.shells)}
+      step={step}
+      known={known}
+      proposal={proposal}
+      counted={isCounted && shelf !== 'full' ? shelf : undefined}
+      isUncounted={shelf === 'full'}
+      onCount={() => setCounting(true)}
+    />
+  );
+}
+
+/** Whether other shells are wanted: the rod is back at its shells, or what was read is not inside known limits. */
+function isToPropose(state: JobState, step: StepOf<'choose-shells'>): boolean {
+  const limit = clearanceLimit(state);
+  if (limit?.low === undefined || limit.high === undefined || step.rod === undefined) return false;
+  const rod = state.rods[step.rod];
+  const isOff = [rod?.front, rod?.rear].some(
+    (reading) => reading !== undefined && reading.verdict !== 'inside',
+  );
+  return isOff || state.steps[step.id]?.status !== 'done';
+}
+
+interface ChooseShellsProps {
+  step: StepOf<'choose-shells'>;
+  known: RodClearance | undefined;
+  proposal: ShellProposal | undefined;
+  /** The shelf, where it was counted for this choice. */
+  counted: ShellsInStock[] | undefined;
+  isUncounted: boolean;
+  onCount: () => void;
+}
+
+function ChooseShells({ step, known, proposal, counted, isUncounted, onCount }: ChooseShellsProps) {
+  const { state } = useRun();
+  const rod = step.rod === undefined ? undefined : state.rods[step.rod];
+  const [shells, setShells] = useState<Shells>(() => firstChoice(state, rod, proposal));
+  const [asks, setAsks] = useState<Half | 'reason'>();
+  const [reason, setReason] = useState<string>();
+  const proposed = proposal?.shells;
+  const isAsProposed =
+    proposed === undefined || HALVES.every((half) => proposed[half] === shells[half].grade);
+  const limit = clearanceLimit(state);
+  const expected = known && expectedClearance(state, known, gradesOf(shells));
+  function choose(half: Half, shell: ShellFitted): void {
+    if (shell.grade !== shells[half].grade) setReason(undefined);
+    setShells({ ...shells, [half]: shell });
+  }
+  if (asks === 'reason' && proposed) {
+    return (
+      <ShellReason
+        step={step}
+        chosen={pairWords(gradesOf(shells))}
+        proposed={pairWords(proposed)}
+        onReason={(words) => {
+          setReason(words);
+          setAsks(undefined);
+        }}
+        onClose={() => setAsks(undefined)}
+      />
+    );
+  }
+  if (asks === 'upper' || asks === 'lower') {
+    return (
+      <AskLot
+        step={step}
+        half={asks}
+        grade={shells[asks].grade}
+        value={shells[asks].lot}
+        onLot={(lot) => choose(asks, { ...shells[asks], lot })}
+        onClose={() => setAsks(undefined)}
+      />
+    );
+  }
+  const missing = HALVES.find((half) => shells[half].lot === '');
   return (
     <StepFrame
       step={step}
+      heading={proposal ? <h1 className="floor-step pb-3">{step.title}</h1> : <StepHeading step={step} />}
+      quiet={proposal ? <QuietButton label="Count again" onPress={onCount} /> : undefined}
+      foot={
+        isUncounted
+          ? 'Nobody has counted the shelf: proposed as if enough of each grade lay there.'
+          : undefined
+      }
       main={
-        <RecordAction
-          label="Shells chosen"
-          why={missing === undefined ? undefined : `the lot of the ${missing} shell is needed`}
-          drafts={() => [
-            {
-              kind: 'chose-shells',
-              step: step.id,
-              data: {
-                ...shells,
-                ...(predicted === undefined ? {} : { predicted }),
-                ...(isAfterReading ? { reason: 'the clearance read with other shells' } : {}),
+        isAsProposed || reason !== undefined ? (
+          <RecordAction
+            label="Shells chosen"
+            why={missing === undefined ? undefined : `the lot of the ${missing} shell is needed`}
+            drafts={() => [
+              {
+                kind: 'chose-shells',
+                step: step.id,
+                data: chosenData({
+                  shells,
+                  expected,
+                  proposed,
+                  counted,
+                  reason,
+                  isAfterReading: known !== undefined,
+                }),
               },
-            },
-          ]}
-        />
+            ]}
+          />
+        ) : (
+          <MainAction label="Say why not as proposed" onPress={() => setAsks('reason')} />
+        )
       }
     >
-      <div className="grid gap-8 @lg/floor-main:grid-cols-2">
-        {(['upper', 'lower'] as const).map((half) => (
+      {proposal && limit && known && expected !== undefined && (
+        <ShellsProposed
+          proposal={proposal}
+          limit={limit}
+          chosen={pairWords(gradesOf(shells))}
+          expected={expected}
+          uncertainty={known.uncertainty}
+          isAsProposed={isAsProposed}
+        />
+      )}
+      <div className="grid gap-8 pt-4 @lg/floor-main:grid-cols-2">
+        {HALVES.map((half) => (
           <div key={half} className="grid content-start gap-3">
             <ChoiceRows
               label={`${half === 'upper' ? 'Upper' : 'Lower'} shell, ${step.rod ?? ''}${half === 'upper' ? 'U' : 'L'}`}
               choices={state.plan.engine.shells.grades.map(({ grade, wall }) => ({
                 value: grade,
                 label: grade,
-                note: wallWords(wall),
+                note: known
+                  ? `${expectedClearance(state, known, { ...gradesOf(shells), [half]: grade })} mm`
+                  : wallWords(wall),
               }))}
               value={shells[half].grade}
-              onChoose={(grade) => setShells({ ...shells, [half]: { grade, lot: lotFor(state, grade) } })}
+              onChoose={(grade) => choose(half, { grade, lot: lotFor(state, grade) })}
             />
             <QuietButton
               shape="wide"
               label={shells[half].lot === '' ? `Lot of the ${half} shell` : `Lot ${shells[half].lot}, change`}
-              onPress={() => setAsksLot(half)}
+              onPress={() => setAsks(half)}
             />
           </div>
         ))}
       </div>
-      {predicted !== undefined && (
-        <p className="pt-4 text-lg">
-          Predicted from the last reading: <span className="figure font-semibold">{predicted} mm</span>. A
-          prediction is not a measurement: it is gauged again.
-        </p>
-      )}
     </StepFrame>
   );
+}
+
+interface Chosen {
+  shells: Shells;
+  expected: string | undefined;
+  proposed: Record<Half, string> | undefined;
+  counted: ShellsInStock[] | undefined;
+  reason: string | undefined;
+  isAfterReading: boolean;
+}
+
+/** What is recorded: the shells, what they should give, and what was proposed from which shelf. */
+function chosenData({
+  shells,
+  expected,
+  proposed,
+  counted,
+  reason,
+  isAfterReading,
+}: Chosen): EntryData<'chose-shells'> {
+  const why = reason ?? (isAfterReading ? 'the clearance read with other shells' : undefined);
+  return {
+    ...shells,
+    ...(expected !== undefined && Number(expected) > 0 ? { predicted: expected } : {}),
+    ...(proposed === undefined ? {} : { proposed: { upper: proposed.upper, lower: proposed.lower } }),
+    ...(counted === undefined ? {} : { stock: counted }),
+    ...(why === undefined ? {} : { reason: why }),
+  };
+}
+
+function gradesOf({ upper, lower }: Shells): Record<Half, string> {
+  return { upper: upper.grade, lower: lower.grade };
+}
+
+function pairWords({ upper, lower }: Record<Half, string>): string {
+  return `upper ${upper}, lower ${lower}`;
 }
 
 interface AskLotProps {
@@ -120,11 +274,20 @@ function AskLot({ step, half, grade, value, onLot, onClose }: AskLotProps) {
   );
 }
 
-/** What is in the rod now, else the standard grade. */
-function firstChoice(state: JobState, rod: RodState | undefined): Record<Half, ShellFitted> {
+/** What is proposed, else what is in the rod now, else the standard grade. */
+function firstChoice(
+  state: JobState,
+  rod: RodState | undefined,
+  proposal: ShellProposal | undefined,
+): Shells {
   const { standard } = state.plan.engine.shells;
-  const fresh: ShellFitted = { grade: standard, lot: lotFor(state, standard) };
-  return { upper: rod?.upper ?? fresh, lower: rod?.lower ?? fresh };
+  const shell = (half: Half): ShellFitted => {
+    const grade = proposal?.shells?.[half];
+    const present = rod?.[half];
+    if (present && (grade === undefined || grade === present.grade)) return present;
+    return { grade: grade ?? standard, lot: lotFor(state, grade ?? standard) };
+  };
+  return { upper: shell('upper'), lower: shell('lower') };
 }
 
 /** The lot last used for a grade on this job, else the only one of the kit check. */
@@ -137,25 +300,6 @@ function lotFor(state: JobState, grade: string): string {
     .findLast((shell) => shell.grade === grade);
   const known = shellLots(state, grade);
   return used?.lot ?? (known.length === 1 ? (known[0] ?? '') : '');
-}
-
-/** The last reading less what the other walls take; nothing where nothing was read or nothing changes. */
-function predictedClearance(
-  state: JobState,
-  rod: RodState | undefined,
-  shells: Record<Half, ShellFitted>,
-): string | undefined {
-  const reading = rod?.rear ?? rod?.front ?? rod?.voidReadings.at(-1);
-  if (!reading || !rod?.upper || !rod.lower || !clearanceLimit(state)) return undefined;
-  const wall = ({ grade }: ShellFitted) =>
-    exactOf(state.plan.engine.shells.grades.find((g) => g.grade === grade)?.wall ?? '0');
-  const change = subtractExact(
-    addExact(wall(shells.upper), wall(shells.lower)),
-    addExact(wall(rod.upper), wall(rod.lower)),
-  );
-  const places = (reading.clearance.split('.')[1] ?? '').length;
-  const predicted = exactToNumber(subtractExact(exactOf(reading.clearance), change));
-  return predicted > 0 ? formatDecimal(predicted, places) : undefined;
 }
 
 function wallWords(wall: string): string {

@@ -6,6 +6,7 @@ import { Reading } from '@/components/Reading';
 import { Verdict } from '@/components/Verdict';
 import { correctionOver } from '@/domain/job-countersign';
 import { wayOut } from '@/domain/job-order';
+import { predictionWords } from '@/domain/job-prediction';
 import type { ClearanceReading, JobState, RodState } from '@/domain/job-state';
 import { rodsOf, type PlanLimit, type StepOf } from '@/domain/plan';
 import { dataOf } from '../done-words';
@@ -96,6 +97,7 @@ function isByParts(state: JobState, step: StepOf<'gauge'>, { entry }: ClearanceR
 function VerdictWords({ rod, kept, limit }: { rod: RodState; kept: ClearanceReading; limit: PlanLimit }) {
   const other = kept.end === 'front' ? rod.rear : rod.front;
   const taper = taperWords(rod, limit.unit);
+  const prediction = predictionWords(rod);
   return (
     <>
       <p>{verdictText(kept, limit)}</p>
@@ -105,6 +107,7 @@ function VerdictWords({ rod, kept, limit }: { rod: RodState; kept: ClearanceRead
         </p>
       )}
       {taper !== undefined && <p>{taper}</p>}
+      {prediction !== undefined && <p>{prediction}</p>}
     </>
   );
 }
