@@ -23,6 +23,8 @@ describe('the workshop’s trail in words', () => {
         record('document-released', { documentKind: 'engine', document: 't4', revision: 2 }, 9),
         record('document-released', { documentKind: 'procedure', document: 'strip', revision: 1 }, 10),
         record('workshop-key-renewed', { key: 'ab'.repeat(32), before: 'cd'.repeat(32), since: 's' }, 11),
+        record('second-units-changed', { shown: 'inch and pound' }, 12),
+        record('second-units-changed', { shown: 'none' }, 13),
       ),
     ).toEqual([
       'Ines Vale added as technician',
@@ -36,6 +38,8 @@ describe('the workshop’s trail in words', () => {
       'Engine sheet t4, revision 2, released',
       'Procedure strip, revision 1, released',
       'The workshop signs with key abababababababab from here on, vouched for by cdcdcdcdcdcdcdcd, the one before it',
+      'The Floor shows inch and pound beside SI from here on',
+      'The Floor shows SI alone from here on',
     ]);
   });
 

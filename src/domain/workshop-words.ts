@@ -42,6 +42,7 @@ const TOPICS: Readonly<Record<string, WorkshopTopic>> = {
   'person-added': 'people',
   'person-renamed': 'people',
   'roles-changed': 'people',
+  'authorisation-changed': 'people',
   'person-deactivated': 'people',
   'person-reactivated': 'people',
   'pin-set': 'people',
@@ -79,6 +80,10 @@ function wordsOf({ kind, data }: WorkshopRecord, names: ReadonlyMap<string, stri
   switch (kind) {
     case 'workshop-set':
       return `The workshop is called ${text(data.name) ?? ''}, its clock ${text(data.zone) ?? ''}`;
+    case 'second-units-changed':
+      return data.shown === 'none'
+        ? 'The Floor shows SI alone from here on'
+        : 'The Floor shows inch and pound beside SI from here on';
     case 'witness-address-changed':
       return data.address === 'set'
         ? 'Signed heads are mailed to a witness address from here on'
@@ -91,6 +96,8 @@ function wordsOf({ kind, data }: WorkshopRecord, names: ReadonlyMap<string, stri
       return `${text(data.from) ?? ''} is called ${text(data.to) ?? ''} from here on`;
     case 'roles-changed':
       return `${named(data.person)}: ${list(data.from)} became ${list(data.to)}`;
+    case 'authorisation-changed':
+      return `${named(data.person)}: ${authorisationWords(data)}`;
     case 'person-deactivated':
       return `${named(data.person)} let out`;
     case 'person-reactivated':
@@ -177,6 +184,16 @@ function because(reason: unknown): string {
 
 function due(day: unknown): string {
   return typeof day === 'string' ? `, due ${day}` : '';
+}
+
+/** By which certificate somebody signs from then on, and until when. */
+function authorisationWords({ certificate, authorisedUntil }: WorkshopRecord['data']): string {
+  const { number, kind } = (certificate ?? {}) as { number?: unknown; kind?: unknown };
+  const by =
+    number === undefined
+      ? 'signs without a certificate'
+      : `signs by certificate ${shown(number)}, ${shown(kind)}`;
+  return typeof authorisedUntil === 'string' ? `${by}, until ${authorisedUntil}` : by;
 }
 
 /** One that failed moved no date. */

@@ -5,6 +5,7 @@
  */
 import { Dexie, type Table } from 'dexie';
 import type { Entry, Recorded } from '@/domain/entry';
+import type { SecondUnits } from '@/domain/second-unit';
 import type { Workshop } from '@/domain/job-state';
 import type { Plan } from '@/domain/plan';
 
@@ -51,6 +52,8 @@ export interface WorkshopRow extends Workshop {
   name: string;
   people: (Workshop['people'][number] & { hasPin: boolean })[];
   sealingKey: { id: string; publicKey: string };
+  /** What stands beside SI; a tablet that was filled before there was a choice shows none. */
+  secondUnits?: SecondUnits | undefined;
 }
 
 /** A tablet that has a part in a job, and when the server last heard of it. */

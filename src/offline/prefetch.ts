@@ -24,6 +24,8 @@ const workshopAnswer = z.object({
       roles: z.array(z.string()),
       active: z.boolean(),
       hasPin: z.boolean(),
+      certificate: z.optional(z.nullable(z.object({ number: z.string(), kind: z.string() }))),
+      authorisedUntil: z.optional(nullableText),
     }),
   ),
   tools: z.array(
@@ -43,6 +45,7 @@ const workshopAnswer = z.object({
     }),
   ),
   sealingKey: z.object({ id: z.string(), publicKey: z.string() }),
+  secondUnits: z.optional(z.enum(['none', 'inch and pound'])),
 });
 
 /** Brings the workshop's people, tools and sealing key. */

@@ -18,11 +18,13 @@ export type EntryData =
 
 export const WORKSHOP_KINDS = [
   'workshop-set',
+  'second-units-changed',
   'witness-address-changed',
   'workshop-key-renewed',
   'person-added',
   'person-renamed',
   'roles-changed',
+  'authorisation-changed',
   'person-deactivated',
   'person-reactivated',
   'pin-set',

@@ -1,10 +1,14 @@
 import type { Role } from '@/domain/role';
+import type { SecondUnits } from '@/domain/second-unit';
+import type { Certificate } from '@/domain/authorisation';
 import { dayIn } from '@/domain/job-tightening-rules';
 import { type Actor, parseRoles, requireRole } from './actor';
 import { type Asker, requireSomebody } from './asker';
 import { type Clock, type Ids, stamp } from './clock';
 import type { Db, Trx } from './database';
 import type { Keys } from './keys';
+import { toAuthorisation } from './authorisations';
+import { readSecondUnits } from './second-units';
 import { type KeptTool, readTools } from './tool-rows';
 import { appendWorkshopEntry, workshopSeq } from './workshop-trail';
 
@@ -18,12 +22,22 @@ export interface WorkshopDetails {
 export interface WorkshopView extends WorkshopDetails {
   /** The number of the workshop's newest entry, by which all of this holds. */
   seq: number;
-  people: { id: string; name: string; roles: Role[]; active: boolean; hasPin: boolean }[];
+  people: {
+    id: string;
+    name: string;
+    roles: Role[];
+    active: boolean;
+    hasPin: boolean;
+    certificate: Certificate | null;
+    authorisedUntil: string | null;
+  }[];
   tools: KeptTool[];
   /** The key that PINs are sealed to. */
   sealingKey: { id: string; publicKey: string };
   /** The fingerprint of the key that signs trail heads. */
   headKey: string;
+  /** What stands beside SI on the Floor. */
+  secondUnits: SecondUnits;
 }
 
 /** Names the workshop and its zone. */
@@ -73,7 +87,8 @@ async function readView(db: Db, asker: Asker, keys: Keys): Promise<WorkshopView>
   const people = await db
     .selectFrom('person')
     .leftJoin('signing_pin', 'signing_pin.person_id', 'person.id')
-    .select(['id', 'printed_name', 'roles', 'active', 'signing_pin.set_at'])
+    .selectAll('person')
+    .select('signing_pin.set_at')
     .orderBy('printed_name')
     .execute();
   return {
@@ -85,9 +100,11 @@ async function readView(db: Db, asker: Asker, keys: Keys): Promise<WorkshopView>
       roles: parseRoles(row.roles),
       active: row.active === 1,
       hasPin: row.set_at !== null,
+      ...toAuthorisation(row),
     })),
     tools: await readTools(db, asker),
     sealingKey: { id: keys.sealing.current.id, publicKey: keys.sealing.current.publicKey },
     headKey: keys.head.fingerprint,
+    secondUnits: await readSecondUnits(db),
   };
 }

@@ -147,7 +147,15 @@ export async function openTable(): Promise<Table> {
     'GET /api/people/{id}': { params: { id: ann.id } },
     'PATCH /api/people/{id}': {
       params: { id: newcomer },
-      body: { name: 'Newly Added', roles: ['technician', 'auditor'], active: true },
+      body: {
+        name: 'Newly Added',
+        roles: ['technician', 'auditor'],
+        active: true,
+        authorisation: {
+          certificate: { number: 'T-1', kind: 'technician' },
+          authorisedUntil: '2032-01-01',
+        },
+      },
     },
     'POST /api/people/{id}/password-link': { params: { id: ann.id }, body: {} },
     'GET /api/photos/{hash}': { params: { hash: photoHash } },
@@ -193,6 +201,7 @@ export async function openTable(): Promise<Table> {
     'GET /api/workshop': {},
     'PUT /api/workshop': { body: workshop },
     'GET /api/workshop/trail': {},
+    'PUT /api/workshop/units': { body: { shown: 'inch and pound' } },
     'GET /api/workshop/witness': {},
     'PUT /api/workshop/witness': { body: { address: 'witness@witness.example' } },
     // Refused until an address was chosen.

@@ -246,6 +246,7 @@ export class OfflineServer {
       people,
       sealingKey: { id: 'seal-1', publicKey: toBase64url(raw) },
       headKey: 'f'.repeat(64),
+      secondUnits: 'none',
     };
   }
 

@@ -1,5 +1,7 @@
 import { useId } from 'react';
 import type { PlanLimit } from '@/domain/plan';
+import { besideSI } from '@/domain/second-unit';
+import { useRun } from './run-context';
 
 const WIDTH = 380;
 const FROM = 60;
@@ -43,9 +45,19 @@ export function LimitBand({ limit, value }: { limit: PlanLimit; value?: string |
       <figcaption className="pt-1 text-2xl font-semibold">
         {limitWords(limit)}
         {target === undefined ? '' : `, target ${target}`}
+        <LimitBeside limit={limit} />
       </figcaption>
     </figure>
   );
+}
+
+/** The same limits in the shop's other unit, where it shows one. */
+function LimitBeside({ limit: { low, high, unit } }: { limit: PlanLimit }) {
+  const { secondUnits } = useRun().workshop;
+  const ends = [low, high].flatMap((end) =>
+    end === undefined ? [] : (besideSI(secondUnits, end, unit) ?? []),
+  );
+  return ends.length === 0 ? null : <span className="block text-lg text-soft">{ends.join(' to ')}</span>;
 }
 
 /** What is allowed, in words. */

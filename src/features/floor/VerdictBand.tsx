@@ -2,6 +2,7 @@ import type { ReactNode } from 'react';
 import { QuietButton } from '@/components/QuietButton';
 import { Verdict } from '@/components/Verdict';
 import { VerdictScale } from '@/components/VerdictScale';
+import { besideSI } from '@/domain/second-unit';
 import { clockTime } from '@/domain/time-words';
 import { limitOnScale } from './gauge-reading';
 import { lastReading, type LastReading } from './last-reading';
@@ -25,6 +26,7 @@ export function VerdictBand({ otherwise }: { otherwise: ReactNode }) {
             <span className="figure">
               {value}
               {unit !== '' && <span className="verdict-band-unit"> {unit}</span>}
+              <Beside value={value} unit={unit} />
             </span>
           </p>
         ))}
@@ -41,6 +43,11 @@ export function VerdictBand({ otherwise }: { otherwise: ReactNode }) {
       </div>
     </section>
   );
+}
+
+function Beside({ value, unit }: { value: string; unit: string }) {
+  const beside = besideSI(useRun().workshop.secondUnits, value, unit);
+  return beside === undefined ? null : <span className="verdict-band-beside">{beside}</span>;
 }
 
 function BandScale({ reading: { values, limit, isClearance } }: { reading: LastReading }) {

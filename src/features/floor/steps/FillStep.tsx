@@ -2,6 +2,7 @@ import { useState } from 'react';
 import { Keypad } from '@/components/Keypad';
 import { QuietButton } from '@/components/QuietButton';
 import type { StepOf } from '@/domain/plan';
+import { besideSI } from '@/domain/second-unit';
 import { knownLots } from '../known-lots';
 import { LotEntry } from '../LotEntry';
 import { RecordAction } from '../RecordAction';
@@ -11,11 +12,12 @@ import { useRun } from '../run-context';
 
 /** A fluid goes in: how much was poured, and of which lot. */
 export function FillStep({ step }: { step: StepOf<'fill'> }) {
-  const { state } = useRun();
+  const { state, workshop } = useRun();
   const fluid = state.plan.fluids[step.fluid];
   const title = fluid?.title ?? step.fluid;
   const unit = fluid?.unit ?? 'L';
   const known = knownLots(state, title);
+  const beside = fluid && besideSI(workshop.secondUnits, fluid.quantity, fluid.unit);
   const [quantity, setQuantity] = useState('');
   const [lot, setLot] = useState(known.length === 1 ? (known[0] ?? '') : '');
   const [isAskingLot, setAskingLot] = useState(false);
@@ -56,6 +58,7 @@ export function FillStep({ step }: { step: StepOf<'fill'> }) {
               <p className="form-label">by the engine sheet</p>
               <p className="figure text-4xl font-semibold">
                 {fluid.quantity} {fluid.unit}
+                {beside !== undefined && <span className="text-2xl text-soft">, {beside}</span>}
               </p>
               <p className="text-lg text-soft">{fluid.specification}</p>
             </div>

@@ -3,6 +3,7 @@ import { LoudAction } from '@/components/LoudAction';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
 import type { StepOf } from '@/domain/plan';
+import { besideSI } from '@/domain/second-unit';
 import { following } from '../current-step';
 import { boltName } from '../done-words';
 import { NextAction } from '../NextAction';
@@ -159,6 +160,11 @@ function ActionHeading({
           words={words}
           figure={figure}
           unit={unit}
+          beside={
+            figure === undefined || unit === undefined
+              ? undefined
+              : besideSI(run.workshop.secondUnits, figure, unit)
+          }
           step={headWords(step, touch) ?? placeWords(run.state, step, touch)}
         />
       </div>

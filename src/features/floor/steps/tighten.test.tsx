@@ -10,8 +10,9 @@ import { nextTouch } from '../tighten-touch';
 const STEP = 'build.tighten@rod1';
 
 /** A cap on its final fit after so many single actions, with both tools in hand. */
-function runCap(actions = 0, { ask = false, tools = true } = {}) {
+function runCap(actions = 0, { ask = false, tools = true, workshop = {} } = {}) {
   const journal = new Journal(smallPlan()).performUntil(STEP);
+  Object.assign(journal.workshop, workshop);
   if (tools) {
     journal.record('tool-taken', { use: 'torque', tool: torqueTool });
     journal.record('tool-taken', { use: 'angle', tool: angleTool });
@@ -49,6 +50,16 @@ function hold(name: RegExp) {
 }
 
 describe('the tightening programme', () => {
+  it('shows the torque in pounds beside SI where the shop wants that, and never an angle', () => {
+    runCap(0, { workshop: { secondUnits: 'inch and pound' } });
+    expect(screen.getByRole('heading', { level: 1 })).toHaveTextContent(/10 N·m 7\.4 lbf·ft$/);
+  });
+
+  it('shows SI alone where the shop has not chosen', () => {
+    runCap();
+    expect(screen.getByRole('heading', { level: 1 })).toHaveTextContent(/10 N·m$/);
+  });
+
   it('asks for the tool before the first pass of class A, and for nothing else', async () => {
     const { onSheet, made } = runCap(0, { tools: false });
     expect(main()).toHaveTextContent('touch the one in your hand');

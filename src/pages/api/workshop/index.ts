@@ -1,5 +1,6 @@
 import * as z from 'zod';
-import { toolAnswer } from '@/server/answers';
+import { SECOND_UNITS } from '@/domain/second-unit';
+import { certificate, toolAnswer } from '@/server/answers';
 import { line, nothing, role, zone } from '@/server/fields';
 import { endpoint } from '@/server/http';
 import { getWorkshopView, setWorkshop } from '@/server/workshop';
@@ -21,11 +22,14 @@ export const GET = endpoint(
           roles: z.array(role),
           active: z.boolean(),
           hasPin: z.boolean(),
+          certificate: certificate.nullable(),
+          authorisedUntil: z.string().nullable(),
         }),
       ),
       tools: z.array(toolAnswer),
       sealingKey: z.strictObject({ id: z.string(), publicKey: z.string() }),
       headKey: z.string(),
+      secondUnits: z.enum(SECOND_UNITS),
     }),
   },
   async ({ app, asker }) => getWorkshopView(app.db, asker, app.keys),
