@@ -25,6 +25,12 @@ describe('units against NIST SP 811 appendix B.8', () => {
   it('-40 °C is -40 °F (from memory: identity of C = (F − 32) / 1.8)', () => {
     expect(convert(-40, '°C', '°F')).toBeCloseTo(-40, 9);
   });
+
+  it('absolute zero is -273.15 °C and -459.67 °F, and nothing is colder (from memory: by definition of the kelvin)', () => {
+    expect(convert(-459.67, '°F', '°C')).toBeCloseTo(-273.15, 9);
+    expect(() => convert(-459.68, '°F', '°C')).toThrow('below absolute zero');
+    expect(() => convert(-273.16, '°C', '°F')).toThrow('below absolute zero');
+  });
 });
 
 describe('units against dual-unit figures of public technical manuals', () => {
