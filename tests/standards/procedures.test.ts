@@ -112,7 +112,16 @@ describe.each(routes)('%s', (route) => {
     }
   });
 
-  // The same manuals: the crank stands about 30° from bottom dead centre and isn't turned until the thread is read.
+  // PB-crush: TM 5-3805-255-14 section 00094; TM 5-3820-256-24-5, page 13.
+  it('lets nobody file or lap what a shell is pressed in by', () => {
+    const plan = shippedPlan(route);
+    for (const rod of rodsOf(plan)) {
+      const step = plan.steps[positionOf(plan, `measurement.new-shells@rod${rod}`)]!;
+      expect(wordsOf(step)).toMatch(/Never file or lap cap, rod or shell/);
+    }
+  });
+
+  // The same manuals as for the order: the crank stands about 30° from bottom dead centre and isn't turned until the thread is read.
   it('stops the crank about 30° short of bottom and never turns it on laid thread', () => {
     const plan = shippedPlan(route);
     for (const { pin, angle, rods } of plan.engine.crankpins) {
