@@ -49,7 +49,13 @@ const CRATERS = [
 /** The face of a shell laid flat, its parting lines left and right: told by lines and hatching, never by colour alone. */
 export function ShellFace({ grade, marks = [] }: ShellFaceProps) {
   return (
-    <svg className="shell-face" viewBox="0 0 96 52" aria-hidden="true" data-grade={grade}>
+    <svg
+      className="shell-face"
+      viewBox="0 0 96 52"
+      aria-hidden="true"
+      data-open={grade === undefined || undefined}
+      data-empty={(grade === undefined && marks.length === 0) || undefined}
+    >
       <path className="shell-tab" d="M 12 45 V 50 H 24 V 45" />
       <rect className="shell-body" x="3" y="3" width="90" height="42" rx="2.5" />
       {grade !== undefined && <Wear grade={grade} />}
@@ -85,10 +91,10 @@ function Mark({ mark }: { mark: FaceMark }) {
     case 'debris':
       return (
         <>
-          <path className="shell-lines" d="M 22 14 H 40 M 56 36 H 76 M 60 12 H 74" />
+          <path className="shell-scores" d="M 22 13 H 46 M 54 36 H 82 M 64 15 H 84" />
           <path
             className="shell-hole"
-            d="M 18 14 l 4 -4 l 4 4 l -4 4 Z M 52 36 l 4 -4 l 4 4 l -4 4 Z M 56 12 l 4 -4 l 4 4 l -4 4 Z"
+            d="M 16 13 l 6 -5.5 l 6 5.5 l -6 5.5 Z M 47 36 l 6 -5.5 l 6 5.5 l -6 5.5 Z M 58 15 l 5 -4.5 l 5 4.5 l -5 4.5 Z"
           />
         </>
       );

@@ -49,6 +49,10 @@ export function WearMap({ label, rods, size = 'full' }: WearMapProps) {
         {label}
         {index > 0 ? ', further rods' : ''}, front at the left
       </caption>
+      <colgroup>
+        <col className="wear-halves" />
+        <col span={row.length} />
+      </colgroup>
       <thead className="unseen">
         <tr>
           <th scope="col">Half</th>
@@ -63,7 +67,7 @@ export function WearMap({ label, rods, size = 'full' }: WearMapProps) {
         {HALVES.map(({ half, word }) => (
           <tr key={half}>
             <th scope="row" className="wear-half">
-              {word}
+              <span className={size === 'small' ? 'unseen' : undefined}>{word}</span>
             </th>
             {row.map(({ rod, [half]: shell }) => (
               <td key={rod}>{shell && <ShellCell shell={shell} isSmall={size === 'small'} />}</td>
@@ -112,12 +116,10 @@ export function ShellPicker({ label, rods, onTouch }: ShellPickerProps) {
                     type="button"
                     className="shell-cell is-touchable"
                     data-open={shell.grade === undefined || undefined}
+                    aria-label={`${shell.name}, ${shell.words}`}
                     onClick={() => onTouch(shell.name)}
                   >
-                    <span className="shell-name">
-                      {shell.name}
-                      <span className="unseen">, </span>
-                    </span>
+                    <span className="shell-name">{shell.name}</span>
                     <ShellFace grade={shell.grade} marks={shell.marks} />
                     <span className="shell-words">{shell.words}</span>
                   </button>

@@ -33,7 +33,7 @@ export function WearPalette({ grades, signs, brush, onGrade, onSign }: WearPalet
             label={name}
             looks={looks}
             isLooksUnseen
-            face={<ShellFace marks={[sign]} />}
+            face={<ShellFace grade={0} marks={[sign]} />}
             isPressed={brush === sign}
             onPress={() => onSign(sign)}
           />

@@ -31,7 +31,7 @@ describe('graded shells in words', () => {
   });
 
   it('leaves out the mean of a half that was not graded', () => {
-    expect(meansWords({ meanUpper: 7 / 6, meanLower: 0 })).toBe('uppers 1.2, lowers 0.0 on average');
-    expect(meansWords({ meanUpper: 1, meanLower: NaN })).toBe('uppers 1.0 on average');
+    expect(meansWords({ meanUpper: 7 / 6, meanLower: 0 })).toBe('Mean grade: uppers 1.2, lowers 0.0');
+    expect(meansWords({ meanUpper: 1, meanLower: NaN })).toBe('Mean grade: uppers 1.0');
   });
 });

@@ -31,11 +31,11 @@ export function gradingWords(shells: readonly GradedShell[]): string {
   return lines.flatMap(({ name, some }) => (some.length === 0 ? [] : `${namesOf(some)} ${name}`)).join('; ');
 }
 
-/** The means of both halves, as "uppers 1.2, lowers 0.3 on average"; a half that was not graded is left out. */
+/** The means of both halves, as "Mean grade: uppers 1.2, lowers 0.3"; a half that was not graded is left out. */
 export function meansWords({ meanUpper, meanLower }: Pick<WearMap, 'meanUpper' | 'meanLower'>): string {
   const means = [
     { half: 'uppers', mean: meanUpper },
     { half: 'lowers', mean: meanLower },
   ].flatMap(({ half, mean }) => (Number.isNaN(mean) ? [] : `${half} ${mean.toFixed(1)}`));
-  return `${means.join(', ')} on average`;
+  return `Mean grade: ${means.join(', ')}`;
 }

@@ -116,6 +116,55 @@ test('every sheet of a run in the middle of a cap', async ({ app, page }) => {
   }
 });
 
+test('the old shells, side by side', async ({ app, page }) => {
+  test.setTimeout(4 * MINUTE);
+  const { number } = await seedJob(app, {
+    until: ({ steps }) => steps.find(({ kind }) => kind === 'grade-shells')?.id,
+  });
+  await page.goto('/floor');
+  await islandsReady(page);
+  await signInOnFloor(page, ines, { tablet: 'Bay 3' });
+  await openOnFloor(page, number);
+  const bench = page.getByRole('group', { name: /^The old shells/ });
+  await test.step('before any is graded', async () => {
+    await expect(bench.getByRole('button')).toHaveCount(12);
+    await expectGood(page, { hasMain: true });
+  });
+  await test.step('with all grades and signs', async () => {
+    await page.getByRole('button', { name: '1 fine lines' }).tap();
+    await page.getByRole('button', { name: 'All 12: fine lines' }).tap();
+    for (const [patch, shell] of [
+      ['3 copper showing', '5U'],
+      ['4 material missing', '6U'],
+      ['heat', '6U'],
+      ['debris', '6U'],
+      ['edge loading', '6U'],
+      ['pitting', '6U'],
+    ] as const) {
+      await page.getByRole('button', { name: patch, exact: true }).tap();
+      await bench.getByRole('button', { name: new RegExp(`^${shell},`) }).tap();
+    }
+    await expectGood(page, { hasMain: true });
+  });
+  await test.step('what they say, over the next screen', async () => {
+    await page.getByRole('button', { name: 'Keep the 12 grades' }).tap();
+    await expect(page.getByRole('region', { name: 'The old shells just graded' })).toContainText('5U copper');
+    await expectGood(page, { hasMain: true });
+  });
+  await test.step('looked at again, and corrected', async () => {
+    await page.getByRole('button', { name: /list of steps/ }).tap();
+    await page
+      .getByRole('dialog')
+      .getByRole('button', { name: /^Grade the old shells/ })
+      .tap();
+    await expect(page.getByRole('table', { name: /^Wear of the old shells/ })).toBeVisible();
+    await expectGood(page, { hasMain: true });
+    await page.getByRole('button', { name: 'Correct', exact: true }).tap();
+    await expect(page.getByRole('dialog', { name: 'Correct the grades' })).toBeVisible();
+    await expectGood(page, { hasMain: true });
+  });
+});
+
 test('the screens beside a run', async ({ app, page }) => {
   test.setTimeout(4 * MINUTE);
   const { number } = await seedJob(app, {

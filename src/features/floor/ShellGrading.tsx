@@ -11,12 +11,14 @@ export interface ShellGradingProps {
   places: readonly ShellPlace[];
   grading: Grading;
   onChange: (grading: Grading) => void;
+  /** What to do first. */
+  first: string;
   /** Sets palette and bench where the screen has room for them. */
   children: (palette: ReactNode, bench: ReactNode) => ReactNode;
 }
 
 /** Grades by a brush: one touch takes a grade or a sign, the next ones give it to shells. */
-export function ShellGrading({ places, grading, onChange, children }: ShellGradingProps) {
+export function ShellGrading({ places, grading, onChange, first, children }: ShellGradingProps) {
   const [brush, setBrush] = useState<Brush>();
   const open = ungraded(places, grading);
   const canFill = typeof brush === 'number' && open.length > 0;
@@ -32,7 +34,7 @@ export function ShellGrading({ places, grading, onChange, children }: ShellGradi
   const bench = (
     <>
       <div className="wear-hint">
-        <p>{hintFor(brush)}</p>
+        <p>{brush === undefined ? first : hintFor(brush)}</p>
         {canFill && (
           <QuietButton
             shape="wide"
@@ -51,8 +53,7 @@ export function ShellGrading({ places, grading, onChange, children }: ShellGradi
   return children(palette, bench);
 }
 
-function hintFor(brush: Brush | undefined): string {
-  if (brush === undefined) return 'Touch the grade that most of them have.';
+function hintFor(brush: Brush): string {
   if (typeof brush === 'number') return `Touch the shells that are “${gradeName(brush)}”.`;
   const { name, looks } = WEAR_SIGNS[brush];
   return `Touch the shells with ${name}: ${looks}. A second touch takes it off.`;

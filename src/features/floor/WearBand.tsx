@@ -5,7 +5,7 @@ import { gradedShells, oldShells } from '@/domain/job-wear';
 import { clockTime } from '@/domain/time-words';
 import { useRun } from './run-context';
 import { benchOf, gradingOf } from './shell-grading';
-import { WearFindings } from './WearFindings';
+import { ShellsSay } from './ShellsSay';
 
 /** The grades that were just kept, over the next screen until something is recorded there. */
 export function WearBand({ otherwise }: { otherwise: ReactNode }) {
@@ -28,7 +28,7 @@ export function WearBand({ otherwise }: { otherwise: ReactNode }) {
           <QuietButton shape="wide" label="Take back" onPress={() => run.openSheet('take back')} />
         </div>
       </div>
-      <WearFindings shells={shells} />
+      <ShellsSay shells={shells} isBand />
     </section>
   );
 }

@@ -140,12 +140,25 @@ describe('the page of a job', () => {
       '3L, fine lines',
       '4L, copper showing',
     ]);
-    expect(wear.getByText('Worst: copper showing')).toHaveTextContent('uppers 0.0, lowers 2.0 on average');
+    expect(wear.getByText('Worst: copper showing')).toBeVisible();
+    expect(wear.getByText('Mean grade: uppers 0.0, lowers 2.0')).toBeVisible();
+    expect(wear.getByText(/^Deviation, class B, open: Old shells to look at/)).toHaveTextContent(
+      '2L worn to the next layer, heat; 4L copper showing. Nothing waits for it.',
+    );
     expect(wear.getByText(/^The lower shells are worn more than the upper ones: commonly/)).toBeVisible();
     expect(wear.getByText(/^Heat at 2L: commonly/)).toBeVisible();
     expect(wear.getByText(/A hint for whoever looks further, never a verdict/)).toHaveTextContent(
       'by T. Nician, 2 Jun, ',
     );
+  });
+
+  it('says who looked at the pins of worn shells, and what came of it', async () => {
+    const journal = new Journal(smallPlan()).performUntil('strip.grade');
+    journal.grade('strip.grade', { '4L': { grade: 3 } });
+    journal.acceptLast('The pin is smooth.');
+    await show(answerOf(journal));
+    const line = part('Wear of the old shells').getByText(/^Deviation, class B, accept as is by S. Visor/);
+    expect(line).toHaveTextContent('with their pins: 4L copper showing. The pin is smooth.');
   });
 
   it('shows the grades as they were corrected, and by whom', async () => {

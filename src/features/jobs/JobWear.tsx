@@ -1,5 +1,7 @@
+import { Sign } from '@/components/Sign';
+import { WearFindings } from '@/components/WearFindings';
 import { WearMap, type WearMapRod } from '@/components/WearMap';
-import { gradedShells, oldShells } from '@/domain/job-wear';
+import { gradedShells, oldShells, WORN_SHELLS } from '@/domain/job-wear';
 import type { JobState } from '@/domain/job-state';
 import type { ShellHalf } from '@/domain/plan';
 import { dayAndTime } from '@/domain/time-words';
@@ -11,30 +13,35 @@ export function JobWear({ state, zone }: { state: JobState; zone: string }) {
   const graded = gradedShells(state);
   if (!graded) return null;
   const { kept, shells } = graded;
-  const map = wearMap(shells);
+  const { worst, patterns, ...means } = wearMap(shells);
+  const worn = state.deviations.filter(({ rule }) => rule === WORN_SHELLS);
   return (
     <section className="part">
       <h2 className="part-title">Wear of the old shells</h2>
       <WearMap label="Wear of the old shells" rods={rodsFor(state, shells)} />
-      <div className="wear-findings">
-        <p className="wear-worst">
-          Worst: {gradeName(map.worst)} <span className="wear-means">{meansWords(map)}</span>
-        </p>
-        {map.patterns.length > 0 ? (
-          <ul>
-            {map.patterns.map((words) => (
-              <li key={words}>{words}</li>
-            ))}
-          </ul>
-        ) : (
-          <p>No pattern stands out.</p>
-        )}
-        <p className="wear-hint-line">
-          A hint for whoever looks further, never a verdict. Graded by eye, 0 even grey to 4 material missing,
-          by {kept.valueFrom?.name ?? kept.name}, {dayAndTime(kept.valueFrom?.at ?? kept.at, zone)}
-          {kept.correctedBy !== undefined && ', as corrected'}.
-        </p>
-      </div>
+      <WearFindings
+        worst={gradeName(worst)}
+        means={meansWords(means)}
+        patterns={patterns}
+        hint={
+          <>
+            A hint for whoever looks further, never a verdict. Graded by eye, 0 even grey to 4 material
+            missing, by {kept.valueFrom?.name ?? kept.name}, {dayAndTime(kept.valueFrom?.at ?? kept.at, zone)}
+            {kept.correctedBy !== undefined && ', as corrected'}.
+          </>
+        }
+      >
+        {worn.map(({ id, class: criticalClass, words, disposed }) => (
+          <p key={id} className="wear-worn">
+            <Sign name={disposed ? 'tick' : 'dot'} />
+            <span>
+              Deviation, class {criticalClass},{' '}
+              {disposed ? `${disposed.disposition} by ${disposed.name}` : 'open'}: {words}.{' '}
+              {disposed ? disposed.reason : 'Nothing waits for it.'}
+            </span>
+          </p>
+        ))}
+      </WearFindings>
     </section>
   );
 }

@@ -62,7 +62,12 @@ export function CorrectGrades({ kept, onClose, onBack }: CorrectGradesProps) {
       }
     >
       <div className="grid gap-6">
-        <ShellGrading places={places} grading={grading} onChange={setGrading}>
+        <ShellGrading
+          places={places}
+          grading={grading}
+          onChange={setGrading}
+          first="Touch a grade or a sign, then the shells that it belongs to."
+        >
           {(palette, bench) => (
             <div className="grid items-start gap-6 @4xl/sheet:grid-cols-[22rem_minmax(0,1fr)]">
               {palette}

@@ -10,9 +10,9 @@ import { RecordAction } from '../RecordAction';
 import { useRun, type Run } from '../run-context';
 import { benchOf, type Grading, gradingOf, shellsOf, ungraded } from '../shell-grading';
 import { ShellGrading } from '../ShellGrading';
-import { HowLines, StepCautions, StepFrame } from '../StepFrame';
+import { ShellsSay } from '../ShellsSay';
+import { StepCautions, StepFrame } from '../StepFrame';
 import { useIsPortrait } from '../use-is-portrait';
-import { WearFindings } from '../WearFindings';
 
 /** All old shells of the engine, graded side by side; once they are, what they say together. */
 export function GradeShellsStep({ step }: { step: StepOf<'grade-shells'> }) {
@@ -27,11 +27,17 @@ function ToGrade({ step }: { step: StepOf<'grade-shells'> }) {
   const places = oldShells(run.state.plan);
   const shells = shellsOf(places, grading);
   return (
-    <ShellGrading places={places} grading={grading} onChange={setGrading}>
+    <ShellGrading
+      places={places}
+      grading={grading}
+      onChange={setGrading}
+      first={[...step.how, 'Touch the grade that most of them have.'].join(' ')}
+    >
       {(palette, bench) => (
         <StepFrame
           step={step}
           side={isPortrait ? null : palette}
+          then={isPortrait ? undefined : null}
           heading={<Heading step={step} />}
           quiet={<OtherAction run={run} step={step} grading={grading} onClear={() => setGrading({})} />}
           main={
@@ -59,7 +65,6 @@ function Heading({ step }: { step: PlanStep }) {
     <div className="grid gap-2 pb-2">
       <h1 className="floor-step">{step.title}</h1>
       <StepCautions step={step} />
-      <HowLines how={step.how} />
     </div>
   );
 }
@@ -105,7 +110,7 @@ function Graded({ step }: { step: StepOf<'grade-shells'> }) {
             label="Wear of the old shells"
             rods={benchOf(oldShells(run.state.plan), gradingOf(graded.shells))}
           />
-          <WearFindings shells={graded.shells} />
+          <ShellsSay shells={graded.shells} />
           <p className="floor-done">
             {dayAndTime(graded.kept.at, run.workshop.zone)}, {graded.kept.name}
             {graded.kept.correctedBy !== undefined && ', as corrected'}

@@ -58,9 +58,7 @@ describe('the old shells on the Floor', () => {
       { rod: 2, half: 'U', grade: 3, flags: ['heat', 'debris'] },
     ]);
     expect(journal.state.deviations.at(-1)).toMatchObject({ class: 'B', blocks: false, rod: 2 });
-    expect(await screen.findByText(/^For the supervisor, with the pins/)).toHaveTextContent(
-      '2U copper showing, heat, debris.',
-    );
+    expect(await screen.findByText(/^For the supervisor, with its pin: 2U\. Nothing waits/)).toBeVisible();
   });
 
   it('do nothing before a grade or a sign is taken, and can be begun anew', async () => {
@@ -96,7 +94,8 @@ describe('the old shells on the Floor', () => {
       '4L, even grey',
     ]);
     expect(screen.getByText(/^Edge loading at 3L: commonly/)).toBeVisible();
-    expect(screen.getByText('Worst: worn to the next layer')).toHaveTextContent('uppers 0.0, lowers 0.5');
+    expect(screen.getByText('Worst: worn to the next layer')).toBeVisible();
+    expect(screen.getByText('Mean grade: uppers 0.0, lowers 0.5')).toBeVisible();
     expect(screen.getByRole('button', { name: 'Correct' })).toBeVisible();
   });
 
