@@ -6,6 +6,7 @@ import * as headsAndPhotos from './migrations/0004-heads-photos';
 import * as mail from './migrations/0005-mail';
 import * as noReplace from './migrations/0006-no-replace';
 import * as judgedCalibrations from './migrations/0007-judged-calibrations';
+import * as authorisations from './migrations/0008-authorisations';
 
 /** Frozen once merged: a change to the tables is a new file here, never an edit of an old one. */
 const migrations = {
@@ -16,6 +17,7 @@ const migrations = {
   '0005-mail': mail,
   '0006-no-replace': noReplace,
   '0007-judged-calibrations': judgedCalibrations,
+  '0008-authorisations': authorisations,
 };
 
 const provider: MigrationProvider = { getMigrations: () => Promise.resolve(migrations) };

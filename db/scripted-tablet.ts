@@ -166,7 +166,12 @@ export class ScriptedTablet {
       if (author && this.keys.has(by)) await this.signWork(job, author);
     }
     const { state } = this.held(job);
-    const data = { ...scriptedSignature(state, step, options.by), covers: this.coverage(job, step) };
+    const { certificate } = this.workshop.people.find(({ id }) => id === options.by.id) ?? {};
+    const data = {
+      ...scriptedSignature(state, step, options.by),
+      covers: this.coverage(job, step),
+      ...(certificate ? { certificate } : {}),
+    };
     const pin = options.pin ?? options.by.pin;
     return this.record(
       job,

@@ -1,3 +1,4 @@
+import type { Certificate } from '@/domain/authorisation';
 import type { Role } from '@/domain/role';
 import type { Actor } from '@/server/actor';
 import { DAY } from '@/server/clock';
@@ -6,6 +7,7 @@ import type { Trx } from '@/server/database';
 import { hashNewPassword, storePassword } from '@/server/passwords';
 import { addFirstOwner, addPerson, hasPeople } from '@/server/people';
 import { hashNewPin, storePin } from '@/server/pins';
+import { setAuthorisation } from '@/server/authorisations';
 import { recordCalibration } from '@/server/calibrations';
 import { addTool, type NewTool } from '@/server/tools';
 import { releaseShippedIfNone } from '@/server/released-documents';
@@ -25,6 +27,8 @@ export interface DemoSignIn {
   password: string;
   pin: string;
   roles: readonly Role[];
+  /** By what they sign hold points. */
+  certificate?: Certificate | undefined;
 }
 
 const PASSWORD = 'bearing-day-demo';
@@ -34,13 +38,21 @@ export const demoSignIns: readonly [DemoSignIn, ...DemoSignIn[]] = [
   demoPerson('Ines Varga', 'ines', '418306', ['technician']),
   demoPerson('T. Halloran', 'halloran', '590271', ['technician']),
   demoPerson('Bram Ostrova', 'bram', '736914', ['technician']),
-  demoPerson('M. Okafor-Lindh', 'supervisor', '285017', ['supervisor']),
-  demoPerson('Rowan Achterberg', 'quality', '604392', ['quality lead']),
+  demoPerson('M. Okafor-Lindh', 'supervisor', '285017', ['supervisor'], {
+    number: 'LY-MT-014',
+    kind: 'master technician',
+  }),
+  demoPerson('Rowan Achterberg', 'quality', '604392', ['quality lead'], {
+    number: 'LY-QI-006',
+    kind: 'quality inspector',
+  }),
   demoPerson('Selma Quist', 'auditor', '917350', ['auditor']),
 ];
 
 /** Signed heads of the demo are mailed here; without a mail service the letters stay on this machine. */
 const WITNESS_ADDRESS = 'heads@notary.example';
+/** For how long from today those of the demo who have a certificate may sign by it. */
+const AUTHORISED_DAYS = 300;
 const WORKSHOP = { name: 'Lantern Yard Engines', zone: 'Europe/London' };
 
 interface DemoTool {
@@ -124,6 +136,13 @@ async function seedWorkshop(app: App, past: App): Promise<boolean> {
       const actor: Actor = { personId: id, name: person.name, roles: person.roles, sessionId: undefined };
       await storePassword(trx, id, person.passwordHash, past);
       await storePin(trx, actor, person.pinHash, past);
+      if (person.certificate) {
+        const authorisation = {
+          certificate: person.certificate,
+          authorisedUntil: dayFrom(app, AUTHORISED_DAYS),
+        };
+        await setAuthorisation(trx, owner, id, authorisation, past);
+      }
     }
     await storePassword(trx, owner.personId, first.passwordHash, past);
     await storePin(trx, owner, first.pinHash, past);
@@ -162,8 +181,14 @@ function dayFrom({ clock }: App, days: number): string {
   return new Date(clock.now().getTime() + days * DAY).toISOString().slice(0, 10);
 }
 
-function demoPerson(name: string, mailbox: string, pin: string, roles: readonly Role[]): DemoSignIn {
-  return { name, email: `${mailbox}@witnessmark.example`, password: PASSWORD, pin, roles };
+function demoPerson(
+  name: string,
+  mailbox: string,
+  pin: string,
+  roles: readonly Role[],
+  certificate?: Certificate,
+): DemoSignIn {
+  return { name, email: `${mailbox}@witnessmark.example`, password: PASSWORD, pin, roles, certificate };
 }
 
 function torqueWrench(

@@ -103,6 +103,9 @@ export interface PersonTable {
   active: number;
   created_at: Fixed<string>;
   deactivated_at: string | null;
+  certificate_number: string | null;
+  certificate_kind: string | null;
+  authorised_until: string | null;
 }
 
 export interface AttemptCountTable {

@@ -13,6 +13,8 @@ export interface SignatureStampProps {
   covers?: string | undefined;
   /** The signer had a hand in the work. */
   isNotIndependent?: boolean | undefined;
+  /** By which certificate they signed, as "LY-MT-014, master technician". */
+  certificate?: string | undefined;
 }
 
 const STAMPS: Record<SignatureState, string> = {
@@ -30,12 +32,14 @@ export function SignatureStamp({
   words,
   covers,
   isNotIndependent = false,
+  certificate,
 }: SignatureStampProps) {
   return (
     <figure className="signature" data-state={state.replaceAll(' ', '-')}>
       <div className="signature-stamp">
         <p className="signature-state">{STAMPS[state]}</p>
         <p className="signature-name">{name}</p>
+        {certificate !== undefined && <p>{certificate}</p>}
         <p className="figure">{time}</p>
         {isNotIndependent && <p className="signature-state">NOT INDEPENDENT</p>}
       </div>

@@ -299,6 +299,7 @@ function settleSignatures(state: JobState, step: StepOf<'hold'>): JobState {
           upTo: data.covers.upTo,
           checkedAt: kept.pinCheckedAt,
           notIndependent: data.notIndependent,
+          certificate: data.certificate,
         },
       ],
     };

@@ -2,6 +2,7 @@
  * What a job looks like after its entries: plain JSON, so that the server can keep it by head hash and a
  * tablet in IndexedDB. Only job.ts makes one. Everything in it follows from the plan and the entries.
  */
+import type { Authorisation, Certificate } from './authorisation';
 import type { Entry, EntryKind } from './entry';
 import type { BoltSet, CriticalClass, Plan, RodEffects } from './plan';
 
@@ -134,6 +135,8 @@ export interface Signature {
   /** The server opened the PIN and found it right. */
   checkedAt?: string | undefined;
   notIndependent?: string | undefined;
+  /** By which certificate they signed. */
+  certificate?: Certificate | undefined;
   /** Why it no longer stands. */
   reopened?: string | undefined;
   /** The steps that were done past it before it was opened again: they stay as they were recorded. */
@@ -207,7 +210,7 @@ export interface Workshop {
   /** Its trail's `seq` at that moment. */
   seq: number;
   zone: string;
-  people: { id: string; name: string; roles: string[]; active: boolean }[];
+  people: ({ id: string; name: string; roles: string[]; active: boolean } & Authorisation)[];
   tools: {
     id: string;
     name: string;

@@ -12,6 +12,8 @@ export interface SignatureView {
   words: string;
   covers: string;
   isNotIndependent: boolean;
+  /** By which certificate, as "LY-MT-014, master technician". */
+  certificate: string | undefined;
 }
 
 /** "Hold point: caps marked" is "caps marked" where the words before it speak of a signature. */
@@ -22,6 +24,11 @@ export function holdPointName(title: string): string {
 /** The hold point of a step by its name; the step's id where the plan doesn't have it any more. */
 export function holdPointOf(plan: Plan, step: string): string {
   return holdPointName(findStep(plan, step)?.title ?? step);
+}
+
+/** By which certificate it was signed, as "LY-MT-014, master technician"; undefined where none is on it. */
+export function certificateWords({ certificate }: Pick<Signature, 'certificate'>): string | undefined {
+  return certificate && `${certificate.number}, ${certificate.kind}`;
 }
 
 /** The signature as its stamp shows it; one that no longer stands says why. */
@@ -39,6 +46,7 @@ export function signatureView(signature: Signature, zone: string): SignatureView
     words: count === undefined ? meaning : meaning.replaceAll('{count}', String(count)),
     covers: reopened === undefined ? entries : `${entries}. It no longer stands: ${reopened}${past}`,
     isNotIndependent: notIndependent !== undefined,
+    certificate: certificateWords(signature),
   };
 }
 

@@ -5,6 +5,8 @@ import { role } from './fields';
 
 /** What several routes answer; each is the one description of its thing in the API. */
 
+export const certificate = z.strictObject({ number: z.string(), kind: z.string() });
+
 export const personAnswer = z.strictObject({
   id: z.string(),
   name: z.string(),
@@ -15,6 +17,9 @@ export const personAnswer = z.strictObject({
   hasPassword: z.boolean(),
   createdAt: z.string(),
   deactivatedAt: z.string().nullable(),
+  /** By what they sign, and the last day on which it counts. */
+  certificate: certificate.nullable(),
+  authorisedUntil: z.string().nullable(),
   /** Only for the owner and the person. */
   email: z.string().optional(),
 });

@@ -1,6 +1,8 @@
 import type { PersonRow } from '@db/tables';
+import type { Certificate } from '@/domain/authorisation';
 import type { Role } from '@/domain/role';
 import { type Actor, hasRole, parseRoles, requireRole } from './actor';
+import { toAuthorisation } from './authorisations';
 import { type Clock, type Ids, stamp } from './clock';
 import { LIST_PAGE, pageOf, readCursor } from './cursor';
 import type { Db, Trx } from './database';
@@ -21,6 +23,9 @@ export interface Person {
   hasPassword: boolean;
   createdAt: string;
   deactivatedAt: string | null;
+  certificate: Certificate | null;
+  /** The last day on which their signature counts; null where no end is set. */
+  authorisedUntil: string | null;
 }
 
 interface Making {
@@ -205,6 +210,9 @@ async function insertPerson(
       active: 1,
       created_at: at,
       deactivated_at: null,
+      certificate_number: null,
+      certificate_kind: null,
+      authorised_until: null,
     })
     .execute();
 }
@@ -273,6 +281,7 @@ function toPerson(row: SelectedPerson, actor: Actor): Person {
     hasPassword: Boolean(row.has_password),
     createdAt: row.created_at,
     deactivatedAt: row.deactivated_at,
+    ...toAuthorisation(row),
     ...(mayKnow ? { email: row.email } : {}),
   };
 }

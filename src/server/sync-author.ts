@@ -1,4 +1,4 @@
-import type { Entry } from '@/domain/entry';
+import type { Entry, EntryOf } from '@/domain/entry';
 import type { Workshop } from '@/domain/job-state';
 import { isSignedBy } from './author-signature';
 import type { Batch } from './sync-batch';
@@ -48,12 +48,19 @@ export function isTrueToWorkshop(entry: Entry, workshop: Workshop): boolean {
   if (person === undefined) return true;
   const { name, roles } = entry.author;
   if (person.name !== name || !isSameSet(person.roles, roles)) return false;
-  if (entry.kind === 'signed' && (entry.data.name !== name || !isSameSet(entry.data.roles, roles)))
-    return false;
+  if (entry.kind === 'signed' && !isTrueSignature(entry, person)) return false;
   const used = 'tool' in entry.data ? entry.data.tool : undefined;
   if (used === undefined) return true;
   const tool = workshop.tools.find(({ id }) => id === used.id);
   return tool === undefined || (tool.serial === used.serial && tool.dueOn === used.dueOn);
+}
+
+/** A signature may leave out the certificate, as older tablets do, and names no other than the workshop has. */
+function isTrueSignature({ data, author }: EntryOf<'signed'>, person: Workshop['people'][number]): boolean {
+  if (data.name !== author.name || !isSameSet(data.roles, author.roles)) return false;
+  const { certificate } = data;
+  if (certificate === undefined) return true;
+  return certificate.number === person.certificate?.number && certificate.kind === person.certificate.kind;
 }
 
 function isSameSet(some: readonly string[], others: readonly string[]): boolean {

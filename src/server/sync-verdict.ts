@@ -1,3 +1,4 @@
+import { whyNotAuthorisedFor } from '@/domain/authorisation';
 import { type Entry, judgementKinds, officeKinds } from '@/domain/entry';
 import { mayRecord } from '@/domain/job';
 import type { Verdict } from '@/domain/job-state';
@@ -264,6 +265,13 @@ function serverVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Tim
   if (isRevoked(batch, item.key, times.held))
     return no('key-revoked', "The author's key was revoked meanwhile.");
   const workshop = batch.history.at(times.held);
+  const person = workshop.people.find(({ id }) => id === entry.by);
+  if (person !== undefined) {
+    // An authorisation ends on a day, and a tablet's clock may stand on another one.
+    const dated = { ...entry, at: serverTime(batch, entry) };
+    const authorised = whyNotAuthorisedFor(fold.state, dated, person, workshop.zone);
+    if (!authorised.ok) return authorised;
+  }
   const isSameView = !isBehind(fold, entry.device, entry.basis) && isSameWorkshop(batch, times);
   const isClockOff = Math.abs(batch.clockOffsetMs) > CLOCK_TOLERANCE_MS && entry.kind === 'tightened';
   // Judged in order a moment ago, and here everything is the same.

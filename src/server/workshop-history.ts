@@ -128,6 +128,10 @@ function applyWorkshopEntry(
       return person({ name: String(data.to) });
     case 'roles-changed':
       return person({ roles: data.to as string[] });
+    case 'authorisation-changed': {
+      const { certificate, authorisedUntil } = data as Pick<Person, 'certificate' | 'authorisedUntil'>;
+      return person({ certificate, authorisedUntil });
+    }
     case 'person-deactivated':
       return person({ active: false });
     case 'person-reactivated':
@@ -153,6 +157,8 @@ function addedPerson(data: Data): Person {
     name: String(data.name),
     roles: data.roles as string[],
     active: true,
+    certificate: null,
+    authorisedUntil: null,
   };
 }
 

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import type { Actor } from '@/server/actor';
 import { MINUTE } from '@/server/clock';
+import { setAuthorisation } from '@/server/authorisations';
 import { changeRoles, setActive } from '@/server/people';
 import { recordCalibration } from '@/server/calibrations';
 import { addTool, changeTool } from '@/server/tools';
@@ -52,6 +53,13 @@ describe('the history of the workshop', () => {
     await calibrate('2031-01-10', '2032-01-10');
     await does((trx) => changeRoles(trx, owner, tech.personId, ['technician', 'supervisor'], app));
     await does((trx) => setActive(trx, owner, sup.personId, false, app));
+    const certificate = { number: 'T-1', kind: 'master technician' };
+    const authorise = (until: string | null) =>
+      does((trx) =>
+        setAuthorisation(trx, owner, tech.personId, { certificate, authorisedUntil: until }, app),
+      );
+    await authorise('2031-12-31');
+    await authorise(null);
     // An older certificate, written down late, moves no date.
     await calibrate('2030-01-10', '2031-01-09');
     await calibrate('2031-02-10', '2032-02-10', []);

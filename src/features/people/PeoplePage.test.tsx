@@ -4,7 +4,10 @@ import { describe, expect, it } from 'vitest';
 import { answerDesk, refused, type DeskAnswer } from '../../../tests/support/desk-server';
 import { PeoplePage } from './PeoplePage';
 
-const person = { active: true, hasPin: true, hasSigned: false, hasPassword: true };
+const person = {
+  ...{ active: true, hasPin: true, hasSigned: false, hasPassword: true },
+  ...{ certificate: null, authorisedUntil: null },
+};
 const people = [
   { ...person, id: 'tech', name: 'T. Nician', roles: ['technician'], email: 'tech@workshop.example' },
   { ...person, id: 'new', name: 'N. Ew', roles: ['auditor'], hasPin: false, hasPassword: false },
@@ -77,6 +80,29 @@ describe('the page of people', () => {
     await user.click(dialog.getByLabelText('supervisor'));
     await user.click(dialog.getByRole('button', { name: 'Keep' }));
     expect(sent()[0]?.body).toEqual({ roles: ['technician', 'supervisor'] });
+  });
+
+  it('says by what somebody signs and whether that is over', async () => {
+    const certificate = { number: 'LY-MT-014', kind: 'master technician' };
+    const signer = { ...people[0], certificate, authorisedUntil: '2020-03-31' };
+    await show({ 'GET /api/people': { body: { people: [signer] } } });
+    expect(row('T. Nician')).toHaveTextContent('LY-MT-014master technicianover since 31 Mar 2020');
+  });
+
+  it('sets a certificate with its kind, and until when it counts', async () => {
+    const { sent, user } = await show({ 'PATCH /api/people/tech': { body: { ok: true } } });
+    await user.click(screen.getByRole('button', { name: 'Change the authorisation of T. Nician' }));
+    const dialog = within(screen.getByRole('dialog', { name: 'Authorisation of T. Nician' }));
+    await user.type(dialog.getByLabelText(/^Certificate/), ' LY-MT-014 ');
+    fireEvent.change(dialog.getByLabelText(/^May sign until/), { target: { value: '2031-12-31' } });
+    await user.click(dialog.getByRole('button', { name: 'Keep' }));
+    expect(await dialog.findByText(/Certificate and kind go together/)).toBeVisible();
+    expect(sent()).toEqual([]);
+    await user.type(dialog.getByLabelText(/^Kind/), 'master technician');
+    await user.click(dialog.getByRole('button', { name: 'Keep' }));
+    await waitFor(() => expect(sent()).toHaveLength(1));
+    const certificate = { number: 'LY-MT-014', kind: 'master technician' };
+    expect(sent()[0]?.body).toEqual({ authorisation: { certificate, authorisedUntil: '2031-12-31' } });
   });
 
   it('does not let anybody be left without a role', async () => {

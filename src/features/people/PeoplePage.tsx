@@ -7,7 +7,9 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import { newQueryClient, useServerList } from '@/offline/use-server';
+import { dayIn } from '@/domain/job-tightening-rules';
 import { AddPersonForm } from './AddPersonForm';
+import { AuthorisationDialog, SignsBy, type Authorised } from './AuthorisationDialog';
 import { LinkNote } from './LinkNote';
 import { RolesDialog } from './RolesDialog';
 import { Tablets } from './Tablets';
@@ -30,7 +32,9 @@ function People({ zone }: { zone: string }) {
   const [trouble, setTrouble] = useState<string>();
   const [link, setLink] = useState<GivenLink>();
   const [changing, setChanging] = useState<PersonRow>();
-  const change = async (id: string, body: { roles?: string[]; active?: boolean }) => {
+  const [authorising, setAuthorising] = useState<PersonRow>();
+  const today = dayIn(zone, new Date().toISOString());
+  const change = async (id: string, body: PersonChange) => {
     const path = `/api/people/${id}`;
     const changed = await callServer(offlineOfThisPage(), {
       method: 'PATCH',
@@ -72,11 +76,13 @@ function People({ zone }: { zone: string }) {
             name: row.name,
             roles: row.roles.join(', '),
             email: row.email ?? '',
+            signs: <SignsBy row={row} today={today} />,
             state: stateWords(row),
             acts: (
               <RowActs
                 row={row}
                 onRoles={() => setChanging(row)}
+                onAuthorisation={() => setAuthorising(row)}
                 onActive={() => void change(row.id, { active: !row.active })}
                 onLink={() => void giveLink(row)}
               />
@@ -101,6 +107,16 @@ function People({ zone }: { zone: string }) {
           }}
         />
       )}
+      {authorising && (
+        <AuthorisationDialog
+          person={authorising}
+          onClose={() => setAuthorising(undefined)}
+          onKeep={(authorisation) => {
+            setAuthorising(undefined);
+            void change(authorising.id, { authorisation });
+          }}
+        />
+      )}
       <div className="desk-columns mt-8">
         <section className="part">
           <h2 className="part-title">Add a person</h2>
@@ -117,10 +133,17 @@ function People({ zone }: { zone: string }) {
   );
 }
 
+interface PersonChange {
+  roles?: string[];
+  active?: boolean;
+  authorisation?: Authorised;
+}
+
 const COLUMNS: DataColumn[] = [
   { key: 'name', label: 'printed name' },
   { key: 'roles', label: 'roles' },
   { key: 'email', label: 'e-mail' },
+  { key: 'signs', label: 'signs by' },
   { key: 'state', label: 'state', isWide: true },
   { key: 'acts', label: 'change', align: 'right' },
 ];
@@ -137,16 +160,22 @@ function stateWords(row: PersonRow): string {
 interface RowActsProps {
   row: PersonRow;
   onRoles: () => void;
+  onAuthorisation: () => void;
   onActive: () => void;
   onLink: () => void;
 }
 
-function RowActs({ row, onRoles, onActive, onLink }: RowActsProps) {
+function RowActs({ row, onRoles, onAuthorisation, onActive, onLink }: RowActsProps) {
   return (
     <span className="cell-acts">
       {row.active && (
         <Button look="link" onClick={onRoles} aria-label={`Change the roles of ${row.name}`}>
           Roles
+        </Button>
+      )}
+      {row.active && (
+        <Button look="link" onClick={onAuthorisation} aria-label={`Change the authorisation of ${row.name}`}>
+          Authorisation
         </Button>
       )}
       {row.active && (

@@ -9,6 +9,8 @@ const person = z.object({
   hasSigned: z.boolean(),
   hasPassword: z.boolean(),
   email: z.optional(z.string()),
+  certificate: z.nullable(z.object({ number: z.string(), kind: z.string() })),
+  authorisedUntil: z.nullable(z.string()),
 });
 /** A page of the list of everybody, as the page of people shows them. */
 export const peopleAnswer = z.object({ people: z.array(person), cursor: z.optional(z.string()) });

@@ -101,8 +101,9 @@ describe('entering a calibration', () => {
     for (let n = 1; n <= 5; n += 1) await user.type(cell(3, n), '99.0');
     expect(screen.getByText('It passes')).toBeVisible();
     await user.click(screen.getByRole('button', { name: 'Record the calibration' }));
-    const [{ path, body }] = sent() as [{ path: string; body: Record<string, unknown> }];
-    expect(path).toBe('/api/tools/w1/calibrations');
+    const [asked] = sent();
+    const body = asked?.body as Record<string, unknown>;
+    expect(asked?.path).toBe('/api/tools/w1/calibrations');
     expect(Object.keys(body).sort()).toEqual(['certificate', 'dueOn', 'on', 'readings']);
     expect(body.certificate).toBe('C-2');
     expect(body.readings).toHaveLength(15);

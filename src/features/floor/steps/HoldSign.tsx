@@ -58,6 +58,7 @@ export function HoldSign({ step, signer, covers, onBack }: HoldSignProps) {
             presence: presence ?? 'at the vehicle',
             covers,
             ...(signer.isAuthor ? { notIndependent: reason.trim() } : {}),
+            ...(signer.certificate === undefined ? {} : { certificate: signer.certificate }),
           },
         },
       ],
@@ -125,8 +126,9 @@ export function HoldSign({ step, signer, covers, onBack }: HoldSignProps) {
         <figcaption className="form-label">You sign</figcaption>
         <blockquote className="pt-1 text-3xl leading-snug">“{meaning}”</blockquote>
         <p className="pt-4 text-lg text-soft">
-          {signer.name}, {signer.roles.join(', ')}; {presence ?? 'at the vehicle'}. It covers {covers.count}{' '}
-          entries as they stand now; if they change, the hold point opens again.
+          {signer.name}, {signer.roles.join(', ')}
+          {signer.certificate && `, certificate ${signer.certificate.number}`}; {presence ?? 'at the vehicle'}
+          . It covers {covers.count} entries as they stand now; if they change, the hold point opens again.
         </p>
       </figure>
     </StepFrame>

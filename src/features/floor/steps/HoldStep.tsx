@@ -12,6 +12,7 @@ import { NextAction } from '../NextAction';
 import { StepFrame } from '../StepFrame';
 import { useRun } from '../run-context';
 import { dayAndTime } from '@/domain/time-words';
+import { certificateWords } from '@/domain/signature-view';
 import { HoldEvidence } from './HoldEvidence';
 import { HoldSign } from './HoldSign';
 import { SignerChoice, type Signer } from './SignerChoice';
@@ -129,6 +130,7 @@ function Signed({ step, signature }: { step: HoldPlan; signature: Signature }) {
         words={signature.meaning}
         covers={`${signature.covered} entries`}
         isNotIndependent={signature.notIndependent !== undefined}
+        certificate={certificateWords(signature)}
       />
       {!isChecked && (
         <div className="pt-5">

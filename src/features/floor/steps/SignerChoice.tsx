@@ -2,6 +2,8 @@ import { useEffect, useState } from 'react';
 import { ChoiceRows, type Choice } from '@/components/ChoiceRows';
 import { MainAction } from '@/components/MainAction';
 import { QuietButton } from '@/components/QuietButton';
+import { type Certificate, whyNotAuthorised } from '@/domain/authorisation';
+import { dayIn } from '@/domain/job-tightening-rules';
 import { authorsUnder } from '@/domain/job-signing-rules';
 import type { StepOf } from '@/domain/plan';
 import type { WorkshopRow } from '@/offline/database';
@@ -14,6 +16,8 @@ export interface Signer {
   roles: string[];
   /** They had a hand in the work: a second look, marked as such. */
   isAuthor: boolean;
+  /** By which certificate they sign, where the workshop has one of theirs. */
+  certificate?: Certificate | undefined;
 }
 
 interface SignerChoiceProps {
@@ -30,14 +34,17 @@ export function SignerChoice({ step, onSigner, onBack }: SignerChoiceProps) {
   const people = run.workshop.people.filter(
     ({ active, roles }) => active && roles.some((role) => role !== 'auditor'),
   );
+  const today = dayIn(run.workshop.zone, new Date(run.now()).toISOString());
   const choices = people
-    .map((person): Choice => choiceFor(person, step, authors, keyTroubles[person.id]))
+    .map((person): Choice =>
+      choiceFor(person, step, authors, whyNotNow(person, today) ?? keyTroubles[person.id]),
+    )
     .sort((a, b) => Number(a.why !== undefined) - Number(b.why !== undefined));
   function choose(id: string) {
     const signer = people.find((person) => person.id === id);
     if (!signer) return;
-    const { name, roles } = signer;
-    onSigner({ id, name, roles, isAuthor: authors.includes(id) });
+    const { name, roles, certificate } = signer;
+    onSigner({ id, name, roles, isAuthor: authors.includes(id), certificate: certificate ?? undefined });
   }
   return (
     <StepFrame
@@ -56,6 +63,12 @@ export function SignerChoice({ step, onSigner, onBack }: SignerChoiceProps) {
 }
 
 type Person = WorkshopRow['people'][number];
+
+/** That somebody's authorisation is over, and what unlocks it. */
+function whyNotNow(person: Person, today: string): string | undefined {
+  const verdict = whyNotAuthorised(person, today);
+  return verdict.ok ? undefined : `${verdict.why} ${verdict.unlock ?? ''}`.trim();
+}
 
 function choiceFor(
   person: Person,

@@ -1,6 +1,7 @@
 import * as z from 'zod';
 import { personAnswer } from '@/server/answers';
-import { personName, roles } from '@/server/fields';
+import { setAuthorisation } from '@/server/authorisations';
+import { day, line, personName, roles } from '@/server/fields';
 import { endpoint } from '@/server/http';
 import { changeRoles, getPerson, renamePerson, setActive } from '@/server/people';
 
@@ -19,12 +20,19 @@ export const PATCH = endpoint(
   {
     method: 'PATCH',
     path: '/api/people/{id}',
-    summary: 'Change roles, let a person in or out, or correct a name under which nothing is signed',
+    summary:
+      'Change roles, say until when and by which certificate somebody signs, let a person in or out, or correct a name under which nothing is signed',
     who: ['owner'],
     body: z.strictObject({
       name: personName.optional(),
       roles: roles.optional(),
       active: z.boolean().optional(),
+      authorisation: z
+        .strictObject({
+          certificate: z.strictObject({ number: line(60), kind: line(60) }).nullable(),
+          authorisedUntil: day.nullable(),
+        })
+        .optional(),
     }),
     answer: personAnswer,
   },
@@ -33,6 +41,7 @@ export const PATCH = endpoint(
       const id = params.id ?? '';
       if (body.name !== undefined) await renamePerson(trx, actor, id, body.name, app);
       if (body.roles !== undefined) await changeRoles(trx, actor, id, body.roles, app);
+      if (body.authorisation !== undefined) await setAuthorisation(trx, actor, id, body.authorisation, app);
       if (body.active !== undefined) await setActive(trx, actor, id, body.active, app);
       return getPerson(trx, actor, id);
     }),
