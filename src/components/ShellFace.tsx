@@ -91,10 +91,10 @@ function Mark({ mark }: { mark: FaceMark }) {
     case 'debris':
       return (
         <>
-          <path className="shell-scores" d="M 22 13 H 46 M 54 36 H 82 M 64 15 H 84" />
+          <path className="shell-scores" d="M 22 13 H 46 M 53 29 H 81 M 64 15 H 84" />
           <path
             className="shell-hole"
-            d="M 16 13 l 6 -5.5 l 6 5.5 l -6 5.5 Z M 47 36 l 6 -5.5 l 6 5.5 l -6 5.5 Z M 58 15 l 5 -4.5 l 5 4.5 l -5 4.5 Z"
+            d="M 16 13 l 6 -5.5 l 6 5.5 l -6 5.5 Z M 47 29 l 6 -5.5 l 6 5.5 l -6 5.5 Z M 58 15 l 5 -4.5 l 5 4.5 l -5 4.5 Z"
           />
         </>
       );
