@@ -148,7 +148,9 @@ test('the old shells, side by side', async ({ app, page }) => {
   });
   await test.step('what they say, over the next screen', async () => {
     await page.getByRole('button', { name: 'Keep the 12 grades' }).tap();
-    await expect(page.getByRole('region', { name: 'The old shells just graded' })).toContainText('5U copper');
+    await expect(page.getByRole('region', { name: 'The old shells just graded' })).toContainText(
+      'pins: 5U, 6U.',
+    );
     await expectGood(page, { hasMain: true });
   });
   await test.step('looked at again, and corrected', async () => {
