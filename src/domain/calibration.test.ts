@@ -56,7 +56,7 @@ describe('judging a calibration', () => {
       ...pulls('100'),
     ]);
     expect(judged.verdict).toBe('failed');
-    expect(judged.reasons).toEqual(['at 60 N·m 2 of 5 are off by more than ± 4 %, the worst by -9.091 %']);
+    expect(judged.reasons).toEqual(['at 60 N·m 2 of 5 are off by more than ± 4 %, the worst by −9.091 %']);
     expect(judged.points.map(({ isPassed }) => isPassed)).toEqual([true, false, true]);
   });
 

@@ -150,7 +150,7 @@ function judgePoint(
     ...(worst === undefined
       ? []
       : [
-          `at ${set} ${unit} ${off.length} of ${judged.length} are off by more than ± ${limitPercent} %, the worst by ${worst.deviationPercent} %`,
+          `at ${set} ${unit} ${off.length} of ${judged.length} ${off.length === 1 ? 'is' : 'are'} off by more than ± ${limitPercent} %, the worst by ${worst.deviationPercent.replace('-', '−')} %`,
         ]),
   ];
   return { set, readings: judged, isPassed: reasons.length === 0, reasons };

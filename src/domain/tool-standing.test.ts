@@ -20,10 +20,10 @@ describe('how a tool stands', () => {
   });
 
   it('says that a failed calibration bars it, and that a withdrawn tool is withdrawn', () => {
-    const failed = { ...wrench, failure: 'at 20 N·m 1 of 5 are off' };
+    const failed = { ...wrench, failure: 'at 20 N·m 1 of 5 is off' };
     expect(standingOf(failed, '2031-01-01')).toEqual({
       kind: 'not fit',
-      words: 'its last calibration failed: at 20 N·m 1 of 5 are off',
+      words: 'its last calibration failed: at 20 N·m 1 of 5 is off',
     });
     expect(standingOf({ ...failed, state: 'withdrawn' }, '2031-01-01').kind).toBe('withdrawn');
   });

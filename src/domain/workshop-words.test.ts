@@ -57,6 +57,28 @@ describe('the workshop’s trail in words', () => {
     expect(words).toBe('Torque wrench: range high 50, was 60; cycle limit 5000, was none');
   });
 
+  it('says by what somebody signs and until when, and what came of a calibration', () => {
+    const certificate = { number: 'T-MT-014', kind: 'master technician' };
+    const made = { tool: 'w1', serial: 'TW-1', on: '2031-05-05', dueOn: '2032-05-05', certificate: 'C-1' };
+    expect(
+      wordsOf(
+        record('person-added', { person: 'p2', name: 'Ines Vale', roles: ['supervisor'] }),
+        record('authorisation-changed', { person: 'p2', certificate, authorisedUntil: '2031-12-31' }, 2),
+        record('authorisation-changed', { person: 'p2', certificate: null, authorisedUntil: null }, 3),
+        record('tool-added', { name: 'Wrench', serial: 'TW-1', tool: 'w1', dueOn: null }, 4),
+        record('calibration-recorded', { ...made, verdict: 'passed', reasons: [] }, 5),
+        record('calibration-recorded', { ...made, verdict: 'failed', reasons: ['one', 'two'] }, 6),
+        record('calibration-recorded', { ...made, verdict: 'not judged', reasons: [] }, 7),
+      ).filter((_, i) => i !== 0 && i !== 3),
+    ).toEqual([
+      'Ines Vale: signs by certificate T-MT-014, master technician, until 2031-12-31',
+      'Ines Vale: signs without a certificate',
+      'Wrench, serial TW-1, calibrated on 2031-05-05: passed, due 2032-05-05, certificate C-1',
+      'Wrench, serial TW-1, calibrated on 2031-05-05: failed, one; two, certificate C-1',
+      'Wrench, serial TW-1, calibrated on 2031-05-05, due 2032-05-05, certificate C-1',
+    ]);
+  });
+
   it('has words for whatever it does not know, and never fails on it', () => {
     expect(wordsOf(record('something-new', {}), record('tool-changed', { tool: 7, from: null }, 2))).toEqual([
       'something-new',

@@ -32,7 +32,7 @@ const calibration = {
 };
 /** The last of them is off by 13.6 %. */
 const badReadings = [...calibration.readings.slice(0, -1), { set: '25', reference: '22', unit: 'N·m' }];
-const WHY = 'at 25 N·m 1 of 5 are off by more than ± 4 %, the worst by 13.636 %';
+const WHY = 'at 25 N·m 1 of 5 is off by more than ± 4 %, the worst by 13.636 %';
 
 async function withWrench() {
   const app = await openTestApp();

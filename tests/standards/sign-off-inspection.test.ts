@@ -143,6 +143,44 @@ describe('the list of who is authorised', () => {
       data: { from: ['technician'], to: ['technician', 'supervisor'] },
     });
   });
+
+  it('SO-121.371d [S, the same]: an authorisation has an end, after which nothing is signed until the owner renews it', async () => {
+    const { owner, supervisor, auditor } = bay.shop.people;
+    const authorise = async (authorisedUntil: string | null) => {
+      const certificate = { number: 'T-MT-014', kind: 'master technician' };
+      const body = { authorisation: { certificate, authorisedUntil } };
+      const params = { id: supervisor.id };
+      expect(await ask(patchPerson, { as: supervisor, params, body, method: 'PATCH' })).toMatchObject({
+        status: 403,
+      });
+      expect(await ask(patchPerson, { as: owner, params, body, method: 'PATCH' })).toMatchObject({
+        status: 200,
+      });
+      bay.tablet.workshop = await workshopOf(bay.shop.app);
+    };
+    await bay.workTo(HOLD);
+    // The clock of the tests stands at 6 May 2031.
+    await authorise('2031-05-05');
+    const { body } = await ask(getPeople, { as: auditor });
+    const { people } = body as { people: { id: string; authorisedUntil: string }[] };
+    expect(people.find(({ id }) => id === supervisor.id)).toMatchObject({ authorisedUntil: '2031-05-05' });
+    await expect(bay.tablet.sign(bay.job.id, HOLD, { by: supervisor })).rejects.toThrow(
+      /counted until 5 May 2031.*authorisation-over/,
+    );
+    // The tablet may lie; the server judges by the workshop's trail.
+    expect(await bay.pushedSignature(HOLD, supervisor)).toMatchObject({
+      verdict: 'refused',
+      code: 'authorisation-over',
+    });
+    await authorise('2031-05-06');
+    expect(await bay.pushedSignature(HOLD, supervisor)).toMatchObject({ verdict: 'recorded' });
+    const changes = await bay.shop.app.db
+      .selectFrom('workshop_entry')
+      .select('by_person')
+      .where('kind', '=', 'authorisation-changed')
+      .execute();
+    expect(changes).toEqual([{ by_person: owner.id }, { by_person: owner.id }]);
+  });
 });
 
 describe('hold points and witness points', () => {

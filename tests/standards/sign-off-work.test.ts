@@ -1,5 +1,6 @@
 import { beforeEach, describe, expect, it, vi } from 'vitest';
-import type { EntryData, Recorded } from '@/domain/entry';
+import type { Entry, EntryData, Recorded } from '@/domain/entry';
+import { wordsOf } from '@/domain/entry-words';
 import { findStep, type Plan } from '@/domain/plan';
 import type { TrailExport } from '@/domain/trail-export';
 import { GET as getExport } from '@/pages/api/jobs/[id]/export';
@@ -16,6 +17,7 @@ import { ask, prepareOpening, setClocks, workshopOf } from '../support/tablet';
 
 vi.setConfig({ testTimeout: 60_000, hookTimeout: 30_000 });
 
+const CAPS_MARKED = 'build.caps-marked';
 const FIRST_FIT = 'build.tighten@rod2';
 
 let bay: Bay;
@@ -76,6 +78,38 @@ describe('14 CFR 43, the record of maintenance', () => {
       expect(author).toEqual({ name: supervisor.name, roles: supervisor.roles });
     const signatures = body.entries.filter(({ recorded }) => approvals.some(({ id }) => id === recorded.id));
     for (const { signature, key } of signatures) expect([signature, key]).not.toContain(null);
+  });
+
+  it('SO-43.9a [M, 14 CFR 43.9(a)(4), from memory]: the kind of certificate and its number stand with the signature', async () => {
+    const { owner, supervisor } = bay.shop.people;
+    const certificate = { number: 'T-MT-014', kind: 'master technician' };
+    await ask(patchPerson, {
+      as: owner,
+      params: { id: supervisor.id },
+      body: { authorisation: { certificate, authorisedUntil: null } },
+      method: 'PATCH',
+    });
+    bay.tablet.workshop = await workshopOf(bay.shop.app);
+    await bay.workTo(CAPS_MARKED);
+    // Somebody else's number, or a better kind, is not taken from the tablet.
+    for (const lie of [
+      { ...certificate, number: 'T-MT-999' },
+      { ...certificate, kind: 'inspector' },
+    ]) {
+      const withLie = (entry: Entry): Entry =>
+        ({ ...entry, data: { ...entry.data, certificate: lie } }) as Entry;
+      expect(await bay.pushedSignature(CAPS_MARKED, supervisor, withLie)).toMatchObject({
+        verdict: 'refused',
+        code: 'author-differs',
+      });
+    }
+    expect(await bay.pushedSignature(CAPS_MARKED, supervisor)).toMatchObject({ verdict: 'recorded' });
+    const body = await exported();
+    const signed = recordedOf(body).find(({ kind }) => kind === 'signed') as Entry & { kind: 'signed' };
+    expect(signed.data.certificate).toEqual(certificate);
+    expect(wordsOf(signed, body.plans[0] as unknown as Plan)).toContain(
+      'certificate T-MT-014, master technician',
+    );
   });
 
   it('SO-43.13 [M, 14 CFR 43.13(a), (b), from memory]: the revision of each procedure and the tool of each pull are on record', async () => {

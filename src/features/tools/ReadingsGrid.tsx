@@ -85,7 +85,7 @@ function Worst({ point }: { point: JudgedPoint | undefined }) {
   return (
     <span className="tool-standing" data-kind={isWithin ? 'fit' : 'not fit'}>
       <Sign name={isWithin ? 'tick' : 'cross'} />
-      {`${worst.toFixed(1).replace('-', '−')} %`}
+      {`${worst > 0 ? '+' : ''}${worst.toFixed(1).replace('-', '−')} %`}
     </span>
   );
 }

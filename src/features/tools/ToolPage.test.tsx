@@ -57,7 +57,7 @@ describe('the page of a tool', () => {
   });
 
   it('says why a calibration failed, and marks the readings that are out', async () => {
-    const why = 'at 100 N·m 1 of 5 are off by more than ± 4 %, the worst by 11.111 %';
+    const why = 'at 100 N·m 1 of 5 is off by more than ± 4 %, the worst by 11.111 %';
     const bad = [...readings.slice(0, -1), { set: '100', reference: '90', unit: 'N·m' }];
     await show({
       failure: why,

@@ -94,7 +94,7 @@ function ToolHead({
           <Standing standing={standingOf(tool, today)} />
         </div>
         {canChange && (
-          <div className="cell-acts">
+          <div className="form-actions">
             <Button look="quiet" onClick={() => setIsChanging(true)}>
               Change its facts
             </Button>

@@ -1,4 +1,4 @@
-import { render, screen, within } from '@testing-library/react';
+import { render, screen, waitFor, within } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { describe, expect, it, vi } from 'vitest';
 import { answerDesk } from '../../../tests/support/desk-server';
@@ -82,6 +82,6 @@ describe('the page of tools', () => {
       ...{ name: 'Gauge', kind: 'micrometer', serial: 'G-1', unit: 'mm', rangeLow: null, rangeHigh: '50.0' },
       ...{ torqueType: null, torqueClass: null, cycleLimit: null },
     });
-    expect(goTo).toHaveBeenCalledWith('/tools/new');
+    await waitFor(() => expect(goTo).toHaveBeenCalledWith('/tools/new'));
   });
 });

@@ -2,7 +2,7 @@ import { render, screen } from '@testing-library/react';
 import userEvent from '@testing-library/user-event';
 import { describe, expect, it } from 'vitest';
 import { FixtureRun } from '../../../../tests/support/floor-run';
-import { Journal } from '../../../../tests/support/journal';
+import { buildWorkshop, Journal } from '../../../../tests/support/journal';
 import { smallPlan } from '../../../../tests/support/small-documents';
 
 const STEP = 'build.caps-marked';
@@ -36,6 +36,35 @@ describe('a hold point', () => {
     expect(technician).toBeDisabled();
     expect(technician).toHaveAccessibleDescription(/may not sign this/);
     expect(screen.getByRole('radio', { name: /^S. Visor/ })).toBeEnabled();
+  });
+
+  it('says of whom the authorisation is over, and what unlocks it', async () => {
+    const workshop = buildWorkshop();
+    const people = workshop.people.map((one) =>
+      one.id === 'sup' ? { ...one, authorisedUntil: '2000-01-31' } : one,
+    );
+    const journal = new Journal(smallPlan(), { ...workshop, people }).performUntil(STEP);
+    render(<FixtureRun journal={journal} />);
+    await userEvent.setup().click(await screen.findByRole('button', { name: /^Hand it to the signer/ }));
+    const supervisor = screen.getByRole('radio', { name: /^S. Visor/ });
+    expect(supervisor).toBeDisabled();
+    expect(supervisor).toHaveAccessibleDescription(
+      'The authorisation of S. Visor to sign counted until 31 Jan 2000. The owner renews it on the People page.',
+    );
+  });
+
+  it('puts the signer’s certificate on the signature and beside it', async () => {
+    const workshop = buildWorkshop();
+    const certificate = { number: 'T-MT-014', kind: 'master technician' };
+    const people = workshop.people.map((one) => (one.id === 'sup' ? { ...one, certificate } : one));
+    const journal = new Journal(smallPlan(), { ...workshop, people }).performUntil(STEP);
+    render(<FixtureRun journal={journal} isOnline />);
+    await userEvent.setup().click(await screen.findByRole('button', { name: /^Hand it to the signer/ }));
+    await lookAndCount('8');
+    await key('123456');
+    await press(/^Sign/);
+    expect(journal.entries.at(-1)).toMatchObject({ kind: 'signed', data: { certificate } });
+    expect(screen.getByText('T-MT-014, master technician')).toBeVisible();
   });
 
   it('is signed with the signer’s own count, presence and PIN, once with a network', async () => {
