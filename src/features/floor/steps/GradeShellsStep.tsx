@@ -100,8 +100,13 @@ function Graded({ step }: { step: StepOf<'grade-shells'> }) {
       step={step}
       isResult
       side={null}
-      heading={<h1 className="floor-step pb-4">{step.title}</h1>}
-      quiet={<QuietButton label="Correct" onPress={() => run.openSheet('correct')} />}
+      heading={
+        // In the part that scrolls, so that the keyboard gets there too.
+        <div className="flex items-start justify-between gap-4 pb-2">
+          <h1 className="floor-step">{step.title}</h1>
+          <QuietButton shape="wide" label="Correct" onPress={() => run.openSheet('correct')} />
+        </div>
+      }
       main={<NextAction step={step} />}
     >
       {graded && (
