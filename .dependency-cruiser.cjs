@@ -42,7 +42,10 @@ module.exports = {
       name: 'program-without-development-packages',
       severity: 'error',
       comment: 'Move the package to dependencies if the program needs it.',
-      from: { path: '^(src|db)/', pathNot: [NOT_TESTS, '^src/commands/(test|simulate|write-schemas)\\.mjs$'] },
+      from: {
+        path: '^(src|db)/',
+        pathNot: [NOT_TESTS, '^src/commands/(test|simulate|write-schemas)\\.mjs$'],
+      },
       to: { dependencyTypes: ['npm-dev'], dependencyTypesNot: ['type-only'], pathNot: '/@types/' },
     },
     {
