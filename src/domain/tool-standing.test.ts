@@ -16,7 +16,7 @@ describe('how a tool stands', () => {
     ['2031-05-31', 'due soon', 'due today'],
     ['2031-06-01', 'not fit', 'its calibration counted until 2031-05-31'],
   ])('on %s is %s: %s', (on, kind, words) => {
-    expect(standingOf(wrench, on)).toEqual({ kind, words });
+    expect(standingOf(wrench, on)).toEqual({ kind, words, short: words });
   });
 
   it('says that a failed calibration bars it, and that a withdrawn tool is withdrawn', () => {
@@ -24,6 +24,7 @@ describe('how a tool stands', () => {
     expect(standingOf(failed, '2031-01-01')).toEqual({
       kind: 'not fit',
       words: 'its last calibration failed: at 20 N·m 1 of 5 is off',
+      short: 'its last calibration failed',
     });
     expect(standingOf({ ...failed, state: 'withdrawn' }, '2031-01-01').kind).toBe('withdrawn');
   });
@@ -32,6 +33,7 @@ describe('how a tool stands', () => {
     expect(standingOf({ ...wrench, kind: 'feeler gauge', dueOn: null }, '2031-01-01')).toEqual({
       kind: 'fit',
       words: 'needs no calibration',
+      short: 'needs no calibration',
     });
     expect(standingOf({ ...wrench, dueOn: null }, '2031-01-01').kind).toBe('not fit');
   });

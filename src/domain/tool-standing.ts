@@ -4,6 +4,8 @@ import { fitness, type Tool } from './tool';
 export interface ToolStanding {
   kind: 'fit' | 'due soon' | 'not fit' | 'withdrawn';
   words: string;
+  /** The same without why a calibration failed, for a line of a list. */
+  short: string;
 }
 
 /** The kinds of tool that the program has a use for; others may be kept too. */
@@ -23,6 +25,12 @@ export const DUE_SOON_DAYS = 30;
 
 /** How a tool stands on a day (YYYY-MM-DD in the workshop's zone): whether class A may use it, and until when. */
 export function standingOf(tool: Tool, on: string): ToolStanding {
+  const { kind, words } = standing(tool, on);
+  const { failure = null } = tool;
+  return { kind, words, short: failure === null ? words : words.replace(`: ${failure}`, '') };
+}
+
+function standing(tool: Tool, on: string): Omit<ToolStanding, 'short'> {
   if (tool.state === 'withdrawn') return { kind: 'withdrawn', words: 'withdrawn' };
   const { reasons } = fitness(tool, { kind: tool.kind, criticalClass: 'A' }, on);
   if (reasons.length > 0) return { kind: 'not fit', words: reasons.join('; ') };

@@ -73,9 +73,13 @@ function People({ zone }: { zone: string }) {
           key: row.id,
           isSoft: !row.active,
           cells: {
-            name: row.name,
+            name: (
+              <>
+                {row.name}
+                {row.email !== undefined && <span className="cell-note">{row.email}</span>}
+              </>
+            ),
             roles: row.roles.join(', '),
-            email: row.email ?? '',
             signs: <SignsBy row={row} today={today} />,
             state: stateWords(row),
             acts: (
@@ -142,7 +146,6 @@ interface PersonChange {
 const COLUMNS: DataColumn[] = [
   { key: 'name', label: 'printed name' },
   { key: 'roles', label: 'roles' },
-  { key: 'email', label: 'e-mail' },
   { key: 'signs', label: 'signs by' },
   { key: 'state', label: 'state', isWide: true },
   { key: 'acts', label: 'change', align: 'right' },

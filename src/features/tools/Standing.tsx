@@ -9,11 +9,11 @@ const SIGNS: Record<ToolStanding['kind'], SignName> = {
 };
 
 /** How a tool stands, its sign beside its words. */
-export function Standing({ standing }: { standing: ToolStanding }) {
+export function Standing({ standing, isShort = false }: { standing: ToolStanding; isShort?: boolean }) {
   return (
     <span className="tool-standing" data-kind={standing.kind}>
       <Sign name={SIGNS[standing.kind]} />
-      <span>{standing.words}</span>
+      <span>{isShort ? standing.short : standing.words}</span>
     </span>
   );
 }

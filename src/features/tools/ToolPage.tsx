@@ -89,7 +89,7 @@ function ToolHead({
   return (
     <>
       <div className="page-head">
-        <div>
+        <div className="tool-head">
           <h1 className="page-title">{tool.name}</h1>
           <Standing standing={standingOf(tool, today)} />
         </div>

@@ -125,6 +125,6 @@ function cellsOf(tool: ToolAnswer, today: string): Record<string, ReactNode> {
     serial: <span className="figure">{tool.serial}</span>,
     range: rangeWords(tool),
     due: tool.dueOn === null ? '' : dayWords(tool.dueOn),
-    standing: <Standing standing={standingOf(tool, today)} />,
+    standing: <Standing standing={standingOf(tool, today)} isShort />,
   };
 }
