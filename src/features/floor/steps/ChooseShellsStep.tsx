@@ -32,6 +32,8 @@ type Shells = Record<Half, ShellFitted>;
 type Shelf = ShellsInStock[] | 'full';
 
 const HALVES = ['upper', 'lower'] as const;
+/** What is proposed stands beside the choice where there is room, else over it. */
+const BESIDE = 'grid gap-6 @4xl/floor-main:grid-cols-[minmax(0,5fr)_minmax(0,6fr)]';
 
 /** Which grade and lot of shell goes into each half of the rod: proposed once the rod was read, and free to choose. */
 export function ChooseShellsStep({ step }: { step: StepOf<'choose-shells'> }) {
@@ -139,6 +141,7 @@ function ChooseShells({ step, known, proposal, counted, isUncounted, onCount }: 
   return (
     <StepFrame
       step={step}
+      {...(proposal ? { side: null } : {})}
       heading={proposal ? <h1 className="floor-step pb-3">{step.title}</h1> : <StepHeading step={step} />}
       quiet={proposal ? <QuietButton label="Count again" onPress={onCount} /> : undefined}
       foot={
@@ -171,38 +174,42 @@ function ChooseShells({ step, known, proposal, counted, isUncounted, onCount }: 
         )
       }
     >
-      {proposal && limit && known && expected !== undefined && (
-        <ShellsProposed
-          proposal={proposal}
-          limit={limit}
-          chosen={pairWords(gradesOf(shells))}
-          expected={expected}
-          uncertainty={known.uncertainty}
-          isAsProposed={isAsProposed}
-        />
-      )}
-      <div className="grid gap-8 pt-4 @lg/floor-main:grid-cols-2">
-        {HALVES.map((half) => (
-          <div key={half} className="grid content-start gap-3">
-            <ChoiceRows
-              label={`${half === 'upper' ? 'Upper' : 'Lower'} shell, ${step.rod ?? ''}${half === 'upper' ? 'U' : 'L'}`}
-              choices={state.plan.engine.shells.grades.map(({ grade, wall }) => ({
-                value: grade,
-                label: grade,
-                note: known
-                  ? `${expectedClearance(state, known, { ...gradesOf(shells), [half]: grade })} mm`
-                  : wallWords(wall),
-              }))}
-              value={shells[half].grade}
-              onChoose={(grade) => choose(half, { grade, lot: lotFor(state, grade) })}
-            />
-            <QuietButton
-              shape="wide"
-              label={shells[half].lot === '' ? `Lot of the ${half} shell` : `Lot ${shells[half].lot}, change`}
-              onPress={() => setAsks(half)}
-            />
-          </div>
-        ))}
+      <div className={proposal ? BESIDE : undefined}>
+        {proposal && limit && known && expected !== undefined && (
+          <ShellsProposed
+            proposal={proposal}
+            limit={limit}
+            chosen={pairWords(gradesOf(shells))}
+            expected={expected}
+            uncertainty={known.uncertainty}
+            isAsProposed={isAsProposed}
+          />
+        )}
+        <div className="grid content-start gap-8 @lg/floor-main:grid-cols-2">
+          {HALVES.map((half) => (
+            <div key={half} className="grid content-start gap-3">
+              <ChoiceRows
+                label={`${half === 'upper' ? 'Upper' : 'Lower'} shell, ${step.rod ?? ''}${half === 'upper' ? 'U' : 'L'}`}
+                choices={state.plan.engine.shells.grades.map(({ grade, wall }) => ({
+                  value: grade,
+                  label: grade,
+                  note: known
+                    ? `${expectedClearance(state, known, { ...gradesOf(shells), [half]: grade })} mm`
+                    : wallWords(wall),
+                }))}
+                value={shells[half].grade}
+                onChoose={(grade) => choose(half, { grade, lot: lotFor(state, grade) })}
+              />
+              <QuietButton
+                shape="wide"
+                label={
+                  shells[half].lot === '' ? `Lot of the ${half} shell` : `Lot ${shells[half].lot}, change`
+                }
+                onPress={() => setAsks(half)}
+              />
+            </div>
+          ))}
+        </div>
       </div>
     </StepFrame>
   );

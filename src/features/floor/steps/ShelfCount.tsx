@@ -33,6 +33,7 @@ export function ShelfCount({ step, known, onCounted, onSkip }: ShelfCountProps) 
       step={step}
       side={null}
       then={null}
+      isResult
       heading={<h1 className="floor-step pb-4">Count the half shells on the shelf</h1>}
       quiet={<QuietButton label="Not counted" onPress={onSkip} />}
       main={

@@ -22,7 +22,7 @@ export function ShellsProposed(props: ShellsProposedProps) {
   const { verdict } = judgeLimit(limit, expected, String(uncertainty));
   const kind = verdict === 'no limit known' ? 'none' : verdict;
   return (
-    <section className="grid gap-3 border-y border-rule py-4" aria-label="What is proposed">
+    <section className="grid content-start gap-3" aria-label="What is proposed">
       <div className="flex flex-wrap items-center gap-x-8 gap-y-3">
         <div>
           <p className="form-label">
