@@ -87,7 +87,7 @@ export async function openTable(): Promise<Table> {
     { by: ann },
   );
   const inFile = tablet.held(job.id).outbox.splice(0);
-  const tool = shop.kit.workshop.tools[0]?.id ?? '';
+  const tool = shop.kit.workshop.tools.find(({ kind }) => kind === 'torque wrench')?.id ?? '';
   const day = { on: '2031-05-01', dueOn: '2032-05-01' };
   const { publicKey } = tablet.makeKey('spare');
   const { id: key } = await shop.app.db
