@@ -50,6 +50,8 @@ export interface SignedInRow {
 export interface WorkshopRow extends Workshop {
   key: 'workshop';
   name: string;
+  /** When the server had last been restored: another restore takes back what the number of this means. */
+  restoredAt?: string | null | undefined;
   people: (Workshop['people'][number] & { hasPin: boolean })[];
   sealingKey: { id: string; publicKey: string };
   /** What stands beside SI; a tablet that was filled before there was a choice shows none. */
@@ -124,6 +126,8 @@ export interface OutboxRow {
   reason?: string | undefined;
   /** It was made on a trail of which a restore of the server took the end. */
   restored?: true | undefined;
+  /** When the server had last been restored, as far as the workshop told by which this was made. */
+  workshopRestoredAt?: string | undefined;
 }
 
 export interface RefusedRow {

@@ -15,6 +15,7 @@ const nullableText = z.nullable(z.string());
 
 const workshopAnswer = z.object({
   seq: z.int(),
+  restoredAt: z.optional(nullableText),
   name: z.string(),
   zone: z.string(),
   people: z.array(

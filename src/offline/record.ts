@@ -91,7 +91,7 @@ export async function recordEntries(
       continue;
     }
     const signed = await signAll(offline, drawn.entries, drafts, ground);
-    const rows = await writeAll(offline, view, signed, ground.key, { photos, keptAt: instantOf(now) });
+    const rows = await writeAll(offline, view, signed, ground, { photos, keptAt: instantOf(now) });
     if (rows) {
       await offline.jobs.extend(view, rows, view.deviceSeq + rows.length);
       offline.sync.nudge();
@@ -269,7 +269,7 @@ async function writeAll(
   { db }: Surroundings,
   view: JobView,
   signed: Signed[],
-  key: AuthorKeyRow,
+  { key, workshop }: Ground,
   { photos, keptAt }: { photos: PreparedPhoto[]; keptAt: string },
 ): Promise<OutboxRow[] | undefined> {
   const tables = [db.jobs, db.counters, db.outbox, db.photos, db.photoBytes, db.authorKeys];
@@ -294,6 +294,7 @@ async function writeAll(
       key: key.id,
       where: 'on this tablet',
       ...(isOnLost ? { restored: true } : {}),
+      ...(workshop.restoredAt ? { workshopRestoredAt: workshop.restoredAt } : {}),
     }));
     await db.outbox.bulkAdd(rows);
     await keepPhotos(db, view.job, photos, keptAt);

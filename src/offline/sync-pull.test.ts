@@ -170,7 +170,7 @@ describe('a server restored from a backup', () => {
     server.onAnswer = (_path, answer) => answer;
     await remarks({ from: 3, count: 1 });
     must(await offline.sync.now());
-    const sent = server.requests.at(-1)!.body as {
+    const sent = server.requests.findLast(({ path }) => path === '/api/sync')!.body as {
       entries: { entry: { deviceSeq: number }; restored?: true }[];
     };
     expect(sent.entries.map(({ entry, restored }) => [entry.deviceSeq, restored])).toEqual([
@@ -193,7 +193,9 @@ describe('a server restored from a backup', () => {
     server.onAnswer = (_path, answer) => answer;
     await remarks({ from: 2, count: 1 });
     must(await offline.sync.now());
-    const sent = server.requests.at(-1)!.body as { entries: { entry: { by: string }; restored?: true }[] };
+    const sent = server.requests.findLast(({ path }) => path === '/api/sync')!.body as {
+      entries: { entry: { by: string }; restored?: true }[];
+    };
     expect(sent.entries.map(({ entry, restored }) => [entry.by, restored])).toEqual([
       ['mate', true],
       ['tech', true],

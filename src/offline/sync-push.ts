@@ -8,7 +8,7 @@ const MAX_BYTES = 480 * 1024;
 /** A record to be sent: one that has no verdict yet, or one whose refusal a restored server has lost. */
 export type Sendable = Pick<
   OutboxRow,
-  'job' | 'id' | 'entry' | 'signature' | 'key' | 'sealed' | 'restored'
+  'job' | 'id' | 'entry' | 'signature' | 'key' | 'sealed' | 'restored' | 'workshopRestoredAt'
 > & {
   /** Where it is in the outbox. */
   place?: number | undefined;
@@ -51,12 +51,14 @@ export function refusedBefore({ job, id, entry, signature, key, reason }: Refuse
 }
 
 /** A record as the server asks for it. */
-export function toWire({ entry, signature, key, sealed, refused, restored }: Sendable) {
+export function toWire({ refused, restored, workshopRestoredAt, ...row }: Sendable) {
+  const { entry, signature, key, sealed } = row;
   return {
     ...{ entry, signature, key },
     ...(sealed ? { sealed } : {}),
     ...(refused ? { refused } : {}),
     ...(restored ? { restored } : {}),
+    ...(workshopRestoredAt ? { workshopRestoredAt } : {}),
   };
 }
 

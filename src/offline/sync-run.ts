@@ -124,7 +124,9 @@ async function afterwards(
   if (restoredAt) await sendPhotosAgain(s, restoredAt);
   const photos = await sendPhotos(s);
   const workshop = await s.db.workshop.get('workshop');
-  if (!workshop || workshop.seq < workshopSeq) {
+  // After a restore the same number may stand for another workshop.
+  const isOther = (workshop?.restoredAt ?? null) !== (restoredAt ?? null);
+  if (!workshop || isOther || workshop.seq < workshopSeq) {
     const pulled = await pullWorkshop(s);
     if (!pulled.ok) return pulled;
   }

@@ -38,7 +38,7 @@ export async function countForFile({ db }: Surroundings): Promise<{ records: num
 }
 
 /** Makes the file of everything that is only here. */
-export async function makeTabletFile(s: Surroundings): Promise<TabletFile> {
+export async function makeTabletFile(s: Pick<Surroundings, 'db' | 'newId' | 'now'>): Promise<TabletFile> {
   const { id, name } = await readDevice(s);
   const savedAt = instantOf(s.now());
   const clockOffsetMs = ((await s.db.meta.get('clock'))?.value as number | undefined) ?? 0;
@@ -64,14 +64,17 @@ export async function makeTabletFile(s: Surroundings): Promise<TabletFile> {
 }
 
 /** Every record that the server has not given back, each job's in order, and refusals that it forgot. */
-async function readUnsent({ db }: Surroundings): Promise<Sendable[]> {
+async function readUnsent({ db }: Pick<Surroundings, 'db'>): Promise<Sendable[]> {
   return db.transaction('r', db.outbox, db.refused, async () => {
     const lost = await db.refused.filter(({ inTrail }) => inTrail === null).toArray();
     return [...lost.map(refusedBefore), ...(await db.outbox.orderBy(':id').toArray())];
   });
 }
 
-async function photoText({ db }: Surroundings, { hash, type }: PhotoRow): Promise<string | undefined> {
+async function photoText(
+  { db }: Pick<Surroundings, 'db'>,
+  { hash, type }: PhotoRow,
+): Promise<string | undefined> {
   const kept = await db.photoBytes.get(hash);
   return kept && JSON.stringify({ hash, type, bytes: toBase64url(new Uint8Array(kept.bytes)) });
 }

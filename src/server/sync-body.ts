@@ -44,6 +44,8 @@ export const carriedSchema = z.strictObject({
   refused: z.strictObject({ reason: z.string().min(1).max(1000) }).optional(),
   /** It was made on a trail of which a restore took the end, so what its tablet saw can't be had any more. */
   restored: z.literal(true).optional(),
+  /** When the server had last been restored, as the workshop told by which it was made; absent if it never had. */
+  workshopRestoredAt: instant.optional(),
 });
 
 export type Carried = z.infer<typeof carriedSchema>;

@@ -14,7 +14,7 @@ import { isRevoked, isTrueToWorkshop, proveAuthor } from './sync-author';
 import type { EntryVerdict } from './sync-body';
 import { placeOf } from './sync-numbers';
 import type { ReadItem } from './sync-read';
-import { hasMetRestore } from './sync-restored';
+import { isActOnLostView, lostFrom, whyWaitForWorkshop } from './sync-restored';
 import { noteAct, tabletView, UNFORESEEN } from './tablet-view';
 
 /** A tablet's clock may be so far off before its people are told. */
@@ -127,12 +127,14 @@ async function judgeProved(batch: Batch, fold: JobFold, item: ProvedItem): Promi
   }
   const wait = await whyWaitForEvidence(batch, fold, entry);
   if (wait !== undefined) return waiting(item, 'evidence-missing', wait);
-  const times = timesOf(batch, item);
   const lost = entry.kind === 'work-signed' ? await whyLost(batch, fold, entry) : undefined;
   if (lost !== undefined) return refuseIt('evidence-lost', lost);
-  const own = await ownVerdict(batch, fold, item, times);
+  const { own, times } = await bestVerdict(batch, fold, item);
   const isOnLostView = !own.ok && isActOnLostView(batch, fold, item, own.code);
-  if (!own.ok && !isOnLostView) return refuseIt(own.code, own.why);
+  if (!own.ok && !isOnLostView) {
+    const why = whyWaitForWorkshop(batch, item, own);
+    return why === undefined ? refuseIt(own.code, own.why) : waiting(item, 'workshop-lost', why);
+  }
   const here = own.ok ? serverVerdict(batch, fold, item, times) : own;
   const isJudgement = isOneOf(judgementKinds, entry.kind);
   if (!here.ok && isJudgement) {
@@ -211,6 +213,29 @@ function timesOf(batch: Batch, { entry, key }: ProvedItem): Times {
   return { known: entry.workshop, held: Math.max(entry.workshop, batch.history.seqAt(at)) };
 }
 
+/**
+ * Was it in order on its own tablet, and by which workshop is it judged? Where a restore took back what its number
+ * meant there, the workshop before that and the newest count as well: one of them is what the tablet saw, or as good.
+ */
+async function bestVerdict(
+  batch: Batch,
+  fold: JobFold,
+  item: ProvedItem,
+): Promise<{ own: Verdict; times: Times }> {
+  const times = timesOf(batch, item);
+  const own = await ownVerdict(batch, fold, item, times);
+  const from = own.ok ? undefined : lostFrom(batch, item);
+  if (from === undefined) return { own, times };
+  const { history } = batch;
+  const { seq } = history;
+  const before = { known: from - 1, held: Math.max(from - 1, history.seqAt(serverTime(batch, item.entry))) };
+  for (const others of [before, { known: seq, held: seq }]) {
+    const verdict = await ownVerdict(batch, fold, item, others);
+    if (verdict.ok) return { own: verdict, times: others };
+  }
+  return { own, times };
+}
+
 /** When an entry was made by the server's clock. */
 function serverTime(batch: Batch, entry: Entry): string {
   const made = Math.min(Date.parse(entry.at) - batch.clockOffsetMs, Date.parse(batch.receivedAt));
@@ -236,20 +261,6 @@ async function ownVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: 
   if (entry.kind !== 'work-signed' || (!verdict.ok && verdict.code !== 'work-to-come')) return verdict;
   return whyNotWork(batch, fold, entry, view);
 }
-
-/**
- * An act that was done after entries which a restore took back: whether its own tablet forbade it nobody can say
- * any more, and it happened. The trail tells that this tablet met a restore; that alone is not taken on its word.
- */
-function isActOnLostView(batch: Batch, fold: JobFold, { entry, carried }: ProvedItem, code: string): boolean {
-  const isSaid = carried?.restored === true || batch.lostViews.has(entry.job);
-  if (!isSaid || batch.device === undefined) return false;
-  if (isOneOf(judgementKinds, entry.kind) || isOneOf(WHATEVER_IT_SAW, code)) return false;
-  return hasMetRestore(fold, batch.device.id);
-}
-
-/** Why something is not in order however the job stood. */
-const WHATEVER_IT_SAW = ['key-revoked', 'author-differs', 'unknown-person', 'inactive-person', 'role'];
 
 /** Is it in order by all that the server knows? */
 function serverVerdict(batch: Batch, fold: JobFold, item: ProvedItem, times: Times): Verdict {

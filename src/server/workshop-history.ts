@@ -23,6 +23,8 @@ export interface WorkshopHistory {
   seqAt(time: string): number;
   /** When the server was last restored from a backup, as far as the trail tells. */
   restoredAt: string | null;
+  /** Every entry that tells of a restore: from its number on, numbers may have meant something else before. */
+  restores: readonly { seq: number; at: string }[];
 }
 
 interface Remembered {
@@ -30,7 +32,7 @@ interface Remembered {
   /** When each entry was made; entry `n` is at index `n − 1`. */
   times: string[];
   calibratedOn: Map<string, string>;
-  restoredAt: string | null;
+  restores: { seq: number; at: string }[];
 }
 
 /** What a database's trail came to when it was last read; entries are never changed, so it only grows. */
@@ -56,18 +58,19 @@ export async function readWorkshopHistory(db: Db, reader: Db = db): Promise<Work
     seq,
     at: (wanted) => ({ ...momentAt(moments, wanted).workshop, seq: Math.min(wanted, seq) }),
     seqAt: (time) => countUpTo(times, time),
-    restoredAt: memory.restoredAt,
+    restoredAt: memory.restores.at(-1)?.at ?? null,
+    restores: memory.restores,
   };
 }
 
 function begin(): Remembered {
   const workshop = { seq: 0, zone: 'UTC', people: [], tools: [] };
-  return { moments: [{ seq: 0, workshop }], times: [], calibratedOn: new Map(), restoredAt: null };
+  return { moments: [{ seq: 0, workshop }], times: [], calibratedOn: new Map(), restores: [] };
 }
 
 function remember(memory: Remembered, row: { seq: number; kind: string; at: string; body: string }): void {
   memory.times.push(row.at);
-  if (row.kind === 'restored') memory.restoredAt = row.at;
+  if (row.kind === 'restored') memory.restores.push({ seq: row.seq, at: row.at });
   const before = momentAt(memory.moments, row.seq).workshop;
   const { data } = JSON.parse(row.body) as { data: Data };
   const after = applyWorkshopEntry(before, row.kind, data, memory.calibratedOn);

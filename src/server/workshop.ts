@@ -10,7 +10,7 @@ import type { Keys } from './keys';
 import { toAuthorisation } from './authorisations';
 import { readSecondUnits } from './second-units';
 import { type KeptTool, readTools } from './tool-rows';
-import { appendWorkshopEntry, workshopSeq } from './workshop-trail';
+import { appendWorkshopEntry, findLastRestore, workshopSeq } from './workshop-trail';
 
 export interface WorkshopDetails {
   name: string;
@@ -22,6 +22,8 @@ export interface WorkshopDetails {
 export interface WorkshopView extends WorkshopDetails {
   /** The number of the workshop's newest entry, by which all of this holds. */
   seq: number;
+  /** When the server was last restored: another restore takes back what this number means. */
+  restoredAt: string | null;
   people: {
     id: string;
     name: string;
@@ -94,6 +96,7 @@ async function readView(db: Db, asker: Asker, keys: Keys): Promise<WorkshopView>
   return {
     ...(await getWorkshopDetails(db)),
     seq: await workshopSeq(db),
+    restoredAt: (await findLastRestore(db)) ?? null,
     people: people.map((row) => ({
       id: row.id,
       name: row.printed_name,

@@ -8,8 +8,9 @@ import { THE_WORKSHOP } from '@/server/actor';
 import { getFold } from '@/server/job-fold';
 import { setActive } from '@/server/people';
 import { setWorkshop } from '@/server/workshop';
-import { appendWorkshopEntry } from '@/server/workshop-trail';
+import { appendWorkshopEntry, findLastRestore } from '@/server/workshop-trail';
 import type { ScriptedEntry } from '@db/scripted-work';
+import { backUpTestApp, restoreTestApp } from '../support/database';
 import {
   ask,
   enrolTestTablet,
@@ -178,6 +179,16 @@ describe('an act on a view that a restore took back', () => {
     expect(verdicts).toMatchObject([{ verdict: 'recorded', code: expect.any(String) }]);
   });
 
+  it('is recorded although a second restore took the note of the first away', async () => {
+    const copy = await backUpTestApp(shop.app);
+    shop.app = await restoreTestApp(shop.app, copy);
+    await meetRestore();
+    shop.app.clock.advance(1000);
+    shop.app = await restoreTestApp(shop.app, copy);
+    expect((await trailOf(shop.app, job.id)).map(({ kind }) => kind)).toEqual(['opened']);
+    expect(await judged(unordered)).toMatchObject({ verdict: 'recorded', code: expect.any(String) });
+  });
+
   it('is refused where no restore is told of', async () => {
     expect(await judged(unordered)).toMatchObject({ verdict: 'refused' });
   });
@@ -189,6 +200,27 @@ describe('an act on a view that a restore took back', () => {
     await shop.app.db.transaction().execute((trx) => setActive(trx, owner, ann.id, false, shop.app));
     tablet.workshop = await workshopOf(shop.app);
     expect(await judged(unordered)).toMatchObject({ verdict: 'refused', code: 'inactive-person' });
+  });
+
+  it('is refused if its author was out before the numbers that the restore took back', async () => {
+    const { owner, ann } = shop.people;
+    await shop.app.db.transaction().execute((trx) => setActive(trx, owner, ann.id, false, shop.app));
+    tablet.workshop = await workshopOf(shop.app);
+    shop.app = await restoreTestApp(shop.app, await backUpTestApp(shop.app));
+    await meetRestore();
+    expect(await judged(unordered)).toMatchObject({ verdict: 'refused', code: 'inactive-person' });
+  });
+
+  it('is refused if its tablet had the workshop as it is since the restore', async () => {
+    const { owner, ann } = shop.people;
+    await shop.app.db.transaction().execute((trx) => setActive(trx, owner, ann.id, false, shop.app));
+    shop.app = await restoreTestApp(shop.app, await backUpTestApp(shop.app));
+    tablet.workshop = await workshopOf(shop.app);
+    await meetRestore();
+    await tablet.record(job.id, unordered, { by: ann, force: true });
+    const workshopRestoredAt = await findLastRestore(shop.app.db);
+    Object.assign(tablet.held(job.id).outbox.at(-1)!, { restored, workshopRestoredAt });
+    expect(await tablet.sync()).toMatchObject([{ verdict: 'refused', code: 'inactive-person' }]);
   });
 
   it('is no excuse for a judgement', async () => {

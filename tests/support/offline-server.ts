@@ -243,6 +243,7 @@ export class OfflineServer {
     const people = this.workshop.people.map((person) => ({ ...person, hasPin: this.pins.has(person.id) }));
     return {
       ...this.workshop,
+      restoredAt: this.restoredAt,
       people,
       sealingKey: { id: 'seal-1', publicKey: toBase64url(raw) },
       headKey: 'f'.repeat(64),

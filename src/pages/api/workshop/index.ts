@@ -13,6 +13,7 @@ export const GET = endpoint(
     who: 'session or tablet',
     answer: z.strictObject({
       seq: z.int(),
+      restoredAt: z.iso.datetime({ offset: false }).nullable(),
       name: z.string(),
       zone: z.string(),
       people: z.array(
