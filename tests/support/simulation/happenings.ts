@@ -1,4 +1,6 @@
 /* What happens to the tablets, the network, the server and the people, one thing at a time. */
+import { enrolAuthorKey, rememberSignIn } from '@/offline/tablet';
+import { makeTabletFile } from '@/offline/tablet-file';
 import { readRows } from './disk';
 import { checkDisk } from './invariants';
 import type { Run } from './run';
@@ -33,6 +35,9 @@ const FAULTS: readonly (readonly [weight: number, happening: Happening])[] = [
   [4, backUpOrRestore],
   [1.5, copyTablet],
   [0.6, loseTablet],
+  [3, comeAnew],
+  [2, declareLost],
+  [2, bringFileIn],
   [2, changePeople],
   [1, letHoursPass],
 ];
@@ -180,14 +185,20 @@ async function backUpOrRestore(run: Run): Promise<void> {
   if (!server.hasBackup() || run.restores >= 2 || chance.happens(0.5)) {
     await turns.outside(() => server.backUp());
     run.note('the server is backed up');
+    // Whoever comes now is not in the copy.
+    if (chance.happens(0.5)) await comeAnew(run);
     return;
   }
   for (const tablet of run.tablets) {
     const rows = await run.onDisk(tablet, (db) => db.refused.toArray());
     for (const { id } of rows) run.refusedBefore.add(id);
   }
+  // No restore is done within the same moment as the one before.
+  run.clock.now += MINUTE;
   await turns.outside(() => server.restore());
   run.restores += 1;
+  // Whoever signed in since the copy was made has no session any more.
+  for (const tablet of run.tablets) tablet.session = undefined;
   // Whoever was let in or out since the copy is as they were.
   run.away = new Set(await turns.outside(() => run.readAway()));
   run.note('the server is restored from the backup');
@@ -212,6 +223,51 @@ function loseTablet(run: Run): void {
   run.tablets = run.tablets.filter((one) => one !== tablet);
   run.lost.push(tablet);
   run.note(`${tablet.name} is lost`);
+}
+
+/** Somebody signs in on a tablet for the first time, while the network is at its best. */
+async function comeAnew(run: Run): Promise<void> {
+  const tab = someTab(run, ({ isBusy, tablet }) => !isBusy && !tablet.hasNewcomer && !tablet.isAway);
+  if (!tab) return;
+  const { tablet, offline } = tab;
+  const { cy } = run.beginning.people;
+  tablet.session = cy;
+  const sessionUntil = new Date(tablet.now() + 400 * HOUR).toISOString();
+  const signedIn = { person: cy.id, name: cy.name, roles: [...cy.roles], sessionUntil };
+  try {
+    await run.finish(rememberSignIn(offline, signedIn));
+    const outcome = await run.finish(enrolAuthorKey(offline, cy.id), { network: true });
+    tablet.hasNewcomer = outcome.ok;
+    run.note(
+      `${tablet.name}: ${cy.name} signs in for the first time (${outcome.ok ? 'with a key' : outcome.code})`,
+    );
+  } catch (error) {
+    run.hearFailure(tab, error);
+  }
+}
+
+/** The office declares a tablet lost that is; of a copied one it could not say which. */
+async function declareLost(run: Run): Promise<void> {
+  const tablet = run.lost.find(({ device }) => !run.isCopied(device));
+  if (!tablet) return;
+  await run.turns.outside(() => run.server.declareLost(run.beginning.people.owner, tablet.device));
+  run.note(`${tablet.name} is declared lost`);
+}
+
+/** What lay on a lost tablet comes to the office as a file after all. */
+async function bringFileIn(run: Run): Promise<void> {
+  if (run.lost.length === 0) return;
+  const tablet = run.chance.pick(run.lost);
+  const { newId } = tablet.around;
+  const { file, records } = await run.onDisk(tablet, (db) =>
+    makeTabletFile({ db, newId, now: () => tablet.now() }),
+  );
+  if (records === 0) return;
+  run.note(`the file of ${tablet.name} is brought in`);
+  const replies = await run.turns.outside(async () =>
+    run.server.bringIn(run.beginning.people.supervisor, await file.text()),
+  );
+  for (const reply of replies) run.hearFile(`the file of ${tablet.name}`, reply);
 }
 
 async function changePeople(run: Run): Promise<void> {

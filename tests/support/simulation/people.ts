@@ -26,6 +26,8 @@ interface Scene {
   view: JobView;
   kit: Kit;
   beginning: Beginning;
+  /** Somebody works here who was not here in the beginning. */
+  hasNewcomer: boolean;
 }
 
 type Way = (scene: Scene) => Promise<Deed | undefined> | Deed | undefined;
@@ -56,7 +58,8 @@ const HANDS: Record<Part, readonly Name[]> = {
   supervisor: ['supervisor', 'second'],
 };
 
-function handOf({ chance, beginning }: Scene, part: Part): Person {
+function handOf({ chance, beginning, hasNewcomer }: Scene, part: Part): Person {
+  if (hasNewcomer && part === 'technician' && chance.happens(0.6)) return beginning.people.cy;
   return beginning.people[chance.pick(HANDS[part])];
 }
 

@@ -170,7 +170,10 @@ export class Run {
     const view = offline.jobs.get(job) ?? (await offline.jobs.open(job));
     const workshop = await offline.db.workshop.get('workshop');
     const kit = { ...this.beginning.kit, ...(workshop ? { workshop } : {}) };
-    const deed = await thinkOf({ chance, offline, view, kit, beginning: this.beginning });
+    const deed = await thinkOf({
+      ...{ chance, offline, view, kit, beginning: this.beginning },
+      hasNewcomer: tablet.hasNewcomer,
+    });
     if (!deed) return;
     const { drafts, by, photos } = deed;
     const outcome = await recordEntries(offline, job, drafts, { by: by.id, photos });
@@ -188,7 +191,7 @@ export class Run {
   }
 
   /** A full disk, a page closed under somebody's hand: they are told, and nothing is said to be recorded. */
-  private hearFailure(tab: Tab, error: unknown): void {
+  hearFailure(tab: Tab, error: unknown): void {
     if (tab.isDead) return;
     const words = wordsOf(error);
     const isExpected = EXPECTED.some((one) => words.includes(one));
@@ -204,7 +207,13 @@ export class Run {
     for (const verdict of verdicts) this.hearVerdict(call, verdict);
   }
 
-  private hearVerdict(call: Call, { id, verdict, code }: Verdict): void {
+  /** Listens to what the server says of a tablet's file. */
+  hearFile(from: string, { text }: Reply): void {
+    const { verdicts } = JSON.parse(text) as { verdicts: Verdict[] };
+    for (const verdict of verdicts) this.hearVerdict({ from }, verdict);
+  }
+
+  private hearVerdict(call: Pick<Call, 'from'>, { id, verdict, code }: Verdict): void {
     this.note(`server to ${call.from}: ${id.slice(-14)} ${verdict}${code === undefined ? '' : ` (${code})`}`);
     if (code === 'unexpected') this.breaches.push(`The server could not judge the record ${id}.`);
     if (verdict === 'waiting') return;

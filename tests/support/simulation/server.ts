@@ -3,6 +3,7 @@ import { copyFileSync, existsSync, rmSync } from 'node:fs';
 import path from 'node:path';
 import { sql } from 'kysely';
 import pino from 'pino';
+import * as z from 'zod';
 import { POST as postDevices } from '@/pages/api/devices/index';
 import { GET as getFloorJobs } from '@/pages/api/floor/jobs';
 import { POST as postKeys } from '@/pages/api/keys/index';
@@ -13,9 +14,15 @@ import { POST as postSync } from '@/pages/api/sync/index';
 import { GET as getWorkshop } from '@/pages/api/workshop/index';
 import { type Actor, THE_WORKSHOP } from '@/server/actor';
 import { type App, closeApp, openApp, provideApp } from '@/server/compose';
+import { changeDevice } from '@/server/device-changes';
 import type { HandlerContext } from '@/server/http';
 import { setActive } from '@/server/people';
+import { SYNC_ENTRIES } from '@/server/sync-body';
+import { bringInFile, tabletFileBody } from '@/server/tablet-file';
 import { appendWorkshopEntry } from '@/server/workshop-trail';
+
+/** What a tablet saves: its photographs beside what the office sends on. */
+const tabletFile = z.looseObject(tabletFileBody.shape);
 
 type Handler = (context: HandlerContext) => Promise<Response>;
 
@@ -49,6 +56,10 @@ export interface SimServer {
   /** The process ends and begins anew: whatever it remembered is gone. */
   restart(): Promise<void>;
   setActive(owner: Actor, person: string, isActive: boolean): Promise<void>;
+  /** The office declares a tablet lost. */
+  declareLost(owner: Actor, device: string): Promise<void>;
+  /** The office brings a tablet's file in, in parts no larger than a push; gives what the server said. */
+  bringIn(actor: Actor, file: string): Promise<Reply[]>;
   close(): Promise<void>;
 }
 
@@ -116,6 +127,20 @@ export async function openServer({ folder, now, newId, onError }: Parts): Promis
     },
     async setActive(owner, person, isActive) {
       await app.db.transaction().execute((trx) => setActive(trx, owner, person, isActive, app));
+    },
+    async declareLost(owner, device) {
+      await changeDevice(app, owner, device, { state: 'lost', reason: 'Nobody has seen it.' });
+    },
+    async bringIn(actor, file) {
+      const { v, format, tablet, savedAt, clockOffsetMs, entries } = tabletFile.parse(JSON.parse(file));
+      const replies: Reply[] = [];
+      for (let first = 0; first < entries.length; first += SYNC_ENTRIES) {
+        const part = entries.slice(first, first + SYNC_ENTRIES);
+        const body = tabletFileBody.parse({ v, format, tablet, savedAt, clockOffsetMs, entries: part });
+        const answer = await bringInFile(app, actor, body);
+        replies.push({ status: 200, text: JSON.stringify(answer), type: 'application/json' });
+      }
+      return replies;
     },
     async close() {
       provideApp(undefined);

@@ -1,10 +1,11 @@
 /* A run from its seed to its verdict. */
 import 'fake-indexeddb/auto';
+import { readLostKeys } from '@/offline/lost-keys';
 import { chooseHappenings } from './happenings';
 import type { Rows } from './disk';
 import { checkAll, checkTablet } from './invariants';
 import { Run, wordsOf } from './run';
-import type { SimTablet } from './tablet';
+import type { SimTablet, Tab } from './tablet';
 
 const HOUR = 3_600_000;
 /** The last events that are shown of a run that broke. */
@@ -117,13 +118,38 @@ async function comeToRest(run: Run): Promise<void> {
 }
 
 /** Lets a tablet sync; tells whether all went through and nothing is left on it. */
-async function syncQuietly(run: Run, { tabs, name }: SimTablet): Promise<boolean> {
-  const [tab] = tabs;
+async function syncQuietly(run: Run, tablet: SimTablet): Promise<boolean> {
+  const { name } = tablet;
+  const [tab] = tablet.tabs;
   if (!tab) throw new Error(`${name} has no page.`);
   const { db, sync } = tab.offline;
   const outcome = await run.finish(sync.now(), { network: true });
+  await signInAgain(run, tablet, tab);
+  await letInAgain(run, tab);
   if (!outcome.ok) run.note(`${name}: ${outcome.why} (${outcome.code})`);
   return outcome.ok && (await run.finish(db.outbox.count())) === 0;
+}
+
+/** Everybody whose key a restored server has forgotten signs in on the tablet once more. */
+async function signInAgain(run: Run, tablet: SimTablet, { offline }: Tab): Promise<void> {
+  for (const id of await run.finish(readLostKeys(offline.db))) {
+    tablet.session = Object.values(run.beginning.people).find((person) => person.id === id);
+    run.note(`${tablet.name}: ${tablet.session?.name ?? id} signs in again`);
+    await run.finish(offline.sync.now(), { network: true });
+  }
+}
+
+/** The owner lets everybody in again whose judgement waits, since a restore forgot that they were. */
+async function letInAgain(run: Run, { offline }: Tab): Promise<void> {
+  const { turns, server, beginning } = run;
+  const waiting = await run.finish(
+    offline.db.outbox.filter(({ code }) => code === 'workshop-lost').toArray(),
+  );
+  for (const by of new Set(waiting.map(({ entry }) => entry.by))) {
+    await turns.outside(() => server.setActive(beginning.people.owner, by, true));
+    run.note(`${by} is let in again, whose judgement waits`);
+    await run.finish(offline.sync.now(), { network: true });
+  }
 }
 
 /** How much the server holds of everything that a tablet may get. */

@@ -26,6 +26,8 @@ export class SimTablet {
   isFull = false;
   /** Whose session is the active one in this browser. */
   session: Actor | undefined;
+  /** Somebody whose first sign-in on any tablet was in this run works here too. */
+  hasNewcomer = false;
   tabs: Tab[] = [];
   readonly locks: TabLocks | undefined;
 
