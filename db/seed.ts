@@ -1,4 +1,4 @@
-import type { Certificate } from '@/domain/authorisation';
+import type { Certificate } from '@/domain/certificate';
 import type { Role } from '@/domain/role';
 import type { Actor } from '@/server/actor';
 import { DAY } from '@/server/clock';

@@ -1,25 +1,12 @@
+import type { Authorisation } from './certificate';
 import type { Entry } from './entry';
 import type { JobState, Verdict } from './job-state';
-import { dayIn } from './job-tightening-rules';
-import { dayWords } from './time-words';
+import { dayIn, dayWords } from './time-words';
 
 /*
  * Who is authorised to sign, and until when: a signature is approved by somebody with a certificate that can be
  * named (14 CFR 43.9(a)(4)), and the list of who is authorised is current (14 CFR 121.371(d)).
  */
-
-/** By what somebody signs, as it stands on the paper: "LY-MT-014", "master technician". */
-export interface Certificate {
-  number: string;
-  kind: string;
-}
-
-/** What the workshop has of somebody's right to sign; neither is asked for. */
-export interface Authorisation {
-  certificate?: Certificate | null | undefined;
-  /** The last day on which their signature counts, YYYY-MM-DD; null where no end is set. */
-  authorisedUntil?: string | null | undefined;
-}
 
 /** Why somebody's signature does not count on a day of the workshop; the last day itself still counts. */
 export function whyNotAuthorised(

@@ -2,7 +2,7 @@
  * What a job looks like after its entries: plain JSON, so that the server can keep it by head hash and a
  * tablet in IndexedDB. Only job.ts makes one. Everything in it follows from the plan and the entries.
  */
-import type { Authorisation, Certificate } from './authorisation';
+import type { Authorisation, Certificate } from './certificate';
 import type { Entry, EntryKind } from './entry';
 import type { BoltSet, CriticalClass, Plan, RodEffects } from './plan';
 

@@ -3,6 +3,7 @@ import { whyImpossible } from './job-figures';
 import { nextTightening, startsAgain, tighteningsLeft } from './job-tightening';
 import type { JobState, Verdict, Workshop } from './job-state';
 import type { PlanStage, StepOf } from './plan';
+import { dayIn } from './time-words';
 import { judgeReading } from './tightening';
 import { fitness } from './tool';
 
@@ -143,25 +144,4 @@ export function whyNotTool(
     dayIn(workshop.zone, at),
   );
   return fit ? OK : no('tool-unfit', `${tool.name}: ${reasons.join('; ')}.`, 'Choose another tool.');
-}
-
-const dayFormats = new Map<string, Intl.DateTimeFormat>();
-
-/** The calendar day of an instant in the workshop's zone, `YYYY-MM-DD`, also where a clock is ages off. */
-export function dayIn(zone: string, at: string): string {
-  let format = dayFormats.get(zone);
-  if (!format) {
-    // Making one takes longer than all else that is asked of an entry.
-    format = new Intl.DateTimeFormat('en-CA', {
-      timeZone: zone,
-      year: 'numeric',
-      month: '2-digit',
-      day: '2-digit',
-    });
-    dayFormats.set(zone, format);
-  }
-  const day = format.format(new Date(at));
-  const yearDigits = day.indexOf('-');
-  if (yearDigits === 4) return day;
-  return yearDigits > 4 ? '9999-12-31' : day.padStart('YYYY-MM-DD'.length, '0');
 }

@@ -49,3 +49,24 @@ export function dayWords(day: string): string {
   if (Number.isNaN(instant.getTime())) return day;
   return format(instant.getTime(), 'UTC', { day: 'numeric', month: 'short', year: 'numeric' });
 }
+
+const dayFormats = new Map<string, Intl.DateTimeFormat>();
+
+/** The calendar day of an instant in the workshop's zone, `YYYY-MM-DD`, also where a clock is ages off. */
+export function dayIn(zone: string, at: string): string {
+  let format = dayFormats.get(zone);
+  if (!format) {
+    // Making one takes longer than all else that is asked of an entry.
+    format = new Intl.DateTimeFormat('en-CA', {
+      timeZone: zone,
+      year: 'numeric',
+      month: '2-digit',
+      day: '2-digit',
+    });
+    dayFormats.set(zone, format);
+  }
+  const day = format.format(new Date(at));
+  const yearDigits = day.indexOf('-');
+  if (yearDigits === 4) return day;
+  return yearDigits > 4 ? '9999-12-31' : day.padStart('YYYY-MM-DD'.length, '0');
+}

@@ -1,5 +1,5 @@
 import type { PersonRow } from '@db/tables';
-import type { Certificate } from '@/domain/authorisation';
+import type { Certificate } from '@/domain/certificate';
 import { type Actor, requireRole } from './actor';
 import type { Clock, Ids } from './clock';
 import type { Trx } from './database';

@@ -1,5 +1,5 @@
 import type { PersonRow } from '@db/tables';
-import type { Certificate } from '@/domain/authorisation';
+import type { Certificate } from '@/domain/certificate';
 import type { Role } from '@/domain/role';
 import { type Actor, hasRole, parseRoles, requireRole } from './actor';
 import { toAuthorisation } from './authorisations';

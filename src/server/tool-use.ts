@@ -1,4 +1,4 @@
-import { dayIn } from '@/domain/job-tightening-rules';
+import { dayIn } from '@/domain/time-words';
 import { findStep } from '@/domain/plan';
 import { type Actor, requireRole } from './actor';
 import { type Calibration, listCalibrations } from './calibrations';

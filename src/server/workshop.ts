@@ -1,7 +1,7 @@
 import type { Role } from '@/domain/role';
 import type { SecondUnits } from '@/domain/second-unit';
-import type { Certificate } from '@/domain/authorisation';
-import { dayIn } from '@/domain/job-tightening-rules';
+import type { Certificate } from '@/domain/certificate';
+import { dayIn } from '@/domain/time-words';
 import { type Actor, parseRoles, requireRole } from './actor';
 import { type Asker, requireSomebody } from './asker';
 import { type Clock, type Ids, stamp } from './clock';

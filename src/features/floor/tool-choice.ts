@@ -1,8 +1,7 @@
 import type { JobState, ToolInHand, Workshop } from '@/domain/job-state';
-import { dayIn } from '@/domain/job-tightening-rules';
+import { dayIn, dayWords } from '@/domain/time-words';
 import type { CriticalClass } from '@/domain/plan';
 import { fitness, type ToolUse } from '@/domain/tool';
-import { dayWords } from '@/domain/time-words';
 
 export type Hand = 'torque' | 'angle' | 'measuring';
 

@@ -7,7 +7,7 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
 import { newQueryClient, useServerList } from '@/offline/use-server';
-import { dayIn } from '@/domain/job-tightening-rules';
+import { dayIn } from '@/domain/time-words';
 import { AddPersonForm } from './AddPersonForm';
 import { AuthorisationDialog, SignsBy, type Authorised } from './AuthorisationDialog';
 import { LinkNote } from './LinkNote';

@@ -10,14 +10,7 @@ import { dayAfter } from '@/domain/tool-standing';
 import { ReadingsGrid } from './ReadingsGrid';
 import { useToolChange } from './send-tool';
 import type { ToolWithCalibrations } from './tool-answer';
-import { emptyPoints, judgeTyped, readGrid, type TypedPoint } from './typed-readings';
-
-export interface CalibrationFields {
-  on: string;
-  dueOn: string;
-  certificate: string;
-  points: TypedPoint[];
-}
+import { type CalibrationFields, emptyPoints, judgeTyped, readGrid } from './typed-readings';
 
 const YEAR_DAYS = 365;
 

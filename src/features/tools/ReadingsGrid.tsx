@@ -2,9 +2,8 @@ import type { UseFormReturn } from 'react-hook-form';
 import { Sign } from '@/components/Sign';
 import { type CalibrationJudgement, type JudgedPoint, TORQUE_TOOL_KIND } from '@/domain/calibration';
 import { compareDecimals } from '@/domain/decimal';
-import type { CalibrationFields } from './CalibrationForm';
 import type { ToolWithCalibrations } from './tool-answer';
-import { typedFigure, type TypedPoint } from './typed-readings';
+import { type CalibrationFields, typedFigure, type TypedPoint } from './typed-readings';
 
 export interface ReadingsGridProps {
   tool: ToolWithCalibrations;

@@ -16,6 +16,14 @@ export interface TypedPoint {
   references: string[];
 }
 
+/** What is typed of a calibration. */
+export interface CalibrationFields {
+  on: string;
+  dueOn: string;
+  certificate: string;
+  points: TypedPoint[];
+}
+
 /** How many points a tool without a rule is offered. */
 const FREE_POINTS = 4;
 
