@@ -1,6 +1,7 @@
 import AxeBuilder from '@axe-core/playwright';
 import type { Page } from '@playwright/test';
 import type { ScriptedPerson, ScriptedTablet } from '@db/scripted-tablet';
+import type { EntryData } from '@/domain/entry';
 import type { StepOf } from '@/domain/plan';
 import { expect, islandsReady, test } from '../support/e2e';
 import { demoPerson, signInOnFloor } from '../support/e2e-people';
@@ -49,10 +50,10 @@ test('a rod outside its limits gets shells that are proposed from the shelf', as
     const { plan } = tablet.held(job).state;
     const step = firstGauge(plan).id;
     for (const end of ['front', 'rear'] as const) {
-      const data = {
+      const data: EntryData<'gauged'> = {
         ...{ end, by: 'band', clearance: end === 'front' ? '0.076' : '0.074', uncertainty: '0.002' },
         ...{ unit: 'mm', again: 'first', threadLot: 'T-1', cardLot: 'T-1' },
-      } as const;
+      };
       await tablet.record(job, { kind: 'gauged', step, data }, { by });
     }
     for (const { id } of tablet.held(job).state.deviations.filter(({ disposed }) => !disposed)) {
