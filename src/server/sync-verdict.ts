@@ -51,6 +51,13 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
     return refuse(batch, item, { code: 'id-taken', reason, device: ownDevice });
   }
   const fold = await foldOf(batch, entry.job);
+  if (fold === undefined && batch.history.restoredAt !== null) {
+    return waiting(
+      item,
+      'job-lost',
+      'The server was restored from a backup, and does not hold this job: it may be older than the job. Its records stay on the tablet, and go in if a newer backup is restored. To work on meanwhile a supervisor opens the job again at a desk.',
+    );
+  }
   if (fold === undefined) {
     return waiting(
       item,
@@ -76,7 +83,7 @@ export async function judgeItem(batch: Batch, item: ReadItem): Promise<EntryVerd
   const proof = proveAuthor(batch, item, entry);
   if (!proof.ok) {
     const wait = proof.code === 'key-unknown' ? await whyWaitForKey(batch, fold, entry) : undefined;
-    if (wait !== undefined) return waiting(item, 'key-lost', wait);
+    if (wait !== undefined) return waiting(item, wait.code, wait.why);
     return refuse(batch, item, { ...proof, device: ownDevice });
   }
   const { signature, key } = proof;

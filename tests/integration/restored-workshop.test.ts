@@ -6,7 +6,7 @@ import type { Role } from '@/domain/role';
 import { makeAvailableOffline, pullWorkshop } from '@/offline/prefetch';
 import { recordEntries, type Draft } from '@/offline/record';
 import { makeTabletFile } from '@/offline/tablet-file';
-import { changeRoles, setActive } from '@/server/people';
+import { addPerson, changeRoles, setActive } from '@/server/people';
 import { bringInFile, tabletFileBody } from '@/server/tablet-file';
 import { Browser, openAtDesk } from '../support/browser';
 import { backUpTestApp, restoreTestApp } from '../support/database';
@@ -119,6 +119,42 @@ describe('somebody who was let in again after the backup', () => {
     must(await tablet.offline.sync.now());
     const outcome = await recordEntries(tablet.offline, job, [remark], { by: ben.id });
     expect(outcome).toMatchObject({ ok: false, code: 'inactive-person' });
+  });
+});
+
+describe('what waits for a newer backup', () => {
+  const waiting = async () =>
+    (await tablet.offline.db.outbox.toArray()).map(({ where, code, reason }) => ({ where, code, reason }));
+
+  it('says so where somebody was added after the backup, and what the owner does meanwhile', async () => {
+    const { owner } = shop.people;
+    const copy = await backUpTestApp(shop.app);
+    const made = {
+      name: 'Test Newcomer',
+      email: 'newcomer@witnessmark.example',
+      roles: ['technician'] as Role[],
+    };
+    const id = await shop.app.db.transaction().execute((trx) => addPerson(trx, owner, made, shop.app));
+    const newcomer = { ...shop.people.ann, ...made, id, personId: id };
+    await tablet.signIn(newcomer);
+    await record(newcomer, remark);
+    await restore(copy);
+    tablet.session = undefined;
+    must(await tablet.offline.sync.now());
+    const reason = expect.stringContaining('the owner adds Test Newcomer again') as string;
+    expect(await waiting()).toEqual([{ where: 'waiting', code: 'person-lost', reason }]);
+    expect(await refusedAtServer()).toEqual([]);
+  });
+
+  it('says so where the job was opened after the backup, and how work goes on', async () => {
+    const copy = await backUpTestApp(shop.app);
+    job = await openAtDesk(new Browser(shop, 'desk'));
+    must(await makeAvailableOffline(tablet.offline, job));
+    await record(shop.people.ann, remark);
+    await restore(copy);
+    must(await tablet.offline.sync.now());
+    const reason = expect.stringContaining('a supervisor opens the job again') as string;
+    expect(await waiting()).toEqual([{ where: 'waiting', code: 'job-lost', reason }]);
   });
 });
 
