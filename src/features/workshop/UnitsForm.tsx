@@ -1,4 +1,4 @@
-import { useQueryClient } from '@tanstack/react-query';
+import { QueryClientProvider, useQueryClient } from '@tanstack/react-query';
 import { useState } from 'react';
 import * as z from 'zod/mini';
 import { ChoiceRows } from '@/components/ChoiceRows';
@@ -6,12 +6,21 @@ import { ErrorNote } from '@/components/ErrorNote';
 import { SECOND_UNITS } from '@/domain/second-unit';
 import { offlineOfThisPage } from '@/offline/offline';
 import { callServer } from '@/offline/server-call';
-import { useServer } from '@/offline/use-server';
+import { newQueryClient, useServer } from '@/offline/use-server';
 
 const workshopAnswer = z.object({ secondUnits: z.enum(SECOND_UNITS) });
 
 /** The owner chooses whether inches and pounds stand beside SI, for a shop whose tools are marked in them. */
 export function UnitsForm() {
+  const [client] = useState(newQueryClient);
+  return (
+    <QueryClientProvider client={client}>
+      <Units />
+    </QueryClientProvider>
+  );
+}
+
+function Units() {
   const client = useQueryClient();
   const { data } = useServer('/api/workshop', workshopAnswer);
   const [trouble, setTrouble] = useState<string>();
