@@ -43,7 +43,7 @@ test('the job page tells progress, what blocks, and who works on it', async ({ p
   await islandsReady(page);
   await expect(page.getByRole('heading', { level: 1 })).toContainText(`Job ${job.number}, KV 63 TRB`);
   const progress = page.getByRole('region', { name: 'Progress' });
-  await expect(progress.getByRole('listitem').filter({ hasText: 'Measurement' })).toContainText('47 of 47');
+  await expect(progress.getByRole('listitem').filter({ hasText: 'Measurement' })).toContainText('48 of 48');
   await expect(page.getByText('Nothing blocks it.')).toBeVisible();
   await expect(page.getByRole('listitem').filter({ hasText: 'Rod 3: final fit' })).toBeVisible();
   await expect(page.getByRole('definition').filter({ hasText: /^Ines Varga since/ })).toBeVisible();
