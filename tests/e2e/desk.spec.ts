@@ -107,15 +107,6 @@ for (const theme of THEMES) {
       [await addressOfTool(page), page.getByRole('heading', { name: 'Enter a calibration' })],
     ] as const;
     await expectAllAccessible(page, pages);
-    await page.context().clearCookies();
-    await signInAtDesk(page, demoPerson('owner'));
-    await expectAllAccessible(page, [
-      ['/people', page.getByRole('table', { name: /people/i })],
-      ['/workshop', page.getByText(/^Unbroken/)],
-      ['/workshop/tablets', page.getByRole('radio', { name: 'SI alone' })],
-      ['/workshop/mail', page.getByRole('heading', { name: 'Witness address' })],
-    ]);
-    await page.context().clearCookies();
     await page.goto('/floor');
     await islandsReady(page);
     await signInOnFloor(page, demoPerson('ines'));
@@ -124,6 +115,19 @@ for (const theme of THEMES) {
     const floor = new FloorDriver(page, picture);
     await floor.runUntil(({ main }) => main === 'Both at 8, then 25 N·m');
     await expectAccessible(page, 'the Floor, tightening');
+  });
+}
+
+for (const theme of THEMES) {
+  test(`nor does anything on the owner’s pages in the ${theme} theme`, async ({ page }) => {
+    await page.addInitScript((chosen) => localStorage.setItem('witnessmark.theme', chosen), theme);
+    await signInAtDesk(page, demoPerson('owner'));
+    await expectAllAccessible(page, [
+      ['/people', page.getByRole('table', { name: 'The people of the workshop' })],
+      ['/workshop', page.getByText(/^Unbroken/)],
+      ['/workshop/tablets', page.getByRole('radio', { name: 'SI alone' })],
+      ['/workshop/mail', page.getByRole('heading', { name: 'Witness address' })],
+    ]);
   });
 }
 

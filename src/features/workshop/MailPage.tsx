@@ -61,7 +61,7 @@ function Letters({ zone }: { zone: string }) {
           { key: 'to', label: 'to' },
           { key: 'subject', label: 'subject', isWide: true },
           { key: 'state', label: 'state' },
-          { key: 'acts', label: 'Again' },
+          { key: 'acts', label: 'letter' },
         ]}
         rows={(letters ?? []).map((letter) => ({
           key: letter.id,
