@@ -111,7 +111,6 @@ function Job({
             <EngineBelow {...engineView(jobState, next, zone)} />
           </section>
           <JobClearances state={jobState} />
-          <JobFilm state={jobState} />
         </div>
         <div className="job-state">
           <JobBlocks
@@ -127,6 +126,7 @@ function Job({
           <JobPeople job={answer} zone={zone} canAssign={canAssign} />
           <JobSignatures state={jobState} zone={zone} judge={onThisJob} />
           <JobWear state={jobState} zone={zone} />
+          <JobFilm state={jobState} />
           <JobPhotos
             state={jobState}
             zone={zone}
